@@ -1,0 +1,44 @@
+//! The command line: arguments as typed, options as meant, one file a command.
+
+use std::ffi::OsString;
+use std::process::ExitCode;
+
+use clap::{Parser, Subcommand};
+
+mod outcome;
+
+pub use outcome::Outcome;
+
+/// The arguments as typed.
+#[derive(Debug, Parser)]
+#[command(
+    name = "chordwise",
+    version,
+    about = "Certified meshes and seam reports from parametric patch sets"
+)]
+pub struct Arguments {
+    /// What to do.
+    #[command(subcommand)]
+    command: Command,
+}
+
+/// The commands.
+#[derive(Debug, Subcommand)]
+enum Command {}
+
+/// Runs the program on the given arguments, the program's name first.
+pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
+    match Arguments::try_parse_from(arguments) {
+        Ok(arguments) => match arguments.command {},
+        Err(error) => {
+            let code = if error.use_stderr() {
+                Outcome::Refused
+            } else {
+                Outcome::Done
+            };
+            // Nothing is left to be done where even the message cannot be written.
+            let _ = error.print();
+            code.into()
+        }
+    }
+}

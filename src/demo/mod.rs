@@ -1,0 +1,1 @@
+//! The sets we ship, made by code.

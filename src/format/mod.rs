@@ -1,0 +1,1 @@
+//! One file per output format, each writing to a [`std::io::Write`].

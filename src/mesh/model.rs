@@ -1,0 +1,62 @@
+//! The mesh in memory.
+
+use std::ops::Range;
+
+use crate::scalar::{LengthUnit, Point, Vector};
+
+/// A corner as a renderer stores it: a geometric point with one normal. Where
+/// normals differ (a crease, a cone's tip) several vertices share a point.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Vertex {
+    /// Index into [`Mesh::points`].
+    pub point: u32,
+    /// Exact unit normal of the surface, outward; zero only where the surface
+    /// has none.
+    pub normal: Vector,
+}
+
+/// The triangles of one patch.
+#[derive(Debug, Clone)]
+pub struct Part {
+    /// The patch's full name.
+    pub name: String,
+    /// Index into [`Mesh::panels`].
+    pub panel: usize,
+    /// Its triangles in [`Mesh::triangles`].
+    pub triangles: Range<usize>,
+}
+
+/// An indexed triangle mesh: every geometric point once, shared by all that
+/// meet there.
+#[derive(Debug, Clone)]
+pub struct Mesh {
+    /// The set's name.
+    pub name: String,
+    /// The unit of all coordinates.
+    pub unit: LengthUnit,
+    /// Panel names, in order of first appearance.
+    pub panels: Vec<String>,
+    /// Geometric points.
+    pub points: Vec<Point>,
+    /// Points with normals.
+    pub vertices: Vec<Vertex>,
+    /// Indices into [`Mesh::vertices`], counterclockwise seen from outside.
+    pub triangles: Vec<[u32; 3]>,
+    /// One part a patch, in file order; together they cover all triangles.
+    pub parts: Vec<Part>,
+}
+
+impl Mesh {
+    /// The three points of a triangle.
+    #[must_use]
+    pub fn triangle_points(&self, triangle: usize) -> [u32; 3] {
+        self.triangles[triangle].map(|v| self.vertices[v as usize].point)
+    }
+
+    /// The three corners of a triangle in space.
+    #[must_use]
+    pub fn triangle_corners(&self, triangle: usize) -> [Point; 3] {
+        self.triangle_points(triangle)
+            .map(|p| self.points[p as usize])
+    }
+}

@@ -1,0 +1,1 @@
+//! What is told to people and programs: summaries and seam lists.

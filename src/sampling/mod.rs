@@ -1,0 +1,1 @@
+//! One run of vertices for every seam, a function of the seam alone.

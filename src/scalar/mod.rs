@@ -1,0 +1,13 @@
+//! Numbers and their meaning: vectors, units of length, tolerances, brackets.
+
+mod bracket;
+mod id;
+mod tolerance;
+mod unit;
+mod vector;
+
+pub use bracket::Bracket;
+pub(crate) use id::id;
+pub use tolerance::{Tolerance, ToleranceError};
+pub use unit::{Length, LengthError, LengthUnit};
+pub use vector::{Point, Vector};

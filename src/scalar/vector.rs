@@ -1,0 +1,7 @@
+//! The one place where the vector library is named.
+
+/// A place in space, in the set's length unit.
+pub type Point = nalgebra::Point3<f64>;
+
+/// A direction or a difference of places, in the set's length unit.
+pub type Vector = nalgebra::Vector3<f64>;

@@ -1,0 +1,1 @@
+//! Triangles for every piece, each proved within the chord tolerance.

@@ -1,0 +1,121 @@
+//! The result of pairing.
+
+use std::ops::Range;
+
+use super::{EdgeId, NodeId, SeamId, SpanId};
+use crate::scalar::{Bracket, Point};
+
+/// One edge of a Bezier piece.
+#[derive(Debug, Clone)]
+pub struct Edge {
+    /// Whether the whole edge is one point (a pole). A collapsed edge has no
+    /// span; both its ends are `nodes[0]`.
+    pub collapsed: bool,
+    /// The nodes at parameter 0 and 1.
+    pub nodes: [NodeId; 2],
+    /// Its spans in [`Topology::spans`], ascending in the edge's parameter,
+    /// covering 0 to 1 without a hole.
+    pub spans: Range<usize>,
+}
+
+/// A stretch of an edge from `t[0]` to `t[1]`, `t[0] < t[1]`.
+#[derive(Debug, Clone)]
+pub struct Span {
+    /// The edge it lies on.
+    pub edge: EdgeId,
+    /// Parameters of its ends on that edge.
+    pub t: [f64; 2],
+    /// Nodes at `t[0]` and `t[1]`.
+    pub nodes: [NodeId; 2],
+    /// The seam it takes part in.
+    pub seam: SeamId,
+    /// Whether it runs against the seam's master span.
+    pub reversed: bool,
+    /// Distance from the master span (two-sided): zero for the master.
+    pub gap: Bracket,
+}
+
+/// All spans joined along one stretch, at least one. One span: an open edge.
+/// Two: an ordinary seam. Three or more: a non-manifold one.
+#[derive(Debug, Clone)]
+pub struct Seam {
+    /// The spans; the first is the master, the others follow by edge.
+    pub spans: Vec<SpanId>,
+}
+
+/// A place where spans end.
+#[derive(Debug, Clone)]
+pub struct Node {
+    /// Where the mesh vertex stands: on the least edge (patch name, side,
+    /// piece) that has a corner or a split here.
+    pub point: Point,
+}
+
+/// Two edges that keep within the search distance over a common stretch,
+/// joined or not. This is what the seam report speaks of.
+#[derive(Debug, Clone)]
+pub struct Contact {
+    /// The two edges, the lesser one (patch name, side, piece) first.
+    pub edges: [EdgeId; 2],
+    /// The stretch on the first edge, ascending.
+    pub first: [f64; 2],
+    /// The matching stretch on the second edge: `second[0]` lies at `first[0]`,
+    /// so it descends where the edges run against each other.
+    pub second: [f64; 2],
+    /// Hausdorff distance of the two stretches.
+    pub gap: Bracket,
+    /// Where the attained gap is: the parameter on the first edge.
+    pub gap_at: f64,
+    /// Whether the mesh is joined here: the gap is proved to be within the gap
+    /// tolerance and the seam is not demanded open.
+    pub joined: bool,
+}
+
+/// Who meets whom in a patch set.
+#[derive(Debug, Clone)]
+pub struct Topology {
+    pub(crate) edges: Vec<Edge>,
+    pub(crate) spans: Vec<Span>,
+    pub(crate) seams: Vec<Seam>,
+    pub(crate) nodes: Vec<Node>,
+    pub(crate) contacts: Vec<Contact>,
+    pub(crate) loops: Vec<Vec<SpanId>>,
+}
+
+impl Topology {
+    /// All edges; an [`EdgeId`] is its index.
+    #[must_use]
+    pub fn edges(&self) -> &[Edge] {
+        &self.edges
+    }
+
+    /// All spans.
+    #[must_use]
+    pub fn spans(&self) -> &[Span] {
+        &self.spans
+    }
+
+    /// All seams.
+    #[must_use]
+    pub fn seams(&self) -> &[Seam] {
+        &self.seams
+    }
+
+    /// All nodes.
+    #[must_use]
+    pub fn nodes(&self) -> &[Node] {
+        &self.nodes
+    }
+
+    /// Every pair of edges within the search distance, by edge.
+    #[must_use]
+    pub fn contacts(&self) -> &[Contact] {
+        &self.contacts
+    }
+
+    /// The open boundary: closed chains of spans that have no partner.
+    #[must_use]
+    pub fn open_loops(&self) -> &[Vec<SpanId>] {
+        &self.loops
+    }
+}
