@@ -4,5 +4,6 @@
 mod model;
 
 pub use model::{
-    Demand, Panel, PanelId, Patch, PatchId, PatchSet, Piece, PieceId, SeamDemand, Tolerances,
+    Demand, Panel, PanelId, Patch, PatchId, PatchSet, Piece, PieceId, SeamDemand, SeamEnd,
+    Tolerances,
 };

@@ -1,5 +1,6 @@
 //! The resolved model: what a file means, once it has been found valid.
 
+use std::collections::BTreeMap;
 use std::ops::Range;
 
 use serde::{Deserialize, Serialize};
@@ -26,6 +27,8 @@ pub struct PatchSet {
     pub(crate) patches: Vec<Patch>,
     pub(crate) pieces: Vec<Piece>,
     pub(crate) demands: Vec<SeamDemand>,
+    /// The same demands by their two ends in ascending order.
+    pub(crate) demand_of: BTreeMap<[SeamEnd; 2], Demand>,
 }
 
 /// A named group of patches: the part of their names before the last `/`.
@@ -98,14 +101,26 @@ pub enum Demand {
     Open,
 }
 
-/// A demand the file states for the seam between two patch edges.
-#[derive(Debug, Clone)]
+/// What one end of a stated demand speaks of, the narrowest first.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub enum SeamEnd {
+    /// One edge of one patch.
+    Edge(PatchId, Side),
+    /// Any edge of one patch.
+    Patch(PatchId),
+    /// Any edge of any patch of one panel.
+    Panel(PanelId),
+}
+
+/// A demand the file states for the seams between two ends. To ask what is
+/// demanded of one seam, use [`PatchSet::demand`].
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub struct SeamDemand {
-    /// One edge.
-    pub between: (PatchId, Side),
-    /// The other edge.
-    pub and: (PatchId, Side),
-    /// What is asked of the seam.
+    /// One end.
+    pub between: SeamEnd,
+    /// The other end.
+    pub and: SeamEnd,
+    /// What is asked of the seams.
     pub demand: Demand,
 }
 
@@ -129,6 +144,19 @@ pub struct Tolerances {
     /// Largest difference of normal curvature at a G2 seam, 1/mm, if asked for.
     pub curvature_per_mm: Option<Tolerance>,
 }
+
+/// Pairs of widths (0 edge, 1 patch, 2 panel) in the order they are tried.
+const NARROW_TO_WIDE: [[usize; 2]; 9] = [
+    [0, 0],
+    [0, 1],
+    [1, 0],
+    [1, 1],
+    [0, 2],
+    [2, 0],
+    [1, 2],
+    [2, 1],
+    [2, 2],
+];
 
 impl PatchSet {
     /// The set's name.
@@ -176,6 +204,26 @@ impl PatchSet {
     #[must_use]
     pub fn demands(&self) -> &[SeamDemand] {
         &self.demands
+    }
+
+    /// What the file demands of a seam between two patch edges, if anything.
+    /// The narrowest statement holds: an edge before a patch before a panel,
+    /// and of two statements the one whose wider end is narrower.
+    #[must_use]
+    pub fn demand(&self, a: (PatchId, Side), b: (PatchId, Side)) -> Option<Demand> {
+        let ends = |(patch, side): (PatchId, Side)| {
+            [
+                SeamEnd::Edge(patch, side),
+                SeamEnd::Patch(patch),
+                SeamEnd::Panel(self.patches[patch.index()].panel),
+            ]
+        };
+        let (a, b) = (ends(a), ends(b));
+        NARROW_TO_WIDE.iter().find_map(|&[i, j]| {
+            let mut key = [a[i], b[j]];
+            key.sort_unstable();
+            self.demand_of.get(&key).copied()
+        })
     }
 
     /// The patch a piece belongs to.
