@@ -3,8 +3,25 @@
 //! Pairing looks at coordinates once; after that every neighbour question is
 //! answered by ids.
 
+mod assembly;
+mod box_tree;
+mod build;
+mod edge_curve;
+mod error;
+mod gap;
 mod ids;
+mod loops;
 mod model;
+mod nearest;
+mod nodes;
+mod pairing;
+mod place;
 
+pub use error::TopologyError;
+pub use gap::{Gap, Stretch, difference_bound, gap};
 pub use ids::{EdgeId, NodeId, SeamId, SpanId};
 pub use model::{Contact, Edge, Node, Seam, Span, Topology};
+pub use nearest::{Foot, distance_at_least, nearest, nearest_from};
+pub use place::patch_side;
+
+use place::place;
