@@ -9,9 +9,8 @@ use super::loops::loops;
 use super::model::Topology;
 use super::nodes::Marks;
 use super::pairing::{Reach, contacts};
-use super::{EdgeId, patch_side};
-use crate::bezier::Side;
-use crate::patch_set::{Demand, PatchId, PatchSet, PieceId};
+use super::place::demand_between;
+use crate::patch_set::{Demand, PatchSet, PieceId};
 
 /// A gap below this fraction of the set's size is as good as none.
 const FLOOR: f64 = 1e-9;
@@ -38,8 +37,9 @@ impl Topology {
             search: set.tolerances().search.get(),
             floor: (FLOOR * size).min(gap * 1e-3),
         };
-        let open = OpenDemands::of(set);
-        let contacts = contacts(&curves, reach, |a, b| !open.between(set, a.id, b.id));
+        let contacts = contacts(&curves, reach, |a, b| {
+            demand_between(set, a.id, b.id) != Some(Demand::Open)
+        });
         let marks = Marks::settle(set, &curves, &contacts, gap)?;
         let Assembly {
             edges,
@@ -74,34 +74,4 @@ fn edge_curves(set: &PatchSet, size: f64) -> Vec<EdgeCurve> {
             edges_of(set, PieceId::new(piece), rank[patch], size)
         })
         .collect()
-}
-
-/// The pairs of patch edges that are not to be joined.
-struct OpenDemands(Vec<[(PatchId, Side); 2]>);
-
-impl OpenDemands {
-    fn of(set: &PatchSet) -> Self {
-        let mut pairs: Vec<_> = set
-            .demands()
-            .iter()
-            .filter(|d| d.demand == Demand::Open)
-            .map(|d| ordered(d.between, d.and))
-            .collect();
-        pairs.sort_unstable();
-        Self(pairs)
-    }
-
-    fn between(&self, set: &PatchSet, a: EdgeId, b: EdgeId) -> bool {
-        if self.0.is_empty() {
-            return false;
-        }
-        match (patch_side(set, a), patch_side(set, b)) {
-            (Some(p), Some(q)) => self.0.binary_search(&ordered(p, q)).is_ok(),
-            _ => false,
-        }
-    }
-}
-
-fn ordered(p: (PatchId, Side), q: (PatchId, Side)) -> [(PatchId, Side); 2] {
-    [p.min(q), p.max(q)]
 }

@@ -83,10 +83,7 @@ pub(super) struct EdgeCurve {
 
 impl EdgeCurve {
     fn new(id: EdgeId, curve: BezierCurve, size: f64, rank: u64) -> Self {
-        let ends = [
-            curve.control_point(0),
-            curve.control_point(curve.degree()),
-        ];
+        let ends = [curve.control_point(0), curve.control_point(curve.degree())];
         let cuboid = Cuboid::around(curve.control_points());
         let collapsed = cuboid.diagonal() <= COLLAPSED * size;
         let length = if collapsed { 0.0 } else { curve.length() };

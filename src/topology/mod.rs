@@ -6,6 +6,7 @@
 mod assembly;
 mod box_tree;
 mod build;
+mod check;
 mod edge_curve;
 mod error;
 mod gap;
@@ -16,12 +17,17 @@ mod nearest;
 mod nodes;
 mod pairing;
 mod place;
+#[cfg(test)]
+pub(crate) mod test_sets;
+#[cfg(test)]
+mod tests;
 
+pub use check::Flaw;
 pub use error::TopologyError;
 pub use gap::{Gap, Stretch, difference_bound, gap};
 pub use ids::{EdgeId, NodeId, SeamId, SpanId};
 pub use model::{Contact, Edge, Node, Seam, Span, Topology};
 pub use nearest::{Foot, distance_at_least, nearest, nearest_from};
-pub use place::patch_side;
+pub use place::{demand_between, patch_side};
 
 use place::place;

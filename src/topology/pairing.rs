@@ -178,7 +178,9 @@ fn meetings(a: &EdgeCurve, b: &EdgeCurve, reach: &Reach) -> Vec<Meeting> {
     found.retain(|m| {
         !m.at_corners()
             || m.distance <= reach.gap
-            || !all.iter().any(|n| !n.at_corners() && beside(a, b, m, n, reach))
+            || !all
+                .iter()
+                .any(|n| !n.at_corners() && beside(a, b, m, n, reach))
     });
     found.sort_by(|m, n| {
         m.s.total_cmp(&n.s)
@@ -197,11 +199,7 @@ fn beside(a: &EdgeCurve, b: &EdgeCurve, m: &Meeting, n: &Meeting, reach: &Reach)
 
 /// The place of an edge nearest to a point, if within the search distance; an
 /// end of the edge where that is within the gap of it.
-fn drop_on(
-    edge: &EdgeCurve,
-    point: &crate::scalar::Point,
-    reach: &Reach,
-) -> Option<(f64, f64)> {
+fn drop_on(edge: &EdgeCurve, point: &crate::scalar::Point, reach: &Reach) -> Option<(f64, f64)> {
     for (end, t) in edge.ends.iter().zip([0.0, 1.0]) {
         let distance = (end - point).norm();
         if distance <= reach.floor {

@@ -2,7 +2,7 @@
 
 use super::EdgeId;
 use crate::bezier::Side;
-use crate::patch_set::{PatchId, PatchSet};
+use crate::patch_set::{Demand, PatchId, PatchSet};
 
 /// The patch edge a piece edge is part of; `None` for an edge inside the
 /// patch's grid of pieces.
@@ -30,4 +30,11 @@ pub(super) fn place(set: &PatchSet, edge: EdgeId) -> (String, String, usize) {
         edge.side().to_string(),
         edge.piece().index() - patch.pieces.start,
     )
+}
+
+/// What the file demands between two piece edges; nothing where one of them
+/// is inside its patch.
+#[must_use]
+pub fn demand_between(set: &PatchSet, a: EdgeId, b: EdgeId) -> Option<Demand> {
+    set.demand(patch_side(set, a)?, patch_side(set, b)?)
 }
