@@ -170,9 +170,9 @@ impl Topology {
                 at = Some(if start == p { q } else { p });
             }
         }
-        for index in 0..self.spans.len() {
+        for (index, &times) in times.iter().enumerate() {
             let span = SpanId::new(index);
-            if times[index] != u32::from(open(span)) {
+            if times != u32::from(open(span)) {
                 return Err(Flaw::Loop(span));
             }
             if open(span) {

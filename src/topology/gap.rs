@@ -237,12 +237,13 @@ fn rational_bound(a: &BezierCurve, b: &BezierCurve) -> f64 {
     let mut worst = 0.0_f64;
     for k in 0..=m + n {
         let (mut difference, mut weight) = (Vector::zeros(), 0.0);
-        for i in k.saturating_sub(n)..=k.min(m) {
-            let j = k - i;
+        let from = k.saturating_sub(n);
+        for (i, (x, w)) in p.iter().enumerate().take(k.min(m) + 1).skip(from) {
+            let (y, v) = &q[k - i];
             // The common factor 1 / C(m+n, k) falls out of the quotient.
-            let factor = binomial(m, i) * binomial(n, j);
-            difference += (p[i].0 * q[j].1 - q[j].0 * p[i].1) * factor;
-            weight += p[i].1 * q[j].1 * factor;
+            let factor = binomial(m, i) * binomial(n, k - i);
+            difference += (x * *v - y * *w) * factor;
+            weight += w * v * factor;
         }
         worst = worst.max(difference.norm() / weight);
     }

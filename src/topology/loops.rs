@@ -22,12 +22,13 @@ pub(super) fn loops(edges: &[Edge], spans: &[Span], seams: &[Seam]) -> Vec<Vec<S
     let mut next: Vec<[Option<End>; 2]> = vec![[None; 2]; spans.len()];
     let mut left: Vec<(NodeId, usize, usize)> = Vec::new();
     for span in (0..spans.len()).filter(|&s| open(s)) {
+        let ends = [0, 1].map(|end| walk(edges, spans, seams, (span, end)));
         for end in 0..2 {
-            match walk(edges, spans, seams, (span, end)) {
-                Some(onward) => next[span][end] = Some(onward),
-                None => left.push((spans[span].nodes[end], span, end)),
+            if ends[end].is_none() {
+                left.push((spans[span].nodes[end], span, end));
             }
         }
+        next[span] = ends;
     }
     // What no walk has linked is linked in order, node by node.
     left.sort_unstable();

@@ -135,10 +135,10 @@ impl Marks {
                 (distance, m.class)
             })
             .min_by(|p, q| p.0.total_cmp(&q.0));
-        if let Some((distance, class)) = nearest {
-            if distance <= near {
-                return class;
-            }
+        if let Some((distance, class)) = nearest
+            && distance <= near
+        {
+            return class;
         }
         let class = self.parent.len();
         self.parent.push(class);

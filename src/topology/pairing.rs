@@ -157,19 +157,19 @@ fn meetings(a: &EdgeCurve, b: &EdgeCurve, reach: &Reach) -> Vec<Meeting> {
         return found;
     }
     for (k, s) in [0.0, 1.0].into_iter().enumerate() {
-        if near_b.holds(&a.ends[k]) {
-            if let Some((t, distance)) = drop_on(b, &a.ends[k], reach) {
-                found.push(Meeting { s, t, distance });
-            }
+        if near_b.holds(&a.ends[k])
+            && let Some((t, distance)) = drop_on(b, &a.ends[k], reach)
+        {
+            found.push(Meeting { s, t, distance });
         }
-        if near_a.holds(&b.ends[k]) {
-            if let Some((t, distance)) = drop_on(a, &b.ends[k], reach) {
-                found.push(Meeting {
-                    s: t,
-                    t: s,
-                    distance,
-                });
-            }
+        if near_a.holds(&b.ends[k])
+            && let Some((t, distance)) = drop_on(a, &b.ends[k], reach)
+        {
+            found.push(Meeting {
+                s: t,
+                t: s,
+                distance,
+            });
         }
     }
     // Where a corner falls inside the other edge, the pair of corners there
