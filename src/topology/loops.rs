@@ -23,8 +23,8 @@ pub(super) fn loops(edges: &[Edge], spans: &[Span], seams: &[Seam]) -> Vec<Vec<S
     let mut left: Vec<(NodeId, usize, usize)> = Vec::new();
     for span in (0..spans.len()).filter(|&s| open(s)) {
         let ends = [0, 1].map(|end| walk(edges, spans, seams, (span, end)));
-        for end in 0..2 {
-            if ends[end].is_none() {
+        for (end, onward) in ends.iter().enumerate() {
+            if onward.is_none() {
                 left.push((spans[span].nodes[end], span, end));
             }
         }
