@@ -1,1 +1,117 @@
 //! One file per output format, each writing to a [`std::io::Write`].
+//!
+//! | format | positions | points shared | normals | names | lengths |
+//! |---|---|---|---|---|---|
+//! | STL, binary | single | no, repeated | facets' | none | the set's unit |
+//! | OBJ | double | by index | by index of their own | `o` panel, `g` patch | the set's unit |
+//! | PLY, binary | double | by index | if asked for | comments, and numbers on each face | the set's unit |
+//! | GLB (glTF 2.0) | single, one local origin | inside a panel and crease, else repeated | yes | a node a panel, patches as extras | metres, y up, by a node transform |
+//!
+//! A repeated point has bitwise equal coordinates wherever it is repeated, so
+//! merging exact duplicates gives back the mesh. What rounding to single
+//! precision moves a point by is returned, to be added to the proved
+//! deviation; where it would exceed a tenth of the chord tolerance nothing is
+//! written.
+
+mod error;
+mod glb;
+mod kind;
+mod names;
+mod normals;
+mod obj;
+mod ply;
+mod rounding;
+mod sink;
+mod stl;
+
+use std::io::Write;
+
+pub use error::FormatError;
+pub use kind::{Format, FormatNameError, Layout, LayoutNameError};
+
+use crate::mesh::{Mesh, Part, Strips};
+use crate::scalar::Tolerance;
+
+/// How a mesh is to be written.
+#[derive(Debug, Clone, Copy)]
+pub struct WriteOptions<'a> {
+    /// The chord tolerance the mesh was made for, in its unit: it decides how
+    /// much rounding to single precision may move a point.
+    pub chord: Tolerance,
+    /// How triangles are stored; the format's own default where `None`.
+    pub layout: Option<Layout>,
+    /// The mesh's strips, if they are at hand; otherwise they are found when
+    /// the layout needs them.
+    pub strips: Option<&'a Strips>,
+    /// Whether a PLY file gets vertex normals, which repeats points where
+    /// normals differ. The other formats are not concerned.
+    pub normals: bool,
+}
+
+impl WriteOptions<'_> {
+    /// The format's own layout, for a mesh made to the given chord tolerance.
+    #[must_use]
+    pub fn new(chord: Tolerance) -> Self {
+        Self {
+            chord,
+            layout: None,
+            strips: None,
+            normals: false,
+        }
+    }
+}
+
+/// What was written.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Written {
+    /// Bytes in all.
+    pub bytes: u64,
+    /// Points as the format stores them, repeated ones counted each time.
+    pub file_vertices: u64,
+    /// The layout used.
+    pub layout: Layout,
+    /// Upper bound of the distance by which rounding moved any point, in the
+    /// mesh's unit. Zero where doubles are kept.
+    pub rounding: f64,
+}
+
+/// Writes a mesh. The writer may be unbuffered; it is not flushed.
+///
+/// # Errors
+/// [`FormatError`] where the mesh has no triangles, the format does not have
+/// the layout, single precision is too coarse, a count exceeds what the format
+/// can hold (all these before the first byte), or the writer fails.
+pub fn write(
+    mesh: &Mesh,
+    format: Format,
+    options: &WriteOptions<'_>,
+    out: &mut dyn Write,
+) -> Result<Written, FormatError> {
+    if mesh.triangles.is_empty() {
+        return Err(FormatError::Empty);
+    }
+    let layout = format.layout(options.layout)?;
+    match format {
+        Format::Stl => stl::write(mesh, options.chord, out),
+        Format::Obj => obj::write(mesh, layout, out),
+        Format::Ply => ply::write(mesh, layout, options.normals, out),
+        Format::Glb => glb::write(mesh, layout, options, out),
+    }
+}
+
+/// Every panel that has triangles: its name, and its parts with their numbers,
+/// in the mesh's order.
+fn panels(mesh: &Mesh) -> Vec<(&str, Vec<(usize, &Part)>)> {
+    let mut panels: Vec<_> = mesh
+        .panels
+        .iter()
+        .map(|name| (name.as_str(), Vec::new()))
+        .collect();
+    for (number, part) in mesh.parts.iter().enumerate() {
+        if !part.triangles.is_empty() {
+            panels[part.panel].1.push((number, part));
+        }
+    }
+    panels.retain(|(_, parts)| !parts.is_empty());
+    panels
+}

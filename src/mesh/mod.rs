@@ -1,5 +1,12 @@
 //! The indexed triangle mesh, its strips and its storage.
 
+mod edges;
+mod measure;
 mod model;
+mod storage;
+mod strips;
 
+pub use measure::Measures;
 pub use model::{Mesh, Part, Vertex};
+pub use storage::Storage;
+pub use strips::{RESTART, Strips};

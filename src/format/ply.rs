@@ -1,0 +1,125 @@
+//! PLY, binary, little endian, doubles.
+//!
+//! Points are shared by index. Every face carries the numbers of its patch and
+//! panel; the names are comments in the header, `comment panel 0 bonnet` and
+//! `comment patch 3 bonnet/4`, control characters and `%` percent-encoded.
+//! With normals a point is repeated where they differ.
+
+use std::io::Write;
+
+use super::names::Encoded;
+use super::normals::Normals;
+use super::sink::Sink;
+use super::{Format, FormatError, Layout, Written};
+use crate::mesh::Mesh;
+use crate::scalar::Point;
+
+pub(super) fn write(
+    mesh: &Mesh,
+    layout: Layout,
+    with_normals: bool,
+    out: &mut dyn Write,
+) -> Result<Written, FormatError> {
+    let repeated = layout == Layout::Triangles;
+    let vertices = match (repeated, with_normals) {
+        (true, _) => 3 * mesh.triangles.len(),
+        (false, true) => mesh.vertices.len(),
+        (false, false) => mesh.points.len(),
+    };
+    // Indices are signed, as most readers expect.
+    for (what, count) in [("vertices", vertices), ("triangles", mesh.triangles.len())] {
+        if i32::try_from(count).is_err() {
+            return Err(FormatError::TooLarge {
+                format: Format::Ply,
+                what,
+                count: count as u64,
+                limit: i32::MAX.unsigned_abs().into(),
+            });
+        }
+    }
+    let mut sink = Sink::new(out);
+    header(mesh, vertices, with_normals, &mut sink)?;
+    let normals = with_normals.then(|| Normals::of(mesh));
+    let vertex = |sink: &mut Sink<'_>, point: Point, v: u32| {
+        sink.doubles(point.coords.into())?;
+        match &normals {
+            Some(normals) => sink.doubles(normals.get(v).into()),
+            None => Ok(()),
+        }
+    };
+    if repeated {
+        for &v in mesh
+            .parts
+            .iter()
+            .flat_map(|part| mesh.triangles[part.triangles.clone()].as_flattened())
+        {
+            let point = mesh.points[mesh.vertices[v as usize].point as usize];
+            vertex(&mut sink, point, v)?;
+        }
+    } else if with_normals {
+        for (v, of) in (0_u32..).zip(&mesh.vertices) {
+            vertex(&mut sink, mesh.points[of.point as usize], v)?;
+        }
+    } else {
+        for &point in &mesh.points {
+            vertex(&mut sink, point, 0)?;
+        }
+    }
+    let mut corner = 0_u32;
+    for (part, number) in mesh.parts.iter().zip(0_u32..) {
+        let panel = u32::try_from(part.panel).expect("panels are as many as patches at most");
+        for t in part.triangles.clone() {
+            let indices = match (repeated, with_normals) {
+                (true, _) => {
+                    corner += 3;
+                    [corner - 3, corner - 2, corner - 1]
+                }
+                (false, true) => mesh.triangles[t],
+                (false, false) => mesh.triangle_points(t),
+            };
+            let mut face = [0; 21];
+            face[0] = 3;
+            let words = indices.into_iter().chain([number, panel]);
+            for (four, word) in face[1..].chunks_exact_mut(4).zip(words) {
+                four.copy_from_slice(&word.to_le_bytes());
+            }
+            sink.put(&face)?;
+        }
+    }
+    Ok(Written {
+        bytes: sink.finish()?,
+        file_vertices: vertices as u64,
+        layout,
+        rounding: 0.0,
+    })
+}
+
+fn header(
+    mesh: &Mesh,
+    vertices: usize,
+    with_normals: bool,
+    sink: &mut Sink<'_>,
+) -> std::io::Result<()> {
+    writeln!(sink, "ply\nformat binary_little_endian 1.0")?;
+    writeln!(sink, "comment chordwise {}", env!("CARGO_PKG_VERSION"))?;
+    writeln!(sink, "comment set {}", Encoded::line(&mesh.name))?;
+    writeln!(sink, "comment unit {}", mesh.unit)?;
+    for (number, name) in mesh.panels.iter().enumerate() {
+        writeln!(sink, "comment panel {number} {}", Encoded::line(name))?;
+    }
+    for (number, part) in mesh.parts.iter().enumerate() {
+        writeln!(sink, "comment patch {number} {}", Encoded::line(&part.name))?;
+    }
+    writeln!(sink, "element vertex {vertices}")?;
+    let normals: &[&str] = if with_normals {
+        &["nx", "ny", "nz"]
+    } else {
+        &[]
+    };
+    for name in ["x", "y", "z"].iter().chain(normals) {
+        writeln!(sink, "property double {name}")?;
+    }
+    writeln!(sink, "element face {}", mesh.triangles.len())?;
+    writeln!(sink, "property list uchar int vertex_indices")?;
+    writeln!(sink, "property int patch\nproperty int panel\nend_header")
+}
