@@ -1,0 +1,197 @@
+//! Reading: text to file, file to model, and positions for what is wrong.
+
+use std::path::Path;
+
+use ron::error::{Error as RonError, SpannedError};
+use ron::extensions::Extensions;
+
+use super::PatchSet;
+use super::diagnostic::{Diagnostic, Faults, Finding, Lines, Position, Reading};
+use super::fault::SetFault;
+use super::file::SetFile;
+use super::locate::Locator;
+use super::name::nearest;
+use super::resolve;
+use crate::surface::Place;
+
+/// How the text may be written: `Some(...)` is never needed, nor a second pair
+/// of brackets around the fields of a kind.
+fn options() -> ron::Options {
+    ron::Options::default()
+        .with_default_extension(Extensions::IMPLICIT_SOME)
+        .with_default_extension(Extensions::UNWRAP_VARIANT_NEWTYPES)
+}
+
+impl SetFile {
+    /// The file as written, by the schema only: nothing in it is checked yet.
+    ///
+    /// # Errors
+    /// The parser's fault, with its place.
+    pub fn from_ron(text: &str, source_name: &str) -> Result<Self, Faults> {
+        let text = text.strip_prefix('\u{feff}').unwrap_or(text);
+        options().from_str(text).map_err(|error| Faults {
+            list: vec![syntax(&error, text)],
+            source_name: source_name.to_owned(),
+        })
+    }
+}
+
+impl PatchSet {
+    /// Reads a set from RON text; `source_name` is what diagnostics call it.
+    ///
+    /// ```
+    /// use chordwise::patch_set::PatchSet;
+    /// let text = r#"(
+    ///     units: mm,
+    ///     patches: [(name: "ball", surface: Sphere(radius: 20))],
+    /// )"#;
+    /// let reading = PatchSet::from_ron(text, "ball.ron")?;
+    /// assert_eq!(reading.set.pieces().len(), 8);
+    /// # Ok::<(), chordwise::patch_set::Faults>(())
+    /// ```
+    ///
+    /// # Errors
+    /// The parser's fault, or else all faults of meaning at once.
+    pub fn from_ron(text: &str, source_name: &str) -> Result<Reading, Faults> {
+        let text = text.strip_prefix('\u{feff}').unwrap_or(text);
+        let file = SetFile::from_ron(text, source_name)?;
+        let source_name = source_name.to_owned();
+        match resolve::resolve(file) {
+            Ok((set, mut warnings)) => {
+                place(&mut warnings, text);
+                Ok(Reading {
+                    set,
+                    warnings,
+                    source_name,
+                })
+            }
+            Err(mut list) => {
+                place(&mut list, text);
+                Err(Faults { list, source_name })
+            }
+        }
+    }
+
+    /// Reads a set from a file.
+    ///
+    /// # Errors
+    /// As [`PatchSet::from_ron`], or that the file cannot be read.
+    pub fn read(path: impl AsRef<Path>) -> Result<Reading, Faults> {
+        let path = path.as_ref();
+        let source_name = path.display().to_string();
+        let refuse = |fault| Faults {
+            list: vec![Diagnostic {
+                finding: Finding::Fault(fault),
+                place: String::new(),
+                hint: None,
+                position: None,
+                path: Place::default(),
+            }],
+            source_name: source_name.clone(),
+        };
+        let bytes =
+            std::fs::read(path).map_err(|error| refuse(SetFault::Unreadable(error.to_string())))?;
+        let text = String::from_utf8(bytes).map_err(|_| refuse(SetFault::NotText))?;
+        Self::from_ron(&text, &source_name)
+    }
+
+    /// Builds a set in code, by the same checks as a set from text.
+    ///
+    /// # Errors
+    /// All faults at once; they have no position.
+    pub fn build(file: SetFile) -> Result<Reading, Faults> {
+        match resolve::resolve(file) {
+            Ok((set, warnings)) => Ok(Reading {
+                set,
+                warnings,
+                source_name: String::new(),
+            }),
+            Err(list) => Err(Faults {
+                list,
+                source_name: String::new(),
+            }),
+        }
+    }
+}
+
+/// Gives every diagnostic its position, in the order of the text.
+fn place(list: &mut [Diagnostic], text: &str) {
+    if list.is_empty() {
+        return;
+    }
+    let lines = Lines::new(text);
+    let locator = Locator::new(text);
+    for diagnostic in list.iter_mut() {
+        let range = locator.locate(&diagnostic.path);
+        diagnostic.position = Some(Position::new(text, range, &lines));
+    }
+    list.sort_by_key(|diagnostic| diagnostic.position.as_ref().map(|p| (p.line, p.column)));
+}
+
+/// The parser's fault in our words.
+fn syntax(error: &SpannedError, text: &str) -> Diagnostic {
+    let lines = Lines::new(text);
+    let span = &error.span;
+    let start = lines.byte(text, span.start.line, span.start.col);
+    let end = lines.byte(text, span.end.line, span.end.col).max(start);
+    let among = |list: &[&str]| {
+        let quoted: Vec<String> = list.iter().map(|name| format!("`{name}`")).collect();
+        quoted.join(", ")
+    };
+    let meant = |found: &str, list: &[&'static str]| {
+        nearest(found, list.iter().copied()).map(|name| format!("did you mean `{name}`?"))
+    };
+    let (message, hint) = match &error.code {
+        RonError::NoSuchStructField {
+            expected, found, ..
+        } => (
+            format!(
+                "unknown field `{found}`; the fields here are {}",
+                among(expected)
+            ),
+            meant(found, expected),
+        ),
+        RonError::NoSuchEnumVariant {
+            expected, found, ..
+        } => (
+            format!(
+                "unknown word `{found}`; it must be one of {}",
+                among(expected)
+            ),
+            meant(found, expected),
+        ),
+        RonError::MissingStructField { field, .. } => (
+            format!("the field `{field}` is missing; it has no default"),
+            None,
+        ),
+        RonError::DuplicateStructField { field, .. } => (
+            format!("the field `{field}` is given twice; once is enough"),
+            None,
+        ),
+        RonError::ExpectedFloat => ("expected a number".to_owned(), None),
+        RonError::ExpectedInteger => ("expected a whole number".to_owned(), None),
+        RonError::Eof => (
+            "the text ends too early; a bracket is not closed".to_owned(),
+            None,
+        ),
+        RonError::ExceededRecursionLimit => (
+            "the brackets are nested too deeply; 128 levels are read".to_owned(),
+            None,
+        ),
+        other => (small_first(&other.to_string()), None),
+    };
+    Diagnostic {
+        finding: Finding::Fault(SetFault::Syntax(message)),
+        place: String::new(),
+        hint,
+        position: Some(Position::new(text, start..end, &lines)),
+        path: Place::default(),
+    }
+}
+
+fn small_first(text: &str) -> String {
+    let mut letters = text.chars();
+    letters.next().map_or_else(String::new, |first| {
+        first.to_lowercase().chain(letters).collect()
+    })
+}
