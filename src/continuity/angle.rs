@@ -1,0 +1,328 @@
+//! The angle of two tangent planes along a seam, bracketed.
+//!
+//! ```text
+//! tan(angle) = |N1 x N2| / (N1 . N2) <= max |c_k| / d_k
+//! ```
+//!
+//! N1 and N2 are polynomial normals along the seam ([`super::strip`]), c_k and
+//! d_k the Bernstein coefficients of their cross and dot products; the quotient
+//! is a rational Bezier curve with weights d_k, so its control points bound it
+//! (convex hull property). Beyond 90 degrees the cotangent is bounded alike.
+//! Along a seam of one parametrisation this *proves* the angle; it is the
+//! determinant criterion of Liu and Hoschek (1989) and DeRose (1990) in
+//! another dress. Where the parametrisations differ, points matched by the
+//! affine map of a part are up to 2 E from the nearest points (E bounds the
+//! difference of the two edges there), and the turn of the normal over that
+//! length is added; an edge that comes back to within 2 E of itself is left out
+//! of account there. The part with the largest bound is halved until the bound
+//! meets what is attained.
+
+use super::bernstein::Bernstein;
+use super::strip::Strip;
+use crate::bezier::BezierCurve;
+use crate::patch_set::PatchSet;
+use crate::scalar::{Bracket, Point, Vector};
+use crate::topology::{EdgeId, nearest_from};
+
+/// Parts after which a bracket stays as wide as it is.
+const PARTS: usize = 256;
+
+/// A bracket stops being narrowed at this ratio.
+const RATIO: f64 = 1.015;
+
+/// Angles below this, in radians, are not told from zero (1e-6 degrees).
+const FLOOR: f64 = 1.745e-8;
+
+/// The common stretch of two edges, run from end to end together.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Meeting {
+    /// The two edges.
+    pub edges: [EdgeId; 2],
+    /// From and to on the first.
+    pub first: [f64; 2],
+    /// From and to on the second.
+    pub second: [f64; 2],
+}
+
+/// A bracketed angle, and where its attained figure is.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Angle {
+    /// In degrees, 0 to 180. `proved` is 180 where nothing could be proved.
+    pub bracket: Bracket,
+    /// The parameters on both edges where `bracket.attained` is reached.
+    pub at: [f64; 2],
+}
+
+impl Meeting {
+    /// Whether the stated normals of the two patches point to one side of the
+    /// joined surface. Decided by the sides alone: neighbours run opposite
+    /// ways round their common edge.
+    #[must_use]
+    pub fn normals_agree(&self, set: &PatchSet) -> bool {
+        let against = (self.first[0] > self.first[1]) != (self.second[0] > self.second[1]);
+        let [a, b] = self.edges.map(|edge| counterclockwise(set, edge));
+        (a == b) == against
+    }
+
+    /// The bracketed angle along the stretch, the orientation settled as
+    /// [`Meeting::normals_agree`] says: 0 goes on smoothly, 180 folds back.
+    #[must_use]
+    pub fn angle(&self, set: &PatchSet) -> Angle {
+        Sides::new(self, set).bracket()
+    }
+
+    /// The largest angle at nine places, in degrees: sampled, for deciding
+    /// where vertex normals are shared.
+    #[must_use]
+    pub fn sampled_angle_deg(&self, set: &PatchSet) -> f64 {
+        let sides = Sides::new(self, set);
+        (0..=8)
+            .filter_map(|k| sides.angle_at(f64::from(k) / 8.0, None))
+            .fold(0.0, |worst, (angle, _)| angle.max(worst))
+            .to_degrees()
+    }
+
+    /// A place on the stretch, 0 to 1, as parameters of both edges.
+    #[must_use]
+    pub fn at(&self, x: f64) -> [f64; 2] {
+        [self.first, self.second].map(|r| r[0] * (1.0 - x) + r[1] * x)
+    }
+}
+
+/// Whether an edge's parameter runs counterclockwise round its piece, seen
+/// from outside.
+fn counterclockwise(set: &PatchSet, edge: EdgeId) -> bool {
+    use crate::bezier::Side;
+    let plain = matches!(edge.side(), Side::V0 | Side::U1);
+    plain != set.patch_of(edge.piece()).flipped
+}
+
+/// Both sides of a meeting, on one parameter 0 to 1.
+struct Sides {
+    strips: [Strip; 2],
+    /// The second edge on its stretch, for feet.
+    second: BezierCurve,
+    first: BezierCurve,
+    meeting: Meeting,
+    /// Largest difference of the two edges at equal parameters.
+    apart: f64,
+    /// Below this the edges are one curve of one parametrisation.
+    same: f64,
+}
+
+struct Part {
+    s: [f64; 2],
+    t: [f64; 2],
+    strips: [Strip; 2],
+    upper: f64,
+}
+
+impl Sides {
+    fn new(meeting: &Meeting, set: &PatchSet) -> Self {
+        let pieces = meeting
+            .edges
+            .map(|e| &set.pieces()[e.piece().index()].surface);
+        let edges = [0, 1].map(|k| pieces[k].edge(meeting.edges[k].side()));
+        let ranges = [meeting.first, meeting.second];
+        let cut = |k: usize| {
+            let stretch = crate::topology::Stretch {
+                curve: &edges[k],
+                range: ranges[k],
+            };
+            stretch.cut()
+        };
+        let (first, second) = (cut(0), cut(1));
+        let origin = first.control_point(0);
+        let mut strips = [0, 1]
+            .map(|k| Strip::new(pieces[k], meeting.edges[k].side(), &origin).restrict(ranges[k]));
+        let flipped = meeting.edges.map(|e| set.patch_of(e.piece()).flipped);
+        if flipped[0] != flipped[1] {
+            strips[1] = strips[1].clone().opposed();
+        }
+        if !meeting.normals_agree(set) {
+            strips[1] = strips[1].clone().opposed();
+        }
+        let apart = crate::topology::difference_bound(&first, &second);
+        let largest = first
+            .control_points()
+            .map(|p: Point| p.coords.amax())
+            .fold(0.0, f64::max);
+        Self {
+            strips,
+            meeting: *meeting,
+            apart,
+            same: largest * 1e-12 + first.chord_bound() * 1e-12,
+            first,
+            second,
+        }
+    }
+
+    fn aligned(&self) -> bool {
+        self.apart <= self.same
+    }
+
+    /// Angle in radians at place `s` of the first edge and the nearest place
+    /// of the second, whose parameter is returned.
+    fn angle_at(&self, s: f64, guess: Option<f64>) -> Option<(f64, f64)> {
+        let t = if self.aligned() {
+            s
+        } else {
+            let point = self.first.eval(s);
+            nearest_from(&self.second, &point, guess.unwrap_or(s), [0.0, 1.0]).t
+        };
+        let a = self.strips[0].unit_normal(s)?;
+        let b = self.strips[1].unit_normal(t)?;
+        Some((a.cross(&b).norm().atan2(a.dot(&b)), t))
+    }
+
+    fn bracket(&self) -> Angle {
+        let mut best = (0.0, 0.0, 0.0);
+        let mut raise = |found: Option<(f64, f64)>, s: f64| {
+            if let Some((angle, t)) = found {
+                best = if angle > best.0 { (angle, s, t) } else { best };
+            }
+            best.0
+        };
+        let turn = if self.aligned() {
+            0.0
+        } else {
+            turn_rate(&self.strips[1])
+        };
+        let mut attained = 0.0;
+        for s in [0.0, 1.0, 0.5] {
+            attained = raise(self.angle_at(s, None), s);
+        }
+        let whole = Part {
+            s: [0.0, 1.0],
+            t: [0.0, 1.0],
+            strips: self.strips.clone(),
+            upper: angle_bound(&self.strips, turn),
+        };
+        let mut parts = vec![whole];
+        let mut proved = std::f64::consts::PI;
+        while let Some(worst) =
+            (0..parts.len()).max_by(|&i, &j| parts[i].upper.total_cmp(&parts[j].upper))
+        {
+            proved = parts[worst].upper;
+            if proved <= (attained * RATIO).max(FLOOR) || parts.len() >= PARTS {
+                break;
+            }
+            let part = parts.swap_remove(worst);
+            let s = part.s[0].midpoint(part.s[1]);
+            let middle = part.t[0].midpoint(part.t[1]);
+            let found = self.angle_at(s, Some(middle));
+            attained = raise(found, s);
+            let width = part.t[1] - part.t[0];
+            let x = match found {
+                Some((_, t)) if !self.aligned() && width > 0.0 => {
+                    ((t - part.t[0]) / width).clamp(1.0 / 16.0, 15.0 / 16.0)
+                }
+                _ => 0.5,
+            };
+            let t = part.t[0] + x * width;
+            let [a, b] = part.strips;
+            let ([a0, a1], [b0, b1]) = (a.split(0.5), b.split(x));
+            for (s, t, strips) in [
+                ([part.s[0], s], [part.t[0], t], [a0, b0]),
+                ([s, part.s[1]], [t, part.t[1]], [a1, b1]),
+            ] {
+                let upper = angle_bound(&strips, turn).min(part.upper);
+                parts.push(Part {
+                    s,
+                    t,
+                    strips,
+                    upper,
+                });
+            }
+        }
+        let along = |r: [f64; 2], x: f64| r[0] * (1.0 - x) + r[1] * x;
+        Angle {
+            bracket: Bracket {
+                proved: proved.to_degrees().max(best.0.to_degrees()),
+                attained: best.0.to_degrees(),
+            },
+            at: [
+                along(self.meeting.first, best.1),
+                along(self.meeting.second, best.2),
+            ],
+        }
+    }
+}
+
+/// Proved bound of the angle over a part, in radians, see the module.
+fn angle_bound(strips: &[Strip; 2], turn: f64) -> f64 {
+    let [a, b] = [&strips[0].normal, &strips[1].normal];
+    let cross = a.product(b, |p, q| p.cross(&q));
+    let dot = a.product(b, |p: Vector, q: Vector| p.dot(&q));
+    let mut bound = std::f64::consts::PI;
+    if dot.0.iter().all(|d| *d > 0.0) {
+        let tangent = cross
+            .0
+            .iter()
+            .zip(&dot.0)
+            .map(|(c, d)| c.norm() / d)
+            .fold(0.0, f64::max);
+        bound = tangent.atan();
+    } else {
+        let axis: Vector = cross.eval(0.5);
+        let length = axis.norm();
+        if length > 0.0 {
+            let sines: Vec<f64> = cross.0.iter().map(|c| c.dot(&axis) / length).collect();
+            if sines.iter().all(|s| *s > 0.0) {
+                let cotangent = sines
+                    .iter()
+                    .zip(&dot.0)
+                    .map(|(s, d)| -d / s)
+                    .fold(0.0, f64::max);
+                bound = std::f64::consts::FRAC_PI_2 + cotangent.atan();
+            }
+        }
+    }
+    if turn > 0.0 {
+        // Points at equal parameters are up to E apart, so up to 2 E from the
+        // nearest ones.
+        let [p, q] = strips;
+        let x = p.place.product(&q.weight, |x, w| x * w);
+        let y = q.place.product(&p.weight, |x, w| x * w);
+        let w = p.weight.product(&q.weight, |v, w| v * w);
+        let apart = x
+            .plus(&y, -1.0)
+            .0
+            .iter()
+            .zip(&w.0)
+            .map(|(d, w)| d.norm() / w)
+            .fold(0.0, f64::max);
+        bound += 2.0 * apart * turn;
+    }
+    bound.min(std::f64::consts::PI)
+}
+
+/// Bound on how fast the normal turns along an edge, in radians a length unit:
+/// over fifteen overlapping parts, |N x N'| / |N|^2 by coefficients, over the
+/// least progress along the part's chord, (X' w - X w') . chord / w^2.
+fn turn_rate(strip: &Strip) -> f64 {
+    let least = |a: &Bernstein<f64>| a.0.iter().copied().fold(f64::INFINITY, f64::min);
+    let mut worst = 0.0_f64;
+    for k in 0..15 {
+        let part = strip.restrict([f64::from(k) / 16.0, f64::from(k + 2) / 16.0]);
+        let normal = &part.normal;
+        let cross = normal.product(&normal.derivative(), |p, q| p.cross(&q));
+        let square = normal.product(normal, |p: Vector, q: Vector| p.dot(&q));
+        let largest = cross.0.iter().map(Vector::norm).fold(0.0, f64::max);
+        let turn = largest / least(&square).max(0.0);
+        let at = |x: f64| part.place.eval(x) / part.weight.eval(x);
+        let chord = at(1.0) - at(0.0);
+        let along = |a: &Bernstein<Vector>| {
+            Bernstein(a.0.iter().map(|x| x.dot(&chord)).collect::<Vec<f64>>())
+        };
+        let (x, w) = (along(&part.place), &part.weight);
+        let times = |a: &Bernstein<f64>, b: &Bernstein<f64>| a.product(b, |p, q| p * q);
+        let progress = times(&x.derivative(), w).plus(&times(&x, &w.derivative()), -1.0);
+        // Of degree 2 n - 1; the weight squared is raised or lowered to it by
+        // taking its largest coefficient.
+        let heaviest = times(w, w).0.iter().copied().fold(0.0, f64::max);
+        let speed = (least(&progress) / heaviest).max(0.0) / chord.norm();
+        worst = worst.max(turn / speed);
+    }
+    if worst.is_nan() { f64::INFINITY } else { worst }
+}

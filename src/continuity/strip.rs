@@ -1,0 +1,172 @@
+//! The strip of a piece along one of its edges: place and normal as
+//! polynomials of the edge's parameter.
+//!
+//! ```text
+//! M = w X_u x X_v - w_v X_u x X - w_u X x X_v = w^3 S_u x S_v,   X = w S
+//! ```
+//!
+//! M is a polynomial whether the piece is rational or not, and a positive
+//! multiple of the normal. At a pole it vanishes; the factors t and 1 - t are
+//! divided out, which leaves the limit normal.
+
+use super::bernstein::Bernstein;
+use crate::bezier::{BezierPatch, Side};
+use crate::scalar::{Point, Vector};
+
+/// Place and normal along an edge.
+#[derive(Debug, Clone)]
+pub(super) struct Strip {
+    /// w S relative to the origin given.
+    pub(super) place: Bernstein<Vector>,
+    /// w.
+    pub(super) weight: Bernstein<f64>,
+    /// A positive multiple of S_u x S_v inside the edge.
+    pub(super) normal: Bernstein<Vector>,
+}
+
+impl Strip {
+    /// The strip of `surface` along `side`, coordinates relative to `origin`.
+    pub(super) fn new(surface: &BezierPatch, side: Side, origin: &Point) -> Self {
+        let (m, n) = surface.degree();
+        let (along, across) = match side {
+            Side::U0 | Side::U1 => (n, m),
+            Side::V0 | Side::V1 => (m, n),
+        };
+        // Row 0 is the edge, row 1 the next one inside.
+        let index = |row: usize, k: usize| match side {
+            Side::U0 => (row, k),
+            Side::U1 => (m - row, k),
+            Side::V0 => (k, row),
+            Side::V1 => (k, n - row),
+        };
+        let weights = |row: usize| {
+            let list = (0..=along).map(|k| {
+                let (i, j) = index(row, k);
+                surface.weight(i, j)
+            });
+            Bernstein(list.collect())
+        };
+        let places = |row: usize| {
+            let list = (0..=along).map(|k| {
+                let (i, j) = index(row, k);
+                (surface.control_point(i, j) - origin) * surface.weight(i, j)
+            });
+            Bernstein(list.collect::<Vec<Vector>>())
+        };
+        // The derivative across, in the sense of the growing parameter.
+        #[allow(clippy::cast_precision_loss, reason = "a degree is at most 15")]
+        let degree = across as f64;
+        let outward = match side {
+            Side::U0 | Side::V0 => 1.0,
+            Side::U1 | Side::V1 => -1.0,
+        };
+        let (x, w) = (places(0), weights(0));
+        let x_across = scaled(&places(1).plus(&x, -1.0), degree * outward);
+        let w_across = scaled(&weights(1).plus(&w, -1.0), degree * outward);
+        let (x_along, w_along) = (x.derivative(), w.derivative());
+        let cross = |a: &Bernstein<Vector>, b: &Bernstein<Vector>| a.product(b, |p, q| p.cross(&q));
+        let by = |a: &Bernstein<Vector>, b: &Bernstein<f64>| a.product(b, |p, q| p * q);
+        let normal = if surface.is_rational() {
+            by(&cross(&x_across, &x_along), &w)
+                .plus(&by(&cross(&x_across, &x), &w_along), -1.0)
+                .plus(&by(&cross(&x, &x_along), &w_across), -1.0)
+        } else {
+            cross(&x_across, &x_along)
+        };
+        // Across x along is S_u x S_v where u runs across.
+        let turned = match side {
+            Side::U0 | Side::U1 => 1.0,
+            Side::V0 | Side::V1 => -1.0,
+        };
+        Self {
+            place: x,
+            weight: w,
+            normal: scaled(&normal, turned).deflated(),
+        }
+    }
+
+    /// The part from `range[0]` to `range[1]`; a descending range reverses it.
+    pub(super) fn restrict(&self, range: [f64; 2]) -> Self {
+        Self {
+            place: self.place.restrict(range),
+            weight: self.weight.restrict(range),
+            normal: self.normal.restrict(range),
+        }
+    }
+
+    /// The parts before and after `t`.
+    pub(super) fn split(&self, t: f64) -> [Self; 2] {
+        let (place, weight, normal) = (
+            self.place.split(t),
+            self.weight.split(t),
+            self.normal.split(t),
+        );
+        [
+            Self {
+                place: place.0,
+                weight: weight.0,
+                normal: normal.0,
+            },
+            Self {
+                place: place.1,
+                weight: weight.1,
+                normal: normal.1,
+            },
+        ]
+    }
+
+    /// The same with the normal turned over.
+    pub(super) fn opposed(mut self) -> Self {
+        self.normal = scaled(&self.normal, -1.0);
+        self
+    }
+
+    /// The unit normal at `t`, `None` where it vanishes.
+    pub(super) fn unit_normal(&self, t: f64) -> Option<Vector> {
+        let normal = self.normal.eval(t);
+        let length = normal.norm();
+        (length > f64::MIN_POSITIVE).then(|| normal / length)
+    }
+}
+
+fn scaled<T: super::bernstein::Coefficient>(a: &Bernstein<T>, factor: f64) -> Bernstein<T> {
+    Bernstein(a.0.iter().map(|&x| x * factor).collect())
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::topology::test_sets::{net, revolved};
+    use approx::assert_relative_eq;
+
+    #[test]
+    fn strip_normals_are_the_surface_normals() {
+        let s = 0.5_f64.sqrt();
+        let octant = revolved(&[(0.0, -2.0, 1.0), (2.0, -2.0, s), (2.0, 0.0, 1.0)]).remove(0);
+        let wavy = net((3, 4), |u, v| {
+            (u, v + 0.2 * u * u, (3.0 * u + 2.0 * v).sin())
+        });
+        for surface in [octant, wavy] {
+            for side in Side::ALL {
+                let origin = Point::new(0.3, 0.1, -0.2);
+                let strip = Strip::new(&surface, side, &origin);
+                for k in 0..=10 {
+                    let t = f64::from(k) / 10.0;
+                    let [u, v] = side.at(t);
+                    // A pole is one point: it has no strip.
+                    let Some(normal) = surface
+                        .jet(u + (0.5 - u) * 1e-7, v + (0.5 - v) * 1e-7)
+                        .normal()
+                    else {
+                        continue;
+                    };
+                    if strip.normal.0.iter().all(|x| x.norm() < 1e-12) {
+                        continue;
+                    }
+                    let found = strip.unit_normal(t).unwrap();
+                    assert_relative_eq!(found, normal, epsilon = 1e-5);
+                }
+            }
+        }
+    }
+}

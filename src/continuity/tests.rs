@@ -1,0 +1,121 @@
+//! Seams with known answers.
+
+use super::{Angle, Meeting, smooth_seams};
+use crate::bezier::{BezierPatch, Side};
+use crate::patch_set::PatchSet;
+use crate::topology::test_sets::{add, empty, net, rectangle, revolved};
+use crate::topology::{Contact, Topology};
+
+fn meeting(topology: &Topology) -> Meeting {
+    let [contact] = topology.contacts() else {
+        panic!("one contact, not {}", topology.contacts().len())
+    };
+    of(contact)
+}
+
+fn of(contact: &Contact) -> Meeting {
+    Meeting {
+        edges: contact.edges,
+        first: contact.first,
+        second: contact.second,
+    }
+}
+
+fn angle(set: &PatchSet) -> Angle {
+    meeting(&Topology::build(set).unwrap()).angle(set)
+}
+
+fn pair(a: &BezierPatch, b: &BezierPatch) -> PatchSet {
+    let mut set = empty();
+    add(&mut set, "a", a);
+    add(&mut set, "b", b);
+    set
+}
+
+/// A plane that leaves x = 10 at an angle to the plane z = 0.
+fn tilted(degrees: f64) -> BezierPatch {
+    let (sin, cos) = degrees.to_radians().sin_cos();
+    net((2, 3), move |u, v| {
+        (10.0 + 8.0 * u * cos, 5.0 * v, 8.0 * u * sin)
+    })
+}
+
+/// Two planes at an angle: the angle, from hardly any to a fold back.
+#[test]
+fn planes_meet_at_their_angle() {
+    let flat = rectangle([0.0, 10.0], [0.0, 5.0]);
+    for degrees in [1e-3, 0.05, 0.12, 0.8, 10.0, 60.0, 89.99, 90.0, 120.0, 175.0] {
+        let set = pair(&flat, &tilted(degrees));
+        let found = angle(&set).bracket;
+        assert!(
+            (found.attained - degrees).abs() < 1e-6,
+            "{degrees}: {found:?}"
+        );
+        assert!(found.proved >= degrees - 1e-9, "{degrees}: {found:?}");
+        assert!(found.proved <= degrees * 1.02, "{degrees}: {found:?}");
+    }
+    // Folded back, the sides lie on one another as well.
+    let set = pair(&flat, &tilted(180.0));
+    let topology = Topology::build(&set).unwrap();
+    let contact = &topology.contacts()[0];
+    assert_eq!(contact.edges[0].side(), Side::U1);
+    let fold = of(contact).angle(&set).bracket;
+    assert!(fold.attained > 179.999_999);
+}
+
+/// Turning a patch over, exchanging its parameters or declaring it flipped
+/// changes no angle; only whether the stated normals agree.
+#[test]
+fn orientation_is_settled_by_the_edges() {
+    let flat = rectangle([0.0, 10.0], [0.0, 5.0]);
+    let bent = tilted(25.0);
+    for other in [
+        bent.clone(),
+        bent.transposed(),
+        bent.restrict([0.0, 1.0], [1.0, 0.0]),
+        bent.restrict([1.0, 0.0], [0.0, 1.0]),
+    ] {
+        for flipped in [false, true] {
+            let mut set = pair(&flat, &other);
+            set.patches[1].flipped = flipped;
+            let topology = Topology::build(&set).unwrap();
+            let meeting = meeting(&topology);
+            let found = meeting.angle(&set).bracket.attained;
+            assert!((found - 25.0).abs() < 1e-9, "{found}");
+            let normals = [0.5; 2].map(|x| x);
+            let n =
+                other.normal(normals[0], normals[1]).unwrap() * if flipped { -1.0 } else { 1.0 };
+            assert_eq!(meeting.normals_agree(&set), n.z > 0.0);
+        }
+    }
+}
+
+/// A cut through one surface is tangent to round-off, and proved so.
+#[test]
+fn halves_of_a_surface_are_proved_tangent() {
+    let s = 0.5_f64.sqrt();
+    let wave = net((4, 3), |u, v| {
+        (100.0 * u, 100.0 * v, 9.0 * (5.0 * u + 4.0 * v).sin())
+    });
+    let octant = revolved(&[(0.0, -2.0, 1.0), (2.0, -2.0, s), (2.0, 0.0, 1.0)]).remove(0);
+    for surface in [wave, octant] {
+        for raised in [false, true] {
+            let left = surface.restrict([0.0, 1.0], [0.0, 0.4]);
+            let mut right = surface.restrict([0.0, 1.0], [0.4, 1.0]);
+            if raised {
+                right = right.restrict([1.0, 0.0], [0.0, 1.0]);
+            }
+            let set = pair(&left, &right);
+            let topology = Topology::build(&set).unwrap();
+            let found = meeting(&topology).angle(&set).bracket;
+            assert!(found.proved <= 1e-6, "{found:?}");
+            let smooth = smooth_seams(&set, &topology);
+            let shared = topology.seams().iter().zip(&smooth);
+            assert!(shared.clone().any(|(s, _)| s.spans.len() == 2));
+            // Turned round in u, its normal turns over.
+            for (seam, smooth) in shared {
+                assert_eq!(*smooth, seam.spans.len() == 1 || !raised);
+            }
+        }
+    }
+}
