@@ -5,7 +5,11 @@ use std::process::ExitCode;
 
 use clap::{Parser, Subcommand};
 
+mod completions;
+mod interrupt;
+mod man;
 mod outcome;
+mod output;
 
 pub use outcome::Outcome;
 
@@ -24,12 +28,19 @@ pub struct Arguments {
 
 /// The commands.
 #[derive(Debug, Subcommand)]
-enum Command {}
+enum Command {
+    Completions(completions::CompletionsArguments),
+    Man(man::ManArguments),
+}
 
 /// Runs the program on the given arguments, the program's name first.
 pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     match Arguments::try_parse_from(arguments) {
-        Ok(arguments) => match arguments.command {},
+        Ok(arguments) => match arguments.command {
+            Command::Completions(arguments) => arguments.run(),
+            Command::Man(arguments) => arguments.run(),
+        }
+        .into(),
         Err(error) => {
             let code = if error.use_stderr() {
                 Outcome::Refused

@@ -1,5 +1,6 @@
 //! How a command ends.
 
+use std::fmt::Display;
 use std::process::ExitCode;
 
 /// The three endings, which are the exit codes 0, 1 and 2.
@@ -11,6 +12,18 @@ pub enum Outcome {
     Findings,
     /// 2: bad usage, unreadable, refused or unprovable.
     Refused,
+}
+
+impl Outcome {
+    /// Says why the program does not do what it was asked to.
+    #[allow(
+        clippy::needless_pass_by_value,
+        reason = "so that it can stand where a function of an error is wanted"
+    )]
+    pub(super) fn refuse(why: impl Display) -> Self {
+        anstream::eprintln!("error: {why}");
+        Self::Refused
+    }
 }
 
 impl From<Outcome> for ExitCode {

@@ -1,0 +1,50 @@
+//! `chordwise man`: the manual page, one for the program and one a command.
+
+use std::path::PathBuf;
+
+use clap::{Args, CommandFactory};
+
+use super::output::Output;
+use super::{Arguments, Outcome};
+
+const EXAMPLES: &str = "\
+Examples:
+  chordwise man | man -l -                        read the page of the program
+  chordwise man tessellate -o chordwise-tessellate.1";
+
+/// Write a manual page
+#[derive(Debug, Args)]
+#[command(before_help = EXAMPLES)]
+pub(super) struct ManArguments {
+    /// The command to describe, in place of the whole program
+    command: Option<String>,
+
+    /// The file to write; `-` is standard output
+    #[arg(short, long, value_name = "FILE", default_value = "-")]
+    output: PathBuf,
+}
+
+impl ManArguments {
+    /// Writes the page.
+    pub(super) fn run(&self) -> Outcome {
+        let mut program = Arguments::command();
+        program.build();
+        let subject = match &self.command {
+            None => &program,
+            Some(name) => match program.find_subcommand(name) {
+                Some(command) => command,
+                None => {
+                    let names: Vec<_> = program.get_subcommands().map(|c| c.get_name()).collect();
+                    return Outcome::refuse(format_args!(
+                        "`{name}` is no command; the commands are {}",
+                        names.join(", ")
+                    ));
+                }
+            },
+        };
+        let page = clap_mangen::Man::new(subject.clone());
+        Output::open(&self.output, &[])
+            .and_then(|output| output.write(|out| Ok(page.render(out)?)))
+            .map_or_else(Outcome::refuse, |_| Outcome::Done)
+    }
+}
