@@ -6,6 +6,7 @@ use std::process::ExitCode;
 use clap::{Parser, Subcommand};
 
 mod completions;
+mod demo;
 mod interrupt;
 mod man;
 mod outcome;
@@ -30,6 +31,7 @@ pub struct Arguments {
 #[derive(Debug, Subcommand)]
 enum Command {
     Completions(completions::CompletionsArguments),
+    Demo(demo::DemoArguments),
     Man(man::ManArguments),
 }
 
@@ -38,6 +40,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     match Arguments::try_parse_from(arguments) {
         Ok(arguments) => match arguments.command {
             Command::Completions(arguments) => arguments.run(),
+            Command::Demo(arguments) => arguments.run(),
             Command::Man(arguments) => arguments.run(),
         }
         .into(),
