@@ -416,3 +416,50 @@ fn a_failing_writer_is_reported() {
         }
     }
 }
+
+/// Leaves files with a summary beside each for readers in other languages
+/// (`tests/judges`), and checks that they are the same bytes each time.
+#[test]
+fn files_for_the_judges() {
+    let folder = std::path::Path::new(env!("CARGO_TARGET_TMPDIR")).join("judges");
+    if folder.exists() {
+        std::fs::remove_dir_all(&folder).unwrap();
+    }
+    std::fs::create_dir_all(&folder).unwrap();
+    let mut open = shapes::case(Vector::zeros());
+    let lid = open.parts.pop().unwrap();
+    open.triangles.truncate(lid.triangles.start);
+    open.panels.pop();
+    open.name = "tray".to_owned();
+    open.unit = LengthUnit::Inch;
+    let far = shapes::case(Vector::new(2e7 + 0.1, 0.3, -2e7));
+    let named =
+        [("sphere", 0), ("case", 1), ("away", 2)].map(|(name, i)| (name, cases()[i].clone()));
+    for (name, mesh) in named.into_iter().chain([("tray", open), ("far", far)]) {
+        let measures = Measures::of(&mesh);
+        for format in Format::ALL {
+            if name == "far" && format == Format::Stl {
+                continue;
+            }
+            for layout in format.layouts() {
+                let (bytes, summary) = written(&mesh, format, Some(*layout));
+                assert_eq!(bytes, written(&mesh, format, Some(*layout)).0);
+                let json = serde_json::json!({
+                    "triangles": mesh.triangles.len(),
+                    "vertices": mesh.points.len(),
+                    "file_vertices": summary.file_vertices,
+                    "area": measures.area,
+                    "volume": measures.volume,
+                    "closed": measures.closed,
+                    "unit": mesh.unit.symbol(),
+                    "panels": mesh.panels,
+                    "euler": measures.euler,
+                    "components": measures.components,
+                });
+                let file = folder.join(format!("{name}-{layout}.{format}"));
+                std::fs::write(&file, bytes).unwrap();
+                std::fs::write(format!("{}.json", file.display()), json.to_string()).unwrap();
+            }
+        }
+    }
+}

@@ -30,7 +30,10 @@ fn manual_pages_are_roff() {
     assert!(text.contains("completions"));
     let run = chordwise().args(["man", "completions"]).assert().code(0);
     let text = String::from_utf8(run.get_output().stdout.clone()).unwrap();
-    assert!(text.contains("chordwise completions bash"), "{text}");
+    assert!(
+        text.contains(".SH EXAMPLES\n.nf\nchordwise completions bash"),
+        "{text}"
+    );
     let run = chordwise().args(["man", "nothing"]).assert().code(2);
     let text = String::from_utf8(run.get_output().stderr.clone()).unwrap();
     assert!(text.starts_with("error: `nothing` is no command; the commands are "));

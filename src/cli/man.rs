@@ -1,8 +1,11 @@
 //! `chordwise man`: the manual page, one for the program and one a command.
 
+use std::io::{self, Write};
 use std::path::PathBuf;
 
-use clap::{Args, CommandFactory};
+use clap::{Args, Command, CommandFactory};
+use clap_mangen::Man;
+use clap_mangen::roff::{Roff, roman};
 
 use super::output::Output;
 use super::{Arguments, Outcome};
@@ -42,9 +45,25 @@ impl ManArguments {
                 }
             },
         };
-        let page = clap_mangen::Man::new(subject.clone());
         Output::open(&self.output, &[])
-            .and_then(|output| output.write(|out| Ok(page.render(out)?)))
+            .and_then(|output| output.write(|out| Ok(write(subject, out)?)))
             .map_or_else(Outcome::refuse, |_| Outcome::Done)
     }
+}
+
+/// The page of a command; its examples, which the generator does not know,
+/// come last.
+fn write(command: &Command, out: &mut dyn Write) -> io::Result<()> {
+    Man::new(command.clone())
+        .source(concat!("chordwise ", env!("CARGO_PKG_VERSION")))
+        .render(out)?;
+    if let Some(examples) = command.get_before_help() {
+        let mut section = Roff::new();
+        section.control("SH", ["EXAMPLES"]).control("nf", []);
+        for line in examples.to_string().lines().skip(1) {
+            section.text([roman(line.trim_start())]);
+        }
+        section.control("fi", []).to_writer(out)?;
+    }
+    Ok(())
 }

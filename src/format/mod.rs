@@ -4,7 +4,7 @@
 //! |---|---|---|---|---|---|
 //! | STL, binary | single | no, repeated | facets' | none | the set's unit |
 //! | OBJ | double | by index | by index of their own | `o` panel, `g` patch | the set's unit |
-//! | PLY, binary | double | by index | if asked for | comments, and numbers on each face | the set's unit |
+//! | PLY, binary | double | by index | if asked for | comments, with ranges of faces | the set's unit |
 //! | GLB (glTF 2.0) | single, one local origin | inside a panel and crease, else repeated | yes | a node a panel, patches as extras | metres, y up, by a node transform |
 //!
 //! A repeated point has bitwise equal coordinates wherever it is repeated, so

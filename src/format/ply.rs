@@ -1,9 +1,12 @@
 //! PLY, binary, little endian, doubles.
 //!
-//! Points are shared by index. Every face carries the numbers of its patch and
-//! panel; the names are comments in the header, `comment panel 0 bonnet` and
-//! `comment patch 3 bonnet/4`, control characters and `%` percent-encoded.
-//! With normals a point is repeated where they differ.
+//! Points are shared by index. The faces of a patch follow each other; names
+//! and ranges are comments in the header, `comment panel 0 bonnet` and
+//! `comment patch 0 120 64 bonnet/4` (the panel's number, the first face, how
+//! many faces, the name), control characters and `%` percent-encoded. Numbers
+//! on the faces themselves would be neater, but not every reader takes faces
+//! with more than their corners. With normals a point is repeated where they
+//! differ.
 
 use std::io::Write;
 
@@ -66,25 +69,20 @@ pub(super) fn write(
         }
     }
     let mut corner = 0_u32;
-    for (part, number) in mesh.parts.iter().zip(0_u32..) {
-        let panel = u32::try_from(part.panel).expect("panels are as many as patches at most");
-        for t in part.triangles.clone() {
-            let indices = match (repeated, with_normals) {
-                (true, _) => {
-                    corner += 3;
-                    [corner - 3, corner - 2, corner - 1]
-                }
-                (false, true) => mesh.triangles[t],
-                (false, false) => mesh.triangle_points(t),
-            };
-            let mut face = [0; 21];
-            face[0] = 3;
-            let words = indices.into_iter().chain([number, panel]);
-            for (four, word) in face[1..].chunks_exact_mut(4).zip(words) {
-                four.copy_from_slice(&word.to_le_bytes());
+    for t in mesh.parts.iter().flat_map(|part| part.triangles.clone()) {
+        let indices = match (repeated, with_normals) {
+            (true, _) => {
+                corner += 3;
+                [corner - 3, corner - 2, corner - 1]
             }
-            sink.put(&face)?;
+            (false, true) => mesh.triangles[t],
+            (false, false) => mesh.triangle_points(t),
+        };
+        let mut face = [3; 13];
+        for (four, index) in face[1..].chunks_exact_mut(4).zip(indices) {
+            four.copy_from_slice(&index.to_le_bytes());
         }
+        sink.put(&face)?;
     }
     Ok(Written {
         bytes: sink.finish()?,
@@ -107,8 +105,12 @@ fn header(
     for (number, name) in mesh.panels.iter().enumerate() {
         writeln!(sink, "comment panel {number} {}", Encoded::line(name))?;
     }
-    for (number, part) in mesh.parts.iter().enumerate() {
-        writeln!(sink, "comment patch {number} {}", Encoded::line(&part.name))?;
+    let mut first = 0;
+    for part in &mesh.parts {
+        let (panel, count) = (part.panel, part.triangles.len());
+        let name = Encoded::line(&part.name);
+        writeln!(sink, "comment patch {panel} {first} {count} {name}")?;
+        first += count;
     }
     writeln!(sink, "element vertex {vertices}")?;
     let normals: &[&str] = if with_normals {
@@ -120,6 +122,5 @@ fn header(
         writeln!(sink, "property double {name}")?;
     }
     writeln!(sink, "element face {}", mesh.triangles.len())?;
-    writeln!(sink, "property list uchar int vertex_indices")?;
-    writeln!(sink, "property int patch\nproperty int panel\nend_header")
+    writeln!(sink, "property list uchar int vertex_indices\nend_header")
 }

@@ -1,0 +1,156 @@
+"""Reads mesh files with trimesh and meshio and compares them with a summary.
+
+usage: judge_mesh.py (MESH SUMMARY.json)...
+
+A summary has the fields of `chordwise tessellate --format json`: triangles,
+vertices, file_vertices, area, volume (or null), closed, unit. Where it has
+panels (a list of names), euler, components or open_loops too, these are
+compared as well. Points are merged only where all their bits are equal.
+"""
+
+import json
+import math
+import pathlib
+import sys
+import tempfile
+
+import meshio
+import numpy
+import scipy.sparse
+import trimesh
+
+METRES = {"m": 1.0, "cm": 0.01, "mm": 0.001, "in": 0.0254}
+# Relative to the figure: doubles to round-off, singles to what they can hold.
+DOUBLE, SINGLE = 1e-9, 1e-4
+
+
+class Faults(Exception):
+    """What is wrong with a file."""
+
+
+def by_trimesh(path):
+    """Points, triangles, and names by node where the format has nodes."""
+    loaded = trimesh.load(path, process=False)
+    names = None
+    if isinstance(loaded, trimesh.Scene):
+        names = sorted(loaded.graph.nodes_geometry)
+        loaded = loaded.to_mesh()
+    points = numpy.asarray(loaded.vertices)
+    # It splits the points of an OBJ file where normals differ: count them there.
+    stored = points_of_obj(path) if path.suffix == ".obj" else len(points)
+    return points, numpy.asarray(loaded.faces), stored, names
+
+
+def points_of_obj(path):
+    with path.open() as lines:
+        return sum(line.startswith("v ") for line in lines)
+
+
+def by_meshio(path):
+    """meshio takes the normals of an OBJ file for one a point, and refuses the
+    file where a crease has two: it gets the file without its normals."""
+    if path.suffix == ".obj":
+        with tempfile.TemporaryDirectory() as folder, path.open() as lines:
+            plain = pathlib.Path(folder) / path.name
+            plain.write_text("".join(l for l in lines if not l.startswith("vn ")))
+            mesh = meshio.read(plain)
+    else:
+        mesh = meshio.read(path)
+    triangles = [block.data for block in mesh.cells if block.type == "triangle"]
+    faces = numpy.vstack(triangles)
+    # It merges the points of an STL file itself.
+    stored = 3 * len(faces) if path.suffix == ".stl" else len(mesh.points)
+    return numpy.asarray(mesh.points), faces, stored, None
+
+
+def without_joints(faces):
+    """Drops what joins two strips: triangles with a repeated index."""
+    a, b, c = faces.T
+    return faces[(a != b) & (b != c) & (c != a)]
+
+
+def merged(points, faces):
+    """Merges points whose bits are equal."""
+    points = numpy.ascontiguousarray(points) + 0.0
+    _, first, number = numpy.unique(
+        points.view(numpy.uint64 if points.dtype == numpy.float64 else numpy.uint32),
+        axis=0,
+        return_index=True,
+        return_inverse=True,
+    )
+    return points[first], number.reshape(-1)[faces]
+
+
+def boundary(faces):
+    """Directed edges without a partner that runs the other way."""
+    edges = numpy.vstack([faces[:, [0, 1]], faces[:, [1, 2]], faces[:, [2, 0]]])
+    there = {}
+    for a, b in edges.tolist():
+        there[a, b] = there.get((a, b), 0) + 1
+    return [edge for edge, n in there.items() if n != 1 or there.get(edge[::-1], 0) != 1]
+
+
+def judge(reader, read, path, summary):
+    scale = METRES[summary["unit"]] if path.suffix == ".glb" else 1.0
+    near = SINGLE if path.suffix in (".glb", ".stl") else DOUBLE
+    points, faces, stored, names = read(path)
+    faces = without_joints(faces)
+    faults = []
+
+    def equal(what, found, meant):
+        if found != meant:
+            faults.append(f"{what} is {found}, should be {meant}")
+
+    def close(what, found, meant):
+        if not math.isclose(found, meant, rel_tol=near):
+            faults.append(f"{what} is {found!r}, should be {meant!r}")
+
+    equal("the number of triangles", len(faces), summary["triangles"])
+    equal("the number of stored vertices", stored, summary["file_vertices"])
+    if names is not None and "panels" in summary and isinstance(summary["panels"], list):
+        equal("the list of nodes", names, sorted(summary["panels"]))
+    points, faces = merged(points, faces)
+    equal("the number of points once merged", len(points), summary["vertices"])
+    mesh = trimesh.Trimesh(points, faces, process=False)
+    close("the area", mesh.area, summary["area"] * scale**2)
+    equal("closed", not boundary(faces), summary["closed"])
+    if summary["closed"]:
+        equal("trimesh's watertight", bool(mesh.is_watertight), True)
+        equal("trimesh's consistent winding", bool(mesh.is_winding_consistent), True)
+        close("the volume", mesh.volume, summary["volume"] * scale**3)
+        equal("the euler number", mesh.euler_number, len(points) - len(faces) // 2)
+    if "euler" in summary:
+        equal("the euler number", mesh.euler_number, summary["euler"])
+    if "components" in summary:
+        pairs = mesh.face_adjacency
+        graph = scipy.sparse.coo_matrix(
+            (numpy.ones(len(pairs)), (pairs[:, 0], pairs[:, 1])), (len(faces), len(faces))
+        )
+        found = scipy.sparse.csgraph.connected_components(graph, directed=False)[0]
+        equal("the number of components", found, summary["components"])
+    if faults:
+        raise Faults(f"{path} read by {reader}: " + "; ".join(faults))
+    print(f"{path.name}: {reader} agrees, {len(faces)} triangles, {len(points)} points")
+
+
+def main(arguments):
+    if not arguments or len(arguments) % 2:
+        sys.exit(__doc__)
+    failed = 0
+    for path, summary in zip(arguments[::2], arguments[1::2]):
+        path = pathlib.Path(path)
+        summary = json.loads(pathlib.Path(summary).read_text())
+        readers = [("trimesh", by_trimesh)]
+        if path.suffix != ".glb":
+            readers.append(("meshio", by_meshio))
+        for name, read in readers:
+            try:
+                judge(name, read, path, summary)
+            except Faults as faults:
+                failed += 1
+                print(f"FAULT {faults}")
+    sys.exit(1 if failed else 0)
+
+
+if __name__ == "__main__":
+    main(sys.argv[1:])
