@@ -1,0 +1,304 @@
+//! The seam report as text.
+
+use std::fmt::Write;
+
+use super::seams::{EdgeName, FigureLine, LoopLine, SeamLine, SeamReport};
+
+/// Edges of a loop named in full; the rest is counted.
+const LOOP_EDGES: usize = 6;
+
+impl SeamReport {
+    /// The report as text: a summary, the seams worst first, what is open, and
+    /// the caution.
+    #[must_use]
+    pub fn text(&self) -> String {
+        let mut out = String::new();
+        // Writing to a string cannot fail.
+        let _ = self.write_text(&mut out);
+        out
+    }
+
+    fn write_text(&self, out: &mut String) -> std::fmt::Result {
+        let (unit, sum) = (self.unit, &self.summary);
+        let name = if self.name.is_empty() {
+            String::new()
+        } else {
+            format!("{}: ", self.name)
+        };
+        writeln!(
+            out,
+            "{name}{}, {}{}{}",
+            many(sum.seams, "seam", "seams"),
+            many(sum.faults, "fault", "faults"),
+            some(sum.undecided, ", ", " undecided"),
+            some(sum.non_manifold, ", ", " of three edges or more"),
+        )?;
+        let t = &self.tolerances;
+        write!(
+            out,
+            "tolerances: gap {} {unit}, search {} {unit}, tangent {} deg, crease {} deg",
+            t.gap, t.search, t.tangent_deg, t.crease_deg
+        )?;
+        match t.curvature_per_mm {
+            Some(limit) => writeln!(out, ", curvature {limit} 1/mm")?,
+            None => writeln!(out, "; no verdict on curvature")?,
+        }
+        writeln!(
+            out,
+            "figures: attained value, then the proved upper bound in brackets; curvature is sampled"
+        )?;
+        if !self.seams.is_empty() {
+            writeln!(out)?;
+            self.write_table(out)?;
+        }
+        for crowd in &self.non_manifold {
+            let edges: Vec<String> = crowd.edges.iter().map(edge).collect();
+            writeln!(
+                out,
+                "\nnon-manifold, {} edges over {} {unit}: {}",
+                edges.len(),
+                length(crowd.length),
+                edges.join(" | ")
+            )?;
+        }
+        if !self.near_misses.is_empty() {
+            writeln!(out, "\nnear misses, open in the mesh:")?;
+            for miss in &self.near_misses {
+                writeln!(
+                    out,
+                    "  {} | {}: {} {unit} apart over {} {unit}, no seam at the gap tolerance {}",
+                    edge(&miss.between),
+                    edge(&miss.and),
+                    figure(miss.gap),
+                    length(miss.length),
+                    t.gap
+                )?;
+            }
+        }
+        writeln!(
+            out,
+            "\nopen loops: {}",
+            if self.open_loops.is_empty() {
+                "none".to_owned()
+            } else {
+                format!(
+                    "{}, {} {unit} in all",
+                    sum.open_loops,
+                    length(sum.open_length)
+                )
+            }
+        )?;
+        for (k, chain) in self.open_loops.iter().enumerate() {
+            writeln!(
+                out,
+                "  {}  {:>10} {unit}  {}",
+                k + 1,
+                length(chain.length),
+                trail(chain)
+            )?;
+        }
+        if sum.normals_opposed > 0 {
+            writeln!(
+                out,
+                "\nnormals: across {} they point to opposite sides",
+                many(sum.normals_opposed, "seam", "seams")
+            )?;
+        }
+        writeln!(out, "\n{}", self.caution)
+    }
+
+    fn write_table(&self, out: &mut String) -> std::fmt::Result {
+        let head = [
+            "verdict".to_owned(),
+            "finding".to_owned(),
+            "demand".to_owned(),
+            format!("gap {}", self.unit),
+            "angle deg".to_owned(),
+            "curvature 1/mm".to_owned(),
+            format!("length {}", self.unit),
+            "seam".to_owned(),
+        ];
+        let rows: Vec<[String; 8]> = self.seams.iter().map(cells).collect();
+        let mut widths = head.each_ref().map(|h| h.chars().count());
+        for row in &rows {
+            for (width, cell) in widths.iter_mut().zip(row) {
+                *width = (*width).max(cell.chars().count());
+            }
+        }
+        let mut line = |cells: &[String; 8]| -> std::fmt::Result {
+            let mut text = String::new();
+            for (k, (cell, width)) in cells.iter().zip(widths).enumerate() {
+                // Figures end in one column, words begin in one.
+                let width = if k == 7 { 0 } else { width };
+                if (3..7).contains(&k) {
+                    write!(text, "{cell:>width$}  ")?;
+                } else {
+                    write!(text, "{cell:<width$}  ")?;
+                }
+            }
+            writeln!(out, "{}", text.trim_end())
+        };
+        line(&head)?;
+        for (seam, row) in self.seams.iter().zip(&rows) {
+            line(row)?;
+            if seam.verdict != "met" {
+                let place = worst(seam);
+                let [x, y, z] = place.at.point.map(length);
+                let mut cells = [const { String::new() }; 8];
+                cells[7] = format!(
+                    "  at ({x}, {y}, {z}): {} {}, {} {}",
+                    seam.between.0,
+                    parameters(place.at.between),
+                    seam.and.0,
+                    parameters(place.at.and)
+                );
+                line(&cells)?;
+            }
+        }
+        Ok(())
+    }
+}
+
+/// The figure that decided.
+fn worst(seam: &SeamLine) -> &FigureLine {
+    match (
+        seam.finding.as_str(),
+        &seam.angle_deg,
+        &seam.curvature_per_mm,
+    ) {
+        ("curvature", _, Some(step)) => step,
+        ("gap" | "apart" | "open", _, _) | (_, None, _) => &seam.gap,
+        (_, Some(angle), _) => angle,
+    }
+}
+
+fn cells(seam: &SeamLine) -> [String; 8] {
+    let demand = serde_json::to_value(seam.demand)
+        .ok()
+        .and_then(|v| v.as_str().map(str::to_owned))
+        .unwrap_or_default();
+    [
+        seam.verdict.clone(),
+        seam.finding.clone(),
+        // What the file does not state stands in brackets.
+        if seam.demand_source == "stated" {
+            demand
+        } else {
+            format!("({demand})")
+        },
+        bracket(&seam.gap),
+        seam.angle_deg.as_ref().map_or_else(dash, bracket),
+        seam.curvature_per_mm
+            .as_ref()
+            .map_or_else(dash, |c| figure(c.attained)),
+        length(seam.length),
+        format!("{} | {}", edge(&seam.between), edge(&seam.and)),
+    ]
+}
+
+fn dash() -> String {
+    "-".to_owned()
+}
+
+fn bracket(line: &FigureLine) -> String {
+    match line.proved {
+        Some(proved) => format!("{} ({})", figure(line.attained), upward(proved)),
+        None => figure(line.attained),
+    }
+}
+
+/// Three figures, the last one rounded.
+fn figure(value: f64) -> String {
+    if value.abs() < 5e-13 {
+        "0".to_owned()
+    } else if value.abs() < 1e-3 {
+        format!("{value:.1e}")
+    } else {
+        let digits = if value.abs() < 1.0 {
+            4
+        } else if value.abs() < 100.0 {
+            3
+        } else {
+            1
+        };
+        format!("{value:.digits$}")
+    }
+}
+
+/// As [`figure`], but never below the value: a bound stays a bound in print.
+fn upward(value: f64) -> String {
+    if value <= 0.0 {
+        return "0".to_owned();
+    }
+    let mut shown = value;
+    // The next printed figure is at most 5e-2 away relatively.
+    for _ in 0..64 {
+        let text = if shown < 1e-3 {
+            format!("{shown:.1e}")
+        } else {
+            figure(shown)
+        };
+        if text.parse::<f64>().is_ok_and(|printed| printed >= value) {
+            return text;
+        }
+        shown += value * 2e-3;
+    }
+    format!("{value:e}")
+}
+
+fn length(value: f64) -> String {
+    let text = format!("{value:.3}");
+    let text = text.trim_end_matches('0').trim_end_matches('.');
+    if text == "-0" { "0" } else { text }.to_owned()
+}
+
+fn parameters([u, v]: [f64; 2]) -> String {
+    let short = |t: f64| {
+        let text = format!("{t:.4}");
+        text.trim_end_matches('0').trim_end_matches('.').to_owned()
+    };
+    format!("({}, {})", short(u), short(v))
+}
+
+fn edge((patch, side): &EdgeName) -> String {
+    format!("{patch} {side}")
+}
+
+fn trail(chain: &LoopLine) -> String {
+    let mut names: Vec<String> = chain.edges.iter().take(LOOP_EDGES).map(edge).collect();
+    let more = chain.edges.len().saturating_sub(LOOP_EDGES);
+    if more > 0 {
+        names.push(format!("and {more} more"));
+    }
+    names.join(", ")
+}
+
+fn many(count: usize, one: &str, more: &str) -> String {
+    format!("{count} {}", if count == 1 { one } else { more })
+}
+
+fn some(count: usize, before: &str, after: &str) -> String {
+    if count == 0 {
+        String::new()
+    } else {
+        format!("{before}{count}{after}")
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::upward;
+
+    #[test]
+    fn a_printed_bound_is_never_below_the_bound() {
+        for value in [
+            1e-13, 3.14159e-7, 9.96e-4, 0.01234, 0.06001, 3.0, 99.9996, 123.456,
+        ] {
+            let printed: f64 = upward(value).parse().unwrap();
+            assert!(
+                printed >= value && printed < value * 1.06,
+                "{value} {printed}"
+            );
+        }
+    }
+}
