@@ -6,7 +6,7 @@
 
 use super::angle::Meeting;
 use crate::patch_set::PatchSet;
-use crate::topology::nearest;
+use crate::topology::nearest_from;
 
 /// The largest difference found, and where.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -42,9 +42,9 @@ impl Meeting {
         let per_mm = 1.0 / set.unit().in_mm();
         let mut worst: Option<CurvatureStep> = None;
         for k in 0..=16 {
-            let s = self.at(f64::from(k) / 16.0)[0];
+            let [s, guess] = self.at(f64::from(k) / 16.0);
             let jet = edges[0].jet(s);
-            let t = nearest(&edges[1], &jet.point, range).t;
+            let t = nearest_from(&edges[1], &jet.point, guess, range).t;
             let [u, v] = self.edges[0].side().at(s);
             let first = surfaces[0].jet(u, v);
             let [u, v] = self.edges[1].side().at(t);

@@ -202,7 +202,8 @@ fn survey(set: &PatchSet, group: &[(End, End, &Contact)]) -> SurveyedSeam {
         let range = contact.second;
         let low_high = [range[0].min(range[1]), range[0].max(range[1])];
         let here = first.eval(contact.gap_at);
-        let foot = crate::topology::nearest(&second, &here, low_high);
+        let x = (contact.gap_at - contact.first[0]) / (contact.first[1] - contact.first[0]);
+        let foot = crate::topology::nearest_from(&second, &here, meeting.at(x)[1], low_high);
         raise(&mut gap, contact.gap, || {
             place(set, contact.edges, [contact.gap_at, foot.t])
         });

@@ -45,7 +45,7 @@ impl SeamReport {
         }
         writeln!(
             out,
-            "figures: attained value, then the proved upper bound in brackets; curvature is sampled"
+            "figures: attained value, then the proved upper bound in brackets; curvature is sampled; a demand in brackets follows from the angle"
         )?;
         if !self.seams.is_empty() {
             writeln!(out)?;
