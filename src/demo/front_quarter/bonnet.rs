@@ -13,7 +13,7 @@ use crate::demo::sheet::Frame;
 use crate::scalar::Vector;
 
 const FRONT: f64 = wing::NOSE;
-const REAR: f64 = wing::REAR - SHUT;
+const REAR: f64 = wing::REAR;
 const COLUMNS: [f64; 5] = [FRONT, -350.0, -60.0, 230.0, REAR];
 /// Half-width and crown of the section that the profile is drawn in.
 const SECTION: [f64; 2] = [735.0, 82.0];

@@ -60,7 +60,7 @@ pub(super) fn set() -> SetText {
 }
 
 /// Panels that face each other across a shut line.
-pub(super) const SHUT_LINES: [[&str; 2]; 10] = [
+const SHUT_LINES: [[&str; 2]; 10] = [
     ["wing", "bonnet"],
     ["wing", "door"],
     ["wing", "pillar"],
@@ -70,7 +70,7 @@ pub(super) const SHUT_LINES: [[&str; 2]; 10] = [
     ["door", "sill"],
     ["door", "pillar"],
     ["bumper", "lamp glass"],
-    ["bonnet", "lamp glass"],
+    ["bonnet", "pillar"],
 ];
 
 fn seams() -> Vec<SeamText> {
