@@ -5,12 +5,15 @@ use std::process::ExitCode;
 
 use clap::{Parser, Subcommand};
 
+mod check;
 mod completions;
 mod demo;
 mod interrupt;
 mod man;
 mod outcome;
 mod output;
+mod source;
+mod style;
 
 pub use outcome::Outcome;
 
@@ -30,6 +33,7 @@ pub struct Arguments {
 /// The commands.
 #[derive(Debug, Subcommand)]
 enum Command {
+    Check(check::CheckArguments),
     Completions(completions::CompletionsArguments),
     Demo(demo::DemoArguments),
     Man(man::ManArguments),
@@ -39,6 +43,7 @@ enum Command {
 pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     match Arguments::try_parse_from(arguments) {
         Ok(arguments) => match arguments.command {
+            Command::Check(arguments) => arguments.run(),
             Command::Completions(arguments) => arguments.run(),
             Command::Demo(arguments) => arguments.run(),
             Command::Man(arguments) => arguments.run(),

@@ -19,6 +19,8 @@ pub struct Position {
     pub column: usize,
     /// The line, or the part of a long line that is of interest.
     excerpt: String,
+    /// Whether the excerpt begins later than the line.
+    cut: bool,
     /// What is meant, as bytes of the excerpt.
     marked: Range<usize>,
 }
@@ -81,17 +83,21 @@ impl Diagnostic {
             Finding::Warning(_) => Level::WARNING,
         };
         let mut group = match &self.position {
-            Some(position) => Group::with_title(level.primary_title(&*sentence))
-                .element(
-                    Origin::path(source_name)
+            Some(position) => {
+                let snippet = Snippet::source(&*position.excerpt)
+                    .line_start(position.line)
+                    .annotation(AnnotationKind::Primary.span(position.marked.clone()));
+                let group = Group::with_title(level.primary_title(&*sentence));
+                if position.cut {
+                    // The snippet cannot know its column: say it before.
+                    let origin = Origin::path(source_name)
                         .line(position.line)
-                        .char_column(position.column),
-                )
-                .element(
-                    Snippet::source(&*position.excerpt)
-                        .line_start(position.line)
-                        .annotation(AnnotationKind::Primary.span(position.marked.clone())),
-                ),
+                        .char_column(position.column);
+                    group.element(origin).element(snippet)
+                } else {
+                    group.element(snippet.path(source_name))
+                }
+            }
             None => Group::with_title(level.primary_title(&*sentence))
                 .element(Origin::path(source_name)),
         };
@@ -125,12 +131,16 @@ impl Position {
             },
         );
         let to = boundary(text, line_end.min(from + EXCERPT)).max(start);
-        let excerpt: String = text[from..to].replace('\t', " ");
+        let cut = from > line_start;
+        let lead = if cut { "..." } else { "" };
+        let excerpt = format!("{lead}{}", text[from..to].replace('\t', " "));
+        let from = from - lead.len();
         let marked = (start - from)..(end.min(to) - from);
         Self {
             line,
             column,
             excerpt,
+            cut,
             marked,
         }
     }

@@ -79,20 +79,21 @@ impl PatchSet {
     pub fn read(path: impl AsRef<Path>) -> Result<Reading, Faults> {
         let path = path.as_ref();
         let source_name = path.display().to_string();
-        let refuse = |fault| Faults {
-            list: vec![Diagnostic {
-                finding: Finding::Fault(fault),
-                place: String::new(),
-                hint: None,
-                position: None,
-                path: Place::default(),
-            }],
-            source_name: source_name.clone(),
-        };
-        let bytes =
-            std::fs::read(path).map_err(|error| refuse(SetFault::Unreadable(error.to_string())))?;
-        let text = String::from_utf8(bytes).map_err(|_| refuse(SetFault::NotText))?;
-        Self::from_ron(&text, &source_name)
+        match std::fs::read(path) {
+            Ok(bytes) => Self::from_bytes(bytes, &source_name),
+            Err(error) => Err(Faults::unreadable(&source_name, &error)),
+        }
+    }
+
+    /// Reads a set from the bytes of a file.
+    ///
+    /// # Errors
+    /// As [`PatchSet::from_ron`], or that the bytes are not UTF-8.
+    pub fn from_bytes(bytes: Vec<u8>, source_name: &str) -> Result<Reading, Faults> {
+        match String::from_utf8(bytes) {
+            Ok(text) => Self::from_ron(&text, source_name),
+            Err(_) => Err(Faults::of_file(source_name, SetFault::NotText)),
+        }
     }
 
     /// Builds a set in code, by the same checks as a set from text.
@@ -110,6 +111,27 @@ impl PatchSet {
                 list,
                 source_name: String::new(),
             }),
+        }
+    }
+}
+
+impl Faults {
+    /// That a source cannot be read.
+    #[must_use]
+    pub fn unreadable(source_name: &str, error: &std::io::Error) -> Self {
+        Self::of_file(source_name, SetFault::Unreadable(error.to_string()))
+    }
+
+    fn of_file(source_name: &str, fault: SetFault) -> Self {
+        Self {
+            list: vec![Diagnostic {
+                finding: Finding::Fault(fault),
+                place: String::new(),
+                hint: None,
+                position: None,
+                path: Place::default(),
+            }],
+            source_name: source_name.to_owned(),
         }
     }
 }
@@ -133,6 +155,9 @@ fn syntax(error: &SpannedError, text: &str) -> Diagnostic {
     let lines = Lines::new(text);
     let span = &error.span;
     let start = lines.byte(text, span.start.line, span.start.col);
+    // The parser points before the blanks it was about to skip.
+    let rest = &text[start..];
+    let start = start + (rest.len() - rest.trim_start().len());
     let end = lines.byte(text, span.end.line, span.end.col).max(start);
     let among = |list: &[&str]| {
         let quoted: Vec<String> = list.iter().map(|name| format!("`{name}`")).collect();
@@ -174,6 +199,14 @@ fn syntax(error: &SpannedError, text: &str) -> Diagnostic {
             "the text ends too early; a bracket is not closed".to_owned(),
             None,
         ),
+        RonError::ExpectedDifferentLength { expected, found }
+            if expected == "an array of length 3" =>
+        {
+            (
+                format!("{found} numbers; a point has three, (x, y, z)"),
+                None,
+            )
+        }
         RonError::ExceededRecursionLimit => (
             "the brackets are nested too deeply; 128 levels are read".to_owned(),
             None,

@@ -167,6 +167,7 @@ impl Build {
             let named = self.check_name(&entry.name, &place, name_path.clone(), faults);
             match built {
                 Err(list) => {
+                    self.names.note_faulty(&entry.name);
                     for PlacedFault { place: at, fault } in list {
                         let hint = fault.hint();
                         let whole = [vec![Step::Field("surface")], at.0.clone()].concat();
@@ -202,7 +203,7 @@ impl Build {
     fn check_name(&self, name: &str, place: &str, path: Vec<Step>, faults: &mut Collector) -> bool {
         let fault = if name.is_empty() || name.split('/').any(|part| part.trim().is_empty()) {
             SetFault::EmptyName(name.to_owned())
-        } else if self.names.patches.contains_key(name) {
+        } else if self.names.is_taken(name) {
             SetFault::DuplicateName(name.to_owned())
         } else {
             return true;
@@ -270,6 +271,9 @@ impl Build {
             let place = || format!("copy `{}`", copy.name);
             let path = |rest: &[Step]| [&[Step::Field("copies"), Step::Item(k)], rest].concat();
             let good = check_place(copy.place.as_ref(), faults, &place, &path);
+            if !good || self.names.is_incomplete(&copy.of) || self.names.is_faulty(&copy.of) {
+                self.names.note_faulty_copy(&copy.name);
+            }
             let sources: Vec<PatchId> = if let Some(&panel) = self.names.panels.get(&copy.of) {
                 self.panels[panel.index()].patches.clone()
             } else if let Some(&patch) = self.names.patches.get(&copy.of) {
@@ -282,6 +286,7 @@ impl Build {
                     (place(), path(&[Step::Field("of")])),
                     faults,
                 );
+                self.names.note_faulty_copy(&copy.name);
                 continue;
             };
             if !good {
@@ -320,6 +325,9 @@ impl Build {
         (place, path): (String, Vec<Step>),
         faults: &mut Collector,
     ) {
+        if self.names.is_faulty(name) {
+            return;
+        }
         let nearest = if self.suggestions < MAX_SUGGESTIONS {
             self.suggestions += 1;
             self.names.nearest(name, what != "patch")

@@ -112,9 +112,11 @@ pub enum SurfaceFault {
         expected: usize,
     },
     /// The weights do not match the points.
-    #[error("{found} {what} of weights for {expected} of points; each point needs one weight")]
+    #[error(
+        "{found} {what} of weights where the points have {expected}; each point needs one weight"
+    )]
     WeightCount {
-        /// `rows` or `columns`.
+        /// `rows`, `columns` or `entries`.
         what: &'static str,
         /// How many there are.
         found: usize,

@@ -244,7 +244,7 @@ fn read(
         for (i, row) in weights.iter().enumerate() {
             if row.len() != columns {
                 let fault = SurfaceFault::WeightCount {
-                    what: "entries in a row",
+                    what: "columns",
                     found: row.len(),
                     expected: columns,
                 };

@@ -1,0 +1,48 @@
+//! Where a command reads its set from, and how it shows what is wrong with it.
+
+use std::io::Read;
+use std::path::Path;
+
+use crate::patch_set::{Diagnostic, Faults, PatchSet, Reading};
+
+/// How many diagnostics are shown in full; a script that goes wrong can make
+/// one for every patch.
+const SHOWN: usize = 50;
+
+/// Reads a set from a file, or from standard input for `-`.
+pub(super) fn read(path: &Path) -> Result<Reading, Faults> {
+    if path.as_os_str() != "-" {
+        return PatchSet::read(path);
+    }
+    let name = "standard input";
+    let mut bytes = Vec::new();
+    match std::io::stdin().lock().read_to_end(&mut bytes) {
+        Ok(_) => PatchSet::from_bytes(bytes, name),
+        Err(error) => Err(Faults::unreadable(name, &error)),
+    }
+}
+
+/// Shows all faults on standard error, in colour on a terminal.
+pub(super) fn show_faults(faults: &Faults) {
+    show(&faults.list, &faults.source_name);
+    let count = faults.list.len();
+    let plural = if count == 1 { "fault" } else { "faults" };
+    anstream::eprintln!(
+        "{}: {count} {plural}; the set is not used",
+        faults.source_name
+    );
+}
+
+/// Shows all warnings on standard error, in colour on a terminal.
+pub(super) fn show_warnings(reading: &Reading) {
+    show(&reading.warnings, &reading.source_name);
+}
+
+fn show(list: &[Diagnostic], source_name: &str) {
+    for diagnostic in list.iter().take(SHOWN) {
+        anstream::eprintln!("{}\n", diagnostic.render(source_name, true));
+    }
+    if list.len() > SHOWN {
+        anstream::eprintln!("and {} more", list.len() - SHOWN);
+    }
+}
