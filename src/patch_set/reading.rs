@@ -167,6 +167,17 @@ fn syntax(error: &SpannedError, text: &str) -> Diagnostic {
         nearest(found, list.iter().copied()).map(|name| format!("did you mean `{name}`?"))
     };
     let (message, hint) = match &error.code {
+        RonError::Eof
+        | RonError::ExpectedComma
+        | RonError::ExpectedArrayEnd
+        | RonError::ExpectedStructLikeEnd
+            if end >= text.trim_end().len() =>
+        {
+            (
+                "the text ends too early; a bracket is not closed".to_owned(),
+                None,
+            )
+        }
         RonError::NoSuchStructField {
             expected, found, ..
         } => (
@@ -195,10 +206,6 @@ fn syntax(error: &SpannedError, text: &str) -> Diagnostic {
         ),
         RonError::ExpectedFloat => ("expected a number".to_owned(), None),
         RonError::ExpectedInteger => ("expected a whole number".to_owned(), None),
-        RonError::Eof => (
-            "the text ends too early; a bracket is not closed".to_owned(),
-            None,
-        ),
         RonError::ExpectedDifferentLength { expected, found }
             if expected == "an array of length 3" =>
         {

@@ -3,6 +3,7 @@
 use thiserror::Error;
 
 use crate::bezier::{BezierPatch, Side};
+use crate::scalar::Vector;
 
 /// A warning. All are judged on the control points and on samples: not proved.
 #[derive(Debug, Clone, PartialEq, Error)]
@@ -58,32 +59,63 @@ pub(super) fn is_collapsed(surface: &BezierPatch, side: Side, gap: f64) -> bool 
 }
 
 /// Whether S_u x S_v vanishes at all samples, against the size of the piece;
-/// and if not, the first place on the unit square where it points against its
-/// neighbour's.
+/// and if not, the first place on the unit square where the normal jumps to the
+/// other side: where a turn of more than 120 degrees between two neighbouring
+/// samples stays one, however closely it is looked at.
 pub(super) fn normals(surface: &BezierPatch, size: f64) -> (bool, Option<[f64; 2]>) {
     let mut flat = true;
     let mut fold = None;
-    let mut rows: [Option<crate::scalar::Vector>; SAMPLES as usize] = Default::default();
+    let mut row: [Option<Vector>; SAMPLES as usize] = Default::default();
     for i in 0..SAMPLES {
         let mut before = None;
-        for (j, above) in (0..SAMPLES).zip(rows.iter_mut()) {
-            let middle = |k: u8| (f64::from(k) + 0.5) / f64::from(SAMPLES);
+        for (j, above) in (0..SAMPLES).zip(row.iter_mut()) {
             let (u, v) = (middle(i), middle(j));
             let jet = surface.jet(u, v);
-            let cross = jet.cross();
-            flat &= cross.norm() <= 1e-12 * size * size;
+            flat &= jet.cross().norm() <= 1e-12 * size * size;
             let here = jet.normal();
-            if let Some(normal) = here {
-                let against = |other: &Option<crate::scalar::Vector>| {
-                    other.is_some_and(|other| other.dot(&normal) < -0.5)
-                };
-                if fold.is_none() && (against(&before) || against(above)) {
-                    fold = Some([u, v]);
-                }
+            if let Some(normal) = here.filter(|_| fold.is_none()) {
+                let step = 1.0 / f64::from(SAMPLES);
+                let neighbours = [(before, [u, v - step]), (*above, [u - step, v])];
+                fold = neighbours.into_iter().find_map(|(other, place)| {
+                    let other = other.filter(|other| turns_over(other, &normal))?;
+                    narrowed(surface, (place, other), ([u, v], normal))
+                });
             }
             before = here;
             *above = here;
         }
     }
     (flat, fold)
+}
+
+/// Parameter of sample `k`.
+fn middle(k: u8) -> f64 {
+    (f64::from(k) + 0.5) / f64::from(SAMPLES)
+}
+
+fn turns_over(a: &Vector, b: &Vector) -> bool {
+    a.dot(b) < -0.5
+}
+
+/// Halves the way between two places until the turn is spread out (`None`: a
+/// tight bend) or is still there on a millionth of the way (a fold).
+fn narrowed(
+    surface: &BezierPatch,
+    mut a: ([f64; 2], Vector),
+    mut b: ([f64; 2], Vector),
+) -> Option<[f64; 2]> {
+    for _ in 0..20 {
+        let place = [(a.0[0] + b.0[0]) / 2.0, (a.0[1] + b.0[1]) / 2.0];
+        let Some(normal) = surface.jet(place[0], place[1]).normal() else {
+            return Some(place); // The fold itself: S_u and S_v are parallel.
+        };
+        if turns_over(&a.1, &normal) {
+            b = (place, normal);
+        } else if turns_over(&normal, &b.1) {
+            a = (place, normal);
+        } else {
+            return None;
+        }
+    }
+    Some(b.0)
 }

@@ -218,11 +218,10 @@ fn control_points(
             .filter_map(|(k, &index)| context.indexed(index, at("indexed", k)))
             .collect(),
         (first, _) => {
-            let found = if first.is_some() { "both" } else { "neither" };
             context.fault(
                 &[],
                 SurfaceFault::Choice {
-                    found,
+                    both: first.is_some(),
                     first: "points",
                     second: "indexed",
                 },

@@ -89,10 +89,10 @@ pub enum SurfaceFault {
     #[error("weight is {0}; weights must be positive, from 1e-9 to 1e9")]
     Weight(f64),
     /// Neither or both of two fields that exclude each other.
-    #[error("{found} `{first}` and `{second}`; write exactly one of the two")]
+    #[error("{} are given of `{first}` and `{second}`; write exactly one of the two", if *both { "both" } else { "none" })]
     Choice {
-        /// `neither of` or `both`.
-        found: &'static str,
+        /// Whether both are given, or none.
+        both: bool,
         /// The one field.
         first: &'static str,
         /// The other.

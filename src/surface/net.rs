@@ -181,7 +181,7 @@ fn shape(
             context.fault(
                 &[],
                 SurfaceFault::Choice {
-                    found: if first.is_some() { "both" } else { "neither" },
+                    both: first.is_some(),
                     first: "net",
                     second: "indexed",
                 },
