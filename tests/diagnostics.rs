@@ -1,4 +1,9 @@
 //! What the reader is told of a faulty file: the rule, the place, the hint.
+#![allow(
+    clippy::unwrap_used,
+    clippy::float_cmp,
+    reason = "a panic is how a test fails, and exact values are meant"
+)]
 
 use chordwise::patch_set::{Faults, Finding, PatchSet, SetFile, Warning};
 

@@ -1,4 +1,9 @@
 //! No text makes the reader panic.
+#![allow(
+    clippy::unwrap_used,
+    clippy::float_cmp,
+    reason = "a panic is how a test fails, and exact values are meant"
+)]
 
 use chordwise::patch_set::PatchSet;
 use proptest::prelude::*;

@@ -1,4 +1,9 @@
 //! What a file means: units, tolerances, names, panels, copies, demands.
+#![allow(
+    clippy::unwrap_used,
+    clippy::float_cmp,
+    reason = "a panic is how a test fails, and exact values are meant"
+)]
 
 use chordwise::bezier::Side;
 use chordwise::patch_set::{Demand, PatchSet, Reading, SeamEnd};

@@ -1,5 +1,10 @@
 //! Every shipped set reads without faults, and so does every example of the
 //! format's description.
+#![allow(
+    clippy::unwrap_used,
+    clippy::float_cmp,
+    reason = "a panic is how a test fails, and exact values are meant"
+)]
 
 use chordwise::patch_set::{Finding, PatchSet, Reading, Warning};
 

@@ -1,5 +1,10 @@
 //! B-spline surfaces against SciPy's evaluation. The values and the script that
 //! made them are in `tests/judges/`.
+#![allow(
+    clippy::unwrap_used,
+    clippy::float_cmp,
+    reason = "a panic is how a test fails, and exact values are meant"
+)]
 
 use chordwise::scalar::Point;
 use chordwise::surface::{BSplineNet, PieceGrid, Surface};

@@ -1,5 +1,10 @@
 //! Every kind of surface is exact: its points lie where the analytic surface
 //! has them, to 1e-12 of its size, at any axis and range.
+#![allow(
+    clippy::unwrap_used,
+    clippy::float_cmp,
+    reason = "a panic is how a test fails, and exact values are meant"
+)]
 
 use std::f64::consts::{FRAC_1_SQRT_2, PI};
 

@@ -11,14 +11,17 @@ use super::source;
 use super::style::OutputStyle;
 use crate::patch_set::{Diagnostic, Faults, PatchSet, Reading};
 
-/// Says what is wrong with a patch set
-#[derive(Debug, Args)]
-#[command(after_help = "Examples:
-  chordwise check front.ron
-  chordwise check front.ron --format json
+const EXAMPLES: &str = "\
+Examples:
+  chordwise check front.ron                  faults and warnings, with their lines
+  chordwise check front.ron --format json    the same for a program
   some-generator | chordwise check -
 
-Exit code 0: valid, warnings included. 2: not valid, or not readable.")]
+Exit code 0: valid, warnings included. 2: not valid, or not readable.";
+
+/// Say what is wrong with a patch set
+#[derive(Debug, Args)]
+#[command(before_help = EXAMPLES)]
 pub(super) struct CheckArguments {
     /// The patch set; `-` reads standard input
     #[arg(value_name = "SET.ron")]
