@@ -20,18 +20,32 @@ fn sorted(triangles: impl Iterator<Item = [u32; 3]>) -> Vec<[u32; 3]> {
     all
 }
 
+fn proper([a, b, c]: &[u32; 3]) -> bool {
+    a != b && b != c && c != a
+}
+
 /// The strips stand for the same oriented triangles, patch by patch, and count
 /// as they should.
 fn check(mesh: &Mesh) -> Strips {
     let strips = Strips::of(mesh);
     assert_eq!(
         sorted(strips.triangles()),
-        sorted(mesh.triangles.iter().copied())
+        sorted(mesh.triangles.iter().copied().filter(proper))
     );
-    // Standard: a strip of N triangles takes N + 2 indices.
-    let (t, s) = (mesh.triangles.len(), strips.len());
+    // Standard: a strip of N triangles takes N + 2 indices; here those that an
+    // index is repeated for come on top.
+    let (t, s) = (strips.triangles().count(), strips.len());
     assert_eq!(strips.iter().count(), s);
-    assert_eq!(strips.indices().len(), t + 2 * s + s.saturating_sub(1));
+    let skipped = strips
+        .iter()
+        .flat_map(|strip| strip.windows(3))
+        .filter(|c| c[0] == c[1] || c[1] == c[2] || c[2] == c[0])
+        .count();
+    assert_eq!(
+        strips.indices().len(),
+        t + 2 * s + s.saturating_sub(1) + skipped
+    );
+    assert!(strips.indices().len() <= 4 * t, "worse than one by one");
     for (number, part) in mesh.parts.iter().enumerate() {
         let own = strips.part(number).flat_map(|strip| {
             strip.windows(3).enumerate().map(|(i, c)| match i % 2 {
@@ -39,7 +53,9 @@ fn check(mesh: &Mesh) -> Strips {
                 _ => [c[1], c[0], c[2]],
             })
         });
+        let own = own.filter(proper);
         let meant = mesh.triangles[part.triangles.clone()].iter().copied();
+        let meant = meant.filter(proper);
         assert_eq!(sorted(own), sorted(meant), "{}", part.name);
     }
     strips
@@ -59,16 +75,17 @@ fn one_triangle_and_two() {
 }
 
 /// A row of cells is one strip: n rows of m cells take n (2 m + 3) - 1 indices
-/// with restarts, computed by hand.
+/// with restarts, computed by hand. What is found knows no rows; it may take
+/// two repeated indices a row more.
 #[test]
 fn grids_go_by_rows() {
-    for (n, m) in [(1, 1), (1, 7), (5, 8), (20, 30)] {
+    for (n, m) in [(1, 1), (1, 7), (5, 8), (8, 5), (20, 30), (100, 40)] {
         let strips = check(&shapes::grid(n, m));
-        let by_rows = n as usize * (2 * m as usize + 3) - 1;
+        let by_rows = |n: u32, m: u32| n as usize * (2 * m as usize + 5) - 1;
+        let found = strips.indices().len();
         assert!(
-            strips.indices().len() <= by_rows,
-            "{n} x {m}: {}",
-            strips.indices().len()
+            found <= by_rows(n, m).max(by_rows(m, n)),
+            "{n} x {m}: {found}"
         );
     }
 }
@@ -83,11 +100,12 @@ fn sphere_sizes() {
     let storage = Storage::of(&mesh, &strips);
     assert_eq!([mesh.points.len(), mesh.triangles.len()], [614, 1224]);
     assert_eq!([storage.triangles, storage.indexed], [44_064, 22_056]);
-    let s = strips.len() as u64;
-    assert_eq!(storage.strips, 14_712 + (s - 1) * (2 * 12 + 4));
-    assert!(storage.strips < storage.indexed);
+    // Further strips, restarts and repeated indices come on top of the ideal.
+    let (s, indices) = (strips.len() as u64, strips.indices().len() as u64);
+    assert_eq!(storage.strips, 12 * (indices - (s - 1)) + 4 * (s - 1));
+    assert!(14_712 < storage.strips && storage.strips < storage.indexed);
     assert!(
-        strips.indices_per_triangle() < 1.25,
+        strips.indices_per_triangle() < 1.15,
         "{} indices a triangle",
         strips.indices_per_triangle()
     );

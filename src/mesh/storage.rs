@@ -3,13 +3,14 @@
 use super::{Mesh, Strips};
 
 /// Bytes of geometry alone, with a point of three 4-byte floats and indices
-/// and markers of 4 bytes; V points, T triangles, S strips:
+/// and restarts of 4 bytes; V points, T triangles, S strips of I indices in
+/// all without restarts (T + 2 S, and the repeated ones):
 ///
 /// ```text
-/// triangles       36 T                                   three points each
-/// indexed         12 V + 12 T                            points, three indices each
-/// strips          12 (T + 2 S) + 4 (S - 1)               points in strip order, a marker between two strips
-/// indexed_strips  12 V + 4 (T + 2 S + S - 1)             points, strips of indices with restarts
+/// triangles       36 T                        three points each
+/// indexed         12 V + 12 T                 points, three indices each
+/// strips          12 I + 4 (S - 1)            points in strip order, a restart between two strips
+/// indexed_strips  12 V + 4 (I + S - 1)        points, strips of indices with restarts
 /// ```
 ///
 /// Normals, names and what a format adds are left out, so that the figures
@@ -33,23 +34,23 @@ impl Storage {
     /// The sizes of a mesh with these strips.
     #[must_use]
     pub fn of(mesh: &Mesh, strips: &Strips) -> Self {
+        let restarts = strips.len().saturating_sub(1);
         Self::of_counts(
             mesh.points.len() as u64,
             mesh.triangles.len() as u64,
-            strips.len() as u64,
+            (strips.indices().len() - restarts) as u64,
+            restarts as u64,
         )
     }
 
-    /// The sizes from the numbers of points, triangles and strips.
+    /// The sizes from counts: `indices` of strips without their restarts.
     #[must_use]
-    pub fn of_counts(points: u64, triangles: u64, strips: u64) -> Self {
-        let consumed = triangles + 2 * strips;
-        let markers = strips.saturating_sub(1);
+    pub fn of_counts(points: u64, triangles: u64, indices: u64, restarts: u64) -> Self {
         Self {
             triangles: 3 * triangles * Self::POINT,
             indexed: points * Self::POINT + 3 * triangles * Self::INDEX,
-            strips: consumed * Self::POINT + markers * Self::INDEX,
-            indexed_strips: points * Self::POINT + (consumed + markers) * Self::INDEX,
+            strips: indices * Self::POINT + restarts * Self::INDEX,
+            indexed_strips: points * Self::POINT + (indices + restarts) * Self::INDEX,
         }
     }
 }
@@ -64,7 +65,7 @@ mod tests {
     #[test]
     fn longitude_latitude_sphere() {
         let (k, r) = (36, 17);
-        let storage = Storage::of_counts(k * r + 2, 2 * k * r, 1);
+        let storage = Storage::of_counts(k * r + 2, 2 * k * r, 2 * k * r + 2, 0);
         assert_eq!(
             [storage.triangles, storage.indexed, storage.strips],
             [44_064, 22_056, 14_712]

@@ -3,20 +3,22 @@
 //! A strip v0 v1 v2 ... stands for the triangles (v0 v1 v2), (v2 v1 v3),
 //! (v2 v3 v4), ...: every index after the second adds a triangle, and every
 //! second triangle is turned over so that all face the same way. A strip of N
-//! triangles takes N + 2 indices.
+//! triangles takes N + 2 indices, and one more for each index that is repeated
+//! to go on round a corner; the triangle with a repeated index that comes of it
+//! has no area and is skipped by whoever reads the strip.
 //!
 //! To choose the fewest strips is NP-complete (Evans, Skiena, Varshney 1996),
 //! so the dual graph is walked greedily: from the first triangle not yet used,
 //! each of its three edges is tried as the first edge of a strip, which is
-//! followed both ways until it meets a border or a used triangle; the longest
-//! of the three is kept. Each try costs at most as much as the strip that is
-//! kept, so the time is linear in the triangles. A strip never leaves its
-//! patch. The result is a function of the triangles alone.
+//! followed both ways until it meets borders and used triangles only; the one
+//! of the fewest indices a triangle is kept. A strip never leaves its patch.
+//! The result is a function of the triangles alone, and the time close to
+//! linear in them.
 
 use std::ops::Range;
 
 use super::Mesh;
-use super::edges::{EdgeTable, NO_SIDE, next_side, origin, previous_side};
+use super::edges::{EdgeTable, NO_SIDE, is_degenerate, next_side, origin, previous_side};
 
 /// Ends a strip among the indices. No vertex has this index.
 pub const RESTART: u32 = u32::MAX;
@@ -32,14 +34,14 @@ pub struct Strips {
 
 impl Strips {
     /// Strips that decode to exactly the triangles of the mesh, each facing
-    /// as it did.
+    /// as it did. Triangles with a repeated vertex are left out.
     #[must_use]
     pub fn of(mesh: &Mesh) -> Self {
         let mut found = Self {
             indices: Vec::with_capacity(mesh.triangles.len() + mesh.triangles.len() / 4),
             parts: Vec::with_capacity(mesh.parts.len()),
             strips: 0,
-            triangles: mesh.triangles.len(),
+            triangles: 0,
         };
         let mut numbering = Numbering {
             local: vec![u32::MAX; mesh.vertices.len()],
@@ -59,8 +61,13 @@ impl Strips {
                 if found.indices.len() > start {
                     found.indices.push(RESTART);
                 }
-                walk.strip(seed, |v| found.indices.push(numbering.global[v as usize]));
+                found.triangles += walk.strip(seed, &mut found.indices);
                 found.strips += 1;
+            }
+            for index in &mut found.indices[start..] {
+                if *index != RESTART {
+                    *index = numbering.global[*index as usize];
+                }
             }
             found.parts.push(start..found.indices.len());
         }
@@ -118,13 +125,17 @@ impl Strips {
     /// The triangles the strips stand for, strip by strip.
     pub fn triangles(&self) -> impl Iterator<Item = [u32; 3]> {
         self.iter().flat_map(|strip| {
-            strip.windows(3).enumerate().map(|(i, corners)| {
-                if i % 2 == 0 {
-                    [corners[0], corners[1], corners[2]]
-                } else {
-                    [corners[1], corners[0], corners[2]]
-                }
-            })
+            strip
+                .windows(3)
+                .enumerate()
+                .map(|(i, corners)| {
+                    if i % 2 == 0 {
+                        [corners[0], corners[1], corners[2]]
+                    } else {
+                        [corners[1], corners[0], corners[2]]
+                    }
+                })
+                .filter(|corners| !is_degenerate(*corners))
         })
     }
 }
@@ -185,9 +196,42 @@ struct Walk<'a> {
     /// The last try that went through each triangle.
     tried: Vec<u32>,
     tries: u32,
-    /// Sides by which the kept strip was entered, before and after its seed.
+    best: Trial,
+    current: Trial,
+}
+
+/// A strip that was tried.
+#[derive(Default)]
+struct Trial {
+    triangles: Vec<u32>,
+    /// Its indices from the seed's first edge backwards.
     before: Vec<u32>,
+    /// Its indices from the seed's first edge forwards.
     after: Vec<u32>,
+}
+
+impl Trial {
+    /// Whether the strip, read with its seed as an even triangle, begins at an
+    /// odd one and has to be turned over.
+    fn is_odd(&self) -> bool {
+        self.before.len() % 2 == 1
+    }
+
+    /// Whether reading it backwards turns it over.
+    fn can_reverse(&self) -> bool {
+        (self.before.len() + self.after.len()) % 2 == 1
+    }
+
+    /// Its indices and the restart that ends it.
+    fn cost(&self) -> usize {
+        let repeated = usize::from(self.is_odd() && !self.can_reverse());
+        self.before.len() + self.after.len() + repeated + 1
+    }
+
+    /// Whether it takes fewer indices a triangle.
+    fn is_better(&self, than: &Self) -> bool {
+        self.cost() * than.triangles.len() < than.cost() * self.triangles.len()
+    }
 }
 
 impl<'a> Walk<'a> {
@@ -195,82 +239,96 @@ impl<'a> Walk<'a> {
         Self {
             triangles,
             twins: EdgeTable::new(triangles, vertices).twins(triangles),
-            used: vec![false; triangles.len()],
+            used: triangles.iter().map(|t| is_degenerate(*t)).collect(),
             tried: vec![0; triangles.len()],
             tries: 0,
-            before: Vec::new(),
-            after: Vec::new(),
+            best: Trial::default(),
+            current: Trial::default(),
         }
     }
 
-    /// Gives the vertices of the longest strip through an unused triangle.
-    fn strip(&mut self, seed: usize, mut emit: impl FnMut(u32)) {
+    /// Appends the indices of the best strip through an unused triangle, and
+    /// returns the number of its triangles.
+    fn strip(&mut self, seed: usize, indices: &mut Vec<u32>) -> usize {
         let seed = u32::try_from(3 * seed).expect("the edge table holds 32-bit sides only");
-        let mut best = (seed, self.attempt(seed));
-        for first in [seed + 1, seed + 2] {
-            let length = self.attempt(first);
-            if length > best.1 {
-                best = (first, length);
+        for first in seed..seed + 3 {
+            self.attempt(first);
+            if first == seed || self.current.is_better(&self.best) {
+                std::mem::swap(&mut self.current, &mut self.best);
             }
         }
-        let first = best.0;
-        if first != seed + 2 {
-            self.attempt(first);
+        let best = &self.best;
+        for &triangle in &best.triangles {
+            self.used[triangle as usize] = true;
         }
-        self.used[(first / 3) as usize] = true;
-        for &side in self.before.iter().chain(&self.after) {
-            self.used[(side / 3) as usize] = true;
+        if best.is_odd() && best.can_reverse() {
+            indices.extend(best.after.iter().rev().chain(&best.before));
+        } else {
+            indices.extend(best.before.last().filter(|_| best.is_odd()));
+            indices.extend(best.before.iter().rev().chain(&best.after));
         }
-        let opposite = |side| origin(self.triangles, previous_side(side));
-        self.before.iter().rev().for_each(|&s| emit(opposite(s)));
-        emit(origin(self.triangles, first));
-        emit(origin(self.triangles, next_side(first)));
-        emit(opposite(first));
-        self.after.iter().for_each(|&s| emit(opposite(s)));
+        best.triangles.len()
     }
 
-    /// Follows the strip whose seed triangle is read from side `first` on, and
-    /// returns its length without the seed.
-    fn attempt(&mut self, first: u32) -> usize {
+    /// Follows the strip whose seed triangle is read from side `first` on.
+    fn attempt(&mut self, first: u32) {
         self.tries += 1;
         self.tried[(first / 3) as usize] = self.tries;
-        let (mut before, mut after) = (
-            std::mem::take(&mut self.before),
-            std::mem::take(&mut self.after),
+        let [a, b, c] = [first, next_side(first), previous_side(first)]
+            .map(|side| origin(self.triangles, side));
+        let mut trial = std::mem::take(&mut self.current);
+        trial.triangles.clear();
+        trial.triangles.push(first / 3);
+        trial.before.clear();
+        trial.after.clear();
+        trial.after.extend([a, b, c]);
+        self.follow(
+            next_side(first),
+            [b, c],
+            &mut trial.after,
+            &mut trial.triangles,
         );
-        // The seed is an even triangle: it is left by the side after the one it
-        // was entered by, an odd one by the side before it; the other way round
-        // when going backwards.
-        self.follow(next_side(first), true, &mut after);
-        self.follow(first, false, &mut before);
-        // The strip begins with an even triangle, or all would be turned over.
-        if before.len() % 2 == 1 {
-            before.pop();
-        }
-        (self.before, self.after) = (before, after);
-        self.before.len() + self.after.len()
+        self.follow(first, [b, a], &mut trial.before, &mut trial.triangles);
+        self.current = trial;
     }
 
-    fn follow(&mut self, mut leave: u32, forward: bool, entered: &mut Vec<u32>) {
-        entered.clear();
-        let mut turn = !forward;
-        loop {
-            let side = self.twins[leave as usize];
-            if side == NO_SIDE {
-                return;
+    /// Goes on over the side `leave`, whose ends are the last two indices.
+    fn follow(
+        &mut self,
+        mut leave: u32,
+        [mut p, mut q]: [u32; 2],
+        indices: &mut Vec<u32>,
+        triangles: &mut Vec<u32>,
+    ) {
+        while let Some(side) = self.free(leave) {
+            self.tried[(side / 3) as usize] = self.tries;
+            triangles.push(side / 3);
+            let r = origin(self.triangles, previous_side(side));
+            // A strip goes on over the edge q r; to go on over p r, p has to be
+            // repeated. That costs an index, a new strip costs three.
+            let (mut over_q, mut over_p) = (next_side(side), previous_side(side));
+            if origin(self.triangles, over_q) != q {
+                std::mem::swap(&mut over_q, &mut over_p);
             }
-            let triangle = (side / 3) as usize;
-            if self.used[triangle] || self.tried[triangle] == self.tries {
-                return;
-            }
-            self.tried[triangle] = self.tries;
-            entered.push(side);
-            leave = if turn {
-                next_side(side)
+            if self.free(over_q).is_none() && self.free(over_p).is_some() {
+                indices.extend([p, r]);
+                leave = over_p;
             } else {
-                previous_side(side)
-            };
-            turn = !turn;
+                indices.push(r);
+                leave = over_q;
+                p = q;
+            }
+            q = r;
         }
+    }
+
+    /// The side across an edge, if its triangle can still be used.
+    fn free(&self, leave: u32) -> Option<u32> {
+        let side = self.twins[leave as usize];
+        let is_free = side != NO_SIDE && {
+            let triangle = (side / 3) as usize;
+            !self.used[triangle] && self.tried[triangle] != self.tries
+        };
+        is_free.then_some(side)
     }
 }
