@@ -144,7 +144,7 @@ pub fn gap(first: Stretch<'_>, second: Stretch<'_>, floor: f64, limit: f64) -> G
         }
     }
     let point = a.eval(best.1);
-    let attained = distance_at_least(&b, &point, best.0, 1e-3).min(settled);
+    let attained = distance_at_least(&b, &point, best.0, 1e-9).min(settled);
     Gap {
         bracket: Bracket {
             proved: settled,

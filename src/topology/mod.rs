@@ -10,6 +10,8 @@ mod check;
 mod edge_curve;
 mod error;
 mod gap;
+#[cfg(test)]
+mod gap_tests;
 mod ids;
 mod loops;
 mod model;
