@@ -12,6 +12,8 @@ mod interrupt;
 mod man;
 mod outcome;
 mod output;
+mod panels;
+mod seams;
 mod source;
 mod style;
 
@@ -37,6 +39,7 @@ enum Command {
     Completions(completions::CompletionsArguments),
     Demo(demo::DemoArguments),
     Man(man::ManArguments),
+    Seams(seams::SeamsArguments),
 }
 
 /// Runs the program on the given arguments, the program's name first.
@@ -47,6 +50,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
             Command::Completions(arguments) => arguments.run(),
             Command::Demo(arguments) => arguments.run(),
             Command::Man(arguments) => arguments.run(),
+            Command::Seams(arguments) => arguments.run(),
         }
         .into(),
         Err(error) => {

@@ -1,0 +1,85 @@
+//! `chordwise seams`: how the patches of a set meet.
+
+use std::path::PathBuf;
+
+use clap::Args;
+
+use super::Outcome;
+use super::output::Output;
+use super::panels::panels;
+use super::source;
+use super::style::OutputStyle;
+use crate::continuity::Survey;
+use crate::report::SeamReport;
+use crate::topology::Topology;
+
+const EXAMPLES: &str = "\
+Examples:
+  chordwise seams front.ron
+  chordwise seams front.ron --panel bonnet --panel wing
+  chordwise seams front.ron --format json -o seams.json
+
+Exit code 0: every seam is as demanded. 1: there are findings. 2: the set
+cannot be used.";
+
+/// List every seam with its gap, angle, demand and verdict, worst first
+#[derive(Debug, Args)]
+#[command(before_help = EXAMPLES)]
+pub(super) struct SeamsArguments {
+    /// The patch set; `-` is standard input
+    #[arg(value_name = "SET.ron")]
+    set: PathBuf,
+
+    /// How the report is printed
+    #[arg(long, value_enum, default_value_t)]
+    format: OutputStyle,
+
+    /// Only seams and loops in which this panel takes part; may be repeated
+    #[arg(long = "panel", value_name = "NAME")]
+    panels: Vec<String>,
+
+    /// The file to write; `-` is standard output
+    #[arg(short, long, value_name = "FILE", default_value = "-")]
+    output: PathBuf,
+}
+
+impl SeamsArguments {
+    /// Reads the set, examines its seams and writes the report.
+    pub(super) fn run(&self) -> Outcome {
+        let output = match Output::open(&self.output, &[&self.set]) {
+            Ok(output) => output,
+            Err(error) => return Outcome::refuse(error),
+        };
+        let reading = match source::read(&self.set) {
+            Ok(reading) => reading,
+            Err(faults) => {
+                source::show_faults(&faults);
+                return Outcome::Refused;
+            }
+        };
+        source::show_warnings(&reading);
+        let set = &reading.set;
+        let panels = match panels(set, &self.panels) {
+            Ok(panels) => panels,
+            Err(error) => return Outcome::refuse(error),
+        };
+        let topology = match Topology::build(set) {
+            Ok(topology) => topology,
+            Err(error) => return Outcome::refuse(error),
+        };
+        let survey = Survey::of(set, &topology);
+        let report = SeamReport::new(set, &survey, panels.as_deref());
+        let text = match self.format {
+            OutputStyle::Text => report.text(),
+            OutputStyle::Json => match serde_json::to_string_pretty(&report) {
+                Ok(text) => text + "\n",
+                Err(error) => return Outcome::refuse(error),
+            },
+        };
+        match output.write(|out| Ok(out.write_all(text.as_bytes())?)) {
+            Ok(_) if report.has_findings() => Outcome::Findings,
+            Ok(_) => Outcome::Done,
+            Err(error) => Outcome::refuse(error),
+        }
+    }
+}
