@@ -4,6 +4,7 @@ mod bonnet;
 mod bumper;
 mod door;
 mod fault;
+mod grille;
 mod lamp;
 mod pillar;
 mod side;
@@ -44,6 +45,7 @@ pub(super) fn set() -> SetText {
             sill::panel(),
             lamp::glass(&upper),
             lamp::bowl(),
+            grille::panel(),
         ],
         copies: vec![
             CopyText {
@@ -53,6 +55,10 @@ pub(super) fn set() -> SetText {
             CopyText {
                 of: "lamp bowl",
                 name: "lamp bowl right",
+            },
+            CopyText {
+                of: "grille",
+                name: "grille right",
             },
         ],
         seams: seams(),
