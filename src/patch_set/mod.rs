@@ -5,6 +5,9 @@
 //! takes the same structures from code. All three pass through the same
 //! checks, and there is no other way to a [`PatchSet`].
 
+mod build;
+mod collector;
+mod demand;
 mod diagnostic;
 mod fault;
 mod file;

@@ -1,8 +1,10 @@
 //! Mirroring and rigid placement.
 
+use super::collector::Collector;
+use super::fault::SetFault;
 use super::file::{Axis, PlaceEntry};
 use crate::scalar::{Point, Vector};
-use crate::surface::cos_sin_deg;
+use crate::surface::{Step, cos_sin_deg};
 
 /// A mirroring of one coordinate, then a turn about an axis, then a shift.
 #[derive(Debug, Clone, Copy)]
@@ -67,4 +69,39 @@ impl Motion {
         }
         point + self.shift
     }
+}
+
+/// Checks the numbers of a rigid motion; `path` leads from the file to a part of
+/// the entry that has it.
+pub(super) fn check_place(
+    entry: Option<&PlaceEntry>,
+    faults: &mut Collector,
+    place: &impl Fn() -> String,
+    path: &impl Fn(&[Step]) -> Vec<Step>,
+) -> bool {
+    let Some(entry) = entry else {
+        return true;
+    };
+    let mut good = true;
+    let axis = entry.axis.unwrap_or([0.0, 0.0, 1.0]);
+    for (field, vector) in [
+        ("axis", axis),
+        ("about", entry.about),
+        ("shift", entry.shift),
+    ] {
+        for (k, (value, name)) in vector.into_iter().zip(["x", "y", "z"]).enumerate() {
+            good &= faults.number(value, name, || {
+                let steps = [Step::Field("place"), Step::Field(field), Step::Item(k)];
+                (format!("{}, place.{field}", place()), path(&steps))
+            });
+        }
+    }
+    let angle = [Step::Field("place"), Step::Field("angle_deg")];
+    good &= faults.number(entry.angle_deg, "angle_deg", || (place(), path(&angle)));
+    if good && axis.iter().all(|c| c.abs() < f64::MIN_POSITIVE) {
+        let steps = [Step::Field("place"), Step::Field("axis")];
+        faults.fault(place(), path(&steps), SetFault::ZeroAxis);
+        return false;
+    }
+    good
 }

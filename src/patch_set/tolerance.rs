@@ -1,9 +1,9 @@
 //! Tolerances: what the file says, and the defaults.
 
 use super::Tolerances;
+use super::collector::Collector;
 use super::fault::SetFault;
 use super::file::ToleranceEntry;
-use super::resolve::Collector;
 use crate::scalar::{LengthUnit, Tolerance};
 use crate::surface::{MAX_COORDINATE, Step};
 

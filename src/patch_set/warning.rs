@@ -4,6 +4,7 @@ use thiserror::Error;
 
 use crate::bezier::{BezierPatch, Side};
 use crate::scalar::Vector;
+use crate::surface::PieceGrid;
 
 /// A warning. All are judged on the control points and on samples: not proved.
 #[derive(Debug, Clone, PartialEq, Error)]
@@ -37,8 +38,54 @@ pub enum Warning {
 /// Samples in each direction of a piece.
 const SAMPLES: u8 = 5;
 
+/// The warnings of one patch, from its pieces.
+pub(super) fn judge(grid: &PieceGrid, gap: f64) -> Vec<Warning> {
+    let mut found = Vec::new();
+    let columns = grid.breaks_v.len() - 1;
+    let rows = grid.breaks_u.len() - 1;
+    let size = grid.pieces.iter().map(diagonal).fold(0.0, f64::max);
+    if size < gap {
+        return vec![Warning::Tiny { size, gap }];
+    }
+    let judged: Vec<_> = grid
+        .pieces
+        .iter()
+        .map(|piece| normals(piece, diagonal(piece)))
+        .collect();
+    if judged.iter().all(|(flat, _)| *flat) {
+        return vec![Warning::ZeroArea];
+    }
+    for side in Side::ALL {
+        let on_side = |at: usize| match side {
+            Side::U0 => at / columns == 0,
+            Side::U1 => at / columns == rows - 1,
+            Side::V0 => at.is_multiple_of(columns),
+            Side::V1 => at % columns == columns - 1,
+        };
+        let mut pieces = grid
+            .pieces
+            .iter()
+            .enumerate()
+            .filter(|(at, _)| on_side(*at));
+        if pieces.all(|(_, piece)| is_collapsed(piece, side, gap)) {
+            found.push(Warning::CollapsedEdge(side));
+        }
+    }
+    let fold = judged.iter().enumerate().find_map(|(at, (_, fold))| {
+        let [u, v] = (*fold)?;
+        let (i, j) = (at / columns, at % columns);
+        let along = |breaks: &[f64], k: usize, t: f64| breaks[k] * (1.0 - t) + breaks[k + 1] * t;
+        Some(Warning::NormalReverses {
+            u: along(&grid.breaks_u, i, u),
+            v: along(&grid.breaks_v, j, v),
+        })
+    });
+    found.extend(fold);
+    found
+}
+
 /// The diagonal of the box of the net.
-pub(super) fn size(surface: &BezierPatch) -> f64 {
+fn diagonal(surface: &BezierPatch) -> f64 {
     let mut points = surface.control_points();
     let Some(first) = points.next() else {
         return 0.0;
@@ -52,7 +99,7 @@ pub(super) fn size(surface: &BezierPatch) -> f64 {
 }
 
 /// Whether all control points of an edge keep within `gap` of its start.
-pub(super) fn is_collapsed(surface: &BezierPatch, side: Side, gap: f64) -> bool {
+fn is_collapsed(surface: &BezierPatch, side: Side, gap: f64) -> bool {
     let edge = surface.edge(side);
     let start = edge.control_point(0);
     edge.control_points().all(|p| (p - start).norm() <= gap)
@@ -62,7 +109,7 @@ pub(super) fn is_collapsed(surface: &BezierPatch, side: Side, gap: f64) -> bool 
 /// and if not, the first place on the unit square where the normal jumps to the
 /// other side: where a turn of more than 120 degrees between two neighbouring
 /// samples stays one, however closely it is looked at.
-pub(super) fn normals(surface: &BezierPatch, size: f64) -> (bool, Option<[f64; 2]>) {
+fn normals(surface: &BezierPatch, size: f64) -> (bool, Option<[f64; 2]>) {
     let mut flat = true;
     let mut fold = None;
     let mut row: [Option<Vector>; SAMPLES as usize] = Default::default();

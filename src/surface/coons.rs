@@ -17,7 +17,8 @@
 use serde::{Deserialize, Serialize};
 
 use super::context::Context;
-use super::curve::{Curve, CurvePieces, common_breaks};
+use super::curve::Curve;
+use super::curve_pieces::{CurvePieces, common_breaks};
 use super::fault::{MAX_WEIGHT, Step, SurfaceFault};
 use super::grid::PieceGrid;
 use super::homogeneous::{Lifted, lerp, project, real};

@@ -10,6 +10,7 @@ mod angle;
 mod context;
 mod coons;
 mod curve;
+mod curve_pieces;
 mod fault;
 mod frame;
 mod grid;

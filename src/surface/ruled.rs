@@ -3,7 +3,8 @@
 use serde::{Deserialize, Serialize};
 
 use super::context::Context;
-use super::curve::{Curve, common_breaks};
+use super::curve::Curve;
+use super::curve_pieces::common_breaks;
 use super::grid::PieceGrid;
 use super::homogeneous::project;
 use super::kind::piece;
