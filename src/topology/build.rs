@@ -2,15 +2,19 @@
 
 use rayon::prelude::*;
 
+use super::EdgeId;
 use super::assembly::{Assembly, assemble};
 use super::edge_curve::{Cuboid, EdgeCurve, edges_of};
 use super::error::TopologyError;
 use super::loops::loops;
-use super::model::Topology;
-use super::nodes::Marks;
+use super::model::{Contact, Topology};
+use super::nodes::{Marks, Unsettled};
 use super::pairing::{Reach, contacts};
-use super::place::demand_between;
+use super::place::{demand_between, place};
 use crate::patch_set::{Demand, PatchSet, PieceId};
+
+/// Rounds of giving up joints before a set is refused.
+const GIVE_UPS: usize = 64;
 
 /// A gap below this fraction of the set's size is as good as none.
 const FLOOR: f64 = 1e-9;
@@ -37,10 +41,10 @@ impl Topology {
             search: set.tolerances().search.get(),
             floor: (FLOOR * size).min(gap * 1e-3),
         };
-        let contacts = contacts(&curves, reach, |a, b| {
+        let mut contacts = contacts(&curves, reach, |a, b| {
             demand_between(set, a.id, b.id) != Some(Demand::Open)
         });
-        let marks = Marks::settle(set, &curves, &contacts, gap)?;
+        let marks = settle(set, &curves, &mut contacts, reach)?;
         let Assembly {
             edges,
             spans,
@@ -57,6 +61,50 @@ impl Topology {
             loops,
         })
     }
+}
+
+/// Settles the marks. Where an edge shorter than the gap tolerance would be
+/// closed up by its neighbours on both sides being joined across it, the
+/// loosest of the joints at that place is given up, and so on.
+fn settle(
+    set: &PatchSet,
+    curves: &[EdgeCurve],
+    contacts: &mut [Contact],
+    reach: Reach,
+) -> Result<Marks, TopologyError> {
+    let at = |edge: EdgeId| place(set, edge);
+    for _ in 0..GIVE_UPS {
+        let blame = match Marks::settle(curves, contacts, reach.gap) {
+            Ok(marks) => return Ok(marks),
+            Err(Unsettled::Collapse(blame)) => blame,
+            Err(Unsettled::Endless) => break,
+        };
+        for (edge, contact) in blame {
+            match contact {
+                Some(contact) if contacts[contact].gap.proved > reach.floor => {
+                    contacts[contact].joined = false;
+                }
+                _ => {
+                    let (patch, side, piece) = at(edge);
+                    return Err(TopologyError::ShortEdge {
+                        patch,
+                        edge: side,
+                        piece,
+                        length: curves[edge.index()].length,
+                        gap: reach.gap,
+                    });
+                }
+            }
+        }
+    }
+    let first = contacts.iter().find(|c| c.joined).map(|c| c.edges[0]);
+    let (patch, edge, piece) = at(first.unwrap_or(curves[0].id));
+    Err(TopologyError::Unsettled {
+        patch,
+        edge,
+        piece,
+        gap: reach.gap,
+    })
 }
 
 fn edge_curves(set: &PatchSet, size: f64) -> Vec<EdgeCurve> {

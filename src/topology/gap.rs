@@ -11,6 +11,9 @@
 //! which is again a rational Bezier curve with positive weights. The piece with
 //! the largest bound is halved until the bound meets what is attained.
 
+use std::cmp::Ordering;
+use std::collections::BinaryHeap;
+
 use super::nearest::{distance_at_least, nearest, nearest_from};
 use crate::bezier::BezierCurve;
 use crate::scalar::{Bracket, Vector};
@@ -106,15 +109,13 @@ pub fn gap(first: Stretch<'_>, second: Stretch<'_>, floor: f64, limit: f64) -> G
         b: b.clone(),
         upper,
     };
-    let mut pairs = vec![whole];
+    let mut pairs = BinaryHeap::from([whole]);
     let mut settled = 0.0_f64;
-    while let Some(worst) = worst(&pairs) {
-        let proved = pairs[worst].upper;
-        if proved <= (best.0 * RATIO).max(floor) || best.0 > limit || pairs.len() >= PIECES {
-            settled = proved;
+    while let Some(pair) = pairs.pop() {
+        settled = pair.upper;
+        if settled <= (best.0 * RATIO).max(floor) || best.0 > limit || pairs.len() >= PIECES {
             break;
         }
-        let pair = pairs.swap_remove(worst);
         let s = pair.s[0].midpoint(pair.s[1]);
         let guess = pair.t[0].midpoint(pair.t[1]);
         let point = a.eval(s);
@@ -154,9 +155,28 @@ pub fn gap(first: Stretch<'_>, second: Stretch<'_>, floor: f64, limit: f64) -> G
     }
 }
 
-fn worst(pairs: &[Pair]) -> Option<usize> {
-    (0..pairs.len()).max_by(|&i, &j| pairs[i].upper.total_cmp(&pairs[j].upper))
+/// Pairs are ordered by their bound, then along the curve, for the heap.
+impl Ord for Pair {
+    fn cmp(&self, other: &Self) -> Ordering {
+        self.upper
+            .total_cmp(&other.upper)
+            .then(other.s[0].total_cmp(&self.s[0]))
+    }
 }
+
+impl PartialOrd for Pair {
+    fn partial_cmp(&self, other: &Self) -> Option<Ordering> {
+        Some(self.cmp(other))
+    }
+}
+
+impl PartialEq for Pair {
+    fn eq(&self, other: &Self) -> bool {
+        self.cmp(other).is_eq()
+    }
+}
+
+impl Eq for Pair {}
 
 fn distance(a: &BezierCurve, b: &BezierCurve, x: f64, round: f64) -> f64 {
     let point = a.eval(x);

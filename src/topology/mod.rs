@@ -20,6 +20,8 @@ mod nodes;
 mod pairing;
 mod place;
 #[cfg(test)]
+mod property_tests;
+#[cfg(test)]
 pub(crate) mod test_sets;
 #[cfg(test)]
 mod tests;
@@ -31,5 +33,3 @@ pub use ids::{EdgeId, NodeId, SeamId, SpanId};
 pub use model::{Contact, Edge, Node, Seam, Span, Topology};
 pub use nearest::{Foot, distance_at_least, nearest, nearest_from};
 pub use place::{demand_between, patch_side};
-
-use place::place;

@@ -5,15 +5,24 @@
 //! nothing except along one edge, where two splits closer than the gap
 //! tolerance are one.
 
+use super::EdgeId;
 use super::edge_curve::EdgeCurve;
-use super::error::TopologyError;
 use super::model::Contact;
 use super::nearest::nearest_from;
 use crate::bezier::Side;
-use crate::patch_set::PatchSet;
 
 /// Rounds after which corners that fall on edges must have settled.
 const ROUNDS: usize = 64;
+
+/// Why marks could not be settled.
+#[derive(Debug)]
+pub(super) enum Unsettled {
+    /// The two ends of an edge, or of a part of it, became one place: the edge
+    /// and the loosest of the joined contacts that made them one.
+    Collapse(Vec<(EdgeId, Option<usize>)>),
+    /// Corners that fall on edges go on for ever.
+    Endless,
+}
 
 /// A place on an edge that is a node.
 #[derive(Debug, Clone, Copy)]
@@ -37,11 +46,10 @@ fn corner(piece: usize, [u, v]: [f64; 2]) -> usize {
 impl Marks {
     /// Marks that follow from the corners of all edges and the joined contacts.
     pub(super) fn settle(
-        set: &PatchSet,
         edges: &[EdgeCurve],
         contacts: &[Contact],
         gap: f64,
-    ) -> Result<Self, TopologyError> {
+    ) -> Result<Self, Unsettled> {
         let mut marks = Self {
             edges: Vec::with_capacity(edges.len()),
             parent: (0..edges.len()).collect(),
@@ -58,13 +66,17 @@ impl Marks {
             }
         }
         let joined: Vec<&Contact> = contacts.iter().filter(|c| c.joined).collect();
+        // The class of both ends of every joined contact, for blame.
+        let mut ends: Vec<[usize; 2]> = Vec::with_capacity(joined.len());
         for contact in &joined {
-            for end in 0..2 {
+            let classes = [0, 1].map(|end| {
                 let [a, b] = contact.edges.map(|e| &edges[e.index()]);
                 let p = marks.mark(a, contact.first[end], gap);
                 let q = marks.mark(b, contact.second[end], gap);
                 marks.unite(p, q);
-            }
+                p
+            });
+            ends.push(classes);
         }
         for _ in 0..ROUNDS {
             let mut settled = true;
@@ -73,17 +85,15 @@ impl Marks {
             }
             if settled {
                 marks.thin_out();
-                return marks.proven(set, edges, gap);
+                let collapsed = marks.collapsed(edges);
+                if collapsed.is_empty() {
+                    return Ok(marks);
+                }
+                let blame = marks.loosest(&collapsed, contacts, &ends);
+                return Err(Unsettled::Collapse(blame));
             }
         }
-        let place = joined.first().map_or(0, |c| c.edges[0].index());
-        let (patch, edge, piece) = super::place(set, edges[place].id);
-        Err(TopologyError::Unsettled {
-            patch,
-            edge,
-            piece,
-            gap,
-        })
+        Err(Unsettled::Endless)
     }
 
     /// The class a mark belongs to.
@@ -220,28 +230,53 @@ impl Marks {
         }
     }
 
-    fn proven(
-        mut self,
-        set: &PatchSet,
-        edges: &[EdgeCurve],
-        gap: f64,
-    ) -> Result<Self, TopologyError> {
+    /// Edges that are no points, but of which two neighbouring marks are one
+    /// place, with that place.
+    fn collapsed(&mut self, edges: &[EdgeCurve]) -> Vec<(EdgeId, usize)> {
+        let mut found = Vec::new();
         for edge in edges.iter().filter(|e| !e.collapsed) {
             let count = self.edges[edge.id.index()].len();
             for k in 1..count {
                 let [p, q] = [k - 1, k].map(|k| self.edges[edge.id.index()][k].class);
-                if self.find(p) == self.find(q) {
-                    let (patch, side, piece) = super::place(set, edge.id);
-                    return Err(TopologyError::ShortEdge {
-                        patch,
-                        edge: side,
-                        piece,
-                        length: edge.length,
-                        gap,
-                    });
+                let (p, q) = (self.find(p), self.find(q));
+                if p == q {
+                    found.push((edge.id, p));
                 }
             }
         }
-        Ok(self)
+        found
+    }
+
+    /// For every collapsed edge, the joined contact of largest gap that ends
+    /// at the place in question.
+    fn loosest(
+        &mut self,
+        collapsed: &[(EdgeId, usize)],
+        contacts: &[Contact],
+        ends: &[[usize; 2]],
+    ) -> Vec<(EdgeId, Option<usize>)> {
+        let mut at: Vec<(usize, usize)> = Vec::new();
+        let joined = (0..contacts.len()).filter(|&i| contacts[i].joined);
+        for (contact, classes) in joined.zip(ends) {
+            for &class in classes {
+                at.push((self.find(class), contact));
+            }
+        }
+        at.sort_unstable();
+        let loosest = |class: usize| {
+            let from = at.partition_point(|a| a.0 < class);
+            at[from..]
+                .iter()
+                .take_while(|a| a.0 == class)
+                .map(|a| a.1)
+                .max_by(|&i, &j| {
+                    let proved = |k: usize| contacts[k].gap.proved;
+                    proved(i).total_cmp(&proved(j)).then(j.cmp(&i))
+                })
+        };
+        collapsed
+            .iter()
+            .map(|&(edge, class)| (edge, loosest(class)))
+            .collect()
     }
 }
