@@ -1,4 +1,11 @@
-//! The sets we ship, made by code.
+//! The sets we ship, made by code, so that no file is a mystery, and sets of any
+//! size for trying the tool at scale.
+//!
+//! [`Demo::write`] makes a shipped set byte for byte; [`write_panels`] streams a
+//! quilted field of bicubic panels. Surfaces are built by construction, not
+//! fitted: a plane profile carried along guides, with every joint tangent to
+//! round-off, and coordinates use only sums, products, quotients and square
+//! roots, which are the same on every machine.
 
 mod front_quarter;
 mod guide;
@@ -20,17 +27,6 @@ pub enum Demo {
 }
 
 impl Demo {
-    /// All shipped sets.
-    pub const ALL: [Self; 1] = [Self::FrontQuarter];
-
-    /// The name by which the command asks for it.
-    #[must_use]
-    pub fn name(self) -> &'static str {
-        match self {
-            Self::FrontQuarter => "front-quarter",
-        }
-    }
-
     /// Writes the set as a RON file with comments, the same bytes every time.
     ///
     /// # Errors

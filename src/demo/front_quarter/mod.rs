@@ -1,4 +1,8 @@
-//! The front quarter of an invented vehicle.
+//! The left front quarter of an invented vehicle, one panel a file.
+//!
+//! All panels of the side lie on one master surface ([`side`]) or leave it
+//! tangentially, so they stand flush across their shut lines. Faults are put in
+//! after construction ([`fault`]).
 
 mod bonnet;
 mod bumper;

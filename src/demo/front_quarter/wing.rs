@@ -18,11 +18,13 @@ pub(super) const FRONT: f64 = -470.0;
 pub(super) const REAR: f64 = 530.0;
 /// Front end of shoulder and ledge, above the lamp glass.
 pub(super) const NOSE: f64 = -640.0;
-/// Where the wing's rear bottom edge begins, and the arch ends.
+/// Centre of the wheel arch, x and z.
 const WHEEL: Plane = [0.0, 310.0];
+/// Radius of the wheel arch.
 const ARCH_RADIUS: f64 = 340.0;
 /// Depth of the flange, 45 degrees inwards.
 const FLANGE: f64 = 22.0;
+/// Cosine and sine of the flange's 45 degrees.
 const DIAGONAL: f64 = std::f64::consts::FRAC_1_SQRT_2;
 /// Columns of the band along the character line; the ridge above has one patch
 /// against the first two (a T-junction).
@@ -80,7 +82,7 @@ pub(super) fn panel(upper: &Upper) -> PanelText {
     }
 }
 
-/// Seams of the wing with its flange: patch names and the fault's number.
+/// Patches of the band and of the flange that meet in the arch's edge.
 pub(super) fn flange_seams() -> impl Iterator<Item = (String, String)> {
     (1..=8).map(|k| (format!("wing/arch {k}"), format!("wing/flange {k}")))
 }
