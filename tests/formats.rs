@@ -441,9 +441,17 @@ fn files_for_the_judges() {
             if name == "far" && format == Format::Stl {
                 continue;
             }
-            for layout in format.layouts() {
-                let (bytes, summary) = written(&mesh, format, Some(*layout));
-                assert_eq!(bytes, written(&mesh, format, Some(*layout)).0);
+            let plain = format.layouts().iter().map(|layout| (*layout, false));
+            let with_normals = (format == Format::Ply).then_some((Layout::Indexed, true));
+            for (layout, normals) in plain.chain(with_normals) {
+                let options = WriteOptions {
+                    normals,
+                    ..options(Some(layout))
+                };
+                let (mut bytes, mut again) = (Vec::new(), Vec::new());
+                let summary = write(&mesh, format, &options, &mut bytes).unwrap();
+                write(&mesh, format, &options, &mut again).unwrap();
+                assert_eq!(bytes, again);
                 let json = serde_json::json!({
                     "triangles": mesh.triangles.len(),
                     "vertices": mesh.points.len(),
@@ -456,7 +464,8 @@ fn files_for_the_judges() {
                     "euler": measures.euler,
                     "components": measures.components,
                 });
-                let file = folder.join(format!("{name}-{layout}.{format}"));
+                let kind = if normals { "normals" } else { layout.name() };
+                let file = folder.join(format!("{name}-{kind}.{format}"));
                 std::fs::write(&file, bytes).unwrap();
                 std::fs::write(format!("{}.json", file.display()), json.to_string()).unwrap();
             }

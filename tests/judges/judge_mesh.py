@@ -81,13 +81,14 @@ def merged(points, faces):
     return points[first], number.reshape(-1)[faces]
 
 
-def boundary(faces):
-    """Directed edges without a partner that runs the other way."""
-    edges = numpy.vstack([faces[:, [0, 1]], faces[:, [1, 2]], faces[:, [2, 0]]])
-    there = {}
-    for a, b in edges.tolist():
-        there[a, b] = there.get((a, b), 0) + 1
-    return [edge for edge, n in there.items() if n != 1 or there.get(edge[::-1], 0) != 1]
+def is_closed(faces):
+    """Whether every edge is run exactly once in each direction."""
+    start = faces.astype(numpy.int64).reshape(-1)
+    end = numpy.roll(faces, -1, axis=1).astype(numpy.int64).reshape(-1)
+    count = start.max() + 1
+    forward, uses = numpy.unique(start * count + end, return_counts=True)
+    backward = numpy.sort(end * count + start)
+    return bool((uses == 1).all() and numpy.array_equal(forward, backward))
 
 
 def judge(reader, read, path, summary):
@@ -113,7 +114,7 @@ def judge(reader, read, path, summary):
     equal("the number of points once merged", len(points), summary["vertices"])
     mesh = trimesh.Trimesh(points, faces, process=False)
     close("the area", mesh.area, summary["area"] * scale**2)
-    equal("closed", not boundary(faces), summary["closed"])
+    equal("closed", is_closed(faces), summary["closed"])
     if summary["closed"]:
         equal("trimesh's watertight", bool(mesh.is_watertight), True)
         equal("trimesh's consistent winding", bool(mesh.is_winding_consistent), True)
