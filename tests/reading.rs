@@ -72,3 +72,25 @@ fn the_schema_reads_as_documented() {
     );
     assert!(matches!(set.demands()[1].between, SeamEnd::Panel(_)));
 }
+
+/// Defaults are stated in millimetres: 0.1 chord, 0.01 gap, 10 x gap search.
+#[test]
+fn default_tolerances_are_converted_to_the_unit() {
+    for (unit, in_mm) in [("m", 1000.0), ("cm", 10.0), ("mm", 1.0), ("inch", 25.4)] {
+        let text = format!("(units: {unit}, patches: [(name: \"a\", surface: Sphere(radius: 9))])");
+        let set = read(&text).set;
+        let tolerances = set.tolerances();
+        for (found, mm) in [
+            (tolerances.chord, 0.1),
+            (tolerances.gap, 0.01),
+            (tolerances.search, 0.1),
+        ] {
+            approx::assert_relative_eq!(found.get() * in_mm, mm, max_relative = 1e-14);
+        }
+        approx::assert_relative_eq!(tolerances.tangent_deg.get(), 0.1);
+        approx::assert_relative_eq!(tolerances.crease_deg.get(), 10.0);
+        assert!(tolerances.normal_deg.is_none());
+        assert!(tolerances.max_edge.is_none());
+        assert!(tolerances.curvature_per_mm.is_none());
+    }
+}
