@@ -83,18 +83,18 @@ fn pieces_of_b_splines_have_the_values_scipy_gives() {
 fn neighbouring_pieces_share_their_edge_bit_by_bit() {
     use chordwise::bezier::Side;
     let surface = Surface::BSpline(BSplineNet {
-        degree: (3, 2),
+        degree: (1, 3),
         knots: (
-            vec![0.0, 0.1, 0.3, 0.7, 1.1, 1.3, 1.9, 2.3],
-            vec![0.0, 0.0, 0.0, 0.3, 0.7, 1.0, 1.0, 1.0],
+            vec![0.0, 0.0, 1.0, 1.0],
+            vec![0.0, 0.1, 0.3, 0.7, 1.1, 1.3, 1.9, 2.3, 3.1, 3.7, 4.9, 5.3],
         ),
         net: Some(
-            (0..4)
+            (0..2)
                 .map(|i| {
-                    (0..5)
+                    (0..8)
                         .map(|j| {
                             let (i, j) = (f64::from(i), f64::from(j));
-                            [i * 0.3 + 0.1 * j, j * 0.7, (i * j * 1.3).sin()]
+                            [i * 0.3 + 0.1 * j, j * 0.7, (1.3 * i + j * j).sin()]
                         })
                         .collect()
                 })
@@ -103,7 +103,7 @@ fn neighbouring_pieces_share_their_edge_bit_by_bit() {
         ..BSplineNet::default()
     });
     let grid = surface.pieces(&[], 1e-6).unwrap();
-    assert_eq!(grid.pieces.len(), 3);
+    assert_eq!(grid.pieces.len(), 5);
     for pair in grid.pieces.windows(2) {
         assert_eq!(pair[0].edge(Side::V1), pair[1].edge(Side::V0));
     }

@@ -294,6 +294,26 @@ fn turns_close_bit_by_bit_and_poles_are_points() {
     }
 }
 
+/// A profile that begins on an oblique axis, but for rounding, makes a pole.
+#[test]
+fn a_profile_point_on_the_axis_is_a_pole() {
+    let on_axis = Point::from(CENTER) + Vector::from(AXIS) * 1.7;
+    let off_axis = on_axis + Vector::from(START);
+    let bowl = grid(&Surface::Revolution(Box::new(Revolution {
+        profile: line(on_axis.into(), off_axis.into()),
+        center: CENTER,
+        axis: AXIS,
+        angle_deg: (0.0, 300.0),
+    })));
+    let pole = bowl.pieces[0].control_point(0, 0);
+    assert_eq!(pole, on_axis);
+    for piece in &bowl.pieces {
+        for i in [0, 2] {
+            assert_eq!(piece.control_point(i, 0), pole);
+        }
+    }
+}
+
 fn line(from: [f64; 3], to: [f64; 3]) -> Curve {
     Curve::Line(Line { from, to })
 }
