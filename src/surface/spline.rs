@@ -104,19 +104,18 @@ impl<'a> Knots<'a> {
     }
 
     /// The Bezier pieces of the spline with these control points. The last
-    /// point of a piece is bitwise the first of the next.
+    /// point of a piece is bitwise the first of the next: at their common knot
+    /// the two schemes form the same combinations, and the ones in which they
+    /// differ have a ratio of exactly 0 or 1.
     pub(super) fn pieces(&self, control: &[Lifted]) -> Vec<Vec<Lifted>> {
-        let mut pieces: Vec<Vec<Lifted>> = Vec::with_capacity(self.spans.len());
-        for &k in &self.spans {
-            let mut piece: Vec<Lifted> = (0..=self.degree)
-                .map(|i| self.blossom(control, k, i))
-                .collect();
-            if let Some(before) = pieces.last() {
-                piece[0] = before[self.degree];
-            }
-            pieces.push(piece);
-        }
-        pieces
+        self.spans
+            .iter()
+            .map(|&k| {
+                (0..=self.degree)
+                    .map(|i| self.blossom(control, k, i))
+                    .collect()
+            })
+            .collect()
     }
 
     /// f(a^(degree - i), b^i) on the span [a, b] = [t_k, t_k+1].
