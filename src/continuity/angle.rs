@@ -11,13 +11,11 @@
 //! Along a seam of one parametrisation this *proves* the angle; it is the
 //! determinant criterion of Liu and Hoschek (1989) and DeRose (1990) in
 //! another dress. Where the parametrisations differ, points matched by the
-//! affine map of a part are up to 2 E from the nearest points (E bounds the
-//! difference of the two edges there), and the turn of the normal over that
-//! length is added; an edge that comes back to within 2 E of itself is left out
-//! of account there. The part with the largest bound is halved until the bound
+//! affine map of a part are not quite the nearest ones, and the turn of the
+//! normal in between is added ([`super::slip`]). The part with the largest bound is halved until the bound
 //! meets what is attained.
 
-use super::bernstein::Bernstein;
+use super::slip::Slip;
 use super::strip::Strip;
 use crate::bezier::BezierCurve;
 use crate::patch_set::PatchSet;
@@ -104,6 +102,8 @@ struct Sides {
     second: BezierCurve,
     first: BezierCurve,
     meeting: Meeting,
+    /// Changes of parameter, see [`Strip::standard`].
+    lambda: [f64; 2],
     /// Largest difference of the two edges at equal parameters.
     apart: f64,
     /// Below this the edges are one curve of one parametrisation.
@@ -133,8 +133,14 @@ impl Sides {
         };
         let (first, second) = (cut(0), cut(1));
         let origin = first.control_point(0);
-        let mut strips = [0, 1]
-            .map(|k| Strip::new(pieces[k], meeting.edges[k].side(), &origin).restrict(ranges[k]));
+        let lambda = [&first, &second].map(to_standard);
+        let mut strips = [0, 1].map(|k| {
+            Strip::new(pieces[k], meeting.edges[k].side(), &origin)
+                .restrict(ranges[k])
+                .reparametrised(lambda[k])
+        });
+        let first = reparametrised(first, lambda[0]);
+        let second = reparametrised(second, lambda[1]);
         let flipped = meeting.edges.map(|e| set.patch_of(e.piece()).flipped);
         if flipped[0] != flipped[1] {
             strips[1] = strips[1].clone().opposed();
@@ -150,6 +156,7 @@ impl Sides {
         Self {
             strips,
             meeting: *meeting,
+            lambda,
             apart,
             same: largest * 1e-12 + first.chord_bound() * 1e-12,
             first,
@@ -183,10 +190,10 @@ impl Sides {
             }
             best.0
         };
-        let turn = if self.aligned() {
-            0.0
-        } else {
-            turn_rate(&self.strips[1])
+        let slip = (!self.aligned()).then(|| Slip::of(&self.strips[1]));
+        let bound = |strips: &[Strip; 2], width: f64| {
+            let slip = slip.as_ref().map_or(0.0, |s| s.bound(strips, width));
+            (angle_bound(strips) + slip).min(std::f64::consts::PI)
         };
         let mut attained = 0.0;
         for s in [0.0, 1.0, 0.5] {
@@ -196,7 +203,7 @@ impl Sides {
             s: [0.0, 1.0],
             t: [0.0, 1.0],
             strips: self.strips.clone(),
-            upper: angle_bound(&self.strips, turn),
+            upper: bound(&self.strips, 1.0),
         };
         let mut parts = vec![whole];
         let mut proved = std::f64::consts::PI;
@@ -226,7 +233,7 @@ impl Sides {
                 ([part.s[0], s], [part.t[0], t], [a0, b0]),
                 ([s, part.s[1]], [t, part.t[1]], [a1, b1]),
             ] {
-                let upper = angle_bound(&strips, turn).min(part.upper);
+                let upper = bound(&strips, t[1] - t[0]).min(part.upper);
                 parts.push(Part {
                     s,
                     t,
@@ -235,22 +242,25 @@ impl Sides {
                 });
             }
         }
-        let along = |r: [f64; 2], x: f64| r[0] * (1.0 - x) + r[1] * x;
+        let along = |r: [f64; 2], k: usize, tau: f64| {
+            let x = parameter_before(tau, self.lambda[k]);
+            r[0] * (1.0 - x) + r[1] * x
+        };
         Angle {
             bracket: Bracket {
                 proved: proved.to_degrees().max(best.0.to_degrees()),
                 attained: best.0.to_degrees(),
             },
             at: [
-                along(self.meeting.first, best.1),
-                along(self.meeting.second, best.2),
+                along(self.meeting.first, 0, best.1),
+                along(self.meeting.second, 1, best.2),
             ],
         }
     }
 }
 
 /// Proved bound of the angle over a part, in radians, see the module.
-fn angle_bound(strips: &[Strip; 2], turn: f64) -> f64 {
+fn angle_bound(strips: &[Strip; 2]) -> f64 {
     let [a, b] = [&strips[0].normal, &strips[1].normal];
     let cross = a.product(b, |p, q| p.cross(&q));
     let dot = a.product(b, |p: Vector, q: Vector| p.dot(&q));
@@ -278,51 +288,37 @@ fn angle_bound(strips: &[Strip; 2], turn: f64) -> f64 {
             }
         }
     }
-    if turn > 0.0 {
-        // Points at equal parameters are up to E apart, so up to 2 E from the
-        // nearest ones.
-        let [p, q] = strips;
-        let x = p.place.product(&q.weight, |x, w| x * w);
-        let y = q.place.product(&p.weight, |x, w| x * w);
-        let w = p.weight.product(&q.weight, |v, w| v * w);
-        let apart = x
-            .plus(&y, -1.0)
-            .0
-            .iter()
-            .zip(&w.0)
-            .map(|(d, w)| d.norm() / w)
-            .fold(0.0, f64::max);
-        bound += 2.0 * apart * turn;
-    }
-    bound.min(std::f64::consts::PI)
+    bound
 }
 
-/// Bound on how fast the normal turns along an edge, in radians a length unit:
-/// over fifteen overlapping parts, |N x N'| / |N|^2 by coefficients, over the
-/// least progress along the part's chord, (X' w - X w') . chord / w^2.
-fn turn_rate(strip: &Strip) -> f64 {
-    let least = |a: &Bernstein<f64>| a.0.iter().copied().fold(f64::INFINITY, f64::min);
-    let mut worst = 0.0_f64;
-    for k in 0..15 {
-        let part = strip.restrict([f64::from(k) / 16.0, f64::from(k + 2) / 16.0]);
-        let normal = &part.normal;
-        let cross = normal.product(&normal.derivative(), |p, q| p.cross(&q));
-        let square = normal.product(normal, |p: Vector, q: Vector| p.dot(&q));
-        let largest = cross.0.iter().map(Vector::norm).fold(0.0, f64::max);
-        let turn = largest / least(&square).max(0.0);
-        let at = |x: f64| part.place.eval(x) / part.weight.eval(x);
-        let chord = at(1.0) - at(0.0);
-        let along = |a: &Bernstein<Vector>| {
-            Bernstein(a.0.iter().map(|x| x.dot(&chord)).collect::<Vec<f64>>())
-        };
-        let (x, w) = (along(&part.place), &part.weight);
-        let times = |a: &Bernstein<f64>, b: &Bernstein<f64>| a.product(b, |p, q| p * q);
-        let progress = times(&x.derivative(), w).plus(&times(&x, &w.derivative()), -1.0);
-        // Of degree 2 n - 1; the weight squared is raised or lowered to it by
-        // taking its largest coefficient.
-        let heaviest = times(w, w).0.iter().copied().fold(0.0, f64::max);
-        let speed = (least(&progress) / heaviest).max(0.0) / chord.norm();
-        worst = worst.max(turn / speed);
+/// The change of parameter t = lambda tau / (1 - tau + lambda tau) that makes
+/// both end weights of a rational curve equal (Farin, *NURBS*).
+fn to_standard(curve: &BezierCurve) -> f64 {
+    let n = curve.degree();
+    #[allow(clippy::cast_precision_loss, reason = "a degree is at most 15")]
+    let root = 1.0 / n as f64;
+    if curve.is_rational() {
+        (curve.weight(0) / curve.weight(n)).powf(root)
+    } else {
+        1.0
     }
-    if worst.is_nan() { f64::INFINITY } else { worst }
+}
+
+fn parameter_before(tau: f64, lambda: f64) -> f64 {
+    lambda * tau / (1.0 - tau + lambda * tau)
+}
+
+fn reparametrised(curve: BezierCurve, lambda: f64) -> BezierCurve {
+    if !curve.is_rational() {
+        return curve;
+    }
+    let mut factor = 1.0;
+    let weights = (0..=curve.degree()).map(|i| {
+        let weight = curve.weight(i) * factor;
+        factor *= lambda;
+        weight
+    });
+    let weights = weights.collect();
+    // Positive finite weights stay so short of overflow.
+    BezierCurve::new(curve.control_points().collect(), Some(weights)).unwrap_or(curve)
 }

@@ -21,7 +21,7 @@ pub struct CurvatureStep {
 }
 
 impl Meeting {
-    /// The largest step of normal curvature at seventeen places; `None` where
+    /// The largest step of normal curvature at nine places; `None` where
     /// no place has a tangent plane on both sides.
     #[must_use]
     pub fn curvature_step(&self, set: &PatchSet) -> Option<CurvatureStep> {
@@ -41,8 +41,8 @@ impl Meeting {
         ];
         let per_mm = 1.0 / set.unit().in_mm();
         let mut worst: Option<CurvatureStep> = None;
-        for k in 0..=16 {
-            let [s, guess] = self.at(f64::from(k) / 16.0);
+        for k in 0..=8 {
+            let [s, guess] = self.at(f64::from(k) / 8.0);
             let jet = edges[0].jet(s);
             let t = nearest_from(&edges[1], &jet.point, guess, range).t;
             let [u, v] = self.edges[0].side().at(s);

@@ -6,6 +6,7 @@ mod apart;
 mod bernstein;
 mod curvature;
 mod figure;
+mod slip;
 mod smooth;
 mod standing;
 mod strip;

@@ -115,6 +115,32 @@ impl Strip {
         ]
     }
 
+    /// Whether all weights are equal.
+    pub(super) fn is_polynomial(&self) -> bool {
+        self.weight
+            .0
+            .iter()
+            .all(|w| w.to_bits() == self.weight.0[0].to_bits())
+    }
+
+    /// The same strip after t = lambda tau / (1 - tau + lambda tau): in
+    /// homogeneous coordinates coefficient i is multiplied by lambda^i.
+    pub(super) fn reparametrised(mut self, lambda: f64) -> Self {
+        fn scale<T: super::bernstein::Coefficient>(a: &mut Bernstein<T>, lambda: f64) {
+            let mut factor = 1.0;
+            for value in &mut a.0 {
+                *value = *value * factor;
+                factor *= lambda;
+            }
+        }
+        if !self.is_polynomial() {
+            scale(&mut self.place, lambda);
+            scale(&mut self.weight, lambda);
+            scale(&mut self.normal, lambda);
+        }
+        self
+    }
+
     /// The same with the normal turned over.
     pub(super) fn opposed(mut self) -> Self {
         self.normal = scaled(&self.normal, -1.0);

@@ -119,3 +119,62 @@ fn halves_of_a_surface_are_proved_tangent() {
         }
     }
 }
+
+/// A quarter cylinder against the next one cut in two: a T-junction of
+/// rational edges whose parametrisations differ by a linear rational change.
+/// Tangent all along, and proved so.
+#[test]
+fn rational_t_junctions_are_proved_tangent() {
+    let quarter = revolved(&[(50.0, 0.0, 1.0), (50.0, 30.0, 1.0)]).remove(0);
+    let lower = revolved(&[(50.0, -40.0, 1.0), (50.0, 0.0, 1.0)]).remove(0);
+    let mut set = empty();
+    add(&mut set, "long", &quarter);
+    add(&mut set, "one", &lower.restrict([0.0, 1.0], [0.0, 0.3]));
+    add(&mut set, "two", &lower.restrict([0.0, 1.0], [0.3, 1.0]));
+    let topology = Topology::build(&set).unwrap();
+    topology.check().unwrap();
+    assert_eq!(topology.contacts().len(), 3);
+    for contact in topology.contacts() {
+        assert!(contact.joined && contact.gap.proved < 1e-9, "{contact:?}");
+        let found = of(contact).angle(&set).bracket;
+        assert!(found.proved <= 1e-6, "{found:?}");
+    }
+}
+
+/// Edges 0.06 mm apart, and differently parametrised ones: the slip between
+/// matched and nearest points costs next to nothing.
+#[test]
+fn angles_across_a_gap_are_narrow() {
+    let wave = |shift: f64, degrees: f64| {
+        let tilt = degrees.to_radians().tan();
+        net((3, 3), move |u, v| {
+            let bend = 8.0 * (3.0 * v).sin();
+            (10.0 + 10.0 * u, 100.0 * v, bend + shift + 10.0 * u * tilt)
+        })
+    };
+    let left = wave(0.0, 0.0).restrict([-1.0, 0.0], [0.0, 1.0]);
+    let right = wave(0.06, 2.0);
+    let found = angle(&pair(&left, &right)).bracket;
+    assert!(found.proved <= found.attained * 1.02, "{found:?}");
+}
+
+/// Two cylinders of different radius, tangent along a ruling: the step of
+/// normal curvature is 1 / r1 - 1 / r2 (elementary).
+#[test]
+fn tangent_cylinders_differ_in_curvature() {
+    let s = 0.5_f64.sqrt();
+    let arc = |r: f64, side: f64| {
+        let points = [0.0, 30.0].into_iter().flat_map(|y| {
+            [(0.0, 0.0), (side * r, 0.0), (side * r, r)]
+                .map(|(x, z)| crate::scalar::Point::new(x, y, z))
+        });
+        let weights = [1.0, s, 1.0, 1.0, s, 1.0].to_vec();
+        BezierPatch::new((1, 2), points.collect(), Some(weights)).unwrap()
+    };
+    let set = pair(&arc(50.0, 1.0), &arc(80.0, -1.0));
+    let topology = Topology::build(&set).unwrap();
+    let meeting = meeting(&topology);
+    assert!(meeting.angle(&set).bracket.proved < 1e-6);
+    let step = meeting.curvature_step(&set).unwrap();
+    assert!((step.difference_per_mm - (1.0 / 50.0 - 1.0 / 80.0)).abs() < 1e-12);
+}
