@@ -178,3 +178,57 @@ fn tangent_cylinders_differ_in_curvature() {
     let step = meeting.curvature_step(&set).unwrap();
     assert!((step.difference_per_mm - (1.0 / 50.0 - 1.0 / 80.0)).abs() < 1e-12);
 }
+
+/// Sampling at 2,000 places never exceeds the proved bound, and the bracket is
+/// narrow: patches that share an edge and little else.
+#[test]
+fn sampling_does_not_refute_the_angle() {
+    let wave = |k: usize, f: f64| (f64::from(u32::try_from(k).unwrap()) * f).sin();
+    for case in 0..24 {
+        let f = 1.1 + 0.37 * wave(case, 1.0);
+        let (m, n) = (1 + case % 3, 2 + case % 3);
+        let patch = |side: f64, weighted: bool| {
+            let points = (0..=m).flat_map(|i| (0..=n).map(move |j| (i, j)));
+            let across = |i: usize| f64::from(u32::try_from(i).unwrap()) * 12.0 * side;
+            let along = |j: usize| f64::from(u32::try_from(j).unwrap()) * 20.0;
+            let points = points.map(|(i, j)| {
+                let k = if i == 0 {
+                    j
+                } else {
+                    j + 7 * i + if side > 0.0 { 50 } else { 90 }
+                };
+                crate::scalar::Point::new(
+                    across(i) + 2.0 * wave(k, f),
+                    along(j) + 3.0 * wave(k, 2.0 * f),
+                    5.0 * wave(k, 3.0 * f),
+                )
+            });
+            let weights = weighted.then(|| {
+                (0..(m + 1) * (n + 1))
+                    .map(|k| 1.0 + 0.4 * wave(k % (n + 1), f))
+                    .collect()
+            });
+            BezierPatch::new((m, n), points.collect(), weights).unwrap()
+        };
+        let weighted = case % 2 == 1;
+        let (a, b) = (patch(-1.0, weighted), patch(1.0, weighted));
+        let set = pair(&a, &b);
+        let topology = Topology::build(&set).unwrap();
+        let contact = topology
+            .contacts()
+            .iter()
+            .find(|c| c.edges.map(|e| e.side()) == [Side::U0, Side::U0])
+            .unwrap();
+        let found = of(contact).angle(&set).bracket;
+        assert!(found.proved <= found.attained * 1.02, "{case} {found:?}");
+        let mut worst = 0.0_f64;
+        for k in 0..=2000 {
+            let t = f64::from(k) / 2000.0;
+            let (p, q) = (a.normal(0.0, t).unwrap(), b.normal(0.0, t).unwrap());
+            // They run the same way, so one normal is turned over.
+            worst = worst.max(p.cross(&q).norm().atan2(-p.dot(&q)).to_degrees());
+        }
+        assert!(worst <= found.proved + 1e-9, "{case} {worst} {found:?}");
+        assert!(worst >= found.attained - 1e-6, "{case} {worst} {found:?}");
+    }
+}

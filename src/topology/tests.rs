@@ -296,3 +296,22 @@ fn the_least_name_is_master() {
     let master = &topology.spans()[seam.spans[0].index()];
     assert_eq!(master.edge, edge(1, Side::U1));
 }
+
+/// A corner on one edge reaches a third edge by way of a second, though the
+/// first and the third are not within the gap tolerance of each other.
+#[test]
+fn corners_are_carried_from_edge_to_edge() {
+    let mut set = empty();
+    add(&mut set, "m", &rectangle([10.0, 20.0], [0.0, 9.0]));
+    add(
+        &mut set,
+        "n",
+        &net((1, 1), |u, v| (10.008, 9.0 * v, 7.0 * u)),
+    );
+    add(&mut set, "one", &rectangle([0.0, 9.992], [0.0, 4.0]));
+    add(&mut set, "two", &rectangle([0.0, 9.992], [4.0, 9.0]));
+    let topology = build(&set);
+    assert_eq!(topology.contacts().iter().filter(|c| c.joined).count(), 4);
+    assert_eq!(topology.edges()[edge(1, Side::U0).index()].spans.len(), 2);
+    assert_eq!(uses(&topology)[2], 2);
+}
