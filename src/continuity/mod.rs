@@ -12,6 +12,8 @@ mod standing;
 mod strip;
 mod survey;
 #[cfg(test)]
+mod survey_tests;
+#[cfg(test)]
 mod tests;
 
 pub use angle::{Angle, Meeting};

@@ -67,7 +67,8 @@ pub struct Contact {
     /// Where the attained gap is: the parameter on the first edge.
     pub gap_at: f64,
     /// Whether the mesh is joined here: the gap is proved to be within the gap
-    /// tolerance and the seam is not demanded open.
+    /// tolerance (and half the shorter edge), the seam is not demanded open,
+    /// and joining does not close up an edge shorter than the tolerance.
     pub joined: bool,
 }
 
@@ -113,7 +114,9 @@ impl Topology {
         &self.contacts
     }
 
-    /// The open boundary: closed chains of spans that have no partner.
+    /// The open boundary: chains of spans that have no partner, in order. A
+    /// chain is closed, unless it ends where three or more pieces meet along
+    /// one seam. Parts that touch at a point keep loops of their own.
     #[must_use]
     pub fn open_loops(&self) -> &[Vec<SpanId>] {
         &self.loops

@@ -1,0 +1,145 @@
+//! Demand, finding and verdict on sets with one seam in question.
+
+use super::{Finding, Survey, Verdict};
+use crate::bezier::{BezierPatch, Side};
+use crate::patch_set::{Demand, PatchSet};
+use crate::scalar::Tolerance;
+use crate::topology::Topology;
+use crate::topology::test_sets::{add, add_grid, demand, empty, net, rectangle};
+
+/// A plane that leaves x = `start` at an angle to the plane z = 0.
+fn tilted(start: f64, degrees: f64) -> BezierPatch {
+    let (sin, cos) = degrees.to_radians().sin_cos();
+    net((1, 1), move |u, v| {
+        (start + 8.0 * u * cos, 5.0 * v, 8.0 * u * sin)
+    })
+}
+
+fn two(start: f64, degrees: f64, stated: Option<Demand>) -> PatchSet {
+    let mut set = empty();
+    let b = add(&mut set, "b", &tilted(start, degrees));
+    let a = add(&mut set, "a", &rectangle([0.0, 10.0], [0.0, 5.0]));
+    if let Some(stated) = stated {
+        demand(&mut set, (b, Side::U0), (a, Side::U1), stated);
+    }
+    set
+}
+
+fn survey(set: &PatchSet) -> Survey {
+    let topology = Topology::build(set).unwrap();
+    topology.check().unwrap();
+    Survey::of(set, &topology)
+}
+
+#[test]
+fn every_demand_meets_its_finding() {
+    use Demand::{Crease, G0, G1, Open};
+    let cases = [
+        // Inferred: tangent, in between, crease.
+        (10.0, 0.05, None, G1, Finding::Tangent, Verdict::Met),
+        (10.0, 0.8, None, G1, Finding::Break, Verdict::Fault),
+        (10.0, 45.0, None, Crease, Finding::Crease, Verdict::Met),
+        // Stated.
+        (10.0, 45.0, Some(G1), G1, Finding::Crease, Verdict::Fault),
+        (10.0, 0.8, Some(G0), G0, Finding::Break, Verdict::Met),
+        (
+            10.0,
+            0.8,
+            Some(Crease),
+            Crease,
+            Finding::Break,
+            Verdict::Met,
+        ),
+        (10.0, 0.0, Some(Open), Open, Finding::Open, Verdict::Met),
+        // Apart by less and by more than the search distance.
+        (10.05, 0.0, None, G1, Finding::Gap, Verdict::Fault),
+        (10.05, 0.0, Some(Open), Open, Finding::Open, Verdict::Met),
+        (14.0, 0.0, Some(G1), G1, Finding::Apart, Verdict::Fault),
+        (14.0, 0.0, Some(Open), Open, Finding::Open, Verdict::Met),
+    ];
+    for (start, degrees, stated, demand, finding, verdict) in cases {
+        let found = survey(&two(start, degrees, stated));
+        let [seam] = found.seams.as_slice() else {
+            panic!("one seam: {start} {degrees} {stated:?}")
+        };
+        let case = format!("{start} {degrees} {stated:?}");
+        assert_eq!(seam.demand, demand, "{case}");
+        assert_eq!(seam.finding, finding, "{case}");
+        assert_eq!(seam.verdict, verdict, "{case}");
+        assert_eq!(seam.stated, stated.is_some(), "{case}");
+        // The lesser name comes first, whatever the order in the file.
+        assert_eq!(seam.between.0.index(), 1, "{case}");
+        if finding == Finding::Apart {
+            let gap = seam.gap.bracket;
+            assert!((gap.attained - 4.0).abs() < 1e-9 && gap.proved < 4.1);
+        }
+    }
+    assert!(survey(&two(14.0, 0.0, None)).seams.is_empty());
+}
+
+/// No verdict on curvature unless its tolerance is set.
+#[test]
+fn curvature_is_judged_only_on_request() {
+    let bent = net((2, 1), |u, v| {
+        (10.0 + 10.0 * u, 5.0 * v, if u > 0.9 { 2.0 } else { 0.0 })
+    });
+    let mut set = empty();
+    let a = add(&mut set, "a", &rectangle([0.0, 10.0], [0.0, 5.0]));
+    let b = add(&mut set, "b", &bent);
+    demand(&mut set, (a, Side::U1), (b, Side::U0), Demand::G2);
+    let found = survey(&set);
+    assert_eq!(found.seams[0].finding, Finding::Tangent);
+    assert_eq!(found.seams[0].verdict, Verdict::Met);
+    set.tolerances.curvature_per_mm = Some(Tolerance::new(2e-4).unwrap());
+    let found = survey(&set);
+    assert_eq!(found.seams[0].finding, Finding::Curvature);
+    assert_eq!(found.seams[0].verdict, Verdict::Fault);
+    // S_u = (10, 0, 0) and S_uu = (0, 0, 4) at the edge: 4 / 100.
+    let step = found.seams[0].curvature_per_mm.unwrap().bracket.attained;
+    assert!((step - 0.04).abs() < 1e-12);
+}
+
+/// A patch of many pieces is one seam to its neighbour; its own lines are not
+/// listed while they are smooth.
+#[test]
+fn pieces_are_grouped_by_patch_edge() {
+    let surface = net((3, 3), |u, v| {
+        (40.0 * u, 30.0 * v, (3.0 * u).sin() * (2.0 * v).cos())
+    });
+    let mut set = empty();
+    let left = surface.restrict([0.0, 0.5], [0.0, 1.0]);
+    let right = surface.restrict([0.5, 1.0], [0.0, 1.0]);
+    add_grid(&mut set, "a", &left, [&[0.0, 0.4, 1.0], &[0.0, 0.5, 1.0]]);
+    add_grid(&mut set, "b", &right, [&[0.0, 1.0], &[0.0, 0.2, 0.7, 1.0]]);
+    let found = survey(&set);
+    assert_eq!(found.seams.len(), 1);
+    let whole = left.edge(Side::U1).length();
+    assert!((found.seams[0].length - whole).abs() < 1e-6);
+    assert_eq!(found.findings(), 0);
+    assert_eq!(found.loops.len(), 1);
+    assert_eq!(found.loops[0].edges.len(), 6);
+}
+
+/// Three on one edge are reported, with their length.
+#[test]
+fn crowds_are_findings() {
+    let mut set = two(10.0, 45.0, None);
+    add(&mut set, "c", &tilted(10.0, -60.0));
+    let found = survey(&set);
+    assert_eq!(found.crowds.len(), 1);
+    assert_eq!(found.crowds[0].edges.len(), 3);
+    assert!((found.crowds[0].length - 5.0).abs() < 1e-12);
+    assert_eq!(found.findings(), 1);
+}
+
+/// The two sides of a sliver are near one another, but not neighbours.
+#[test]
+fn what_lies_beyond_a_sliver_is_no_near_miss() {
+    let mut set = empty();
+    add(&mut set, "a", &rectangle([0.0, 10.0], [0.0, 5.0]));
+    add(&mut set, "b", &rectangle([10.0, 10.05], [0.0, 5.0]));
+    add(&mut set, "c", &rectangle([10.05, 20.0], [0.0, 5.0]));
+    let found = survey(&set);
+    assert_eq!(found.seams.len(), 2);
+    assert_eq!(found.findings(), 0);
+}
