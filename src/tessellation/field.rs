@@ -1,0 +1,135 @@
+//! Second derivatives of a piece on a coarse grid, to choose steps and
+//! diagonals by. Nothing here proves anything.
+
+use crate::bezier::BezierPatch;
+use crate::scalar::{Point, Vector};
+
+/// Grid cells in each direction for a polynomial of degree 3 or less.
+const CELLS: usize = 6;
+
+/// Grid cells where the surface may vary more.
+const CELLS_FINE: usize = 12;
+
+/// What the steps need to know of the surface at one place.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Bend {
+    /// Unit normal along S_u x S_v (zero where there is none).
+    pub(super) normal: Vector,
+    /// S_u, S_v.
+    pub(super) first: [Vector; 2],
+    /// S_uu, S_uv, S_vv.
+    pub(super) second: [Vector; 3],
+}
+
+impl Bend {
+    fn blend(corners: [&Self; 4], weights: [f64; 4]) -> Self {
+        let mix = |get: &dyn Fn(&Self) -> Vector| {
+            let [a, b, c, d] = corners.map(get);
+            a * weights[0] + b * weights[1] + c * weights[2] + d * weights[3]
+        };
+        Self {
+            normal: mix(&|b| b.normal),
+            first: [mix(&|b| b.first[0]), mix(&|b| b.first[1])],
+            second: [
+                mix(&|b| b.second[0]),
+                mix(&|b| b.second[1]),
+                mix(&|b| b.second[2]),
+            ],
+        }
+    }
+
+    /// The second form (n.S_uu, n.S_uv, n.S_vv).
+    pub(super) fn form(&self) -> [f64; 3] {
+        self.second.map(|s| s.dot(&self.normal))
+    }
+
+    /// S'' applied twice to a parameter step.
+    fn bend(&self, [du, dv]: [f64; 2]) -> Vector {
+        self.second[0] * (du * du) + self.second[1] * (2.0 * du * dv) + self.second[2] * (dv * dv)
+    }
+}
+
+/// The table.
+#[derive(Debug)]
+pub(super) struct Field {
+    cells: usize,
+    bends: Vec<Bend>,
+}
+
+impl Field {
+    pub(super) fn new(surface: &BezierPatch) -> Self {
+        let (m, n) = surface.degree();
+        let fine = surface.is_rational() || m.max(n) > 3;
+        let cells = if fine { CELLS_FINE } else { CELLS };
+        let mut bends = Vec::with_capacity((cells + 1) * (cells + 1));
+        for i in 0..=cells {
+            for j in 0..=cells {
+                let (u, v) = (ratio(i, cells), ratio(j, cells));
+                let jet = surface.jet(u, v);
+                let normal = jet.normal().or_else(|| surface.normal(u, v));
+                bends.push(Bend {
+                    normal: normal.unwrap_or_else(Vector::zeros),
+                    first: [jet.du, jet.dv],
+                    second: [jet.duu, jet.duv, jet.dvv],
+                });
+            }
+        }
+        Self { cells, bends }
+    }
+
+    /// The bend at (u, v), bilinear between grid places.
+    pub(super) fn at(&self, [u, v]: [f64; 2]) -> Bend {
+        let (i, s) = self.cell(u);
+        let (j, t) = self.cell(v);
+        let stride = self.cells + 1;
+        let at = |i: usize, j: usize| &self.bends[i * stride + j];
+        Bend::blend(
+            [at(i, j), at(i + 1, j), at(i, j + 1), at(i + 1, j + 1)],
+            [(1.0 - s) * (1.0 - t), s * (1.0 - t), (1.0 - s) * t, s * t],
+        )
+    }
+
+    #[allow(
+        clippy::cast_possible_truncation,
+        clippy::cast_sign_loss,
+        clippy::cast_precision_loss,
+        reason = "a parameter in 0..1 times a cell count of at most a dozen"
+    )]
+    fn cell(&self, t: f64) -> (usize, f64) {
+        let scaled = t.clamp(0.0, 1.0) * self.cells as f64;
+        let cell = (scaled as usize).min(self.cells - 1);
+        (cell, scaled - cell as f64)
+    }
+
+    /// Estimated deviation of a triangle, in length: the largest height error
+    /// for the Hessian at its centre, joined with the sideways shift of its
+    /// edges, which the certificate has to count too.
+    pub(super) fn estimate(&self, places: [[f64; 2]; 3], points: [Point; 3]) -> f64 {
+        let third = |axis: usize| (places[0][axis] + places[1][axis] + places[2][axis]) / 3.0;
+        let bend = self.at([third(0), third(1)]);
+        let mut square = [0.0; 3];
+        let mut worst_edge = 0.0_f64;
+        for k in 0..3 {
+            let next = (k + 1) % 3;
+            let step = [
+                places[next][0] - places[k][0],
+                places[next][1] - places[k][1],
+            ];
+            let q = bend.bend(step);
+            square[k] = bend.normal.dot(&q);
+            let along = points[next] - points[k];
+            let length = along.norm();
+            if length > 0.0 {
+                let sideways = q.dot(&bend.normal.cross(&along)) / length;
+                worst_edge = worst_edge.max(square[k].hypot(sideways) / 8.0);
+            }
+        }
+        let (height, _) = super::quadratic::Quadratic::interpolation_error(square).largest();
+        height.max(worst_edge)
+    }
+}
+
+#[allow(clippy::cast_precision_loss, reason = "grid counts are small")]
+pub(super) fn ratio(i: usize, n: usize) -> f64 {
+    i as f64 / n as f64
+}

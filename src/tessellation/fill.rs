@@ -1,0 +1,457 @@
+//! One piece: laid out, improved, proved, refined until everything is proved.
+
+use super::certificate::{Cell, Flat, Prover};
+use super::field::Field;
+use super::layout::{INNER, Layout, layout};
+use super::limits::Limits;
+use super::outline::Outline;
+use super::triangulation::{BORDER, TriangleEdge, is_proper};
+use super::{planar, verdict};
+use crate::bezier::BezierPatch;
+use crate::scalar::{Point, Vector};
+
+/// An inner edge shorter than this in both parameters is not split again: the
+/// surface is then too wild for its tolerance (or the gap too large), and the
+/// run must fail and say where.
+const SHORTEST: f64 = 1e-7;
+
+/// Refinement may multiply the triangles of the layout by this, and add as
+/// many as the second figure, before the piece is given up.
+const GROWTH: usize = 40;
+const GROWTH_BASE: usize = 20_000;
+
+/// An exchange of diagonals must lower the larger error by this factor, so
+/// that rounding cannot make it go round in circles.
+const FLIP_GAIN: f64 = 1.0 - 1e-9;
+
+/// A filled piece.
+#[derive(Debug)]
+pub(crate) struct Filled {
+    /// Parameters of the vertices.
+    pub(crate) places: Vec<[f64; 2]>,
+    /// Their places in space.
+    pub(crate) points: Vec<Point>,
+    /// The mesh vertex of each, or [`INNER`].
+    pub(crate) vertices: Vec<u32>,
+    /// Triangles with area, counterclockwise in (u, v).
+    pub(crate) triangles: Vec<[u32; 3]>,
+    /// What was proved for the worst triangle.
+    pub(crate) proved: Proved,
+    /// A true deviation: the largest found at the triangles' peaks.
+    pub(crate) attained: Attained,
+}
+
+/// Proved figures of the worst triangle.
+#[derive(Debug, Clone, Copy, Default)]
+pub(crate) struct Proved {
+    /// Largest distance of the surface from the mesh.
+    pub(crate) to_mesh: f64,
+    /// Largest distance of the mesh from the surface.
+    pub(crate) to_surface: f64,
+}
+
+/// A point of the surface and its distance from the triangle over it.
+#[derive(Debug, Clone, Copy)]
+pub(crate) struct Attained {
+    pub(crate) distance: f64,
+    pub(crate) place: [f64; 2],
+    pub(crate) point: Point,
+}
+
+/// A piece that cannot be held to its limits.
+#[derive(Debug, Clone, Copy)]
+pub(crate) struct Stuck {
+    pub(crate) place: [f64; 2],
+    pub(crate) point: Point,
+    pub(crate) proved: f64,
+}
+
+pub(super) struct Work<'a> {
+    surface: &'a BezierPatch,
+    limits: &'a Limits,
+    field: Field,
+    pub(super) layout: Layout,
+    normals: Vec<Option<Vector>>,
+    pub(super) flats: Vec<Flat>,
+    pub(super) cells: Vec<Cell>,
+    stale: Vec<bool>,
+}
+
+/// Fills one piece with triangles that are proved within the limits.
+pub(crate) fn fill(
+    surface: &BezierPatch,
+    outline: &Outline,
+    limits: &Limits,
+) -> Result<Filled, Stuck> {
+    let field = Field::new(surface);
+    let layout = layout(surface, &field, outline, limits);
+    let count = layout.triangulation.triangles.len();
+    let mut work = Work {
+        surface,
+        limits,
+        field,
+        normals: vec![None; layout.points.len()],
+        layout,
+        flats: Vec::new(),
+        cells: Vec::new(),
+        stale: vec![true; count],
+    };
+    let all = (0..count).flat_map(|t| (0..3).map(move |i| (index(t), i)));
+    let mut edges: Vec<TriangleEdge> = all.collect();
+    work.improve(&mut edges);
+    let flat = planar::proof(surface, outline, limits);
+    let proved = work.prove(flat)?;
+    Ok(work.finish(proved))
+}
+
+fn index(t: usize) -> u32 {
+    u32::try_from(t).expect("a piece has far fewer than 2^32 triangles")
+}
+
+impl Work<'_> {
+    fn error(&self, corners: [u32; 3]) -> f64 {
+        let places = corners.map(|v| self.layout.triangulation.places[v as usize]);
+        self.field
+            .estimate(places, corners.map(|v| self.layout.points[v as usize]))
+    }
+
+    /// Exchanges diagonals while that lowers the larger error of the two
+    /// triangles beside them (Lawson's procedure with another criterion).
+    fn improve(&mut self, edges: &mut Vec<TriangleEdge>) {
+        let mut budget = 40 * (edges.len() + 100);
+        while let Some(edge) = edges.pop() {
+            let Some([a, b, c, d]) = self.layout.triangulation.quad(edge) else {
+                continue;
+            };
+            let at = |v: u32| self.layout.triangulation.places[v as usize];
+            if !is_proper([at(d), at(a), at(b)]) || !is_proper([at(b), at(c), at(d)]) {
+                continue;
+            }
+            let now = self.error([a, c, d]).max(self.error([c, a, b]));
+            let then = self.error([d, a, b]).max(self.error([b, c, d]));
+            if then < now * FLIP_GAIN && budget > 0 {
+                budget -= 1;
+                let other = self.layout.triangulation.neighbours[edge.0 as usize][edge.1];
+                self.stale[edge.0 as usize] = true;
+                self.stale[other as usize] = true;
+                edges.extend(self.layout.triangulation.flip(edge));
+            }
+        }
+    }
+
+    /// Proves every triangle, refining where the proof fails.
+    fn prove(&mut self, planar: Option<f64>) -> Result<Proved, Stuck> {
+        let mut prover = Prover::new(self.surface);
+        let mut most = self.layout.triangulation.triangles.len();
+        most = most * GROWTH + GROWTH_BASE;
+        let mut ring = Vec::new();
+        let mut figures: Vec<Proved> = Vec::new();
+        loop {
+            let count = self.layout.triangulation.triangles.len();
+            let stale: Vec<u32> = (0..index(count))
+                .filter(|&t| self.stale[t as usize])
+                .collect();
+            self.measure(&mut prover, &stale);
+            figures.resize(count, Proved::default());
+            let mut affected = stale.clone();
+            for &t in &stale {
+                self.stale[t as usize] = false;
+                self.layout.triangulation.ring(t, &mut ring);
+                affected.extend_from_slice(&ring);
+            }
+            affected.sort_unstable();
+            affected.dedup();
+            let mut failed = Vec::new();
+            for &t in &affected {
+                let figure = match planar {
+                    Some(bound) => Proved {
+                        to_mesh: bound,
+                        to_surface: bound,
+                    },
+                    None => verdict::judge(self, t, self.limits.chord, &mut ring),
+                };
+                figures[t as usize] = figure;
+                let within = figure.to_mesh.max(figure.to_surface) <= self.limits.chord;
+                if !within || !self.keeps_shape(t) {
+                    failed.push(t);
+                }
+            }
+            if failed.is_empty() {
+                let worst = figures.iter().fold(Proved::default(), |worst, f| Proved {
+                    to_mesh: worst.to_mesh.max(f.to_mesh),
+                    to_surface: worst.to_surface.max(f.to_surface),
+                });
+                return Ok(worst);
+            }
+            for t in failed {
+                if self.stale[t as usize] {
+                    continue;
+                }
+                let figure = figures[t as usize];
+                let stuck = self.refine(t);
+                if stuck || self.layout.triangulation.triangles.len() > most {
+                    return Err(self.stuck(t, figure.to_mesh.max(figure.to_surface)));
+                }
+            }
+        }
+    }
+
+    fn stuck(&self, t: u32, proved: f64) -> Stuck {
+        let places = self.layout.triangulation.corners(t);
+        let third = |axis: usize| (places[0][axis] + places[1][axis] + places[2][axis]) / 3.0;
+        let place = [third(0), third(1)];
+        Stuck {
+            place,
+            point: self.surface.eval(place[0], place[1]),
+            proved,
+        }
+    }
+
+    /// Brings flats and cells up to date. A cell whose triangle has no area
+    /// (two of its corners are the pole) is proved against the better of its
+    /// neighbours, which then answers for it.
+    fn measure(&mut self, prover: &mut Prover, stale: &[u32]) {
+        let count = self.layout.triangulation.triangles.len();
+        let empty = Flat::new([Point::origin(); 3]);
+        self.flats.resize(count, empty);
+        let corners = |layout: &Layout, t: u32| {
+            layout.triangulation.triangles[t as usize].map(|v| layout.points[v as usize])
+        };
+        for &t in stale {
+            self.flats[t as usize] = Flat::new(corners(&self.layout, t));
+        }
+        let blank = Cell {
+            height: 0.0,
+            sideways: 0.0,
+            direct: 0.0,
+            edges: [0.0; 3],
+            peak: [1.0 / 3.0; 3],
+        };
+        self.cells.resize(count, blank);
+        // A host of a flat neighbour must be measured afresh with it.
+        let mut again: Vec<u32> = stale.to_vec();
+        for &t in stale {
+            let around = self.layout.triangulation.neighbours[t as usize];
+            again.extend(around.iter().filter(|&&n| n != BORDER));
+        }
+        again.sort_unstable();
+        again.dedup();
+        let is_flat = |work: &Self, t: u32| work.flats[t as usize].normal.is_none();
+        let mut around_flat: Vec<u32> = again
+            .iter()
+            .copied()
+            .filter(|&t| is_flat(self, t))
+            .collect();
+        for &t in &again {
+            let near_flat = self.layout.triangulation.neighbours[t as usize]
+                .iter()
+                .any(|&n| n != BORDER && is_flat(self, n));
+            if self.stale[t as usize] || near_flat || is_flat(self, t) {
+                let places = self.layout.triangulation.corners(t);
+                self.cells[t as usize] = prover.cell(places, &self.flats[t as usize], true);
+            }
+            if near_flat {
+                let flat_neighbours = self.layout.triangulation.neighbours[t as usize];
+                around_flat.extend(
+                    flat_neighbours
+                        .iter()
+                        .filter(|&&n| n != BORDER && is_flat(self, n)),
+                );
+            }
+        }
+        around_flat.sort_unstable();
+        around_flat.dedup();
+        for t in around_flat {
+            self.attach(prover, t);
+        }
+    }
+
+    fn attach(&mut self, prover: &mut Prover, t: u32) {
+        let places = self.layout.triangulation.corners(t);
+        let own = prover.cell(places, &self.flats[t as usize], true);
+        let mut best: Option<(usize, u32, Cell)> = None;
+        for (i, &host) in self.layout.triangulation.neighbours[t as usize]
+            .iter()
+            .enumerate()
+        {
+            if host == BORDER || self.flats[host as usize].normal.is_none() {
+                continue;
+            }
+            let cell = prover.cell(places, &self.flats[host as usize], false);
+            if best.as_ref().is_none_or(|(_, _, b)| cell.direct < b.direct) {
+                best = Some((i, host, cell));
+            }
+        }
+        let Some((i, host, cell)) = best else {
+            self.cells[t as usize] = own;
+            return;
+        };
+        // The host answers for the flat cell: their union's outer edges are
+        // what its reverse proof goes round.
+        let shared = self.layout.triangulation.neighbours[host as usize]
+            .iter()
+            .position(|&n| n == t)
+            .expect("neighbours are mutual");
+        let host_cell = &mut self.cells[host as usize];
+        host_cell.height = host_cell.height.max(cell.height);
+        host_cell.sideways = host_cell.sideways.max(cell.sideways);
+        host_cell.direct = host_cell.direct.max(cell.direct);
+        host_cell.edges[shared] = (0..3)
+            .filter(|&k| k != i)
+            .map(|k| own.edges[k])
+            .fold(0.0, f64::max);
+        let silent = &mut self.cells[t as usize];
+        *silent = Cell {
+            height: 0.0,
+            sideways: 0.0,
+            direct: 0.0,
+            edges: [0.0; 3],
+            peak: own.peak,
+        };
+    }
+
+    /// Whether the triangle keeps to the normal angle and the largest edge.
+    fn keeps_shape(&mut self, t: u32) -> bool {
+        let corners = self.layout.triangulation.triangles[t as usize];
+        if let Some(longest) = self.limits.max_edge {
+            let points = corners.map(|v| self.layout.points[v as usize]);
+            if (0..3).any(|k| (points[(k + 1) % 3] - points[k]).norm() > longest) {
+                return false;
+            }
+        }
+        if let Some(limit) = self.limits.normal_rad {
+            if self.flats[t as usize].normal.is_none() {
+                return true;
+            }
+            let normals = corners.map(|v| self.normal(v));
+            for k in 0..3 {
+                if let (Some(a), Some(b)) = (normals[k], normals[(k + 1) % 3])
+                    && turn(&a, &b) > limit
+                {
+                    return false;
+                }
+            }
+        }
+        true
+    }
+
+    fn normal(&mut self, vertex: u32) -> Option<Vector> {
+        let v = vertex as usize;
+        if self.normals[v].is_none() {
+            let [u, w] = self.layout.triangulation.places[v];
+            self.normals[v] = self.surface.normal(u, w);
+        }
+        self.normals[v]
+    }
+
+    /// Puts a vertex where the triangle is worst; true if that cannot be done.
+    fn refine(&mut self, t: u32) -> bool {
+        let corners = self.layout.triangulation.triangles[t as usize];
+        let places = self.layout.triangulation.corners(t);
+        let mut best: Option<(f64, usize)> = None;
+        for i in 0..3 {
+            let (a, b) = (places[i], places[(i + 1) % 3]);
+            let long = (a[0] - b[0]).abs().max((a[1] - b[1]).abs());
+            let border = self.layout.triangulation.neighbours[t as usize][i] == BORDER;
+            let ends = [corners[i], corners[(i + 1) % 3]].map(|v| self.layout.vertices[v as usize]);
+            let pole = border && ends[0] == ends[1];
+            if (border && !pole) || long < SHORTEST {
+                continue;
+            }
+            let error = self.cells[t as usize].edges[i].max(1e-3 * self.limits.chord * long);
+            if best.is_none_or(|(most, _)| error > most) {
+                best = Some((error, i));
+            }
+        }
+        let border_error = (0..3)
+            .filter(|&i| self.layout.triangulation.neighbours[t as usize][i] == BORDER)
+            .map(|i| self.cells[t as usize].edges[i])
+            .fold(0.0, f64::max);
+        let Some((error, i)) = best else {
+            return true;
+        };
+        let mut outer: Vec<TriangleEdge>;
+        if error < 0.5 * border_error {
+            let third = |axis: usize| (places[0][axis] + places[1][axis] + places[2][axis]) / 3.0;
+            let place = [third(0), third(1)];
+            self.add_vertex(place, INNER);
+            outer = self.layout.triangulation.insert_inside(t, place).to_vec();
+        } else {
+            let (a, b) = (places[i], places[(i + 1) % 3]);
+            let place = [(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0];
+            let border = self.layout.triangulation.neighbours[t as usize][i] == BORDER;
+            let vertex = if border {
+                self.layout.vertices[corners[i] as usize]
+            } else {
+                INNER
+            };
+            self.add_vertex(place, vertex);
+            if border {
+                let last = self.layout.points.len() - 1;
+                self.layout.points[last] = self.layout.points[corners[i] as usize];
+            }
+            let other = self.layout.triangulation.neighbours[t as usize][i];
+            if other != BORDER {
+                self.stale[other as usize] = true;
+            }
+            outer = self.layout.triangulation.insert_on_edge((t, i), place);
+        }
+        self.stale[t as usize] = true;
+        self.stale
+            .resize(self.layout.triangulation.triangles.len(), true);
+        self.improve(&mut outer);
+        false
+    }
+
+    fn add_vertex(&mut self, [u, v]: [f64; 2], vertex: u32) {
+        self.layout.points.push(self.surface.eval(u, v));
+        self.layout.vertices.push(vertex);
+        self.normals.push(None);
+    }
+
+    /// Drops triangles without area and finds the largest true deviation.
+    fn finish(self, proved: Proved) -> Filled {
+        let mut attained = Attained {
+            distance: 0.0,
+            place: [0.5, 0.5],
+            point: self.surface.eval(0.5, 0.5),
+        };
+        let mut triangles = Vec::with_capacity(self.layout.triangulation.triangles.len());
+        for (t, corners) in self.layout.triangulation.triangles.iter().enumerate() {
+            let [a, b, c] = corners.map(|v| self.layout.vertices[v as usize]);
+            let same = |x: u32, y: u32| x == y && x != INNER;
+            if same(a, b) || same(b, c) || same(c, a) {
+                continue;
+            }
+            triangles.push(*corners);
+            let Some(normal) = self.flats[t].normal else {
+                continue;
+            };
+            let places = self.layout.triangulation.corners(index(t));
+            let peak = self.cells[t].peak;
+            let at = |axis: usize| (0..3).map(|k| peak[k] * places[k][axis]).sum::<f64>();
+            let point = self.surface.eval(at(0), at(1));
+            let distance = (point - self.flats[t].corners[0]).dot(&normal).abs();
+            if distance > attained.distance {
+                attained = Attained {
+                    distance,
+                    place: [at(0), at(1)],
+                    point,
+                };
+            }
+        }
+        Filled {
+            places: self.layout.triangulation.places,
+            points: self.layout.points,
+            vertices: self.layout.vertices,
+            triangles,
+            proved,
+            attained,
+        }
+    }
+}
+
+/// The angle between unit vectors.
+fn turn(a: &Vector, b: &Vector) -> f64 {
+    a.cross(b).norm().atan2(a.dot(b))
+}

@@ -1,0 +1,353 @@
+//! Rows of points that make the optimal triangles: the sheared lattice.
+//!
+//! On a surface whose heights have the constant Hessian (A, B; B, C) in row
+//! parameter p and cross parameter q, the triangles of largest area at error e
+//! stand in rows along p with the step h and the row distance k:
+//!
+//! ```text
+//! A C - B^2 > 0:  A h^2 = 6 e,   k^2 = 4.5 e |A| / (A C - B^2)          (equilateral in the metric)
+//! A C - B^2 < 0:  A h^2 <= 8 e,  k^2 = (A^2 h^2 / 4 + 64 e^2 / h^2) / (B^2 - A C)
+//! ```
+//!
+//! each row shifted against the last by s, conjugate direction plus half a
+//! step. Areas: (3 sqrt 3 / 2) e / sqrt K and 2 sqrt 5 e / sqrt(-K), the limits
+//! of Pottmann, Krasauskas, Hamann, Joy and Seibold (2000). The hyperbolic row
+//! follows from asking that one sloping edge has Q = 8 e and the other -8 e;
+//! there h is free, and is taken so that triangles are about as long as wide.
+
+use super::field::{Bend, Field, ratio};
+use super::limits::Limits;
+
+/// Samples along a row, and of rows.
+const SAMPLES: usize = 16;
+
+/// A point nearer to the side of the piece than this part of a step is left
+/// to the side's own samples.
+const SIDE_CLEARANCE: f64 = 0.5;
+
+/// A row count is rounded up only above this fraction: the rows then stand
+/// slightly wider than asked, and the certificate decides.
+const ROW_SLACK: f64 = 0.12;
+
+/// Which parameter the rows run along.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) enum Along {
+    /// Rows of constant v.
+    U,
+    /// Rows of constant u.
+    V,
+}
+
+impl Along {
+    /// (u, v) of row parameter p and cross parameter q.
+    pub(super) fn place(self, p: f64, q: f64) -> [f64; 2] {
+        match self {
+            Self::U => [p, q],
+            Self::V => [q, p],
+        }
+    }
+
+    /// (p, q) of a place.
+    pub(super) fn split(self, [u, v]: [f64; 2]) -> (f64, f64) {
+        match self {
+            Self::U => (u, v),
+            Self::V => (v, u),
+        }
+    }
+}
+
+/// Local lattice: row step, row distance and shift, in parameters.
+#[derive(Debug, Clone, Copy)]
+struct Step {
+    /// Steps per unit of p (1 / h); zero where the row is straight.
+    rows_step: f64,
+    /// Rows per unit of q (1 / k); zero where the surface is straight across.
+    rows_cross: f64,
+    /// (A, B, C) of the heights in (p, q).
+    form: [f64; 3],
+}
+
+impl Step {
+    fn new(bend: &Bend, along: Along, limits: &Limits) -> Self {
+        let [l, m, n] = bend.form();
+        let (form, first) = match along {
+            Along::U => ([l, m, n], bend.first),
+            Along::V => ([n, m, l], [bend.first[1], bend.first[0]]),
+        };
+        let [a, b, c] = form;
+        let (size_p, size_q) = (first[0].norm(), first[1].norm());
+        let e = limits.interior;
+        let determinant = a * c - b * b;
+        // Below this the second form is rounding beside its own entries.
+        let floor = 1e-12 * (a * a + b * b + c * c);
+        let (mut rows_step, mut rows_cross) = if determinant > floor {
+            (
+                (a.abs() / (6.0 * e)).sqrt(),
+                (determinant / (4.5 * e * a.abs())).sqrt(),
+            )
+        } else if determinant < -floor {
+            // h as long as wide, or shorter where the row itself bends.
+            let round = (determinant.abs().sqrt() / (8.94 * e) * size_p
+                / size_q.max(f64::MIN_POSITIVE))
+            .sqrt();
+            let step = round.max((a.abs() / (8.0 * e)).sqrt());
+            let square = (a / step).powi(2) / 4.0 + (8.0 * e * step).powi(2);
+            (step, (-determinant / square).sqrt())
+        } else {
+            // Straight in one direction: steps only where the heights bend.
+            ((a.abs() / (8.0 * e)).sqrt(), (c.abs() / (8.0 * e)).sqrt())
+        };
+        if let Some(turn) = limits.normal_rad {
+            rows_step = rows_step.max(turn_rate(bend, along.place(1.0, 0.0)) / (0.9 * turn));
+            rows_cross = rows_cross.max(turn_rate(bend, along.place(0.0, 1.0)) / (0.75 * turn));
+        }
+        if let Some(edge) = limits.max_edge {
+            rows_step = rows_step.max(size_p / (0.95 * edge));
+            rows_cross = rows_cross.max(size_q / (0.8 * edge));
+        }
+        Self {
+            rows_step,
+            rows_cross,
+            form,
+        }
+    }
+
+    /// The shift of p that carries a point of one row to a point of the row
+    /// `gap` further in q.
+    fn shift(&self, gap: f64, e: f64) -> f64 {
+        let [a, b, c] = self.form;
+        let h = 1.0 / self.rows_step;
+        let determinant = a * c - b * b;
+        if determinant >= 0.0 || b.abs() <= 1e-9 * (a.abs() + c.abs()) && a * c >= 0.0 {
+            let conjugate = if a.abs() > 1e-12 * (b.abs() + c.abs()) {
+                b / a
+            } else {
+                0.0
+            };
+            return h / 2.0 - conjugate * gap;
+        }
+        let lean = 8.0 * e / h * b.signum();
+        if a.abs() > 1e-6 * b.abs() * gap * self.rows_step {
+            h / 2.0 + (lean - b * gap) / a
+        } else {
+            h / 2.0 - 4.0 * e * c / (h * b * b)
+        }
+    }
+}
+
+/// |dn| for a unit step of the parameters along `direction`.
+fn turn_rate(bend: &Bend, direction: [f64; 2]) -> f64 {
+    let [du, dv] = direction;
+    let [l, m, n] = bend.form();
+    // Weingarten: n_u = -(shape operator) in the basis S_u, S_v.
+    let (e, f, g) = (
+        bend.first[0].norm_squared(),
+        bend.first[0].dot(&bend.first[1]),
+        bend.first[1].norm_squared(),
+    );
+    let determinant = e * g - f * f;
+    if determinant <= 1e-18 * e * g {
+        return 0.0;
+    }
+    let (p, q) = (l * du + m * dv, m * du + n * dv);
+    ((p * p * g - 2.0 * p * q * f + q * q * e) / determinant)
+        .max(0.0)
+        .sqrt()
+}
+
+/// The interior points of a piece, row after row.
+#[derive(Debug)]
+pub(super) struct Rows {
+    /// Which parameter the rows run along.
+    pub(super) along: Along,
+    /// For each row its q and the ascending p of its points; no row is empty.
+    pub(super) rows: Vec<(f64, Vec<f64>)>,
+}
+
+/// Points estimated for a lattice with rows along each parameter.
+pub(super) fn cost(field: &Field, along: Along, limits: &Limits) -> f64 {
+    let plan = Plan::new(field, along, limits);
+    let rows: f64 = plan.rows_total().max(1.0);
+    let per_row = (0..=SAMPLES).map(|j| plan.row_total(j)).sum::<f64>() / ratio(SAMPLES + 1, 1);
+    rows * per_row.max(1.0)
+}
+
+/// Rows for the piece. `before` is the chain of samples on the edge q = 0, by
+/// ascending p: the first row is placed against it.
+pub(super) fn rows(field: &Field, along: Along, limits: &Limits, before: &[f64]) -> Rows {
+    let plan = Plan::new(field, along, limits);
+    let mut rows = Vec::new();
+    let mut chain = before.to_vec();
+    let (places, gap) = plan.row_places();
+    for q in places {
+        let row = plan.row(field, q, gap, &chain, limits);
+        if !row.is_empty() {
+            chain.clone_from(&row);
+            rows.push((q, row));
+        }
+    }
+    Rows { along, rows }
+}
+
+struct Plan {
+    along: Along,
+    /// Steps on a grid, q-major.
+    steps: Vec<Step>,
+}
+
+impl Plan {
+    fn new(field: &Field, along: Along, limits: &Limits) -> Self {
+        let mut steps = Vec::with_capacity((SAMPLES + 1) * (SAMPLES + 1));
+        for j in 0..=SAMPLES {
+            for i in 0..=SAMPLES {
+                let place = along.place(ratio(i, SAMPLES), ratio(j, SAMPLES));
+                steps.push(Step::new(&field.at(place), along, limits));
+            }
+        }
+        Self { along, steps }
+    }
+
+    fn row_steps(&self, j: usize) -> &[Step] {
+        &self.steps[j * (SAMPLES + 1)..(j + 1) * (SAMPLES + 1)]
+    }
+
+    /// Row density at one q: the power mean of order 4 along the row, near the
+    /// densest place without being ruled by one point.
+    fn density(&self, j: usize) -> f64 {
+        let steps = self.row_steps(j);
+        let mean = steps.iter().map(|s| s.rows_cross.powi(4)).sum::<f64>() / ratio(steps.len(), 1);
+        mean.powf(0.25)
+    }
+
+    /// Number of row distances over the whole piece, not rounded.
+    fn rows_total(&self) -> f64 {
+        cumulative((0..=SAMPLES).map(|j| self.density(j)))[SAMPLES]
+    }
+
+    /// Number of steps in the row at sample j.
+    fn row_total(&self, j: usize) -> f64 {
+        cumulative(self.row_steps(j).iter().map(|s| s.rows_step))[SAMPLES]
+    }
+
+    /// The q of every row, and the mean distance between rows.
+    fn row_places(&self) -> (Vec<f64>, f64) {
+        let sums = cumulative((0..=SAMPLES).map(|j| self.density(j)));
+        let count = round_up(sums[SAMPLES], ROW_SLACK);
+        let places = (1..count).map(|k| inverse(&sums, sums[SAMPLES] * ratio(k, count)));
+        (places.collect(), 1.0 / ratio(count, 1))
+    }
+
+    fn row(&self, field: &Field, q: f64, gap: f64, before: &[f64], limits: &Limits) -> Vec<f64> {
+        let steps: Vec<Step> = (0..=SAMPLES)
+            .map(|i| {
+                Step::new(
+                    &field.at(self.along.place(ratio(i, SAMPLES), q)),
+                    self.along,
+                    limits,
+                )
+            })
+            .collect();
+        let sums = cumulative(steps.iter().map(|s| s.rows_step));
+        let total = sums[SAMPLES];
+        if total < 2.0 * SIDE_CLEARANCE || before.len() < 2 {
+            return Vec::new();
+        }
+        let offset = self.offset(&steps, &sums, gap, before, limits);
+        let mut row = Vec::new();
+        let mut phase = offset;
+        while phase < total - SIDE_CLEARANCE {
+            if phase > SIDE_CLEARANCE {
+                row.push(inverse(&sums, phase));
+            }
+            phase += 1.0;
+        }
+        row
+    }
+
+    /// The phase in 0..1 at which this row's points stand best against the row
+    /// before: the circular mean over the row of where each place would have it.
+    fn offset(
+        &self,
+        steps: &[Step],
+        sums: &[f64],
+        gap: f64,
+        before: &[f64],
+        limits: &Limits,
+    ) -> f64 {
+        let (mut x, mut y) = (0.0, 0.0);
+        for (i, step) in steps.iter().enumerate() {
+            if step.rows_step <= 0.0 {
+                continue;
+            }
+            let p = ratio(i, SAMPLES);
+            let target = p + step.shift(gap, limits.interior);
+            if !(0.0..=1.0).contains(&target) {
+                continue;
+            }
+            let turn = (forward(sums, target) - index_in(before, p)) * std::f64::consts::TAU;
+            x += turn.cos();
+            y += turn.sin();
+        }
+        (y.atan2(x) / std::f64::consts::TAU).rem_euclid(1.0)
+    }
+}
+
+/// Trapezoid sums of a density sampled evenly over 0..1, starting at zero.
+fn cumulative(density: impl Iterator<Item = f64>) -> Vec<f64> {
+    let values: Vec<f64> = density.collect();
+    let mut sums = Vec::with_capacity(values.len());
+    sums.push(0.0);
+    let mut sum = 0.0;
+    for pair in values.windows(2) {
+        sum += (pair[0] + pair[1]) / 2.0 * ratio(1, values.len() - 1);
+        sums.push(sum);
+    }
+    sums
+}
+
+/// The parameter at which the sums reach `target`.
+fn inverse(sums: &[f64], target: f64) -> f64 {
+    let cells = sums.len() - 1;
+    let cell = sums.partition_point(|&s| s <= target).clamp(1, cells) - 1;
+    let width = sums[cell + 1] - sums[cell];
+    let inside = if width > 0.0 {
+        ((target - sums[cell]) / width).clamp(0.0, 1.0)
+    } else {
+        0.5
+    };
+    (ratio(cell, cells) + inside * ratio(1, cells)).clamp(0.0, 1.0)
+}
+
+/// The sum reached at parameter `t`.
+#[allow(
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    reason = "a parameter in 0..1 times a sample count"
+)]
+fn forward(sums: &[f64], t: f64) -> f64 {
+    let cells = sums.len() - 1;
+    let scaled = t * ratio(cells, 1);
+    let cell = (scaled as usize).min(cells - 1);
+    sums[cell] + (sums[cell + 1] - sums[cell]) * (scaled - ratio(cell, 1))
+}
+
+/// Where `p` stands among ascending `chain`, as a fractional index, carried on
+/// evenly beyond the ends.
+fn index_in(chain: &[f64], p: f64) -> f64 {
+    let last = chain.len() - 1;
+    if last == 0 {
+        return 0.0;
+    }
+    let cell = chain.partition_point(|&c| c <= p).clamp(1, last) - 1;
+    ratio(cell, 1) + (p - chain[cell]) / (chain[cell + 1] - chain[cell])
+}
+
+/// At least 1; rounds up only when the fraction exceeds `slack`.
+#[allow(
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    reason = "counts are predicted and limited before anything is built"
+)]
+pub(super) fn round_up(total: f64, slack: f64) -> usize {
+    ((total - slack).ceil().max(1.0)) as usize
+}

@@ -1,0 +1,32 @@
+//! What every triangle must keep to.
+
+/// The limits of one run, in the set's unit and radians.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Limits {
+    /// Largest distance between mesh and surface, both ways.
+    pub chord: f64,
+    /// The part of the chord that inner triangles are laid out for; the
+    /// certificate holds them to `chord` itself.
+    pub(crate) interior: f64,
+    /// Largest turn of the surface normal between corners of a triangle.
+    pub normal_rad: Option<f64>,
+    /// Largest edge of a triangle.
+    pub max_edge: Option<f64>,
+}
+
+/// Inner triangles are laid out for this part of the chord: the rest is for
+/// the Hessian's change over a triangle, which the layout does not see.
+const LAYOUT: f64 = 0.97;
+
+impl Limits {
+    /// Limits for a chord tolerance, and the others where asked for.
+    #[must_use]
+    pub fn new(chord: f64, normal_rad: Option<f64>, max_edge: Option<f64>) -> Self {
+        Self {
+            chord,
+            interior: chord * LAYOUT,
+            normal_rad,
+            max_edge,
+        }
+    }
+}
