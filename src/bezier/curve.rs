@@ -193,24 +193,24 @@ impl BezierCurve {
         }
     }
 
-    /// Proved bound on the distance between the curve and its chord, both
-    /// ways: the largest distance of a control point from the segment between
-    /// the end points (distance to a convex set is convex; and the nearest
-    /// points run from end to end, so they cover the chord).
+    /// Proved bound on the distance between the curve and the chord between
+    /// its end points, both ways, by splitting off the quadratic part.
     #[must_use]
     pub fn chord_bound(&self) -> f64 {
-        let a = self.control_point(0);
-        let chord = self.control_point(self.degree()) - a;
-        let square = chord.norm_squared();
-        let distance = |p: Point| {
-            let along = if square > 0.0 {
-                ((p - a).dot(&chord) / square).clamp(0.0, 1.0)
-            } else {
-                0.0
-            };
-            (p - a - chord * along).norm()
+        let end = self.control_point(self.degree());
+        self.chord_bound_to(&self.control_point(0), &end)
+    }
+
+    /// The same against any segment, from `a` to `b`.
+    #[must_use]
+    pub fn chord_bound_to(&self, a: &Point, b: &Point) -> f64 {
+        let local: Vec<Vector> = self.control_points().map(|p| p - a).collect();
+        let weights: Vec<f64> = if self.is_rational() {
+            (0..=self.degree()).map(|i| self.weight(i)).collect()
+        } else {
+            Vec::new()
         };
-        self.control_points().map(distance).fold(0.0, f64::max)
+        super::chord_bound(&local, &weights, &Vector::zeros(), &(b - a))
     }
 
     /// Length by eight-point Gauss-Legendre quadrature: sampled, not proved.

@@ -11,6 +11,7 @@
 //! all proofs of the project rest on that.
 
 mod casteljau;
+mod chord;
 mod curve;
 mod jet;
 mod net;
@@ -18,6 +19,8 @@ mod patch;
 mod side;
 mod triangle;
 
+pub(crate) use chord::chord_bound;
+pub(crate) use curve::GAUSS_8;
 pub use curve::{BezierCurve, CurveJet};
 pub use jet::SurfaceJet;
 pub use net::{MAX_DEGREE, NetError};

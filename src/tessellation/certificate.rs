@@ -27,7 +27,7 @@
 //! times the weights' ratio.
 
 use super::quadratic::Quadratic;
-use crate::bezier::{BezierPatch, TriangleNet, TriangleRestriction};
+use crate::bezier::{BezierPatch, TriangleNet, TriangleRestriction, chord_bound};
 use crate::scalar::{Point, Vector};
 
 /// A flat triangle of the mesh.
@@ -86,6 +86,8 @@ pub(super) struct Prover<'a> {
     restriction: TriangleRestriction,
     net: TriangleNet,
     heights: Vec<f64>,
+    edge_points: Vec<Vector>,
+    edge_weights: Vec<f64>,
     shape: Shape,
 }
 
@@ -114,6 +116,8 @@ impl<'a> Prover<'a> {
             restriction: TriangleRestriction::default(),
             net: TriangleNet::default(),
             heights: Vec::new(),
+            edge_points: Vec::new(),
+            edge_weights: Vec::new(),
             shape: Shape::default(),
         }
     }
@@ -213,79 +217,17 @@ impl<'a> Prover<'a> {
     }
 
     /// Distance of edge curve k from the segment a b.
-    fn edge(&self, k: usize, a: Vector, b: Vector) -> f64 {
-        let chord = b - a;
-        let length = chord.norm();
+    fn edge(&mut self, k: usize, a: Vector, b: Vector) -> f64 {
         let edge = &self.shape.edges[k];
-        let points = &self.net.points;
-        if length <= 0.0 {
-            return edge
-                .iter()
-                .map(|&i| (points[i] - a).norm())
-                .fold(0.0, f64::max);
+        self.edge_points.clear();
+        self.edge_points
+            .extend(edge.iter().map(|&i| self.net.points[i]));
+        self.edge_weights.clear();
+        if !self.net.weights.is_empty() {
+            self.edge_weights
+                .extend(edge.iter().map(|&i| self.net.weights[i]));
         }
-        let direction = chord / length;
-        let across = |i: usize| {
-            let from = points[i] - a;
-            from - direction * from.dot(&direction)
-        };
-        let overhang = edge.iter().map(|&i| {
-            let along = (points[i] - a).dot(&direction);
-            (-along).max(along - length).max(0.0)
-        });
-        let overhang = overhang.fold(0.0, f64::max);
-        let hull = edge.iter().map(|&i| across(i).norm()).fold(0.0, f64::max);
-        let degree = self.net.degree;
-        let (first, last) = (across(edge[0]), across(edge[degree]));
-        let middle = Vector::new(
-            self.middle(k, |i| across(i).x),
-            self.middle(k, |i| across(i).y),
-            self.middle(k, |i| across(i).z),
-        );
-        let between = middle * 2.0 - (first + last) / 2.0;
-        let q = [first, between, last];
-        let largest = first.norm().max(last.norm()) + between.norm() / 2.0;
-        let rest = if self.net.weights.is_empty() {
-            let n = super::field::ratio(degree, 1);
-            (0..=degree)
-                .map(|i| {
-                    let t = super::field::ratio(i, 1);
-                    let raised = (q[0] * ((n - t) * (n - t - 1.0))
-                        + q[1] * (2.0 * t * (n - t))
-                        + q[2] * (t * (t - 1.0)))
-                        / (n * (n - 1.0));
-                    (across(edge[i]) - raised).norm()
-                })
-                .fold(0.0, f64::max)
-        } else {
-            self.edge_rest_rational(edge, across, q)
-        };
-        hull.min(largest + rest).hypot(overhang)
-    }
-
-    /// The one-dimensional remainder at degree d + 2.
-    fn edge_rest_rational(
-        &self,
-        edge: &[usize],
-        across: impl Fn(usize) -> Vector,
-        q: [Vector; 3],
-    ) -> f64 {
-        let d = edge.len() - 1;
-        let mut worst = 0.0_f64;
-        for raised in 0..=d + 2 {
-            let (mut sum, mut total) = (Vector::zeros(), 0.0);
-            for (j, coefficient) in q.iter().enumerate() {
-                let Some(i) = raised.checked_sub(j).filter(|&i| i <= d) else {
-                    continue;
-                };
-                // C(2, j) C(d, i) / C(d + 2, i + j); the denominator cancels.
-                let a = [1.0, 2.0, 1.0][j] * self.shape.binomials[i] * self.weight(edge[i]);
-                sum += (across(edge[i]) - coefficient) * a;
-                total += a;
-            }
-            worst = worst.max((sum / total).norm());
-        }
-        worst
+        chord_bound(&self.edge_points, &self.edge_weights, &a, &b)
     }
 }
 

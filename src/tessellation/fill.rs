@@ -3,11 +3,11 @@
 use super::certificate::{Cell, Flat, Prover};
 use super::field::Field;
 use super::layout::{INNER, Layout, layout};
-use super::limits::Limits;
-use super::outline::Outline;
 use super::triangulation::{BORDER, TriangleEdge, is_proper};
 use super::{planar, verdict};
 use crate::bezier::BezierPatch;
+use crate::sampling::Limits;
+use crate::sampling::Outline;
 use crate::scalar::{Point, Vector};
 
 /// An inner edge shorter than this in both parameters is not split again: the
@@ -26,36 +26,40 @@ const FLIP_GAIN: f64 = 1.0 - 1e-9;
 
 /// A filled piece.
 #[derive(Debug)]
-pub(crate) struct Filled {
+pub struct Filled {
     /// Parameters of the vertices.
-    pub(crate) places: Vec<[f64; 2]>,
+    pub places: Vec<[f64; 2]>,
     /// Their places in space.
-    pub(crate) points: Vec<Point>,
-    /// The mesh vertex of each, or [`INNER`].
-    pub(crate) vertices: Vec<u32>,
+    pub points: Vec<Point>,
+    /// The border vertex each stands for, or `u32::MAX` for an inner one. On a
+    /// collapsed side many stand for one.
+    pub vertices: Vec<u32>,
     /// Triangles with area, counterclockwise in (u, v).
-    pub(crate) triangles: Vec<[u32; 3]>,
+    pub triangles: Vec<[u32; 3]>,
     /// What was proved for the worst triangle.
-    pub(crate) proved: Proved,
+    pub proved: Proved,
     /// A true deviation: the largest found at the triangles' peaks.
-    pub(crate) attained: Attained,
+    pub attained: Attained,
 }
 
 /// Proved figures of the worst triangle.
 #[derive(Debug, Clone, Copy, Default)]
-pub(crate) struct Proved {
+pub struct Proved {
     /// Largest distance of the surface from the mesh.
-    pub(crate) to_mesh: f64,
+    pub to_mesh: f64,
     /// Largest distance of the mesh from the surface.
-    pub(crate) to_surface: f64,
+    pub to_surface: f64,
 }
 
 /// A point of the surface and its distance from the triangle over it.
 #[derive(Debug, Clone, Copy)]
-pub(crate) struct Attained {
-    pub(crate) distance: f64,
-    pub(crate) place: [f64; 2],
-    pub(crate) point: Point,
+pub struct Attained {
+    /// Distance from the triangle's plane.
+    pub distance: f64,
+    /// Parameters on the piece.
+    pub place: [f64; 2],
+    /// The point itself.
+    pub point: Point,
 }
 
 /// A piece that cannot be held to its limits.

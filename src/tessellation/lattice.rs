@@ -16,7 +16,7 @@
 //! there h is free, and is taken so that triangles are about as long as wide.
 
 use super::field::{Bend, Field, ratio};
-use super::limits::Limits;
+use crate::sampling::Limits;
 
 /// Samples along a row, and of rows.
 const SAMPLES: usize = 16;

@@ -2,11 +2,11 @@
 
 use super::field::Field;
 use super::lattice::{self, Along};
-use super::limits::Limits;
-use super::outline::{BorderVertex, Outline};
 use super::stitch;
 use super::triangulation::Triangulation;
 use crate::bezier::{BezierPatch, Side};
+use crate::sampling::Limits;
+use crate::sampling::{BorderVertex, Outline};
 use crate::scalar::Point;
 
 /// No mesh vertex yet: a point inside the piece.

@@ -1,17 +1,111 @@
 //! Triangles for every piece, each proved within the chord tolerance.
+//!
+//! A piece is laid out (`layout`): its border as the seams have sampled it, its
+//! inside as rows of the optimal lattice (`lattice`, steps from a coarse
+//! `field` of second derivatives), stitched into triangles (`stitch`) and
+//! improved by exchanging diagonals. None of that is trusted: every triangle is
+//! then proved (`certificate`, `verdict`), and refined until it is, or the run
+//! fails and says where (`fill`).
 
 mod certificate;
 mod field;
 mod fill;
+mod floor;
 mod lattice;
 mod layout;
-mod limits;
-mod outline;
 mod planar;
 mod quadratic;
 mod stitch;
 mod triangulation;
 mod verdict;
 
-pub use limits::Limits;
-pub use outline::{BorderVertex, Outline};
+use rayon::prelude::*;
+use thiserror::Error;
+
+use crate::patch_set::{PatchSet, PieceId};
+use crate::sampling::{Limits, Samples};
+use crate::scalar::Point;
+use crate::topology::Topology;
+
+pub use fill::{Attained, Filled, Proved};
+pub use floor::floor;
+
+/// A piece that could not be held within its limits.
+#[derive(Debug, Clone, PartialEq, Error)]
+pub enum TessellationError {
+    /// Refinement ended without proof.
+    #[error(
+        "patch `{patch}` at (u, v) = ({u:.6}, {v:.6}), place ({x:.6}, {y:.6}, {z:.6}): a triangle could only be proved within {proved:.3e}; the chord tolerance is {chord:.3e} - a larger chord, or a smaller gap where an edge is joined to its neighbour there, lets the run through"
+    )]
+    Unproved {
+        /// The patch.
+        patch: String,
+        /// The patch's own parameters.
+        u: f64,
+        /// The patch's own parameters.
+        v: f64,
+        /// The place.
+        x: f64,
+        /// The place.
+        y: f64,
+        /// The place.
+        z: f64,
+        /// What could be proved.
+        proved: f64,
+        /// What was asked.
+        chord: f64,
+    },
+}
+
+/// The filled pieces of a set.
+#[derive(Debug)]
+pub struct Tessellation {
+    /// One entry a piece, in the set's order; `None` where the piece was not
+    /// asked for.
+    pub pieces: Vec<Option<Filled>>,
+}
+
+/// Fills every piece for which `wanted` holds with triangles proved to be
+/// within the limits.
+///
+/// # Errors
+/// [`TessellationError`] names the first piece, in the set's order, that could
+/// not be proved.
+pub fn tessellate(
+    set: &PatchSet,
+    topology: &Topology,
+    samples: &Samples,
+    limits: &Limits,
+    wanted: impl Fn(PieceId) -> bool + Sync,
+) -> Result<Tessellation, TessellationError> {
+    let filled: Vec<Result<Option<Filled>, TessellationError>> = (0..set.pieces().len())
+        .into_par_iter()
+        .map(|index| {
+            let id = PieceId::new(index);
+            if !wanted(id) {
+                return Ok(None);
+            }
+            let outline = samples.outline(set, topology, id);
+            let piece = &set.pieces()[index];
+            fill::fill(&piece.surface, &outline, limits)
+                .map(Some)
+                .map_err(|stuck| {
+                    let [u, v] = piece.patch_parameters(stuck.place);
+                    let Point { coords } = stuck.point;
+                    TessellationError::Unproved {
+                        patch: set.patch_of(id).name.clone(),
+                        u,
+                        v,
+                        x: coords.x,
+                        y: coords.y,
+                        z: coords.z,
+                        proved: stuck.proved,
+                        chord: limits.chord,
+                    }
+                })
+        })
+        .collect();
+    // The first failure in the set's order, whichever thread met its own first.
+    let pieces = filled.into_iter().collect::<Result<Vec<_>, _>>()?;
+    Ok(Tessellation { pieces })
+}

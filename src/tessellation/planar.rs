@@ -8,9 +8,9 @@
 //! sqrt((2 d)^2 + D^2) of S: a point of the polygon farther than D from the
 //! border has winding number 1 about it, so S covers it.
 
-use super::limits::Limits;
-use super::outline::Outline;
 use crate::bezier::{BezierPatch, Side};
+use crate::sampling::Limits;
+use crate::sampling::Outline;
 use crate::scalar::{Point, Vector};
 
 /// The proved deviation, both ways, of any triangulation of the border

@@ -1,0 +1,97 @@
+//! How close the samples of a seam must stand at one place.
+//!
+//! ```text
+//! 1 / h = max over the uses of
+//!   sqrt(kappa / (8 lambda e))           the curve within lambda e of its chords
+//!   sqrt(|M| / (8.94 e)), |M| W / (8 e)  the smaller, where K < 0
+//!   sqrt(L^2 + M^2) / psi                where a normal angle psi is asked for
+//! ```
+//!
+//! L, M, N is the second form in the frame (along, across), W the width of the
+//! piece. The triangle of least area at error e has edges of error 3/4 e where
+//! K > 0, so a run that used all of e would leave the triangles beside it
+//! without proof: lambda = 0.75 there, and 0.95 where the surface across is
+//! straight (or saddle-shaped) as far as the piece goes. The twist terms are
+//! the lattice's own: along a straight edge of a saddle the samples stand as
+//! far apart as the rows inside.
+
+use super::Limits;
+use crate::bezier::{BezierPatch, CurveJet, Side};
+
+/// The part of the chord an edge may use where the surface bends across it.
+const BENT_ACROSS: f64 = 0.75;
+
+/// The part it may use where the surface is straight across.
+const STRAIGHT_ACROSS: f64 = 0.95;
+
+/// A surface that takes part in a seam.
+#[derive(Debug)]
+pub(super) struct Use<'a> {
+    pub(super) surface: &'a BezierPatch,
+    pub(super) side: Side,
+    /// Parameters on that side at the start and end of the master's stretch.
+    pub(super) t: [f64; 2],
+}
+
+/// Samples per unit length wanted where the master has the jet `curve`; `s` is
+/// the place in the stretch, 0 to 1.
+pub(super) fn density(curve: &CurveJet, uses: &[Use], s: f64, limits: &Limits) -> f64 {
+    let e = limits.chord;
+    let curvature = curve.curvature();
+    let mut bent = 0.0_f64;
+    let mut least = limits.max_edge.map_or(0.0, |edge| 1.0 / edge);
+    for usage in uses {
+        let Some(shape) = shape(usage, s) else {
+            continue;
+        };
+        let gaussian = shape.along * shape.across - shape.twist * shape.twist;
+        if gaussian > 0.0 {
+            bent = bent.max((shape.across.abs() * shape.width * shape.width / (8.0 * e)).min(1.0));
+        } else if shape.twist.abs() > 0.0 {
+            let twist = shape.twist.abs();
+            least = least.max(
+                (twist / (8.94 * e))
+                    .sqrt()
+                    .min(twist * shape.width / (8.0 * e)),
+            );
+        }
+        if let Some(turn) = limits.normal_rad {
+            least = least.max(shape.along.hypot(shape.twist) / (0.9 * turn));
+        }
+    }
+    let lambda = STRAIGHT_ACROSS - (STRAIGHT_ACROSS - BENT_ACROSS) * bent;
+    least.max((curvature / (8.0 * lambda * e)).sqrt())
+}
+
+/// The second form of a use in the frame of its edge, and its width.
+struct Shape {
+    along: f64,
+    twist: f64,
+    across: f64,
+    width: f64,
+}
+
+fn shape(usage: &Use, s: f64) -> Option<Shape> {
+    let t = usage.t[0] * (1.0 - s) + usage.t[1] * s;
+    let [u, v] = usage.side.at(t);
+    let jet = usage.surface.jet(u, v);
+    let normal = jet.normal()?;
+    let [l, m, n] = jet.second_form(&normal);
+    let (first, second, ss, sc, cc) = match usage.side {
+        Side::V0 | Side::V1 => (jet.du, jet.dv, l, m, n),
+        Side::U0 | Side::U1 => (jet.dv, jet.du, n, m, l),
+    };
+    let speed = first.norm_squared();
+    let lean = first.dot(&second) / speed;
+    let perpendicular = second - first * lean;
+    let width = perpendicular.norm();
+    if speed <= 0.0 || width <= 0.0 {
+        return None;
+    }
+    Some(Shape {
+        along: ss / speed,
+        twist: (sc - lean * ss) / (speed.sqrt() * width),
+        across: (cc - 2.0 * lean * sc + lean * lean * ss) / (width * width),
+        width,
+    })
+}
