@@ -7,6 +7,7 @@
 //! round-off, and coordinates use only sums, products, quotients and square
 //! roots, which are the same on every machine.
 
+mod family;
 mod front_quarter;
 mod guide;
 mod panels;
@@ -17,6 +18,7 @@ mod text;
 
 use std::io::{self, Write};
 
+pub use family::{Member, family};
 pub use panels::write_panels;
 
 /// A shipped set.
