@@ -10,7 +10,7 @@
 //! L, M, N is the second form in the frame (along, across), W the width of the
 //! piece. The triangle of least area at error e has edges of error 3/4 e where
 //! K > 0, so a run that used all of e would leave the triangles beside it
-//! without proof: lambda = 0.75 there, and 0.95 where the surface across is
+//! without proof: lambda = 0.75 there, and 0.9 where the surface across is
 //! straight (or saddle-shaped) as far as the piece goes. The twist terms are
 //! the lattice's own: along a straight edge of a saddle the samples stand as
 //! far apart as the rows inside.
@@ -22,7 +22,7 @@ use crate::bezier::{BezierPatch, CurveJet, Side};
 const BENT_ACROSS: f64 = 0.75;
 
 /// The part it may use where the surface is straight across.
-const STRAIGHT_ACROSS: f64 = 0.95;
+const STRAIGHT_ACROSS: f64 = 0.9;
 
 /// A surface that takes part in a seam.
 #[derive(Debug)]

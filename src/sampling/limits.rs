@@ -16,7 +16,7 @@ pub struct Limits {
 
 /// Inner triangles are laid out for this part of the chord: the rest is for
 /// the Hessian's change over a triangle, which the layout does not see.
-const LAYOUT: f64 = 0.97;
+const LAYOUT: f64 = 0.985;
 
 impl Limits {
     /// Limits for a chord tolerance, and the others where asked for.

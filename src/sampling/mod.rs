@@ -6,6 +6,7 @@
 //! master edge; the other uses find their own parameters by nearest point and
 //! count the gap in their proved deviation.
 
+mod cumulative;
 mod density;
 mod limits;
 mod outline;
@@ -13,6 +14,7 @@ mod projection;
 mod run;
 mod samples;
 
+pub(crate) use cumulative::{Cumulative, ratio};
 pub use limits::Limits;
 pub use outline::{BorderVertex, Outline};
 pub use run::{Run, SamplingError};

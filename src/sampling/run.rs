@@ -4,6 +4,7 @@ use rayon::prelude::*;
 use thiserror::Error;
 
 use super::Limits;
+use super::cumulative::{Cumulative, ratio};
 use super::density::{Use, density};
 use crate::bezier::BezierCurve;
 use crate::patch_set::PatchSet;
@@ -101,22 +102,16 @@ fn run(
         })
         .collect();
     let at = |s: f64| t[0] * (1.0 - s) + t[1] * s;
-    let mut sums = vec![0.0];
-    let mut before = 0.0;
-    for k in 0..=STATIONS {
+    let sums = Cumulative::new((0..=STATIONS).map(|k| {
         let s = ratio(k, STATIONS);
         let jet = curve.jet(at(s));
-        let here = density(&jet, &uses, s, limits) * jet.dt.norm() * (t[1] - t[0]).abs();
-        if k > 0 {
-            sums.push(sums[k - 1] + (before + here) / 2.0 * ratio(1, STATIONS));
-        }
-        before = here;
-    }
-    let total = sums[STATIONS];
+        density(&jet, &uses, s, limits) * jet.dt.norm() * (t[1] - t[0]).abs()
+    }));
+    let total = sums.total();
     let mut count = count(total - 1e-9);
     loop {
         let mut ts: Vec<f64> = (1..count)
-            .map(|k| at(inverse(&sums, total * ratio(k, count))))
+            .map(|k| at(sums.reach(total * ratio(k, count))))
             .collect();
         if backwards {
             ts.reverse();
@@ -162,22 +157,4 @@ fn lexicographic(p: &Point) -> [f64; 3] {
 )]
 fn count(total: f64) -> usize {
     total.ceil().clamp(1.0, ratio(MOST_SAMPLES + 1, 1)) as usize
-}
-
-#[allow(clippy::cast_precision_loss, reason = "counts stay far below 2^52")]
-fn ratio(k: usize, n: usize) -> f64 {
-    k as f64 / n as f64
-}
-
-/// Where the sums, sampled evenly over 0..1, reach `target`.
-fn inverse(sums: &[f64], target: f64) -> f64 {
-    let cells = sums.len() - 1;
-    let cell = sums.partition_point(|&s| s <= target).clamp(1, cells) - 1;
-    let width = sums[cell + 1] - sums[cell];
-    let inside = if width > 0.0 {
-        ((target - sums[cell]) / width).clamp(0.0, 1.0)
-    } else {
-        0.5
-    };
-    ratio(cell, cells) + inside * ratio(1, cells)
 }

@@ -288,7 +288,7 @@ impl Shape {
             (0..=d).map(|s| index([s, 0, d - s])).collect(),
         ];
         let binomial = |n: usize, k: usize| {
-            (0..k).fold(1.0, |value, i| value * super::field::ratio(n - i, i + 1))
+            (0..k).fold(1.0, |value, i| value * crate::sampling::ratio(n - i, i + 1))
         };
         self.binomials = (0..=d).map(|i| binomial(d, i)).collect();
         self.multinomials = self
@@ -299,11 +299,11 @@ impl Shape {
     }
 
     fn rest_polynomial(&self, h: &[f64], q: &Quadratic) -> f64 {
-        let d = super::field::ratio(self.degree, 1);
+        let d = crate::sampling::ratio(self.degree, 1);
         let scale = 1.0 / (d * (d - 1.0));
         let mut worst = 0.0_f64;
         for (triple, height) in self.triples.iter().zip(h) {
-            let [i, j, k] = triple.map(|x| super::field::ratio(x, 1));
+            let [i, j, k] = triple.map(|x| crate::sampling::ratio(x, 1));
             let raised = i * (i - 1.0) * q.corner[0]
                 + j * (j - 1.0) * q.corner[1]
                 + k * (k - 1.0) * q.corner[2]
@@ -400,10 +400,7 @@ mod tests {
             let spread = [1.0, 1e-3, 1e3][round % 3];
             let points = (0..(m + 1) * (n + 1)).map(|k| {
                 let (i, j) = (k / (n + 1), k % (n + 1));
-                let (x, y) = (
-                    super::super::field::ratio(i, m),
-                    super::super::field::ratio(j, n),
-                );
+                let (x, y) = (crate::sampling::ratio(i, m), crate::sampling::ratio(j, n));
                 Point::new(x + 0.2 * next(), y + 0.2 * next(), spread * next())
             });
             let points = points.collect();

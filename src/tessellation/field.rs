@@ -2,6 +2,7 @@
 //! diagonals by. Nothing here proves anything.
 
 use crate::bezier::BezierPatch;
+use crate::sampling::ratio;
 use crate::scalar::{Point, Vector};
 
 /// Grid cells in each direction for a polynomial of degree 3 or less.
@@ -19,6 +20,8 @@ pub(super) struct Bend {
     pub(super) first: [Vector; 2],
     /// S_uu, S_uv, S_vv.
     pub(super) second: [Vector; 3],
+    /// The second form (n.S_uu, n.S_uv, n.S_vv).
+    pub(super) form: [f64; 3],
 }
 
 impl Bend {
@@ -27,6 +30,7 @@ impl Bend {
             let [a, b, c, d] = corners.map(get);
             a * weights[0] + b * weights[1] + c * weights[2] + d * weights[3]
         };
+        let form = |k: usize| (0..4).map(|c| corners[c].form[k] * weights[c]).sum::<f64>();
         Self {
             normal: mix(&|b| b.normal),
             first: [mix(&|b| b.first[0]), mix(&|b| b.first[1])],
@@ -35,12 +39,8 @@ impl Bend {
                 mix(&|b| b.second[1]),
                 mix(&|b| b.second[2]),
             ],
+            form: [form(0), form(1), form(2)],
         }
-    }
-
-    /// The second form (n.S_uu, n.S_uv, n.S_vv).
-    pub(super) fn form(&self) -> [f64; 3] {
-        self.second.map(|s| s.dot(&self.normal))
     }
 
     /// S'' applied twice to a parameter step.
@@ -67,10 +67,12 @@ impl Field {
                 let (u, v) = (ratio(i, cells), ratio(j, cells));
                 let jet = surface.jet(u, v);
                 let normal = jet.normal().or_else(|| surface.normal(u, v));
+                let normal = normal.unwrap_or_else(Vector::zeros);
                 bends.push(Bend {
-                    normal: normal.unwrap_or_else(Vector::zeros),
+                    normal,
                     first: [jet.du, jet.dv],
                     second: [jet.duu, jet.duv, jet.dvv],
+                    form: jet.second_form(&normal),
                 });
             }
         }
@@ -116,7 +118,9 @@ impl Field {
                 places[next][1] - places[k][1],
             ];
             let q = bend.bend(step);
-            square[k] = bend.normal.dot(&q);
+            square[k] = bend.form[0] * step[0] * step[0]
+                + bend.form[1] * 2.0 * step[0] * step[1]
+                + bend.form[2] * step[1] * step[1];
             let along = points[next] - points[k];
             let length = along.norm();
             if length > 0.0 {
@@ -127,9 +131,4 @@ impl Field {
         let (height, _) = super::quadratic::Quadratic::interpolation_error(square).largest();
         height.max(worst_edge)
     }
-}
-
-#[allow(clippy::cast_precision_loss, reason = "grid counts are small")]
-pub(super) fn ratio(i: usize, n: usize) -> f64 {
-    i as f64 / n as f64
 }

@@ -8,6 +8,7 @@ use super::{planar, verdict};
 use crate::bezier::BezierPatch;
 use crate::sampling::Limits;
 use crate::sampling::Outline;
+use crate::sampling::ratio;
 use crate::scalar::{Point, Vector};
 
 /// An inner edge shorter than this in both parameters is not split again: the
@@ -73,46 +74,103 @@ pub(crate) struct Stuck {
 pub(super) struct Work<'a> {
     surface: &'a BezierPatch,
     limits: &'a Limits,
-    field: Field,
+    field: &'a Field,
     pub(super) layout: Layout,
     normals: Vec<Option<Vector>>,
     pub(super) flats: Vec<Flat>,
     pub(super) cells: Vec<Cell>,
     stale: Vec<bool>,
+    prover: Prover<'a>,
+    figures: Vec<Proved>,
+    ring: Vec<u32>,
 }
 
 /// Fills one piece with triangles that are proved within the limits.
+///
+/// The layout follows the second derivatives and may come out a hair too wide
+/// everywhere, which refinement would answer by halving everything. So the
+/// first proof of a layout is looked at as a whole, and the layout made again,
+/// finer by what was missing, while more than a few triangles fail.
 pub(crate) fn fill(
     surface: &BezierPatch,
     outline: &Outline,
     limits: &Limits,
 ) -> Result<Filled, Stuck> {
     let field = Field::new(surface);
-    let layout = layout(surface, &field, outline, limits);
-    let count = layout.triangulation.triangles.len();
-    let mut work = Work {
-        surface,
-        limits,
-        field,
-        normals: vec![None; layout.points.len()],
-        layout,
-        flats: Vec::new(),
-        cells: Vec::new(),
-        stale: vec![true; count],
-    };
-    let all = (0..count).flat_map(|t| (0..3).map(move |i| (index(t), i)));
-    let mut edges: Vec<TriangleEdge> = all.collect();
-    work.improve(&mut edges);
-    let flat = planar::proof(surface, outline, limits);
-    let proved = work.prove(flat)?;
-    Ok(work.finish(proved))
+    let planar = planar::proof(surface, outline, limits);
+    let mut spacing = *limits;
+    for attempt in 1.. {
+        let mut work = Work::new(
+            surface,
+            &field,
+            limits,
+            layout(surface, &field, outline, &spacing),
+        );
+        let failing = work.first_proof(planar);
+        if attempt == LAYOUTS || failing.share <= FEW {
+            let proved = work.prove(failing.failed, planar)?;
+            return Ok(work.finish(proved));
+        }
+        spacing.interior /= (failing.quantile / limits.chord).clamp(1.01, 2.0) * 1.005;
+    }
+    unreachable!("the last attempt returns")
+}
+
+/// Layouts tried at most.
+const LAYOUTS: usize = 4;
+
+/// A layout with no more than this share of failing triangles is refined.
+const FEW: f64 = 0.06;
+
+/// The figure that this share of the triangles keep decides how much finer the
+/// next layout is.
+const QUANTILE: f64 = 0.9;
+
+/// How the first proof of a layout went.
+struct Failing {
+    /// The triangles that failed.
+    failed: Vec<u32>,
+    /// Their share.
+    share: f64,
+    /// Deviation that [`QUANTILE`] of the triangles keep.
+    quantile: f64,
+}
+
+#[allow(
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    reason = "a share of a count"
+)]
+fn floor_index(at: f64) -> usize {
+    at as usize
 }
 
 fn index(t: usize) -> u32 {
     u32::try_from(t).expect("a piece has far fewer than 2^32 triangles")
 }
 
-impl Work<'_> {
+impl<'a> Work<'a> {
+    fn new(surface: &'a BezierPatch, field: &'a Field, limits: &'a Limits, layout: Layout) -> Self {
+        let count = layout.triangulation.triangles.len();
+        let mut work = Self {
+            surface,
+            limits,
+            field,
+            normals: vec![None; layout.points.len()],
+            layout,
+            flats: Vec::new(),
+            cells: Vec::new(),
+            stale: vec![true; count],
+            prover: Prover::new(surface),
+            figures: Vec::new(),
+            ring: Vec::new(),
+        };
+        let all = (0..count).flat_map(|t| (0..3).map(move |i| (index(t), i)));
+        let mut edges: Vec<TriangleEdge> = all.collect();
+        work.improve(&mut edges);
+        work
+    }
+
     fn error(&self, corners: [u32; 3]) -> f64 {
         let places = corners.map(|v| self.layout.triangulation.places[v as usize]);
         self.field
@@ -143,61 +201,88 @@ impl Work<'_> {
         }
     }
 
-    /// Proves every triangle, refining where the proof fails.
-    fn prove(&mut self, planar: Option<f64>) -> Result<Proved, Stuck> {
-        let mut prover = Prover::new(self.surface);
-        let mut most = self.layout.triangulation.triangles.len();
-        most = most * GROWTH + GROWTH_BASE;
-        let mut ring = Vec::new();
-        let mut figures: Vec<Proved> = Vec::new();
-        loop {
-            let count = self.layout.triangulation.triangles.len();
-            let stale: Vec<u32> = (0..index(count))
-                .filter(|&t| self.stale[t as usize])
-                .collect();
-            self.measure(&mut prover, &stale);
-            figures.resize(count, Proved::default());
-            let mut affected = stale.clone();
+    /// Proves a fresh layout and tells how it went.
+    fn first_proof(&mut self, planar: Option<f64>) -> Failing {
+        let failed = self.round(planar);
+        let mut worst: Vec<f64> = self
+            .figures
+            .iter()
+            .map(|f| f.to_mesh.max(f.to_surface))
+            .collect();
+        let count = worst.len();
+        let at = floor_index(QUANTILE * ratio(count, 1)).min(count - 1);
+        let (_, quantile, _) = worst.select_nth_unstable_by(at, f64::total_cmp);
+        let quantile = *quantile;
+        Failing {
+            share: ratio(failed.len(), count),
+            failed,
+            quantile,
+        }
+    }
+
+    /// Brings all figures up to date; returns the triangles that fail.
+    fn round(&mut self, planar: Option<f64>) -> Vec<u32> {
+        let count = self.layout.triangulation.triangles.len();
+        let stale: Vec<u32> = (0..index(count))
+            .filter(|&t| self.stale[t as usize])
+            .collect();
+        self.measure(&stale);
+        self.figures.resize(count, Proved::default());
+        let mut ring = std::mem::take(&mut self.ring);
+        let mut affected = stale.clone();
+        if stale.len() < count {
             for &t in &stale {
-                self.stale[t as usize] = false;
                 self.layout.triangulation.ring(t, &mut ring);
                 affected.extend_from_slice(&ring);
             }
             affected.sort_unstable();
             affected.dedup();
-            let mut failed = Vec::new();
-            for &t in &affected {
-                let figure = match planar {
-                    Some(bound) => Proved {
-                        to_mesh: bound,
-                        to_surface: bound,
-                    },
-                    None => verdict::judge(self, t, self.limits.chord, &mut ring),
-                };
-                figures[t as usize] = figure;
-                let within = figure.to_mesh.max(figure.to_surface) <= self.limits.chord;
-                if !within || !self.keeps_shape(t) {
-                    failed.push(t);
-                }
+        }
+        for &t in &stale {
+            self.stale[t as usize] = false;
+        }
+        let mut failed = Vec::new();
+        for &t in &affected {
+            let figure = match planar {
+                Some(bound) => Proved {
+                    to_mesh: bound,
+                    to_surface: bound,
+                },
+                None => verdict::judge(self, t, self.limits.chord, &mut ring),
+            };
+            self.figures[t as usize] = figure;
+            let within = figure.to_mesh.max(figure.to_surface) <= self.limits.chord;
+            if !within || !self.keeps_shape(t) {
+                failed.push(t);
             }
-            if failed.is_empty() {
-                let worst = figures.iter().fold(Proved::default(), |worst, f| Proved {
-                    to_mesh: worst.to_mesh.max(f.to_mesh),
-                    to_surface: worst.to_surface.max(f.to_surface),
-                });
-                return Ok(worst);
-            }
+        }
+        self.ring = ring;
+        failed
+    }
+
+    /// Refines what failed until everything is proved; returns the figures of
+    /// the worst triangle.
+    fn prove(&mut self, mut failed: Vec<u32>, planar: Option<f64>) -> Result<Proved, Stuck> {
+        let most = self.layout.triangulation.triangles.len() * GROWTH + GROWTH_BASE;
+        while !failed.is_empty() {
             for t in failed {
                 if self.stale[t as usize] {
                     continue;
                 }
-                let figure = figures[t as usize];
-                let stuck = self.refine(t);
-                if stuck || self.layout.triangulation.triangles.len() > most {
+                let figure = self.figures[t as usize];
+                if self.refine(t) || self.layout.triangulation.triangles.len() > most {
                     return Err(self.stuck(t, figure.to_mesh.max(figure.to_surface)));
                 }
             }
+            failed = self.round(planar);
         }
+        Ok(self
+            .figures
+            .iter()
+            .fold(Proved::default(), |worst, f| Proved {
+                to_mesh: worst.to_mesh.max(f.to_mesh),
+                to_surface: worst.to_surface.max(f.to_surface),
+            }))
     }
 
     fn stuck(&self, t: u32, proved: f64) -> Stuck {
@@ -214,7 +299,7 @@ impl Work<'_> {
     /// Brings flats and cells up to date. A cell whose triangle has no area
     /// (two of its corners are the pole) is proved against the better of its
     /// neighbours, which then answers for it.
-    fn measure(&mut self, prover: &mut Prover, stale: &[u32]) {
+    fn measure(&mut self, stale: &[u32]) {
         let count = self.layout.triangulation.triangles.len();
         let empty = Flat::new([Point::origin(); 3]);
         self.flats.resize(count, empty);
@@ -252,7 +337,7 @@ impl Work<'_> {
                 .any(|&n| n != BORDER && is_flat(self, n));
             if self.stale[t as usize] || near_flat || is_flat(self, t) {
                 let places = self.layout.triangulation.corners(t);
-                self.cells[t as usize] = prover.cell(places, &self.flats[t as usize], true);
+                self.cells[t as usize] = self.prover.cell(places, &self.flats[t as usize], true);
             }
             if near_flat {
                 let flat_neighbours = self.layout.triangulation.neighbours[t as usize];
@@ -266,13 +351,13 @@ impl Work<'_> {
         around_flat.sort_unstable();
         around_flat.dedup();
         for t in around_flat {
-            self.attach(prover, t);
+            self.attach(t);
         }
     }
 
-    fn attach(&mut self, prover: &mut Prover, t: u32) {
+    fn attach(&mut self, t: u32) {
         let places = self.layout.triangulation.corners(t);
-        let own = prover.cell(places, &self.flats[t as usize], true);
+        let own = self.prover.cell(places, &self.flats[t as usize], true);
         let mut best: Option<(usize, u32, Cell)> = None;
         for (i, &host) in self.layout.triangulation.neighbours[t as usize]
             .iter()
@@ -281,7 +366,7 @@ impl Work<'_> {
             if host == BORDER || self.flats[host as usize].normal.is_none() {
                 continue;
             }
-            let cell = prover.cell(places, &self.flats[host as usize], false);
+            let cell = self.prover.cell(places, &self.flats[host as usize], false);
             if best.as_ref().is_none_or(|(_, _, b)| cell.direct < b.direct) {
                 best = Some((i, host, cell));
             }

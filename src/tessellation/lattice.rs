@@ -15,8 +15,9 @@
 //! follows from asking that one sloping edge has Q = 8 e and the other -8 e;
 //! there h is free, and is taken so that triangles are about as long as wide.
 
-use super::field::{Bend, Field, ratio};
+use super::field::{Bend, Field};
 use crate::sampling::Limits;
+use crate::sampling::{Cumulative, ratio};
 
 /// Samples along a row, and of rows.
 const SAMPLES: usize = 16;
@@ -69,7 +70,7 @@ struct Step {
 
 impl Step {
     fn new(bend: &Bend, along: Along, limits: &Limits) -> Self {
-        let [l, m, n] = bend.form();
+        let [l, m, n] = bend.form;
         let (form, first) = match along {
             Along::U => ([l, m, n], bend.first),
             Along::V => ([n, m, l], [bend.first[1], bend.first[0]]),
@@ -86,11 +87,12 @@ impl Step {
                 (determinant / (4.5 * e * a.abs())).sqrt(),
             )
         } else if determinant < -floor {
-            // h as long as wide, or shorter where the row itself bends.
+            // h as long as wide, shorter where the row itself bends, and no
+            // longer than the piece.
             let round = (determinant.abs().sqrt() / (8.94 * e) * size_p
                 / size_q.max(f64::MIN_POSITIVE))
             .sqrt();
-            let step = round.max((a.abs() / (8.0 * e)).sqrt());
+            let step = round.max((a.abs() / (8.0 * e)).sqrt()).max(1.0);
             let square = (a / step).powi(2) / 4.0 + (8.0 * e * step).powi(2);
             (step, (-determinant / square).sqrt())
         } else {
@@ -138,7 +140,7 @@ impl Step {
 /// |dn| for a unit step of the parameters along `direction`.
 fn turn_rate(bend: &Bend, direction: [f64; 2]) -> f64 {
     let [du, dv] = direction;
-    let [l, m, n] = bend.form();
+    let [l, m, n] = bend.form;
     // Weingarten: n_u = -(shape operator) in the basis S_u, S_v.
     let (e, f, g) = (
         bend.first[0].norm_squared(),
@@ -219,21 +221,25 @@ impl Plan {
         mean.powf(0.25)
     }
 
+    fn row_sums(&self) -> Cumulative {
+        Cumulative::new((0..=SAMPLES).map(|j| self.density(j)))
+    }
+
     /// Number of row distances over the whole piece, not rounded.
     fn rows_total(&self) -> f64 {
-        cumulative((0..=SAMPLES).map(|j| self.density(j)))[SAMPLES]
+        self.row_sums().total()
     }
 
     /// Number of steps in the row at sample j.
     fn row_total(&self, j: usize) -> f64 {
-        cumulative(self.row_steps(j).iter().map(|s| s.rows_step))[SAMPLES]
+        Cumulative::new(self.row_steps(j).iter().map(|s| s.rows_step)).total()
     }
 
     /// The q of every row, and the mean distance between rows.
     fn row_places(&self) -> (Vec<f64>, f64) {
-        let sums = cumulative((0..=SAMPLES).map(|j| self.density(j)));
-        let count = round_up(sums[SAMPLES], ROW_SLACK);
-        let places = (1..count).map(|k| inverse(&sums, sums[SAMPLES] * ratio(k, count)));
+        let sums = self.row_sums();
+        let count = round_up(sums.total(), ROW_SLACK);
+        let places = (1..count).map(|k| sums.reach(sums.total() * ratio(k, count)));
         (places.collect(), 1.0 / ratio(count, 1))
     }
 
@@ -247,9 +253,9 @@ impl Plan {
                 )
             })
             .collect();
-        let sums = cumulative(steps.iter().map(|s| s.rows_step));
-        let total = sums[SAMPLES];
-        if total < 2.0 * SIDE_CLEARANCE || before.len() < 2 {
+        let sums = Cumulative::new(steps.iter().map(|s| s.rows_step));
+        let total = sums.total();
+        if total < 2.0 * SIDE_CLEARANCE {
             return Vec::new();
         }
         let offset = self.offset(&steps, &sums, gap, before, limits);
@@ -257,7 +263,7 @@ impl Plan {
         let mut phase = offset;
         while phase < total - SIDE_CLEARANCE {
             if phase > SIDE_CLEARANCE {
-                row.push(inverse(&sums, phase));
+                row.push(sums.reach(phase));
             }
             phase += 1.0;
         }
@@ -269,7 +275,7 @@ impl Plan {
     fn offset(
         &self,
         steps: &[Step],
-        sums: &[f64],
+        sums: &Cumulative,
         gap: f64,
         before: &[f64],
         limits: &Limits,
@@ -284,51 +290,12 @@ impl Plan {
             if !(0.0..=1.0).contains(&target) {
                 continue;
             }
-            let turn = (forward(sums, target) - index_in(before, p)) * std::f64::consts::TAU;
+            let turn = (sums.at(target) - index_in(before, p)) * std::f64::consts::TAU;
             x += turn.cos();
             y += turn.sin();
         }
         (y.atan2(x) / std::f64::consts::TAU).rem_euclid(1.0)
     }
-}
-
-/// Trapezoid sums of a density sampled evenly over 0..1, starting at zero.
-fn cumulative(density: impl Iterator<Item = f64>) -> Vec<f64> {
-    let values: Vec<f64> = density.collect();
-    let mut sums = Vec::with_capacity(values.len());
-    sums.push(0.0);
-    let mut sum = 0.0;
-    for pair in values.windows(2) {
-        sum += (pair[0] + pair[1]) / 2.0 * ratio(1, values.len() - 1);
-        sums.push(sum);
-    }
-    sums
-}
-
-/// The parameter at which the sums reach `target`.
-fn inverse(sums: &[f64], target: f64) -> f64 {
-    let cells = sums.len() - 1;
-    let cell = sums.partition_point(|&s| s <= target).clamp(1, cells) - 1;
-    let width = sums[cell + 1] - sums[cell];
-    let inside = if width > 0.0 {
-        ((target - sums[cell]) / width).clamp(0.0, 1.0)
-    } else {
-        0.5
-    };
-    (ratio(cell, cells) + inside * ratio(1, cells)).clamp(0.0, 1.0)
-}
-
-/// The sum reached at parameter `t`.
-#[allow(
-    clippy::cast_possible_truncation,
-    clippy::cast_sign_loss,
-    reason = "a parameter in 0..1 times a sample count"
-)]
-fn forward(sums: &[f64], t: f64) -> f64 {
-    let cells = sums.len() - 1;
-    let scaled = t * ratio(cells, 1);
-    let cell = (scaled as usize).min(cells - 1);
-    sums[cell] + (sums[cell + 1] - sums[cell]) * (scaled - ratio(cell, 1))
 }
 
 /// Where `p` stands among ascending `chain`, as a fractional index, carried on

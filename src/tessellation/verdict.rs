@@ -88,7 +88,7 @@ fn ring_figures(work: &Work, t: u32, ring: &[u32], border: bool) -> Option<Prove
         to_mesh: if border {
             cell.direct
         } else {
-            cell.height + sideways * tan
+            cell.height + cell.sideways * tan
         },
         to_surface: (height + (2.0 * sideways + height * tan) * tan).max(border_edges),
     })
