@@ -13,9 +13,11 @@ mod man;
 mod outcome;
 mod output;
 mod panels;
+mod progress;
 mod seams;
 mod source;
 mod style;
+mod tessellate;
 
 pub use outcome::Outcome;
 
@@ -40,6 +42,7 @@ enum Command {
     Demo(demo::DemoArguments),
     Man(man::ManArguments),
     Seams(seams::SeamsArguments),
+    Tessellate(tessellate::TessellateArguments),
 }
 
 /// Runs the program on the given arguments, the program's name first.
@@ -51,6 +54,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
             Command::Demo(arguments) => arguments.run(),
             Command::Man(arguments) => arguments.run(),
             Command::Seams(arguments) => arguments.run(),
+            Command::Tessellate(arguments) => arguments.run(),
         }
         .into(),
         Err(error) => {

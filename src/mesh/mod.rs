@@ -3,12 +3,14 @@
 mod assemble;
 mod deviation;
 mod edges;
+mod job;
 mod measure;
 mod model;
 mod storage;
 mod strips;
 
 pub use deviation::Deviation;
+pub use job::{MeshError, Meshed, Stages};
 pub use measure::Measures;
 pub use model::{Mesh, Part, Vertex};
 pub use storage::Storage;

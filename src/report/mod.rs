@@ -3,9 +3,12 @@
 mod caution;
 mod seams;
 mod seams_text;
+mod summary;
+mod summary_text;
 
 pub use caution::CAUTION;
 pub use seams::{
     CrowdLine, EdgeName, FigureLine, LoopLine, NearMissLine, PlaceLine, SeamLine, SeamReport,
     SeamSummary, ToleranceLines,
 };
+pub use summary::{DeviationLine, SecondsLine, StorageLine, Summary, WrittenLine};

@@ -1,0 +1,228 @@
+//! `chordwise tessellate`: from a patch set to a proved mesh in a file.
+
+use std::io::Write;
+use std::path::PathBuf;
+use std::time::Instant;
+
+use clap::Args;
+use clap::builder::{PossibleValuesParser, TypedValueParser};
+
+use super::Outcome;
+use super::output::Output;
+use super::panels::panels;
+use super::progress::Progress;
+use super::source;
+use super::style::OutputStyle;
+use crate::format::{self, Format, Layout, WriteOptions};
+use crate::mesh::{Meshed, Strips};
+use crate::patch_set::{PanelId, PatchSet};
+use crate::report::{SecondsLine, Summary};
+use crate::sampling::Limits;
+use crate::scalar::{Length, Tolerance};
+
+const EXAMPLES: &str = "\
+Examples:
+  chordwise tessellate front.ron -o front.glb
+  chordwise tessellate front.ron -o wing.stl --chord 0.02mm --panel wing
+  chordwise tessellate front.ron -o front.ply --normal-angle 10 --max-edge 25
+  chordwise tessellate front.ron --as obj -o - | gzip > front.obj.gz
+
+The format follows the extension. Every triangle is proved to lie within the
+chord tolerance of the surface, and the surface of the mesh, or nothing is
+written. Joined edges share their vertices.
+
+Exit code 0: written. 2: bad usage, unreadable, or a triangle that cannot be
+proved.";
+
+/// Mesh a patch set within a proved chord tolerance
+#[derive(Debug, Args)]
+#[command(before_help = EXAMPLES)]
+pub(super) struct TessellateArguments {
+    /// The patch set; `-` is standard input
+    #[arg(value_name = "SET.ron")]
+    set: PathBuf,
+
+    /// The file to write; `-` is standard output, with --as
+    #[arg(short, long, value_name = "FILE")]
+    output: PathBuf,
+
+    /// Largest distance between mesh and surface, in the set's unit or with
+    /// m, cm, mm or in behind it [default: the set's, else 0.1 mm]
+    #[arg(long, value_name = "LENGTH")]
+    chord: Option<Length>,
+
+    /// Largest turn of the surface normal between corners of a triangle, in
+    /// degrees [default: the set's, else none]
+    #[arg(long, value_name = "DEG")]
+    normal_angle: Option<f64>,
+
+    /// Largest edge of a triangle [default: the set's, else none]
+    #[arg(long, value_name = "LENGTH")]
+    max_edge: Option<Length>,
+
+    /// How triangles are stored [default: indexed; separate for STL]
+    #[arg(long, value_name = "LAYOUT", value_parser = names(&Layout::ALL.map(Layout::name)))]
+    layout: Option<String>,
+
+    /// The file format, where the extension does not say
+    #[arg(long = "as", value_name = "FORMAT", value_parser = names(&Format::ALL.map(Format::name)))]
+    format_name: Option<String>,
+
+    /// Only this panel; may be repeated. Seams keep the vertices they have in
+    /// the whole set, so that panels meshed apart fit together
+    #[arg(long = "panel", value_name = "NAME")]
+    panels: Vec<String>,
+
+    /// Threads to work with; the result is the same for any number
+    /// [default: all cores]
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..))]
+    jobs: Option<u16>,
+
+    /// How the summary is printed
+    #[arg(long, value_enum, default_value_t)]
+    format: OutputStyle,
+}
+
+fn names(names: &[&'static str]) -> impl TypedValueParser<Value = String> + use<> {
+    PossibleValuesParser::new(names.to_vec())
+}
+
+/// Why the job was refused before it began.
+#[derive(Debug, thiserror::Error)]
+enum UsageError {
+    #[error(
+        "--output {0}: no format is known for this extension; name it stl, obj, ply or glb, or give --as"
+    )]
+    Extension(String),
+    #[error(
+        "--output -: standard output has no extension; give the format with --as stl, obj, ply or glb"
+    )]
+    Standard,
+    #[error("--normal-angle {0}: it must be more than 0 and at most 180 degrees")]
+    Angle(f64),
+}
+
+impl TessellateArguments {
+    /// Reads, meshes, writes, and tells how it went.
+    pub(super) fn run(&self) -> Outcome {
+        match self.try_run() {
+            Ok(outcome) => outcome,
+            Err(error) => Outcome::refuse(error),
+        }
+    }
+
+    fn try_run(&self) -> Result<Outcome, Box<dyn std::error::Error>> {
+        let format = self.file_format()?;
+        let layout = self
+            .layout
+            .as_deref()
+            .map(str::parse::<Layout>)
+            .transpose()?;
+        format.layout(layout)?;
+        let output = Output::open(&self.output, &[&self.set])?;
+        if let Some(jobs) = self.jobs {
+            // Fails only if the pool exists already, which then has its size.
+            let _ = rayon::ThreadPoolBuilder::new()
+                .num_threads(jobs.into())
+                .build_global();
+        }
+        let progress = Progress::new();
+        progress.stage("reading");
+        let clock = Instant::now();
+        let reading = match source::read(&self.set) {
+            Ok(reading) => reading,
+            Err(faults) => {
+                drop(progress);
+                source::show_faults(&faults);
+                return Ok(Outcome::Refused);
+            }
+        };
+        let mut seconds = SecondsLine {
+            reading: clock.elapsed().as_secs_f64(),
+            ..SecondsLine::default()
+        };
+        let set = &reading.set;
+        let limits = self.limits(set)?;
+        let chord = Tolerance::new(limits.chord)?;
+        let wanted = self.wanted(set)?;
+        let made = Meshed::new(
+            set,
+            &limits,
+            |piece| wanted[piece.index()],
+            |name| progress.stage(name),
+        )?;
+        progress.stage("finding strips");
+        let clock = Instant::now();
+        let strips = Strips::of(&made.mesh);
+        seconds.strips = clock.elapsed().as_secs_f64();
+        progress.stage("writing");
+        let clock = Instant::now();
+        let options = WriteOptions {
+            layout,
+            strips: Some(&strips),
+            ..WriteOptions::new(chord)
+        };
+        let standard = output.is_standard();
+        let written = output.write(|out| Ok(format::write(&made.mesh, format, &options, out)?))?;
+        seconds.writing = clock.elapsed().as_secs_f64();
+        drop(progress);
+        source::show_warnings(&reading);
+        let Some(written) = written else {
+            return Ok(Outcome::Done);
+        };
+        let summary = Summary::new(set, &limits, &made, &strips, format, &written, seconds);
+        let text = match self.format {
+            OutputStyle::Text => summary.text(),
+            OutputStyle::Json => serde_json::to_string_pretty(&summary)? + "\n",
+        };
+        tell(standard, &text);
+        Ok(Outcome::Done)
+    }
+
+    fn file_format(&self) -> Result<Format, Box<dyn std::error::Error>> {
+        if let Some(name) = &self.format_name {
+            return Ok(name.parse()?);
+        }
+        if self.output.as_os_str() == "-" {
+            return Err(UsageError::Standard.into());
+        }
+        let unknown = || UsageError::Extension(self.output.display().to_string());
+        Ok(Format::from_extension(&self.output).ok_or_else(unknown)?)
+    }
+
+    fn limits(&self, set: &PatchSet) -> Result<Limits, UsageError> {
+        let own = set.tolerances();
+        let unit = set.unit();
+        let chord = self.chord.map_or(own.chord.get(), |c| c.in_unit(unit));
+        let angle = self.normal_angle.or(own.normal_deg.map(Tolerance::get));
+        if let Some(angle) = angle.filter(|a| !(*a > 0.0 && *a <= 180.0)) {
+            return Err(UsageError::Angle(angle));
+        }
+        let edge = self
+            .max_edge
+            .map(|e| e.in_unit(unit))
+            .or(own.max_edge.map(Tolerance::get));
+        Ok(Limits::new(chord, angle.map(f64::to_radians), edge))
+    }
+
+    /// Which pieces belong to the panels asked for.
+    fn wanted(&self, set: &PatchSet) -> Result<Vec<bool>, super::panels::NoPanel> {
+        let chosen: Option<Vec<PanelId>> = panels(set, &self.panels)?;
+        let of_piece = |piece: &crate::patch_set::Piece| set.patches()[piece.patch.index()].panel;
+        Ok(set
+            .pieces()
+            .iter()
+            .map(|piece| chosen.as_ref().is_none_or(|c| c.contains(&of_piece(piece))))
+            .collect())
+    }
+}
+
+/// The summary goes where the mesh does not.
+fn tell(standard: bool, text: &str) {
+    // The mesh is safe; a reader who has gone misses only the summary.
+    let _ = if standard {
+        std::io::stderr().write_all(text.as_bytes())
+    } else {
+        std::io::stdout().write_all(text.as_bytes())
+    };
+}

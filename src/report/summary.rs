@@ -1,0 +1,262 @@
+//! What a run of the tessellator came to.
+
+use serde::Serialize;
+
+use super::CAUTION;
+use crate::format::Written;
+use crate::mesh::{Measures, Meshed, Storage, Strips};
+use crate::patch_set::PatchSet;
+use crate::sampling::Limits;
+
+/// Version of the JSON fields of [`Summary`]; raised when one changes meaning
+/// or goes away.
+const SCHEMA_VERSION: u32 = 1;
+
+/// The outcome, as told in text and as JSON; lengths in the set's unit.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Summary {
+    /// Version of these fields.
+    pub schema_version: u32,
+    /// The set's name.
+    pub set: String,
+    /// The unit of all lengths.
+    pub unit: &'static str,
+    /// The chord tolerance the mesh was held to.
+    pub chord: f64,
+    /// Largest turn of the normal in a triangle, if asked for.
+    pub normal_deg: Option<f64>,
+    /// Largest edge, if asked for.
+    pub max_edge: Option<f64>,
+    /// Patches meshed.
+    pub patches: usize,
+    /// Panels they belong to.
+    pub panels: usize,
+    /// Edges of their Bezier pieces that are not one point, in the whole set.
+    pub edges: usize,
+    /// Seams of the whole set where two edges or more are joined.
+    pub seams: usize,
+    /// Triangles.
+    pub triangles: usize,
+    /// Geometric points, each once.
+    pub vertices: usize,
+    /// Points as the file stores them.
+    pub file_vertices: u64,
+    /// Triangle strips found.
+    pub strips: usize,
+    /// Strip indices a triangle, restarts counted.
+    pub indices_per_triangle: f64,
+    /// The deviation between mesh and surface.
+    pub deviation: DeviationLine,
+    /// How few triangles would do: sampled from the curvature.
+    pub floor: f64,
+    /// Triangles over that floor.
+    pub triangles_over_floor: f64,
+    /// Open chains of edges in the mesh.
+    pub open_loops: usize,
+    /// Edges of the mesh with more than two triangles, or two the same way.
+    pub non_manifold_edges: usize,
+    /// Whether every mesh edge is run once in each direction.
+    pub closed: bool,
+    /// Whether the mesh is watertight, and why or why not, in words.
+    pub watertight: String,
+    /// Area of the mesh.
+    pub area: f64,
+    /// Volume, if the mesh is closed.
+    pub volume: Option<f64>,
+    /// Bytes of bare geometry by way of storing.
+    pub storage: StorageLine,
+    /// The file.
+    pub written: WrittenLine,
+    /// Wall-clock seconds by stage.
+    pub seconds: SecondsLine,
+    /// The usual caution.
+    pub caution: &'static str,
+}
+
+/// Deviation, proved and attained.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct DeviationLine {
+    /// Proved for every triangle, in both directions, rounding of the file
+    /// included.
+    pub proved: f64,
+    /// Proved from the surface to the mesh.
+    pub proved_to_mesh: f64,
+    /// Proved from the mesh to the surface.
+    pub proved_to_surface: f64,
+    /// What rounding in the file adds to each.
+    pub rounding: f64,
+    /// A true distance of a point of the surface from the mesh in memory.
+    pub attained: f64,
+    /// The patch of that point.
+    pub patch: String,
+    /// Its parameters.
+    pub u: f64,
+    /// Its parameters.
+    pub v: f64,
+    /// The point.
+    pub at: [f64; 3],
+}
+
+/// Bytes with 4-byte floats and indices, bare geometry.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
+pub struct StorageLine {
+    /// Separate triangles.
+    pub triangles: u64,
+    /// Points once, three indices a triangle.
+    pub indexed: u64,
+    /// Points in strip order.
+    pub strips: u64,
+    /// Points once, strips of indices.
+    pub indexed_strips: u64,
+}
+
+/// The file written.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct WrittenLine {
+    /// The format's name.
+    pub format: &'static str,
+    /// The layout's name.
+    pub layout: &'static str,
+    /// Bytes.
+    pub bytes: u64,
+}
+
+/// Seconds by stage.
+#[derive(Debug, Clone, Copy, PartialEq, Default, Serialize)]
+pub struct SecondsLine {
+    /// Reading and validating the set.
+    pub reading: f64,
+    /// Pairing edges.
+    pub pairing: f64,
+    /// Sampling seams.
+    pub sampling: f64,
+    /// Triangles and their proof.
+    pub tessellation: f64,
+    /// Joining, normals, attained deviation.
+    pub assembly: f64,
+    /// Strips and measures.
+    pub strips: f64,
+    /// Writing.
+    pub writing: f64,
+}
+
+impl Summary {
+    /// Puts together what the stages found.
+    #[must_use]
+    pub fn new(
+        set: &PatchSet,
+        limits: &Limits,
+        made: &Meshed,
+        strips: &Strips,
+        format: crate::format::Format,
+        written: &Written,
+        mut seconds: SecondsLine,
+    ) -> Self {
+        let mesh = &made.mesh;
+        let measures = Measures::of(mesh);
+        let storage = Storage::of(mesh, strips);
+        let joined = made
+            .topology
+            .seams()
+            .iter()
+            .filter(|s| s.spans.len() > 1)
+            .count();
+        let mut panels: Vec<usize> = mesh.parts.iter().map(|p| p.panel).collect();
+        panels.sort_unstable();
+        panels.dedup();
+        seconds.pairing = made.seconds.pairing;
+        seconds.sampling = made.seconds.sampling;
+        seconds.tessellation = made.seconds.tessellation;
+        seconds.assembly = made.seconds.assembly;
+        let deviation = &made.deviation;
+        #[allow(clippy::cast_precision_loss, reason = "counts stay far below 2^52")]
+        let triangles = mesh.triangles.len() as f64;
+        Self {
+            schema_version: SCHEMA_VERSION,
+            set: set.name().to_owned(),
+            unit: set.unit().symbol(),
+            chord: limits.chord,
+            normal_deg: limits.normal_rad.map(f64::to_degrees),
+            max_edge: limits.max_edge,
+            patches: mesh.parts.len(),
+            panels: panels.len(),
+            edges: made
+                .topology
+                .edges()
+                .iter()
+                .filter(|e| !e.collapsed)
+                .count(),
+            seams: joined,
+            triangles: mesh.triangles.len(),
+            vertices: mesh.points.len(),
+            file_vertices: written.file_vertices,
+            strips: strips.len(),
+            indices_per_triangle: strips.indices_per_triangle(),
+            deviation: DeviationLine {
+                proved: deviation.proved() + written.rounding,
+                proved_to_mesh: deviation.to_mesh.proved + written.rounding,
+                proved_to_surface: deviation.to_surface + written.rounding,
+                rounding: written.rounding,
+                attained: deviation.to_mesh.attained,
+                patch: deviation.patch.clone(),
+                u: deviation.u,
+                v: deviation.v,
+                at: [deviation.point.x, deviation.point.y, deviation.point.z],
+            },
+            floor: made.floor,
+            triangles_over_floor: triangles / made.floor,
+            open_loops: measures.open_loops,
+            non_manifold_edges: measures.non_manifold_edges,
+            closed: measures.closed,
+            watertight: watertight(&measures, made),
+            area: measures.area,
+            volume: measures.volume,
+            storage: StorageLine {
+                triangles: storage.triangles,
+                indexed: storage.indexed,
+                strips: storage.strips,
+                indexed_strips: storage.indexed_strips,
+            },
+            written: WrittenLine {
+                format: format.name(),
+                layout: written.layout.name(),
+                bytes: written.bytes,
+            },
+            seconds,
+            caution: CAUTION,
+        }
+    }
+}
+
+fn watertight(measures: &Measures, made: &Meshed) -> String {
+    if measures.closed {
+        return "yes: every edge is run once in each direction".to_owned();
+    }
+    if measures.non_manifold_edges > 0 {
+        let count = measures.non_manifold_edges;
+        return format!(
+            "no: {count} mesh edges have more than two triangles or two that run the same way (panels may face different ways)"
+        );
+    }
+    let apart = made
+        .topology
+        .contacts()
+        .iter()
+        .filter(|c| !c.joined)
+        .count();
+    let loops = measures.open_loops;
+    let along = if loops == 1 {
+        "1 open loop"
+    } else {
+        &format!("{loops} open loops")
+    };
+    match apart {
+        0 => format!("no: {along}, where edges have no neighbour; all joined seams are crack-free"),
+        1 => format!(
+            "no: {along}; 1 pair of neighbouring edges was not joined, see `chordwise seams`"
+        ),
+        _ => format!(
+            "no: {along}; {apart} pairs of neighbouring edges were not joined, see `chordwise seams`"
+        ),
+    }
+}

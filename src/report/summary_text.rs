@@ -1,0 +1,132 @@
+//! The outcome of a run as a short text.
+
+use std::fmt::Write;
+
+use super::Summary;
+
+impl Summary {
+    /// The outcome as text, one subject a line.
+    #[must_use]
+    pub fn text(&self) -> String {
+        let mut out = String::new();
+        // Writing to a string cannot fail.
+        let _ = self.write_text(&mut out);
+        out
+    }
+
+    fn write_text(&self, out: &mut String) -> std::fmt::Result {
+        let unit = self.unit;
+        if !self.set.is_empty() {
+            writeln!(out, "{}", self.set)?;
+        }
+        writeln!(
+            out,
+            "patches     {} in {} panels, {} edges, {} joined seams",
+            self.patches, self.panels, self.edges, self.seams
+        )?;
+        writeln!(
+            out,
+            "mesh        {} triangles, {} vertices ({} in the file), {} strips ({:.2} indices a triangle)",
+            self.triangles,
+            self.vertices,
+            self.file_vertices,
+            self.strips,
+            self.indices_per_triangle
+        )?;
+        let d = &self.deviation;
+        writeln!(
+            out,
+            "deviation   {} {unit} proved, {} {unit} attained at {} (u {:.4}, v {:.4}); chord tolerance {} {unit}",
+            figure(d.proved),
+            figure(d.attained),
+            d.patch,
+            d.u,
+            d.v,
+            self.chord
+        )?;
+        writeln!(
+            out,
+            "            surface to mesh {} {unit}, mesh to surface {} {unit}, both proved for every triangle{}",
+            figure(d.proved_to_mesh),
+            figure(d.proved_to_surface),
+            if d.rounding > 0.0 {
+                format!(
+                    "; {} {unit} of it is rounding in the file",
+                    figure(d.rounding)
+                )
+            } else {
+                String::new()
+            }
+        )?;
+        if let Some(angle) = self.normal_deg {
+            writeln!(
+                out,
+                "            normals turn at most {angle} deg in a triangle"
+            )?;
+        }
+        if let Some(edge) = self.max_edge {
+            writeln!(out, "            edges at most {edge} {unit}")?;
+        }
+        writeln!(
+            out,
+            "economy     {:.2} x the theoretical floor of {:.0} triangles",
+            self.triangles_over_floor, self.floor
+        )?;
+        writeln!(out, "watertight  {}", self.watertight)?;
+        match self.volume {
+            Some(volume) => writeln!(
+                out,
+                "size        area {} {unit}^2, volume {} {unit}^3",
+                figure(self.area),
+                figure(volume)
+            )?,
+            None => writeln!(out, "size        area {} {unit}^2", figure(self.area))?,
+        }
+        let s = &self.storage;
+        writeln!(
+            out,
+            "storage     {} bytes as separate triangles, {} indexed, {} in strips of points, {} in indexed strips",
+            s.triangles, s.indexed, s.strips, s.indexed_strips
+        )?;
+        writeln!(
+            out,
+            "written     {} bytes of {}, layout {}",
+            self.written.bytes,
+            self.written.format.to_uppercase(),
+            self.written.layout
+        )?;
+        let t = &self.seconds;
+        let total =
+            t.reading + t.pairing + t.sampling + t.tessellation + t.assembly + t.strips + t.writing;
+        writeln!(
+            out,
+            "seconds     {total:.2}: reading {:.2}, pairing {:.2}, sampling {:.2}, tessellating and proving {:.2}, assembling {:.2}, strips {:.2}, writing {:.2}",
+            t.reading, t.pairing, t.sampling, t.tessellation, t.assembly, t.strips, t.writing
+        )?;
+        writeln!(out, "\n{}", self.caution)
+    }
+}
+
+/// Five significant digits, without an exponent where that stays short.
+fn figure(value: f64) -> String {
+    let size = value.abs();
+    if size > 0.0 && !(1e-4..1e9).contains(&size) {
+        return format!("{value:.3e}");
+    }
+    #[allow(
+        clippy::cast_possible_truncation,
+        clippy::cast_sign_loss,
+        reason = "a logarithm between -4 and 9"
+    )]
+    let before = if size >= 1.0 {
+        size.log10().floor() as usize + 1
+    } else {
+        0
+    };
+    let decimals = if size == 0.0 || before == 0 {
+        6
+    } else {
+        5_usize.saturating_sub(before)
+    };
+    format!("{value:.decimals$}")
+}
