@@ -163,7 +163,7 @@ impl TessellateArguments {
             ..WriteOptions::new(chord)
         };
         let standard = output.is_standard();
-        let written = output.write(|out| Ok(format::write(&made.mesh, format, &options, out)?))?;
+        let written = output.write(|out| format::write(&made.mesh, format, &options, out))?;
         seconds.writing = clock.elapsed().as_secs_f64();
         drop(progress);
         source::show_warnings(&reading);

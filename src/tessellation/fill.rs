@@ -1,7 +1,9 @@
 //! One piece: laid out, improved, proved, refined until everything is proved.
 
 use super::certificate::{Cell, Flat, Prover};
+use super::correction::Correction;
 use super::field::Field;
+use super::lattice::Ground;
 use super::layout::{INNER, Layout, layout};
 use super::triangulation::{BORDER, TriangleEdge, is_proper};
 use super::{planar, verdict};
@@ -87,10 +89,11 @@ pub(super) struct Work<'a> {
 
 /// Fills one piece with triangles that are proved within the limits.
 ///
-/// The layout follows the second derivatives and may come out a hair too wide
-/// everywhere, which refinement would answer by halving everything. So the
-/// first proof of a layout is looked at as a whole, and the layout made again,
-/// finer by what was missing, while more than a few triangles fail.
+/// The layout follows the second derivatives and may come out a hair too wide,
+/// which refinement would answer by halving. So the first proof of a layout is
+/// looked at as a whole, and the layout made again with what it taught, while
+/// more than a few triangles away from the border fail. The most promising
+/// layout is then refined.
 pub(crate) fn fill(
     surface: &BezierPatch,
     outline: &Outline,
@@ -98,51 +101,45 @@ pub(crate) fn fill(
 ) -> Result<Filled, Stuck> {
     let field = Field::new(surface);
     let planar = planar::proof(surface, outline, limits);
-    let mut spacing = *limits;
-    for attempt in 1.. {
-        let mut work = Work::new(
-            surface,
-            &field,
-            limits,
-            layout(surface, &field, outline, &spacing),
-        );
-        let failing = work.first_proof(planar);
-        if attempt == LAYOUTS || failing.share <= FEW {
-            let proved = work.prove(failing.failed, planar)?;
-            return Ok(work.finish(proved));
+    let mut ground = Ground {
+        field: &field,
+        limits,
+        correction: Correction::none(),
+    };
+    let mut best: Option<Trial> = None;
+    for _ in 0..LAYOUTS {
+        let mut work = Work::new(surface, &field, limits, layout(surface, &ground, outline));
+        let failed = work.round(planar);
+        let inner = work.inner_failing(&failed);
+        let cost = work.figures.len() + 2 * failed.len();
+        let lesson = (inner > FEW).then(|| work.lesson());
+        if best.as_ref().is_none_or(|b| cost < b.cost) {
+            best = Some(Trial { work, failed, cost });
         }
-        spacing.interior /= (failing.quantile / limits.chord).clamp(1.01, 2.0) * 1.005;
+        let Some(lesson) = lesson else { break };
+        ground.correction.learn(lesson.into_iter());
     }
-    unreachable!("the last attempt returns")
+    let Trial {
+        mut work, failed, ..
+    } = best.expect("at least one layout is tried");
+    let proved = work.prove(failed, planar)?;
+    Ok(work.finish(proved))
 }
 
 /// Layouts tried at most.
 const LAYOUTS: usize = 4;
 
-/// A layout with no more than this share of failing triangles is refined.
-const FEW: f64 = 0.06;
+/// A layout with no more than this share of failing inner triangles is refined
+/// without another try.
+const FEW: f64 = 0.04;
 
-/// The figure that this share of the triangles keep decides how much finer the
-/// next layout is.
-const QUANTILE: f64 = 0.9;
-
-/// How the first proof of a layout went.
-struct Failing {
-    /// The triangles that failed.
+/// A layout that has been proved once.
+struct Trial<'a> {
+    work: Work<'a>,
     failed: Vec<u32>,
-    /// Their share.
-    share: f64,
-    /// Deviation that [`QUANTILE`] of the triangles keep.
-    quantile: f64,
-}
-
-#[allow(
-    clippy::cast_possible_truncation,
-    clippy::cast_sign_loss,
-    reason = "a share of a count"
-)]
-fn floor_index(at: f64) -> usize {
-    at as usize
+    /// Triangles, failing ones counted three times: about what refinement
+    /// would make of them.
+    cost: usize,
 }
 
 fn index(t: usize) -> u32 {
@@ -201,23 +198,40 @@ impl<'a> Work<'a> {
         }
     }
 
-    /// Proves a fresh layout and tells how it went.
-    fn first_proof(&mut self, planar: Option<f64>) -> Failing {
-        let failed = self.round(planar);
-        let mut worst: Vec<f64> = self
-            .figures
+    fn is_inner(&self, t: u32) -> bool {
+        let corners = self.layout.triangulation.triangles[t as usize];
+        corners
             .iter()
-            .map(|f| f.to_mesh.max(f.to_surface))
-            .collect();
-        let count = worst.len();
-        let at = floor_index(QUANTILE * ratio(count, 1)).min(count - 1);
-        let (_, quantile, _) = worst.select_nth_unstable_by(at, f64::total_cmp);
-        let quantile = *quantile;
-        Failing {
-            share: ratio(failed.len(), count),
-            failed,
-            quantile,
-        }
+            .all(|&v| self.layout.vertices[v as usize] == INNER)
+    }
+
+    /// The share of failing triangles among those that do not touch the
+    /// border; what touches it depends on the seams' samples as much.
+    fn inner_failing(&self, failed: &[u32]) -> f64 {
+        let all = (0..index(self.figures.len()))
+            .filter(|&t| self.is_inner(t))
+            .count();
+        let bad = failed.iter().filter(|&&t| self.is_inner(t)).count();
+        ratio(bad, all.max(1))
+    }
+
+    /// Where the inner triangles are, and how much of the chord they use.
+    fn lesson(&self) -> Vec<([f64; 2], f64)> {
+        (0..index(self.figures.len()))
+            .filter(|&t| self.is_inner(t))
+            .map(|t| {
+                let figure = self.figures[t as usize];
+                (
+                    self.centre(t),
+                    figure.to_mesh.max(figure.to_surface) / self.limits.chord,
+                )
+            })
+            .collect()
+    }
+
+    fn centre(&self, t: u32) -> [f64; 2] {
+        let [a, b, c] = self.layout.triangulation.corners(t);
+        [(a[0] + b[0] + c[0]) / 3.0, (a[1] + b[1] + c[1]) / 3.0]
     }
 
     /// Brings all figures up to date; returns the triangles that fail.
@@ -286,9 +300,7 @@ impl<'a> Work<'a> {
     }
 
     fn stuck(&self, t: u32, proved: f64) -> Stuck {
-        let places = self.layout.triangulation.corners(t);
-        let third = |axis: usize| (places[0][axis] + places[1][axis] + places[2][axis]) / 3.0;
-        let place = [third(0), third(1)];
+        let place = self.centre(t);
         Stuck {
             place,
             point: self.surface.eval(place[0], place[1]),
@@ -461,8 +473,7 @@ impl<'a> Work<'a> {
         };
         let mut outer: Vec<TriangleEdge>;
         if error < 0.5 * border_error {
-            let third = |axis: usize| (places[0][axis] + places[1][axis] + places[2][axis]) / 3.0;
-            let place = [third(0), third(1)];
+            let place = self.centre(t);
             self.add_vertex(place, INNER);
             outer = self.layout.triangulation.insert_inside(t, place).to_vec();
         } else {

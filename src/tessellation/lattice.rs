@@ -15,6 +15,7 @@
 //! follows from asking that one sloping edge has Q = 8 e and the other -8 e;
 //! there h is free, and is taken so that triangles are about as long as wide.
 
+use super::correction::Correction;
 use super::field::{Bend, Field};
 use crate::sampling::Limits;
 use crate::sampling::{Cumulative, ratio};
@@ -66,10 +67,12 @@ struct Step {
     rows_cross: f64,
     /// (A, B, C) of the heights in (p, q).
     form: [f64; 3],
+    /// The error it is laid out for.
+    e: f64,
 }
 
 impl Step {
-    fn new(bend: &Bend, along: Along, limits: &Limits) -> Self {
+    fn new(bend: &Bend, along: Along, limits: &Limits, correction: f64) -> Self {
         let [l, m, n] = bend.form;
         let (form, first) = match along {
             Along::U => ([l, m, n], bend.first),
@@ -77,7 +80,7 @@ impl Step {
         };
         let [a, b, c] = form;
         let (size_p, size_q) = (first[0].norm(), first[1].norm());
-        let e = limits.interior;
+        let e = limits.interior / correction;
         let determinant = a * c - b * b;
         // Below this the second form is rounding beside its own entries.
         let floor = 1e-12 * (a * a + b * b + c * c);
@@ -111,13 +114,14 @@ impl Step {
             rows_step,
             rows_cross,
             form,
+            e,
         }
     }
 
     /// The shift of p that carries a point of one row to a point of the row
     /// `gap` further in q.
-    fn shift(&self, gap: f64, e: f64) -> f64 {
-        let [a, b, c] = self.form;
+    fn shift(&self, gap: f64) -> f64 {
+        let ([a, b, c], e) = (self.form, self.e);
         let h = 1.0 / self.rows_step;
         let determinant = a * c - b * b;
         if determinant >= 0.0 || b.abs() <= 1e-9 * (a.abs() + c.abs()) && a * c >= 0.0 {
@@ -157,56 +161,73 @@ fn turn_rate(bend: &Bend, direction: [f64; 2]) -> f64 {
         .sqrt()
 }
 
-/// The interior points of a piece, row after row.
-#[derive(Debug)]
-pub(super) struct Rows {
-    /// Which parameter the rows run along.
-    pub(super) along: Along,
-    /// For each row its q and the ascending p of its points; no row is empty.
-    pub(super) rows: Vec<(f64, Vec<f64>)>,
-}
-
 /// Points estimated for a lattice with rows along each parameter.
-pub(super) fn cost(field: &Field, along: Along, limits: &Limits) -> f64 {
-    let plan = Plan::new(field, along, limits);
+pub(super) fn cost(ground: &Ground, along: Along) -> f64 {
+    let plan = Plan::new(ground, along);
     let rows: f64 = plan.rows_total().max(1.0);
     let per_row = (0..=SAMPLES).map(|j| plan.row_total(j)).sum::<f64>() / ratio(SAMPLES + 1, 1);
     rows * per_row.max(1.0)
 }
 
-/// Rows for the piece. `before` is the chain of samples on the edge q = 0, by
+/// The interior points of a piece, row after row: for each row its q and the
+/// ascending p of its points; no row is empty. `before` is the chain of samples on the edge q = 0, by
 /// ascending p: the first row is placed against it.
-pub(super) fn rows(field: &Field, along: Along, limits: &Limits, before: &[f64]) -> Rows {
-    let plan = Plan::new(field, along, limits);
+pub(super) fn rows(ground: &Ground, along: Along, before: &[f64]) -> Vec<(f64, Vec<f64>)> {
+    let plan = Plan::new(ground, along);
     let mut rows = Vec::new();
     let mut chain = before.to_vec();
     let (places, gap) = plan.row_places();
     for q in places {
-        let row = plan.row(field, q, gap, &chain, limits);
+        let row = plan.row(q, gap, &chain);
         if !row.is_empty() {
             chain.clone_from(&row);
             rows.push((q, row));
         }
     }
-    Rows { along, rows }
+    rows
 }
 
-struct Plan {
+/// What a layout is made on: the surface's bend, the limits, and what earlier
+/// layouts have taught.
+#[derive(Debug)]
+pub(super) struct Ground<'a> {
+    pub(super) field: &'a Field,
+    pub(super) limits: &'a Limits,
+    pub(super) correction: Correction,
+}
+
+impl Ground<'_> {
+    fn step(&self, along: Along, p: f64, q: f64) -> Step {
+        let place = along.place(p, q);
+        Step::new(
+            &self.field.at(place),
+            along,
+            self.limits,
+            self.correction.at(place),
+        )
+    }
+}
+
+struct Plan<'a> {
+    ground: &'a Ground<'a>,
     along: Along,
     /// Steps on a grid, q-major.
     steps: Vec<Step>,
 }
 
-impl Plan {
-    fn new(field: &Field, along: Along, limits: &Limits) -> Self {
+impl<'a> Plan<'a> {
+    fn new(ground: &'a Ground<'a>, along: Along) -> Self {
         let mut steps = Vec::with_capacity((SAMPLES + 1) * (SAMPLES + 1));
         for j in 0..=SAMPLES {
             for i in 0..=SAMPLES {
-                let place = along.place(ratio(i, SAMPLES), ratio(j, SAMPLES));
-                steps.push(Step::new(&field.at(place), along, limits));
+                steps.push(ground.step(along, ratio(i, SAMPLES), ratio(j, SAMPLES)));
             }
         }
-        Self { along, steps }
+        Self {
+            ground,
+            along,
+            steps,
+        }
     }
 
     fn row_steps(&self, j: usize) -> &[Step] {
@@ -243,22 +264,16 @@ impl Plan {
         (places.collect(), 1.0 / ratio(count, 1))
     }
 
-    fn row(&self, field: &Field, q: f64, gap: f64, before: &[f64], limits: &Limits) -> Vec<f64> {
+    fn row(&self, q: f64, gap: f64, before: &[f64]) -> Vec<f64> {
         let steps: Vec<Step> = (0..=SAMPLES)
-            .map(|i| {
-                Step::new(
-                    &field.at(self.along.place(ratio(i, SAMPLES), q)),
-                    self.along,
-                    limits,
-                )
-            })
+            .map(|i| self.ground.step(self.along, ratio(i, SAMPLES), q))
             .collect();
         let sums = Cumulative::new(steps.iter().map(|s| s.rows_step));
         let total = sums.total();
         if total < 2.0 * SIDE_CLEARANCE {
             return Vec::new();
         }
-        let offset = self.offset(&steps, &sums, gap, before, limits);
+        let offset = Self::offset(&steps, &sums, gap, before);
         let mut row = Vec::new();
         let mut phase = offset;
         while phase < total - SIDE_CLEARANCE {
@@ -272,21 +287,14 @@ impl Plan {
 
     /// The phase in 0..1 at which this row's points stand best against the row
     /// before: the circular mean over the row of where each place would have it.
-    fn offset(
-        &self,
-        steps: &[Step],
-        sums: &Cumulative,
-        gap: f64,
-        before: &[f64],
-        limits: &Limits,
-    ) -> f64 {
+    fn offset(steps: &[Step], sums: &Cumulative, gap: f64, before: &[f64]) -> f64 {
         let (mut x, mut y) = (0.0, 0.0);
         for (i, step) in steps.iter().enumerate() {
             if step.rows_step <= 0.0 {
                 continue;
             }
             let p = ratio(i, SAMPLES);
-            let target = p + step.shift(gap, limits.interior);
+            let target = p + step.shift(gap);
             if !(0.0..=1.0).contains(&target) {
                 continue;
             }

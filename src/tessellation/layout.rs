@@ -1,11 +1,9 @@
 //! The first triangulation of a piece: border, rows of the lattice, stitching.
 
-use super::field::Field;
-use super::lattice::{self, Along};
+use super::lattice::{self, Along, Ground};
 use super::stitch;
 use super::triangulation::Triangulation;
 use crate::bezier::{BezierPatch, Side};
-use crate::sampling::Limits;
 use crate::sampling::{BorderVertex, Outline};
 use crate::scalar::Point;
 
@@ -32,14 +30,14 @@ fn sides(along: Along) -> [Side; 4] {
 
 /// Which way the rows run: along collapsed sides if there are any, else the
 /// way that needs fewer points.
-fn direction(field: &Field, outline: &Outline, limits: &Limits) -> Along {
+fn direction(ground: &Ground, outline: &Outline) -> Along {
     let collapsed = |side: Side| outline.collapsed[side.index()];
     if collapsed(Side::V0) || collapsed(Side::V1) {
         Along::U
     } else if collapsed(Side::U0) || collapsed(Side::U1) {
         Along::V
     } else {
-        let cost = |along| lattice::cost(field, along, limits);
+        let cost = |along| lattice::cost(ground, along);
         if cost(Along::V) < cost(Along::U) * 0.999 {
             Along::V
         } else {
@@ -94,20 +92,15 @@ impl Builder<'_> {
     }
 }
 
-pub(super) fn layout(
-    surface: &BezierPatch,
-    field: &Field,
-    outline: &Outline,
-    limits: &Limits,
-) -> Layout {
-    let along = direction(field, outline, limits);
+pub(super) fn layout(surface: &BezierPatch, ground: &Ground, outline: &Outline) -> Layout {
+    let along = direction(ground, outline);
     let [bottom, top, left, right] = sides(along);
     let inner = |side: Side| -> Vec<f64> {
         let samples = outline.side(side);
         samples[1..samples.len() - 1].iter().map(|b| b.t).collect()
     };
     let ps = |side: Side| -> Vec<f64> { outline.side(side).iter().map(|b| b.t).collect() };
-    let rows = lattice::rows(field, along, limits, &ps(bottom)).rows;
+    let rows = lattice::rows(ground, along, &ps(bottom));
 
     let mut build = Builder {
         surface,
@@ -117,22 +110,21 @@ pub(super) fn layout(
         vertices: Vec::new(),
     };
     // The row beside a collapsed side decides where that side has vertices.
-    let beside = |side: Side, row: Option<&(f64, Vec<f64>)>, other: Side| match row {
+    let beside = |row: Option<&(f64, Vec<f64>)>, other: Side| match row {
         Some((_, ps)) => ps.clone(),
         None if outline.collapsed[other.index()] => Vec::new(),
         None => inner(other),
     };
-    let mut chain =
-        |build: &mut Builder, side: Side, row: Option<&(f64, Vec<f64>)>, other: Side| {
-            if outline.collapsed[side.index()] {
-                build.pole(side, &outline.side(side)[0], &beside(side, row, other))
-            } else {
-                build.border(side, outline.side(side))
-            }
-        };
+    let chain = |build: &mut Builder, side: Side, row: Option<&(f64, Vec<f64>)>, other: Side| {
+        if outline.collapsed[side.index()] {
+            build.pole(side, &outline.side(side)[0], &beside(row, other))
+        } else {
+            build.border(side, outline.side(side))
+        }
+    };
     let bottom_chain = chain(&mut build, bottom, rows.first(), top);
     let top_chain = chain(&mut build, top, rows.last(), bottom);
-    let mut upright = |build: &mut Builder, side: Side, start: u32, end: u32| {
+    let upright = |build: &mut Builder, side: Side, start: u32, end: u32| {
         let samples = outline.side(side);
         let mut chain = vec![start];
         chain.extend(build.border(side, &samples[1..samples.len() - 1]));
@@ -163,7 +155,9 @@ pub(super) fn layout(
     };
     let error = |corners: [u32; 3]| {
         let at = |v: u32| build.places[v as usize];
-        field.estimate(corners.map(at), corners.map(|v| build.points[v as usize]))
+        ground
+            .field
+            .estimate(corners.map(at), corners.map(|v| build.points[v as usize]))
     };
     if row_chains.is_empty() {
         if left_chain.len() == 2 && right_chain.len() == 2 {

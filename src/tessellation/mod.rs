@@ -8,6 +8,7 @@
 //! fails and says where (`fill`).
 
 mod certificate;
+mod correction;
 mod field;
 mod fill;
 mod floor;
