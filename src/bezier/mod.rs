@@ -10,6 +10,7 @@
 //! weights every restricted net holds its piece of surface in its convex hull;
 //! all proofs of the project rest on that.
 
+pub(crate) mod bernstein;
 mod casteljau;
 mod chord;
 mod curve;

@@ -3,7 +3,6 @@
 
 mod angle;
 mod apart;
-mod bernstein;
 mod curvature;
 mod figure;
 mod slip;

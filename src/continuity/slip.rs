@@ -7,8 +7,8 @@
 //! nothing, the nearest point is within 2 E, since the matched one is within E.
 //! Both leave out of account an edge that comes back to within 2 E of itself.
 
-use super::bernstein::Bernstein;
 use super::strip::Strip;
+use crate::bezier::bernstein::Bernstein;
 use crate::scalar::Vector;
 
 /// Bounds over the whole second edge.

@@ -9,7 +9,7 @@
 //! multiple of the normal. At a pole it vanishes; the factors t and 1 - t are
 //! divided out, which leaves the limit normal.
 
-use super::bernstein::Bernstein;
+use crate::bezier::bernstein::Bernstein;
 use crate::bezier::{BezierPatch, Side};
 use crate::scalar::{Point, Vector};
 
@@ -126,7 +126,7 @@ impl Strip {
     /// The same strip after t = lambda tau / (1 - tau + lambda tau): in
     /// homogeneous coordinates coefficient i is multiplied by lambda^i.
     pub(super) fn reparametrised(mut self, lambda: f64) -> Self {
-        fn scale<T: super::bernstein::Coefficient>(a: &mut Bernstein<T>, lambda: f64) {
+        fn scale<T: crate::bezier::bernstein::Coefficient>(a: &mut Bernstein<T>, lambda: f64) {
             let mut factor = 1.0;
             for value in &mut a.0 {
                 *value = *value * factor;
@@ -155,7 +155,7 @@ impl Strip {
     }
 }
 
-fn scaled<T: super::bernstein::Coefficient>(a: &Bernstein<T>, factor: f64) -> Bernstein<T> {
+fn scaled<T: crate::bezier::bernstein::Coefficient>(a: &Bernstein<T>, factor: f64) -> Bernstein<T> {
     Bernstein(a.0.iter().map(|&x| x * factor).collect())
 }
 

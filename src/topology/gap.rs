@@ -8,18 +8,24 @@
 //! of pieces is run through together, so the largest control point of their
 //! difference bounds the distance both ways (convex hull property). For
 //! rational pieces the difference is taken over the product of the weights,
-//! which is again a rational Bezier curve with positive weights. The piece with
-//! the largest bound is halved until the bound meets what is attained.
+//! which is again a rational Bezier curve with positive weights. Where a
+//! quadratic change of parameter brings the two closer, it is used. The piece
+//! with the largest bound is halved until the bound meets what is attained.
 
 use std::cmp::Ordering;
 use std::collections::BinaryHeap;
 
 use super::nearest::{distance_at_least, nearest, nearest_from};
 use crate::bezier::BezierCurve;
+use crate::bezier::bernstein::{Bernstein, Coefficient};
 use crate::scalar::{Bracket, Vector};
 
 /// Pieces after which a bracket stays as wide as it is.
 const PIECES: usize = 2048;
+
+/// Pieces after which quadratic changes of parameter are not tried any more:
+/// they cost ten times a halving.
+const TRIES: usize = 64;
 
 /// A bracket stops being narrowed at this ratio.
 const RATIO: f64 = 1.015;
@@ -71,6 +77,8 @@ struct Pair {
     a: BezierCurve,
     b: BezierCurve,
     upper: f64,
+    /// Whether a quadratic change of parameter has been tried.
+    tried: bool,
 }
 
 /// Brackets the gap of two stretches that run the same way.
@@ -108,6 +116,7 @@ pub fn gap(first: Stretch<'_>, second: Stretch<'_>, floor: f64, limit: f64) -> G
         a: a.clone(),
         b: b.clone(),
         upper,
+        tried: false,
     };
     let mut pairs = BinaryHeap::from([whole]);
     let mut settled = 0.0_f64;
@@ -133,6 +142,21 @@ pub fn gap(first: Stretch<'_>, second: Stretch<'_>, floor: f64, limit: f64) -> G
         } else {
             0.5
         };
+        if !pair.tried && pairs.len() < TRIES {
+            // Edges of one shape, run through at other speeds.
+            let there = nearest_from(&pair.a, &pair.b.eval(0.5), 0.5, [0.0, 1.0]).t;
+            let bent = quadratic_bound(&pair.a, &pair.b, x)
+                .min(quadratic_bound(&pair.b, &pair.a, there))
+                + round;
+            if bent < 0.9 * pair.upper {
+                pairs.push(Pair {
+                    upper: bent,
+                    tried: true,
+                    ..pair
+                });
+                continue;
+            }
+        }
         let t = pair.t[0] + x * width;
         let (a0, a1) = pair.a.split(0.5);
         let (b0, b1) = pair.b.split(x);
@@ -141,7 +165,14 @@ pub fn gap(first: Stretch<'_>, second: Stretch<'_>, floor: f64, limit: f64) -> G
             ([s, pair.s[1]], [t, pair.t[1]], a1, b1),
         ] {
             let upper = (difference_bound(&a, &b) + round).min(pair.upper);
-            pairs.push(Pair { s, t, a, b, upper });
+            pairs.push(Pair {
+                s,
+                t,
+                a,
+                b,
+                upper,
+                tried: false,
+            });
         }
     }
     let point = a.eval(best.1);
@@ -268,6 +299,55 @@ fn rational_bound(a: &BezierCurve, b: &BezierCurve) -> f64 {
         worst = worst.max(difference.norm() / weight);
     }
     worst
+}
+
+/// As [`difference_bound`], of A(t) and B(phi(t)), phi quadratic from 0 by
+/// phi(1/2) = `middle` to 1: composition by de Casteljau's algorithm with
+/// polynomials for numbers. Infinite where phi would turn back.
+fn quadratic_bound(a: &BezierCurve, b: &BezierCurve, middle: f64) -> f64 {
+    let c = (4.0 * middle - 1.0) / 2.0;
+    if !(0.0..=1.0).contains(&c) {
+        return f64::INFINITY;
+    }
+    let origin = a.control_point(0).coords;
+    let (forth, back) = (
+        Bernstein(vec![0.0, c, 1.0]),
+        Bernstein(vec![1.0, 1.0 - c, 0.0]),
+    );
+    let points = (0..=b.degree()).map(|i| (b.control_point(i).coords - origin) * b.weight(i));
+    let place = compose(points, &forth, &back);
+    let weight = compose((0..=b.degree()).map(|i| b.weight(i)), &forth, &back);
+    let own = (0..=a.degree()).map(|i| (a.control_point(i).coords - origin) * a.weight(i));
+    let own = Bernstein(own.collect::<Vec<Vector>>());
+    let own_weight = Bernstein((0..=a.degree()).map(|i| a.weight(i)).collect::<Vec<f64>>());
+    let difference = own
+        .product(&weight, |p, w| p * w)
+        .plus(&place.product(&own_weight, |p, w| p * w), -1.0);
+    let weights = own_weight.product(&weight, |v, w| v * w);
+    difference
+        .0
+        .iter()
+        .zip(&weights.0)
+        .map(|(d, w)| d.norm() / w)
+        .fold(0.0, f64::max)
+}
+
+fn compose<T: Coefficient>(
+    coefficients: impl Iterator<Item = T>,
+    forth: &Bernstein<f64>,
+    back: &Bernstein<f64>,
+) -> Bernstein<T> {
+    let mut row: Vec<Bernstein<T>> = coefficients.map(|c| Bernstein(vec![c])).collect();
+    while row.len() > 1 {
+        row = row
+            .windows(2)
+            .map(|w| {
+                let near = w[0].product(back, |p, s| p * s);
+                near.plus(&w[1].product(forth, |p, s| p * s), 1.0)
+            })
+            .collect();
+    }
+    row.swap_remove(0)
 }
 
 fn binomial(n: usize, k: usize) -> f64 {

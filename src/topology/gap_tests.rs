@@ -97,6 +97,16 @@ fn reparametrised_curves_have_no_gap() {
     let moebius = curve(&points, Some(&weights));
     let found = gap(whole(&plain), whole(&moebius), 1e-9, 1.0);
     assert!(found.bracket.proved < 1e-11, "{:?}", found.bracket);
+    // The line of a door sill, uneven speed: t^2 and its like, either way round.
+    let line = curve(&[(0.0, 0.0, 0.0), (100.0, 20.0, 5.0)], None);
+    let uneven = curve(
+        &[(0.0, 0.0, 0.0), (20.0, 4.0, 1.0), (100.0, 20.0, 5.0)],
+        None,
+    );
+    for (a, b) in [(&line, &uneven), (&uneven, &line)] {
+        let found = gap(whole(a), whole(b), 1e-9, 1.0);
+        assert!(found.bracket.proved < 1e-9, "{:?}", found.bracket);
+    }
     for (from, to) in [(0.0, 0.4), (0.4, 1.0), (0.25, 0.5)] {
         let part = plain.restrict(from, to).elevated(9).unwrap();
         let stretch = Stretch {

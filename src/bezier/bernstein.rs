@@ -9,7 +9,7 @@ use std::ops::{Add, Mul, Sub};
 use crate::scalar::Vector;
 
 /// What can stand as a Bernstein coefficient.
-pub(super) trait Coefficient:
+pub(crate) trait Coefficient:
     Copy + Add<Output = Self> + Sub<Output = Self> + Mul<f64, Output = Self>
 {
     /// The neutral element of addition.
@@ -38,7 +38,7 @@ impl Coefficient for Vector {
 
 /// A polynomial on the unit interval by its Bernstein coefficients.
 #[derive(Debug, Clone, PartialEq)]
-pub(super) struct Bernstein<T>(pub(super) Vec<T>);
+pub(crate) struct Bernstein<T>(pub(crate) Vec<T>);
 
 fn ratio(a: usize, b: usize) -> f64 {
     #[allow(clippy::cast_precision_loss, reason = "degrees are far below 2^52")]
@@ -57,12 +57,12 @@ fn binomials(n: usize) -> Vec<f64> {
 }
 
 impl<T: Coefficient> Bernstein<T> {
-    pub(super) fn degree(&self) -> usize {
+    pub(crate) fn degree(&self) -> usize {
         self.0.len() - 1
     }
 
     /// The product under any bilinear `times`.
-    pub(super) fn product<U: Coefficient, R: Coefficient>(
+    pub(crate) fn product<U: Coefficient, R: Coefficient>(
         &self,
         other: &Bernstein<U>,
         times: impl Fn(T, U) -> R,
@@ -82,13 +82,13 @@ impl<T: Coefficient> Bernstein<T> {
     }
 
     /// Sum of two of one degree.
-    pub(super) fn plus(&self, other: &Self, factor: f64) -> Self {
+    pub(crate) fn plus(&self, other: &Self, factor: f64) -> Self {
         let terms = self.0.iter().zip(&other.0);
         Self(terms.map(|(&a, &b)| a + b * factor).collect())
     }
 
     /// The derivative.
-    pub(super) fn derivative(&self) -> Self {
+    pub(crate) fn derivative(&self) -> Self {
         if self.degree() == 0 {
             return Self(vec![T::zero()]);
         }
@@ -97,7 +97,7 @@ impl<T: Coefficient> Bernstein<T> {
     }
 
     /// The value at `t`, by de Casteljau's algorithm.
-    pub(super) fn eval(&self, t: f64) -> T {
+    pub(crate) fn eval(&self, t: f64) -> T {
         let mut work = self.0.clone();
         for len in (1..work.len()).rev() {
             for i in 0..len {
@@ -108,7 +108,7 @@ impl<T: Coefficient> Bernstein<T> {
     }
 
     /// The parts before and after `t`, each on the unit interval.
-    pub(super) fn split(&self, t: f64) -> (Self, Self) {
+    pub(crate) fn split(&self, t: f64) -> (Self, Self) {
         let mut work = self.0.clone();
         let mut left = Vec::with_capacity(work.len());
         for len in (0..work.len()).rev() {
@@ -121,7 +121,7 @@ impl<T: Coefficient> Bernstein<T> {
     }
 
     /// The part from `range[0]` to `range[1]`; a descending range reverses it.
-    pub(super) fn restrict(&self, range: [f64; 2]) -> Self {
+    pub(crate) fn restrict(&self, range: [f64; 2]) -> Self {
         let (low, high) = (range[0].min(range[1]), range[0].max(range[1]));
         let mut part = self.clone();
         if high < 1.0 {
@@ -138,7 +138,7 @@ impl<T: Coefficient> Bernstein<T> {
 
     /// Divides out factors t and 1 - t as long as the end coefficients are as
     /// good as zero: the direction of what is left is the limit at the ends.
-    pub(super) fn deflated(mut self) -> Self {
+    pub(crate) fn deflated(mut self) -> Self {
         let largest = self.0.iter().map(Coefficient::size).fold(0.0, f64::max);
         let tiny = largest * 1e-12;
         for _ in 0..2 {
