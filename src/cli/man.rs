@@ -37,7 +37,11 @@ impl ManArguments {
             Some(name) => match program.find_subcommand(name) {
                 Some(command) => command,
                 None => {
-                    let names: Vec<_> = program.get_subcommands().map(|c| c.get_name()).collect();
+                    let names: Vec<_> = program
+                        .get_subcommands()
+                        .map(Command::get_name)
+                        .filter(|name| *name != "help")
+                        .collect();
                     return Outcome::refuse(format_args!(
                         "`{name}` is no command; the commands are {}",
                         names.join(", ")

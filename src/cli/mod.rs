@@ -21,12 +21,29 @@ mod tessellate;
 
 pub use outcome::Outcome;
 
+const EXAMPLES: &str = "\
+Examples:
+  chordwise demo -o front.ron                      a set to try things on
+  chordwise check front.ron                        what is wrong with it
+  chordwise tessellate front.ron -o front.glb      a proved mesh
+  chordwise seams front.ron                        how its patches meet";
+
+const ENDINGS: &str = "\
+Every command has examples of its own: chordwise tessellate --help
+
+Exit code 0: done, and all as demanded. 1: done, with findings. 2: bad usage,
+unreadable, refused or unprovable.";
+
 /// The arguments as typed.
 #[derive(Debug, Parser)]
 #[command(
     name = "chordwise",
     version,
-    about = "Certified meshes and seam reports from parametric patch sets"
+    about = "Certified meshes and seam reports from parametric patch sets",
+    before_help = EXAMPLES,
+    after_help = ENDINGS,
+    subcommand_required = true,
+    arg_required_else_help = true
 )]
 pub struct Arguments {
     /// What to do.
@@ -37,12 +54,12 @@ pub struct Arguments {
 /// The commands.
 #[derive(Debug, Subcommand)]
 enum Command {
-    Check(check::CheckArguments),
-    Completions(completions::CompletionsArguments),
-    Demo(demo::DemoArguments),
-    Man(man::ManArguments),
-    Seams(seams::SeamsArguments),
     Tessellate(tessellate::TessellateArguments),
+    Seams(seams::SeamsArguments),
+    Check(check::CheckArguments),
+    Demo(demo::DemoArguments),
+    Completions(completions::CompletionsArguments),
+    Man(man::ManArguments),
 }
 
 /// Runs the program on the given arguments, the program's name first.

@@ -6,16 +6,33 @@ use crate::patch_set::{PanelId, PatchSet};
 
 /// A name that is no panel of the set.
 #[derive(Debug, Error)]
-#[error("there is no panel `{name}`{}; a panel is the part of a patch's name before the last slash", hint(.nearest))]
+#[error("--panel {name}: the set has no such panel{}; {}", hint(.nearest), list(.all))]
 pub(crate) struct NoPanel {
     name: String,
     nearest: Option<String>,
+    all: Vec<String>,
 }
 
 fn hint(nearest: &Option<String>) -> String {
     nearest
         .as_ref()
         .map_or_else(String::new, |name| format!(", did you mean `{name}`?"))
+}
+
+/// The panels there are, as far as a line or two can hold them.
+fn list(all: &[String]) -> String {
+    const SHOWN: usize = 12;
+    let names: Vec<String> = all.iter().take(SHOWN).map(|n| format!("`{n}`")).collect();
+    let more = match all.len().saturating_sub(SHOWN) {
+        0 => String::new(),
+        more => format!(" and {more} more"),
+    };
+    let verb = if all.len() == 1 {
+        "panel is"
+    } else {
+        "panels are"
+    };
+    format!("its {verb} {}{more}", names.join(", "))
 }
 
 /// The panels of these names; `None` for no names, which means all.
@@ -34,6 +51,7 @@ pub(crate) fn panels(set: &PatchSet, names: &[String]) -> Result<Option<Vec<Pane
             .ok_or_else(|| NoPanel {
                 name: name.clone(),
                 nearest: nearest(set, name),
+                all: set.panels().iter().map(|p| p.name.clone()).collect(),
             })
     };
     names.iter().map(find).collect::<Result<_, _>>().map(Some)

@@ -24,6 +24,11 @@ pub(super) fn read(path: &Path) -> Result<Reading, Faults> {
 
 /// Shows all faults on standard error, in colour on a terminal.
 pub(super) fn show_faults(faults: &Faults) {
+    if faults.list.iter().all(|fault| fault.position.is_none()) {
+        // Of the file as a whole: there is no line to show.
+        anstream::eprintln!("error: {faults}");
+        return;
+    }
     show(&faults.list, &faults.source_name);
     let count = faults.list.len();
     let plural = if count == 1 { "fault" } else { "faults" };

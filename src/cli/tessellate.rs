@@ -18,7 +18,7 @@ use crate::mesh::{Meshed, Strips};
 use crate::patch_set::{PanelId, PatchSet};
 use crate::report::{SecondsLine, Summary};
 use crate::sampling::Limits;
-use crate::scalar::{Length, Tolerance};
+use crate::scalar::{Length, Point, Tolerance, Vector};
 
 const EXAMPLES: &str = "\
 Examples:
@@ -48,25 +48,31 @@ pub(super) struct TessellateArguments {
 
     /// Largest distance between mesh and surface, in the set's unit or with
     /// m, cm, mm or in behind it [default: the set's, else 0.1 mm]
-    #[arg(long, value_name = "LENGTH")]
+    #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
     chord: Option<Length>,
 
     /// Largest turn of the surface normal between corners of a triangle, in
     /// degrees [default: the set's, else none]
-    #[arg(long, value_name = "DEG")]
+    #[arg(long, value_name = "DEG", allow_negative_numbers = true, value_parser = angle)]
     normal_angle: Option<f64>,
 
     /// Largest edge of a triangle [default: the set's, else none]
-    #[arg(long, value_name = "LENGTH")]
+    #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
     max_edge: Option<Length>,
 
-    /// How triangles are stored [default: indexed; separate for STL]
+    /// How triangles are stored [default: strips for GLB, triangles for STL,
+    /// else indexed]
     #[arg(long, value_name = "LAYOUT", value_parser = names(&Layout::ALL.map(Layout::name)))]
     layout: Option<String>,
 
     /// The file format, where the extension does not say
     #[arg(long = "as", value_name = "FORMAT", value_parser = names(&Format::ALL.map(Format::name)))]
     format_name: Option<String>,
+
+    /// Give a PLY file vertex normals; OBJ and GLB always have them. A point
+    /// of a crease is then stored once for each of its normals
+    #[arg(long)]
+    normals: bool,
 
     /// Only this panel; may be repeated. Seams keep the vertices they have in
     /// the whole set, so that panels meshed apart fit together
@@ -81,6 +87,18 @@ pub(super) struct TessellateArguments {
     /// How the summary is printed
     #[arg(long, value_enum, default_value_t)]
     format: OutputStyle,
+}
+
+/// The smallest normal angle, degrees: a hundredth of what anybody asks for, and
+/// 36,000 samples round a full circle.
+const LEAST_ANGLE: f64 = 0.01;
+
+/// An angle as typed, in degrees.
+fn angle(text: &str) -> Result<f64, UsageError> {
+    match text.parse() {
+        Ok(angle) if (LEAST_ANGLE..=180.0).contains(&angle) => Ok(angle),
+        _ => Err(UsageError::Angle(text.to_owned())),
+    }
 }
 
 fn names(names: &[&'static str]) -> impl TypedValueParser<Value = String> + use<> {
@@ -98,8 +116,12 @@ enum UsageError {
         "--output -: standard output has no extension; give the format with --as stl, obj, ply or glb"
     )]
     Standard,
-    #[error("--normal-angle {0}: it must be more than 0 and at most 180 degrees")]
-    Angle(f64),
+    #[error("`{0}` is no normal angle; write degrees, from 0.01 to 180")]
+    Angle(String),
+    #[error(
+        "--normals: stl has no vertex normals, only those of its facets; write ply, obj or glb"
+    )]
+    Normals,
 }
 
 impl TessellateArguments {
@@ -112,6 +134,7 @@ impl TessellateArguments {
     }
 
     fn try_run(&self) -> Result<Outcome, Box<dyn std::error::Error>> {
+        let output = Output::open(&self.output, &[&self.set])?;
         let format = self.file_format()?;
         let layout = self
             .layout
@@ -119,7 +142,9 @@ impl TessellateArguments {
             .map(str::parse::<Layout>)
             .transpose()?;
         format.layout(layout)?;
-        let output = Output::open(&self.output, &[&self.set])?;
+        if self.normals && format == Format::Stl {
+            return Err(UsageError::Normals.into());
+        }
         if let Some(jobs) = self.jobs {
             // Fails only if the pool exists already, which then has its size.
             let _ = rayon::ThreadPoolBuilder::new()
@@ -144,10 +169,16 @@ impl TessellateArguments {
         let set = &reading.set;
         let limits = self.limits(set)?;
         let chord = Tolerance::new(limits.chord)?;
+        let (low, high) = extents(set);
+        let held = Limits::new(
+            limits.chord - format.rounding(low, high, chord),
+            limits.normal_rad,
+            limits.max_edge,
+        );
         let wanted = self.wanted(set)?;
         let made = Meshed::new(
             set,
-            &limits,
+            &held,
             |piece| wanted[piece.index()],
             |name| progress.stage(name),
         )?;
@@ -160,6 +191,7 @@ impl TessellateArguments {
         let options = WriteOptions {
             layout,
             strips: Some(&strips),
+            normals: self.normals,
             ..WriteOptions::new(chord)
         };
         let standard = output.is_standard();
@@ -195,8 +227,8 @@ impl TessellateArguments {
         let unit = set.unit();
         let chord = self.chord.map_or(own.chord.get(), |c| c.in_unit(unit));
         let angle = self.normal_angle.or(own.normal_deg.map(Tolerance::get));
-        if let Some(angle) = angle.filter(|a| !(*a > 0.0 && *a <= 180.0)) {
-            return Err(UsageError::Angle(angle));
+        if let Some(angle) = angle.filter(|a| !(LEAST_ANGLE..=180.0).contains(a)) {
+            return Err(UsageError::Angle(angle.to_string()));
         }
         let edge = self
             .max_edge
@@ -215,6 +247,21 @@ impl TessellateArguments {
             .map(|piece| chosen.as_ref().is_none_or(|c| c.contains(&of_piece(piece))))
             .collect())
     }
+}
+
+/// The box of all control points, which holds the surfaces.
+fn extents(set: &PatchSet) -> (Point, Point) {
+    let all = || {
+        let pieces = set.pieces().iter();
+        pieces.flat_map(|piece| piece.surface.control_points())
+    };
+    let bound = |pick: fn(f64, f64) -> f64, from: f64| {
+        Point::from(all().fold(Vector::repeat(from), |m, p| m.zip_map(&p.coords, pick)))
+    };
+    (
+        bound(f64::min, f64::INFINITY),
+        bound(f64::max, f64::NEG_INFINITY),
+    )
 }
 
 /// The summary goes where the mesh does not.

@@ -6,7 +6,8 @@ use std::str::FromStr;
 
 use thiserror::Error;
 
-use super::FormatError;
+use super::{FormatError, rounding};
+use crate::scalar::{Point, Tolerance};
 
 /// A file format for meshes.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -66,6 +67,16 @@ impl Format {
             Self::Obj | Self::Ply => &[Layout::Indexed, Layout::Triangles],
             Self::Glb => &[Layout::Strips, Layout::Indexed, Layout::Triangles],
         }
+    }
+
+    /// How far single precision can move any point of a box, in the unit of its
+    /// corners: what is to be set aside of the chord tolerance, so that the
+    /// mesh is within it still when the file is read. Zero for formats that
+    /// keep doubles; never more than a tenth of the chord, above which
+    /// [`write`](super::write) refuses.
+    #[must_use]
+    pub fn rounding(self, low: Point, high: Point, chord: Tolerance) -> f64 {
+        rounding::reserve(self, low, high, chord)
     }
 
     /// The layout to use where the given one was asked for.

@@ -12,6 +12,39 @@ const REFUSED_ABOVE: f64 = 0.1;
 /// set's own origin to keep their coordinates.
 const LOCAL_ABOVE: f64 = 0.01;
 
+/// How far rounding in the file can move any point of a box, never more than
+/// the tenth of the chord tolerance above which nothing is written. A mesh held
+/// to the chord less this is within the chord still when it is read back.
+///
+/// A coordinate x is rounded by at most half a unit in the last of 24 binary
+/// places of the largest |x|; a local origin lies in the middle of the box.
+pub(super) fn reserve(format: Format, low: Point, high: Point, chord: Tolerance) -> f64 {
+    // The norms that are compared with it are rounded themselves.
+    let bound = |reach: f64| 3.0_f64.sqrt() * half_unit(reach) * (1.0 + 1e-12);
+    let reach = low.coords.amax().max(high.coords.amax()) * (1.0 + 1e-12);
+    let plain = bound(reach);
+    let moved = match format {
+        Format::Obj | Format::Ply => 0.0,
+        Format::Stl => plain,
+        Format::Glb => {
+            // The origin is a single too, so not quite the middle; taking it
+            // off and adding it rounds.
+            let half = 0.5 * (high - low).amax() + half_unit(reach);
+            let local = bound(half * (1.0 + 1e-12)) + 4.0 * f64::EPSILON * reach;
+            plain.min(local.max(LOCAL_ABOVE * chord.get()))
+        }
+    };
+    moved.min(REFUSED_ABOVE * chord.get())
+}
+
+/// Half the distance of the singles at a value.
+fn half_unit(value: f64) -> f64 {
+    // Below this singles lose places; what they lose is less than this.
+    let value = value.max(f64::from(f32::MIN_POSITIVE));
+    let power_of_two = f64::from_bits(value.to_bits() >> 52 << 52);
+    power_of_two * 0.5 * f64::from(f32::EPSILON)
+}
+
 /// Coordinates in single precision, relative to an origin.
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Rounding {
@@ -118,4 +151,60 @@ impl Rounding {
 )]
 pub(super) fn single(value: f64) -> f32 {
     value as f32
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::mesh::{Mesh, Part};
+    use crate::scalar::LengthUnit;
+
+    fn mesh(points: Vec<Point>) -> Mesh {
+        Mesh {
+            name: String::new(),
+            unit: LengthUnit::Millimetre,
+            panels: vec!["p".to_owned()],
+            points,
+            vertices: Vec::new(),
+            triangles: Vec::new(),
+            parts: Vec::<Part>::new(),
+        }
+    }
+
+    #[test]
+    fn half_a_unit_is_that_of_the_singles() {
+        for value in [1.0, 1.5, 1.999_999, 2.0, 1023.0, 1024.0, 3e-5, 7e8] {
+            let below = single(value);
+            let unit = f64::from(below.next_up()) - f64::from(below);
+            approx::assert_relative_eq!(half_unit(value), unit / 2.0, max_relative = 1e-12);
+        }
+    }
+
+    #[test]
+    fn no_point_moves_further_than_what_is_set_aside() {
+        use proptest::prelude::*;
+        let coordinate = || -2e3..2e3_f64;
+        let point =
+            || (coordinate(), coordinate(), coordinate()).prop_map(|(x, y, z)| Point::new(x, y, z));
+        let case = (
+            prop::collection::vec(point(), 2..40),
+            1e-3..1.0_f64,
+            -1e4..1e4_f64,
+        );
+        proptest!(|((points, chord, far) in case)| {
+            let chord = Tolerance::new(chord).unwrap();
+            let points: Vec<Point> = points.iter().map(|p| p + Vector::new(far, 0.0, 0.0)).collect();
+            let bound = |pick: fn(f64, f64) -> f64, from: f64| {
+                Point::from(points.iter().fold(Vector::repeat(from), |m, p| m.zip_map(&p.coords, pick)))
+            };
+            let (low, high) = (bound(f64::min, f64::INFINITY), bound(f64::max, f64::NEG_INFINITY));
+            let mesh = mesh(points);
+            let most = |moved: f64| moved.min(REFUSED_ABOVE * chord.get());
+            let stl = Rounding::plain(&mesh).largest;
+            prop_assert!(most(stl) <= reserve(Format::Stl, low, high, chord));
+            let glb = Rounding::local(&mesh, chord).largest;
+            prop_assert!(most(glb) <= reserve(Format::Glb, low, high, chord));
+            prop_assert!(reserve(Format::Ply, low, high, chord) <= 0.0);
+        });
+    }
 }

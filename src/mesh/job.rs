@@ -10,6 +10,11 @@ use crate::sampling::{Limits, Samples, SamplingError};
 use crate::tessellation::{TessellationError, floor, tessellate};
 use crate::topology::{EdgeId, Topology, TopologyError};
 
+/// Corners are numbered in 32 bits, three a triangle, and a mesh has more
+/// triangles than the least that would do: what needs more than this is refused
+/// before anything is set aside for it.
+const MOST_TRIANGLES: f64 = 5e8;
+
 /// Why no mesh was made.
 #[derive(Debug, Error)]
 pub enum MeshError {
@@ -33,6 +38,14 @@ pub enum MeshError {
         gap: f64,
         /// The chord tolerance.
         chord: f64,
+    },
+    /// More triangles than a mesh can number.
+    #[error(
+        "mesh: about {least:.0e} triangles would be needed; at most {MOST_TRIANGLES:.0e} are made - ask for a larger chord, normal angle or edge, or for fewer panels"
+    )]
+    TooMany {
+        /// How few triangles would do for any of the limits: sampled.
+        least: f64,
     },
     /// An edge cannot be sampled.
     #[error(transparent)]
@@ -108,6 +121,11 @@ impl Meshed {
         let topology = Topology::build(set)?;
         bridgeable(set, &topology, limits)?;
         seconds.pairing = lap();
+        let floor = whole_floor(set, &topology, limits, &wanted);
+        let least = floor.max(least(set, limits, &wanted));
+        if least.is_nan() || least > MOST_TRIANGLES {
+            return Err(MeshError::TooMany { least });
+        }
         stage("sampling seams");
         let samples = Samples::new(set, &topology, limits)?;
         seconds.sampling = lap();
@@ -118,15 +136,6 @@ impl Meshed {
         let mesh = Mesh::assemble(set, &samples, &filled);
         let deviation = Deviation::of(set, &filled, &mesh).filter(|_| !mesh.triangles.is_empty());
         let deviation = deviation.ok_or(MeshError::Empty)?;
-        let pieces = set.pieces().iter().enumerate();
-        let floor = pieces
-            .filter(|(index, _)| wanted(PieceId::new(*index)))
-            .map(|(index, piece)| {
-                let collapsed =
-                    [0, 1, 2, 3].map(|side| topology.edges()[index * 4 + side].collapsed);
-                floor(&piece.surface, collapsed, limits.chord)
-            })
-            .sum();
         seconds.assembly = lap();
         Ok(Self {
             topology,
@@ -136,6 +145,49 @@ impl Meshed {
             seconds,
         })
     }
+}
+
+/// The floor of all pieces for which `wanted` holds.
+fn whole_floor(
+    set: &PatchSet,
+    topology: &Topology,
+    limits: &Limits,
+    wanted: &impl Fn(PieceId) -> bool,
+) -> f64 {
+    let pieces = set.pieces().iter().enumerate();
+    pieces
+        .filter(|(index, _)| wanted(PieceId::new(*index)))
+        .map(|(index, piece)| {
+            let collapsed = [0, 1, 2, 3].map(|side| topology.edges()[index * 4 + side].collapsed);
+            floor(&piece.surface, collapsed, limits.chord)
+        })
+        .sum()
+}
+
+/// How few triangles would do for the largest edge and the normal angle, where
+/// these are asked for: areas on the surfaces and on the sphere of normals, over
+/// that of the equilateral triangle with such edges. Sampled.
+fn least(set: &PatchSet, limits: &Limits, wanted: &impl Fn(PieceId) -> bool) -> f64 {
+    const PLACES: [f64; 4] = [0.125, 0.375, 0.625, 0.875];
+    let largest = |edge: Option<f64>| edge.map(|e| 3.0_f64.sqrt() / 4.0 * e * e);
+    let (flat, turned) = (largest(limits.max_edge), largest(limits.normal_rad));
+    if flat.is_none() && turned.is_none() {
+        return 0.0;
+    }
+    let (mut area, mut image) = (0.0, 0.0);
+    for (index, piece) in set.pieces().iter().enumerate() {
+        if !wanted(PieceId::new(index)) {
+            continue;
+        }
+        for (u, v) in PLACES.iter().flat_map(|u| PLACES.map(|v| (*u, v))) {
+            let jet = piece.surface.jet(u, v);
+            let part = jet.cross().norm() / 16.0;
+            area += part;
+            image += part * jet.gaussian_and_mean().map_or(0.0, |(k, _)| k.abs());
+        }
+    }
+    flat.map_or(0.0, |most| area / most)
+        .max(turned.map_or(0.0, |most| image / most))
 }
 
 /// Joined edges must lie closer together than the chord: nothing could be

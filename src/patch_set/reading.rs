@@ -204,6 +204,10 @@ fn syntax(error: &SpannedError, text: &str) -> Diagnostic {
             format!("the field `{field}` is given twice; once is enough"),
             None,
         ),
+        RonError::ExpectedAttribute => (
+            "this is no patch set; a set begins with `(`, comments with `//`".to_owned(),
+            None,
+        ),
         RonError::ExpectedFloat => ("expected a number".to_owned(), None),
         RonError::ExpectedInteger => ("expected a whole number".to_owned(), None),
         RonError::ExpectedDifferentLength { expected, found }

@@ -1,5 +1,7 @@
 //! What a run of the tessellator came to.
 
+use std::collections::BTreeSet;
+
 use serde::Serialize;
 
 use super::CAUTION;
@@ -7,6 +9,7 @@ use crate::format::Written;
 use crate::mesh::{Measures, Meshed, Storage, Strips};
 use crate::patch_set::PatchSet;
 use crate::sampling::Limits;
+use crate::topology::EdgeId;
 
 /// Version of the JSON fields of [`Summary`]; raised when one changes meaning
 /// or goes away.
@@ -18,7 +21,7 @@ pub struct Summary {
     /// Version of these fields.
     pub schema_version: u32,
     /// The set's name.
-    pub set: String,
+    pub name: String,
     /// The unit of all lengths.
     pub unit: &'static str,
     /// The chord tolerance the mesh was held to.
@@ -55,6 +58,10 @@ pub struct Summary {
     pub open_loops: usize,
     /// Edges of the mesh with more than two triangles, or two the same way.
     pub non_manifold_edges: usize,
+    /// Vertices - edges + triangles of the mesh.
+    pub euler: i64,
+    /// Parts of the mesh that hang together by edges.
+    pub components: usize,
     /// Whether every mesh edge is run once in each direction.
     pub closed: bool,
     /// Whether the mesh is watertight, and why or why not, in words.
@@ -173,7 +180,7 @@ impl Summary {
         let triangles = mesh.triangles.len() as f64;
         Self {
             schema_version: SCHEMA_VERSION,
-            set: set.name().to_owned(),
+            name: set.name().to_owned(),
             unit: set.unit().symbol(),
             chord: limits.chord,
             normal_deg: limits.normal_rad.map(f64::to_degrees),
@@ -207,8 +214,10 @@ impl Summary {
             triangles_over_floor: triangles / made.floor,
             open_loops: measures.open_loops,
             non_manifold_edges: measures.non_manifold_edges,
+            euler: measures.euler,
+            components: measures.components,
             closed: measures.closed,
-            watertight: watertight(&measures, made),
+            watertight: watertight(&measures, made, set),
             area: measures.area,
             volume: measures.volume,
             storage: StorageLine {
@@ -228,7 +237,7 @@ impl Summary {
     }
 }
 
-fn watertight(measures: &Measures, made: &Meshed) -> String {
+fn watertight(measures: &Measures, made: &Meshed, set: &PatchSet) -> String {
     if measures.closed {
         return "yes: every edge is run once in each direction".to_owned();
     }
@@ -238,12 +247,16 @@ fn watertight(measures: &Measures, made: &Meshed) -> String {
             "no: {count} mesh edges have more than two triangles or two that run the same way (panels may face different ways)"
         );
     }
-    let apart = made
-        .topology
-        .contacts()
-        .iter()
-        .filter(|c| !c.joined)
-        .count();
+    // Several pieces of one patch edge are one edge to the reader.
+    let name = |edge: EdgeId| {
+        (
+            set.patch_of(edge.piece()).name.as_str(),
+            edge.side().index(),
+        )
+    };
+    let contacts = made.topology.contacts().iter().filter(|c| !c.joined);
+    let pairs: BTreeSet<_> = contacts.map(|c| c.edges.map(name)).collect();
+    let apart = pairs.len();
     let loops = measures.open_loops;
     let along = if loops == 1 {
         "1 open loop"

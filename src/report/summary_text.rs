@@ -16,21 +16,24 @@ impl Summary {
 
     fn write_text(&self, out: &mut String) -> std::fmt::Result {
         let unit = self.unit;
-        if !self.set.is_empty() {
-            writeln!(out, "{}", self.set)?;
+        if !self.name.is_empty() {
+            writeln!(out, "{}", self.name)?;
         }
         writeln!(
             out,
-            "patches     {} in {} panels, {} edges, {} joined seams",
-            self.patches, self.panels, self.edges, self.seams
+            "patches     {} in {}, {}, {}",
+            self.patches,
+            many(self.panels, "panel"),
+            many(self.edges, "edge"),
+            many(self.seams, "joined seam"),
         )?;
         writeln!(
             out,
-            "mesh        {} triangles, {} vertices ({} in the file), {} strips ({:.2} indices a triangle)",
+            "mesh        {} triangles, {} vertices ({} in the file), {} ({:.2} indices a triangle)",
             self.triangles,
             self.vertices,
             self.file_vertices,
-            self.strips,
+            many(self.strips, "strip"),
             self.indices_per_triangle
         )?;
         let d = &self.deviation;
@@ -105,6 +108,10 @@ impl Summary {
         )?;
         writeln!(out, "\n{}", self.caution)
     }
+}
+
+fn many(count: usize, one: &str) -> String {
+    format!("{count} {one}{}", if count == 1 { "" } else { "s" })
 }
 
 /// Five significant digits, without an exponent where that stays short.
