@@ -413,3 +413,29 @@ fn a_reader_who_leaves_early_is_no_fault() {
     let err = String::from_utf8(output.stderr).unwrap();
     assert!(!err.contains("error"), "{err}");
 }
+
+/// Worked out from the published net: six open loops, four parts, of which two
+/// meet in one point.
+#[test]
+fn the_parts_of_the_teapot_touch_in_one_point() {
+    let (code, out, _) = run(&[
+        "tessellate",
+        "patches/teapot.ron",
+        "--as",
+        "ply",
+        "-o",
+        "/dev/null",
+        "--format",
+        "json",
+    ]);
+    assert_eq!(code, 0);
+    let told = json(&out);
+    for (field, value) in [
+        ("open_loops", 6),
+        ("components", 4),
+        ("touching", 1),
+        ("euler", 2),
+    ] {
+        assert_eq!(told[field], value, "{field}");
+    }
+}

@@ -62,6 +62,9 @@ pub struct Summary {
     pub euler: i64,
     /// Parts of the mesh that hang together by edges.
     pub components: usize,
+    /// Vertices in excess of the places they stand at: where parts touch in a
+    /// point only.
+    pub touching: usize,
     /// Whether every mesh edge is run once in each direction.
     pub closed: bool,
     /// Whether the mesh is watertight, and why or why not, in words.
@@ -216,6 +219,7 @@ impl Summary {
             non_manifold_edges: measures.non_manifold_edges,
             euler: measures.euler,
             components: measures.components,
+            touching: measures.touching,
             closed: measures.closed,
             watertight: watertight(&measures, made, set),
             area: measures.area,
