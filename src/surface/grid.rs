@@ -17,9 +17,10 @@ pub struct PieceGrid {
 
 impl PieceGrid {
     /// Splits rows and columns at their middle until no piece has an edge that
-    /// ends where it starts without being collapsed: such an edge would have
-    /// one node only. Ends within `gap` count as one point, and so does an edge
-    /// that keeps within `gap` of its start.
+    /// ends where it starts without being collapsed (such an edge would have
+    /// one node only), nor two opposite edges that are collapsed (a piece has
+    /// one pole at most). Ends within `gap` count as one point, and so does an
+    /// edge that keeps within `gap` of its start.
     pub(super) fn split_closed(mut self, gap: f64) -> Self {
         // Halves of a smooth loop are open at once; an edge that still closes
         // after eight halvings folds onto itself, and is left to the seams.
@@ -31,6 +32,9 @@ impl PieceGrid {
                 let closed = |side| is_closed(&piece.edge(side), gap);
                 split_u[at / columns] |= closed(Side::V0) || closed(Side::V1);
                 split_v[at % columns] |= closed(Side::U0) || closed(Side::U1);
+                let [u0, u1, v0, v1] = Side::ALL.map(|side| is_point(&piece.edge(side), gap));
+                split_u[at / columns] |= u0 && u1 && !v0 && !v1;
+                split_v[at % columns] |= v0 && v1 && !u0 && !u1;
             }
             if !split_u.iter().chain(&split_v).any(|&split| split) {
                 break;
@@ -99,6 +103,10 @@ fn halved(breaks: &[f64], split: &[bool]) -> (Vec<f64>, Vec<(usize, Part)>) {
 
 fn is_closed(edge: &BezierCurve, gap: f64) -> bool {
     let start = edge.control_point(0);
-    (edge.control_point(edge.degree()) - start).norm() <= gap
-        && edge.control_points().any(|p| (p - start).norm() > gap)
+    (edge.control_point(edge.degree()) - start).norm() <= gap && !is_point(edge, gap)
+}
+
+fn is_point(edge: &BezierCurve, gap: f64) -> bool {
+    let start = edge.control_point(0);
+    edge.control_points().all(|p| (p - start).norm() <= gap)
 }

@@ -64,7 +64,7 @@ impl Flat {
 }
 
 /// What is proved of one cell against its target.
-#[derive(Debug, Clone, Copy)]
+#[derive(Debug, Clone, Copy, Default)]
 pub(super) struct Cell {
     /// Largest distance from the target's plane.
     pub(super) height: f64,

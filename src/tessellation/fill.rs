@@ -5,7 +5,7 @@ use super::correction::Correction;
 use super::field::Field;
 use super::lattice::Ground;
 use super::layout::{INNER, Layout, layout};
-use super::triangulation::{BORDER, TriangleEdge, is_proper};
+use super::triangulation::{BORDER, Pole, TriangleEdge, is_proper};
 use super::{planar, verdict};
 use crate::bezier::BezierPatch;
 use crate::sampling::Limits;
@@ -169,7 +169,7 @@ impl<'a> Work<'a> {
     }
 
     fn error(&self, corners: [u32; 3]) -> f64 {
-        let places = corners.map(|v| self.layout.triangulation.places[v as usize]);
+        let places = self.layout.triangulation.places_of(corners);
         self.field
             .estimate(places, corners.map(|v| self.layout.points[v as usize]))
     }
@@ -182,8 +182,8 @@ impl<'a> Work<'a> {
             let Some([a, b, c, d]) = self.layout.triangulation.quad(edge) else {
                 continue;
             };
-            let at = |v: u32| self.layout.triangulation.places[v as usize];
-            if !is_proper([at(d), at(a), at(b)]) || !is_proper([at(b), at(c), at(d)]) {
+            let proper = |corners| is_proper(self.layout.triangulation.places_of(corners));
+            if !proper([d, a, b]) || !proper([b, c, d]) {
                 continue;
             }
             let now = self.error([a, c, d]).max(self.error([c, a, b]));
@@ -308,107 +308,52 @@ impl<'a> Work<'a> {
         }
     }
 
-    /// Brings flats and cells up to date. A cell whose triangle has no area
-    /// (two of its corners are the pole) is proved against the better of its
-    /// neighbours, which then answers for it.
+    /// Brings flats and cells up to date.
     fn measure(&mut self, stale: &[u32]) {
         let count = self.layout.triangulation.triangles.len();
-        let empty = Flat::new([Point::origin(); 3]);
-        self.flats.resize(count, empty);
-        let corners = |layout: &Layout, t: u32| {
-            layout.triangulation.triangles[t as usize].map(|v| layout.points[v as usize])
-        };
+        self.flats.resize(count, Flat::new([Point::origin(); 3]));
+        self.cells.resize(count, Cell::default());
         for &t in stale {
-            self.flats[t as usize] = Flat::new(corners(&self.layout, t));
-        }
-        let blank = Cell {
-            height: 0.0,
-            sideways: 0.0,
-            direct: 0.0,
-            edges: [0.0; 3],
-            peak: [1.0 / 3.0; 3],
-        };
-        self.cells.resize(count, blank);
-        // A host of a flat neighbour must be measured afresh with it.
-        let mut again: Vec<u32> = stale.to_vec();
-        for &t in stale {
-            let around = self.layout.triangulation.neighbours[t as usize];
-            again.extend(around.iter().filter(|&&n| n != BORDER));
-        }
-        again.sort_unstable();
-        again.dedup();
-        let is_flat = |work: &Self, t: u32| work.flats[t as usize].normal.is_none();
-        let mut around_flat: Vec<u32> = again
-            .iter()
-            .copied()
-            .filter(|&t| is_flat(self, t))
-            .collect();
-        for &t in &again {
-            let near_flat = self.layout.triangulation.neighbours[t as usize]
-                .iter()
-                .any(|&n| n != BORDER && is_flat(self, n));
-            if self.stale[t as usize] || near_flat || is_flat(self, t) {
-                let places = self.layout.triangulation.corners(t);
-                self.cells[t as usize] = self.prover.cell(places, &self.flats[t as usize], true);
-            }
-            if near_flat {
-                let flat_neighbours = self.layout.triangulation.neighbours[t as usize];
-                around_flat.extend(
-                    flat_neighbours
-                        .iter()
-                        .filter(|&&n| n != BORDER && is_flat(self, n)),
-                );
-            }
-        }
-        around_flat.sort_unstable();
-        around_flat.dedup();
-        for t in around_flat {
-            self.attach(t);
+            let corners = self.layout.triangulation.triangles[t as usize];
+            let flat = Flat::new(corners.map(|v| self.layout.points[v as usize]));
+            self.flats[t as usize] = flat;
+            self.cells[t as usize] = match self.layout.triangulation.pole_corner(corners) {
+                None => self
+                    .prover
+                    .cell(self.layout.triangulation.corners(t), &flat, true),
+                Some((k, pole)) => self.pole_cell(corners, k, pole, &flat),
+            };
         }
     }
 
-    fn attach(&mut self, t: u32) {
-        let places = self.layout.triangulation.corners(t);
-        let own = self.prover.cell(places, &self.flats[t as usize], true);
-        let mut best: Option<(usize, u32, Cell)> = None;
-        for (i, &host) in self.layout.triangulation.neighbours[t as usize]
-            .iter()
-            .enumerate()
-        {
-            if host == BORDER || self.flats[host as usize].normal.is_none() {
-                continue;
-            }
-            let cell = self.prover.cell(places, &self.flats[host as usize], false);
-            if best.as_ref().is_none_or(|(_, _, b)| cell.direct < b.direct) {
-                best = Some((i, host, cell));
-            }
+    /// The cell of a triangle at the pole is a trapezoid: the two parameter
+    /// triangles it falls into, by one diagonal for what lies over the flat
+    /// triangle, and by the other for the edge that diagonal does not end in.
+    fn pole_cell(&mut self, corners: [u32; 3], k: usize, pole: Pole, flat: &Flat) -> Cell {
+        let at = corners.map(|v| self.layout.triangulation.places[v as usize]);
+        let (x, y) = (at[(k + 1) % 3], at[(k + 2) % 3]);
+        let (below_x, below_y) = (pole.beside(x), pole.beside(y));
+        let with_pole_at = |place: [f64; 2]| {
+            let mut places = at;
+            places[k] = place;
+            places
+        };
+        let first = self.prover.cell(with_pole_at(below_x), flat, true);
+        let other = self.prover.cell(with_pole_at(below_y), flat, true);
+        let mut second = [[0.0; 2]; 3];
+        second[k] = below_x;
+        second[(k + 1) % 3] = y;
+        second[(k + 2) % 3] = below_y;
+        let second = self.prover.cell(second, flat, false);
+        let mut edges = first.edges;
+        edges[(k + 2) % 3] = other.edges[(k + 2) % 3];
+        Cell {
+            height: first.height.max(second.height),
+            sideways: first.sideways.max(second.sideways),
+            direct: first.direct.max(second.direct),
+            edges,
+            peak: first.peak,
         }
-        let Some((i, host, cell)) = best else {
-            self.cells[t as usize] = own;
-            return;
-        };
-        // The host answers for the flat cell: their union's outer edges are
-        // what its reverse proof goes round.
-        let shared = self.layout.triangulation.neighbours[host as usize]
-            .iter()
-            .position(|&n| n == t)
-            .expect("neighbours are mutual");
-        let host_cell = &mut self.cells[host as usize];
-        host_cell.height = host_cell.height.max(cell.height);
-        host_cell.sideways = host_cell.sideways.max(cell.sideways);
-        host_cell.direct = host_cell.direct.max(cell.direct);
-        host_cell.edges[shared] = (0..3)
-            .filter(|&k| k != i)
-            .map(|k| own.edges[k])
-            .fold(0.0, f64::max);
-        let silent = &mut self.cells[t as usize];
-        *silent = Cell {
-            height: 0.0,
-            sideways: 0.0,
-            direct: 0.0,
-            edges: [0.0; 3],
-            peak: own.peak,
-        };
     }
 
     /// Whether the triangle keeps to the normal angle and the largest edge.
@@ -424,7 +369,12 @@ impl<'a> Work<'a> {
             if self.flats[t as usize].normal.is_none() {
                 return true;
             }
-            let normals = corners.map(|v| self.normal(v));
+            let places = self.layout.triangulation.corners(t);
+            let pole = self.layout.triangulation.pole_corner(corners);
+            let normals = [0, 1, 2].map(|k| match pole {
+                Some((at, _)) if at == k => self.surface.normal(places[k][0], places[k][1]),
+                _ => self.normal(corners[k]),
+            });
             for k in 0..3 {
                 if let (Some(a), Some(b)) = (normals[k], normals[(k + 1) % 3])
                     && turn(&a, &b) > limit
@@ -447,16 +397,12 @@ impl<'a> Work<'a> {
 
     /// Puts a vertex where the triangle is worst; true if that cannot be done.
     fn refine(&mut self, t: u32) -> bool {
-        let corners = self.layout.triangulation.triangles[t as usize];
-        let places = self.layout.triangulation.corners(t);
         let mut best: Option<(f64, usize)> = None;
         for i in 0..3 {
-            let (a, b) = (places[i], places[(i + 1) % 3]);
+            let [a, b] = self.layout.triangulation.ends((t, i));
             let long = (a[0] - b[0]).abs().max((a[1] - b[1]).abs());
             let border = self.layout.triangulation.neighbours[t as usize][i] == BORDER;
-            let ends = [corners[i], corners[(i + 1) % 3]].map(|v| self.layout.vertices[v as usize]);
-            let pole = border && ends[0] == ends[1];
-            if (border && !pole) || long < SHORTEST {
+            if border || long < SHORTEST {
                 continue;
             }
             let error = self.cells[t as usize].edges[i].max(1e-3 * self.limits.chord * long);
@@ -474,26 +420,14 @@ impl<'a> Work<'a> {
         let mut outer: Vec<TriangleEdge>;
         if error < 0.5 * border_error {
             let place = self.centre(t);
-            self.add_vertex(place, INNER);
+            self.add_vertex(place);
             outer = self.layout.triangulation.insert_inside(t, place).to_vec();
         } else {
-            let (a, b) = (places[i], places[(i + 1) % 3]);
+            let [a, b] = self.layout.triangulation.ends((t, i));
             let place = [(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0];
-            let border = self.layout.triangulation.neighbours[t as usize][i] == BORDER;
-            let vertex = if border {
-                self.layout.vertices[corners[i] as usize]
-            } else {
-                INNER
-            };
-            self.add_vertex(place, vertex);
-            if border {
-                let last = self.layout.points.len() - 1;
-                self.layout.points[last] = self.layout.points[corners[i] as usize];
-            }
+            self.add_vertex(place);
             let other = self.layout.triangulation.neighbours[t as usize][i];
-            if other != BORDER {
-                self.stale[other as usize] = true;
-            }
+            self.stale[other as usize] = true;
             outer = self.layout.triangulation.insert_on_edge((t, i), place);
         }
         self.stale[t as usize] = true;
@@ -503,33 +437,47 @@ impl<'a> Work<'a> {
         false
     }
 
-    fn add_vertex(&mut self, [u, v]: [f64; 2], vertex: u32) {
+    fn add_vertex(&mut self, [u, v]: [f64; 2]) {
         self.layout.points.push(self.surface.eval(u, v));
-        self.layout.vertices.push(vertex);
+        self.layout.vertices.push(INNER);
         self.normals.push(None);
     }
 
     /// Drops triangles without area and finds the largest true deviation.
-    fn finish(self, proved: Proved) -> Filled {
+    fn finish(mut self, proved: Proved) -> Filled {
         let mut attained = Attained {
             distance: 0.0,
             place: [0.5, 0.5],
             point: self.surface.eval(0.5, 0.5),
         };
-        let mut triangles = Vec::with_capacity(self.layout.triangulation.triangles.len());
-        for (t, corners) in self.layout.triangulation.triangles.iter().enumerate() {
+        let mesh = &self.layout.triangulation;
+        let mut places = mesh.places.clone();
+        let mut triangles = Vec::with_capacity(mesh.triangles.len());
+        for (t, &corners) in mesh.triangles.iter().enumerate() {
             let [a, b, c] = corners.map(|v| self.layout.vertices[v as usize]);
             let same = |x: u32, y: u32| x == y && x != INNER;
             if same(a, b) || same(b, c) || same(c, a) {
                 continue;
             }
-            triangles.push(*corners);
+            let mut written = corners;
+            if let Some((k, _)) = mesh.pole_corner(corners) {
+                // A pole has a parameter, and so a normal, in each triangle.
+                written[k] = index(places.len());
+                places.push(mesh.corners(index(t))[k]);
+                self.layout
+                    .points
+                    .push(self.layout.points[corners[k] as usize]);
+                self.layout
+                    .vertices
+                    .push(self.layout.vertices[corners[k] as usize]);
+            }
+            triangles.push(written);
             let Some(normal) = self.flats[t].normal else {
                 continue;
             };
-            let places = self.layout.triangulation.corners(index(t));
+            let around = mesh.corners(index(t));
             let peak = self.cells[t].peak;
-            let at = |axis: usize| (0..3).map(|k| peak[k] * places[k][axis]).sum::<f64>();
+            let at = |axis: usize| (0..3).map(|k| peak[k] * around[k][axis]).sum::<f64>();
             let point = self.surface.eval(at(0), at(1));
             let distance = (point - self.flats[t].corners[0]).dot(&normal).abs();
             if distance > attained.distance {
@@ -541,7 +489,7 @@ impl<'a> Work<'a> {
             }
         }
         Filled {
-            places: self.layout.triangulation.places,
+            places,
             points: self.layout.points,
             vertices: self.layout.vertices,
             triangles,

@@ -2,7 +2,7 @@
 
 use super::lattice::{self, Along, Ground};
 use super::stitch;
-use super::triangulation::Triangulation;
+use super::triangulation::{Pole, Triangulation, is_proper};
 use crate::bezier::{BezierPatch, Side};
 use crate::sampling::{BorderVertex, Outline};
 use crate::scalar::Point;
@@ -11,8 +11,7 @@ use crate::scalar::Point;
 pub(super) const INNER: u32 = u32::MAX;
 
 /// A triangulated piece before proof. The vertices of the triangulation have
-/// their place in space and, on the border, the mesh vertex they stand for. On
-/// a collapsed side many parameter places stand for one vertex.
+/// their place in space and, on the border, the mesh vertex they stand for.
 #[derive(Debug)]
 pub(super) struct Layout {
     pub(super) triangulation: Triangulation,
@@ -71,16 +70,6 @@ impl Builder<'_> {
             .collect()
     }
 
-    /// A chain on a collapsed side: its one vertex at every p of the
-    /// neighbouring row.
-    fn pole(&mut self, side: Side, corner: &BorderVertex, row: &[f64]) -> Vec<u32> {
-        let ps = std::iter::once(0.0)
-            .chain(row.iter().copied())
-            .chain(std::iter::once(1.0));
-        ps.map(|p| self.push(side.at(p), corner.point, corner.vertex))
-            .collect()
-    }
-
     fn row(&mut self, q: f64, ps: &[f64]) -> Vec<u32> {
         let mut row = Vec::with_capacity(ps.len());
         for &p in ps {
@@ -95,12 +84,13 @@ impl Builder<'_> {
 pub(super) fn layout(surface: &BezierPatch, ground: &Ground, outline: &Outline) -> Layout {
     let along = direction(ground, outline);
     let [bottom, top, left, right] = sides(along);
-    let inner = |side: Side| -> Vec<f64> {
-        let samples = outline.side(side);
-        samples[1..samples.len() - 1].iter().map(|b| b.t).collect()
-    };
     let ps = |side: Side| -> Vec<f64> { outline.side(side).iter().map(|b| b.t).collect() };
-    let rows = lattice::rows(ground, along, &ps(bottom));
+    let collapsed = |side: Side| outline.collapsed[side.index()];
+    let mut rows = lattice::rows(ground, along, &ps(bottom));
+    if rows.is_empty() && (collapsed(bottom) || collapsed(top)) && !is_plain(outline, left, right) {
+        // The polygon of a piece with a pole is not monotone without a row.
+        rows.push((0.5, vec![0.5]));
+    }
 
     let mut build = Builder {
         surface,
@@ -109,21 +99,21 @@ pub(super) fn layout(surface: &BezierPatch, ground: &Ground, outline: &Outline) 
         points: Vec::new(),
         vertices: Vec::new(),
     };
-    // The row beside a collapsed side decides where that side has vertices.
-    let beside = |row: Option<&(f64, Vec<f64>)>, other: Side| match row {
-        Some((_, ps)) => ps.clone(),
-        None if outline.collapsed[other.index()] => Vec::new(),
-        None => inner(other),
-    };
-    let chain = |build: &mut Builder, side: Side, row: Option<&(f64, Vec<f64>)>, other: Side| {
-        if outline.collapsed[side.index()] {
-            build.pole(side, &outline.side(side)[0], &beside(row, other))
+    let mut pole = None;
+    let mut chain = |build: &mut Builder, side: Side| {
+        if collapsed(side) {
+            let chain = build.border(side, &outline.side(side)[..1]);
+            pole = Some(Pole {
+                vertex: chain[0],
+                side,
+            });
+            chain
         } else {
             build.border(side, outline.side(side))
         }
     };
-    let bottom_chain = chain(&mut build, bottom, rows.first(), top);
-    let top_chain = chain(&mut build, top, rows.last(), bottom);
+    let bottom_chain = chain(&mut build, bottom);
+    let top_chain = chain(&mut build, top);
     let upright = |build: &mut Builder, side: Side, start: u32, end: u32| {
         let samples = outline.side(side);
         let mut chain = vec![start];
@@ -153,14 +143,18 @@ pub(super) fn layout(surface: &BezierPatch, ground: &Ground, outline: &Outline) 
             [a, c, b]
         }
     };
+    let unlinked = Triangulation {
+        places: build.places.clone(),
+        pole,
+        ..Triangulation::default()
+    };
+    let proper = |corners: [u32; 3]| is_proper(unlinked.places_of(orient(corners)));
     let error = |corners: [u32; 3]| {
-        let at = |v: u32| build.places[v as usize];
-        ground
-            .field
-            .estimate(corners.map(at), corners.map(|v| build.points[v as usize]))
+        let points = corners.map(|v| build.points[v as usize]);
+        ground.field.estimate(unlinked.places_of(corners), points)
     };
     if row_chains.is_empty() {
-        if left_chain.len() == 2 && right_chain.len() == 2 {
+        if is_plain(outline, left, right) {
             stitch::zip(&bottom_chain, &top_chain, error, &mut triangles);
         } else {
             let lower: Vec<u32> = bottom_chain
@@ -169,8 +163,8 @@ pub(super) fn layout(surface: &BezierPatch, ground: &Ground, outline: &Outline) 
                 .copied()
                 .collect();
             let upper: Vec<u32> = left_chain.iter().chain(&top_chain[1..]).copied().collect();
-            let before = |a: [f64; 2], b: [f64; 2]| (a[0], a[1]) < (b[0], b[1]);
-            stitch::monotone(&lower, &upper, place, before, &mut triangles);
+            let before = |a: u32, b: u32| place(a) < place(b);
+            stitch::monotone(&lower, &upper, before, proper, &mut triangles);
         }
     } else {
         let mut lower = &bottom_chain;
@@ -184,16 +178,21 @@ pub(super) fn layout(surface: &BezierPatch, ground: &Ground, outline: &Outline) 
             column.push(side[side.len() - 1]);
             column
         };
-        let before = |a: [f64; 2], b: [f64; 2]| a[1] <= b[1];
+        let before = |a: u32, b: u32| place(a)[1] <= place(b)[1];
         let first = column(&left_chain, |row| row[0]);
-        stitch::monotone(&first, &left_chain, place, before, &mut triangles);
+        stitch::monotone(&first, &left_chain, before, proper, &mut triangles);
         let last = column(&right_chain, |row| row[row.len() - 1]);
-        stitch::monotone(&right_chain, &last, place, before, &mut triangles);
+        stitch::monotone(&right_chain, &last, before, proper, &mut triangles);
     }
     let triangles = triangles.into_iter().map(orient).collect();
     Layout {
-        triangulation: Triangulation::new(build.places, triangles),
+        triangulation: Triangulation::new(build.places, pole, triangles),
         points: build.points,
         vertices: build.vertices,
     }
+}
+
+/// Whether both upright sides are one segment each.
+fn is_plain(outline: &Outline, left: Side, right: Side) -> bool {
+    outline.side(left).len() == 2 && outline.side(right).len() == 2
 }

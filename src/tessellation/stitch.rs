@@ -1,7 +1,5 @@
 //! Triangles between chains of points: rows zipped together, sides filled.
 
-use super::triangulation::is_proper;
-
 /// Triangles between two chains that run the same way, `lower` to the right
 /// of `upper` when seen along them (lower chain below when running in +p).
 /// Greedy: the chain goes on whose new triangle has the smaller error.
@@ -35,20 +33,21 @@ pub(super) fn zip(
 /// `lower` to the right. Stack algorithm of Garey, Johnson, Preparata and
 /// Tarjan (1978); linear, and right with runs of collinear points.
 ///
-/// `before(a, b)` orders vertices along the direction of monotony.
+/// `before(a, b)` orders vertices along the direction of monotony; `is_proper`
+/// tells whether three vertices make a counterclockwise triangle with area.
 pub(super) fn monotone(
     lower: &[u32],
     upper: &[u32],
-    place: impl Fn(u32) -> [f64; 2],
-    before: impl Fn([f64; 2], [f64; 2]) -> bool,
+    before: impl Fn(u32, u32) -> bool,
+    is_proper: impl Fn([u32; 3]) -> bool,
     triangles: &mut Vec<[u32; 3]>,
 ) {
     // Merge both chains; the common ends count as lower.
     let mut order: Vec<(u32, bool)> = vec![(lower[0], false)];
     let (mut i, mut j) = (1, 1);
     while i + 1 < lower.len() || j + 1 < upper.len() {
-        let take_lower = i + 1 < lower.len()
-            && (j + 1 >= upper.len() || before(place(lower[i]), place(upper[j])));
+        let take_lower =
+            i + 1 < lower.len() && (j + 1 >= upper.len() || before(lower[i], upper[j]));
         if take_lower {
             order.push((lower[i], false));
             i += 1;
@@ -59,8 +58,7 @@ pub(super) fn monotone(
     }
     let last = lower[lower.len() - 1];
     let mut emit = |a: u32, b: u32, c: u32| {
-        let corners = [place(a), place(b), place(c)];
-        triangles.push(if is_proper(corners) {
+        triangles.push(if is_proper([a, b, c]) {
             [a, b, c]
         } else {
             [a, c, b]
@@ -83,7 +81,7 @@ pub(super) fn monotone(
                 } else {
                     [b, a, vertex]
                 };
-                if !is_proper(corners.map(&place)) {
+                if !is_proper(corners) {
                     break;
                 }
                 emit(b, a, vertex);
@@ -100,7 +98,7 @@ pub(super) fn monotone(
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::tessellation::triangulation::Triangulation;
+    use crate::tessellation::triangulation::{Triangulation, is_proper};
 
     #[test]
     fn a_side_with_a_zigzag_and_collinear_points_is_covered() {
@@ -116,32 +114,20 @@ mod tests {
             [0.1, 0.6],
             [0.5, 0.62],
             [0.2, 0.9],
+            [1.0, 0.0],
+            [1.0, 1.0],
         ];
-        let lower = [0, 4, 5, 6, 7, 8, 9, 3];
-        let upper = [0, 1, 2, 3];
+        let at = |v: u32| places[v as usize];
+        let proper = |corners: [u32; 3]| is_proper(corners.map(at));
+        let before = |a: u32, b: u32| at(a)[1] <= at(b)[1];
+        let column = [0, 4, 5, 6, 7, 8, 9, 3];
         let mut triangles = Vec::new();
-        monotone(
-            &lower,
-            &upper,
-            |v| places[v as usize],
-            |a, b| a[1] <= b[1],
-            &mut triangles,
-        );
-        assert_eq!(triangles.len(), places.len() - 2);
+        monotone(&column, &[0, 1, 2, 3], before, proper, &mut triangles);
+        assert_eq!(triangles.len(), 8);
         // The rest of the square, to use the triangulation's own check.
-        let right = [[1.0, 0.0], [1.0, 1.0]];
-        let mut all = places.clone();
-        all.extend(right);
-        let lower = [0, 10, 11, 3];
-        let upper = [0, 4, 5, 6, 7, 8, 9, 3];
-        monotone(
-            &lower,
-            &upper,
-            |v| all[v as usize],
-            |a, b| (a[1], -a[0]) <= (b[1], -b[0]),
-            &mut triangles,
-        );
-        Triangulation::new(all, triangles).check();
+        let before = |a: u32, b: u32| (at(a)[1], -at(a)[0]) <= (at(b)[1], -at(b)[0]);
+        monotone(&[0, 10, 11, 3], &column, before, proper, &mut triangles);
+        Triangulation::new(places.clone(), None, triangles).check();
     }
 
     #[test]
@@ -157,15 +143,17 @@ mod tests {
             [0.0, 1.0],
             [0.8, 1.0],
         ];
+        let at = |v: u32| places[v as usize];
+        let proper = |corners: [u32; 3]| is_proper(corners.map(at));
+        let before = |a: u32, b: u32| (at(a)[0], at(a)[1]) < (at(b)[0], at(b)[1]);
         let mut triangles = Vec::new();
-        let before = |a: [f64; 2], b: [f64; 2]| (a[0], a[1]) < (b[0], b[1]);
         monotone(
             &[0, 1, 2, 3, 4],
             &[0, 5, 6, 7, 8, 4],
-            |v| places[v as usize],
             before,
+            proper,
             &mut triangles,
         );
-        Triangulation::new(places, triangles).check();
+        Triangulation::new(places.clone(), None, triangles).check();
     }
 }

@@ -4,6 +4,8 @@
 //! at a positive area there, so the triangles always cover the square exactly
 //! once: the certificate needs no other property of them.
 
+use crate::bezier::Side;
+
 /// No triangle on the other side: the border of the piece.
 pub(super) const BORDER: u32 = u32::MAX;
 
@@ -11,11 +13,33 @@ pub(super) const BORDER: u32 = u32::MAX;
 /// has sides of 1 and f64 keeps cross products to about 1e-16.
 const FLAT: f64 = 1e-14;
 
+/// A vertex that stands for a whole collapsed side. It has no parameter along
+/// that side: in each of its triangles it takes the mean of the two others',
+/// so that a triangle with the pole and corners at a and b stands for the
+/// trapezoid between them and the stretch a..b of the side.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Pole {
+    pub(super) vertex: u32,
+    pub(super) side: Side,
+}
+
+impl Pole {
+    /// The place on the side beside another place.
+    pub(super) fn beside(&self, [u, v]: [f64; 2]) -> [f64; 2] {
+        match self.side {
+            Side::U0 | Side::U1 => self.side.at(v),
+            Side::V0 | Side::V1 => self.side.at(u),
+        }
+    }
+}
+
 /// Triangles with their neighbours.
 #[derive(Debug, Clone, Default)]
 pub(super) struct Triangulation {
     /// Parameters of the vertices.
     pub(super) places: Vec<[f64; 2]>,
+    /// The pole, if a side is collapsed.
+    pub(super) pole: Option<Pole>,
     /// Corners of the triangles.
     pub(super) triangles: Vec<[u32; 3]>,
     /// `neighbours[t][i]` shares the edge from corner i to corner i + 1.
@@ -41,7 +65,7 @@ fn narrow(count: usize) -> u32 {
 
 impl Triangulation {
     /// Links triangles that share an edge.
-    pub(super) fn new(places: Vec<[f64; 2]>, triangles: Vec<[u32; 3]>) -> Self {
+    pub(super) fn new(places: Vec<[f64; 2]>, pole: Option<Pole>, triangles: Vec<[u32; 3]>) -> Self {
         let mut half_edges: Vec<(u64, u32)> = Vec::with_capacity(triangles.len() * 3);
         for (t, corners) in triangles.iter().enumerate() {
             for i in 0..3 {
@@ -61,14 +85,44 @@ impl Triangulation {
         }
         Self {
             places,
+            pole,
             triangles,
             neighbours,
         }
     }
 
+    /// Parameters of three vertices as corners of one triangle.
+    pub(super) fn places_of(&self, vertices: [u32; 3]) -> [[f64; 2]; 3] {
+        let mut places = vertices.map(|v| self.places[v as usize]);
+        if let Some((k, pole)) = self.pole_corner(vertices) {
+            let (a, b) = (places[(k + 1) % 3], places[(k + 2) % 3]);
+            places[k] = pole.beside([(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0]);
+        }
+        places
+    }
+
+    /// Which corner is the pole, if one is.
+    pub(super) fn pole_corner(&self, vertices: [u32; 3]) -> Option<(usize, Pole)> {
+        let pole = self.pole?;
+        let k = vertices.iter().position(|&v| v == pole.vertex)?;
+        Some((k, pole))
+    }
+
     /// Parameters of the corners of triangle `t`.
     pub(super) fn corners(&self, t: u32) -> [[f64; 2]; 3] {
-        self.triangles[t as usize].map(|v| self.places[v as usize])
+        self.places_of(self.triangles[t as usize])
+    }
+
+    /// Parameters of the ends of an edge; a pole takes the other end's.
+    pub(super) fn ends(&self, (t, i): TriangleEdge) -> [[f64; 2]; 2] {
+        let corners = self.triangles[t as usize];
+        let ends = [corners[i], corners[(i + 1) % 3]];
+        let [a, b] = ends.map(|v| self.places[v as usize]);
+        match self.pole {
+            Some(pole) if pole.vertex == ends[0] => [pole.beside(b), b],
+            Some(pole) if pole.vertex == ends[1] => [a, pole.beside(a)],
+            _ => [a, b],
+        }
     }
 
     /// Which edge of `t` leads to `neighbour`.
@@ -252,6 +306,13 @@ impl Triangulation {
             let t32 = narrow(t);
             assert!(is_proper(self.corners(t32)), "triangle {t} is flat");
             area += doubled_area(self.corners(t32)) / 2.0;
+            if let Some((k, pole)) = self.pole_corner(*corners) {
+                // The trapezoid is the triangle and two more beside it.
+                let at = |i: usize| self.places[corners[(k + i) % 3] as usize];
+                let apex = self.corners(t32)[k];
+                area += doubled_area([apex, pole.beside(at(1)), at(1)]) / 2.0;
+                area += doubled_area([apex, at(2), pole.beside(at(2))]) / 2.0;
+            }
             for i in 0..3 {
                 let other = self.neighbours[t][i];
                 if other != BORDER {
@@ -273,9 +334,31 @@ mod tests {
     use super::*;
 
     #[test]
+    fn a_fan_round_a_pole_covers_the_square() {
+        let places = vec![
+            [0.0, 0.0],
+            [1.0, 0.4],
+            [1.0, 1.0],
+            [0.0, 1.0],
+            [0.0, 0.3],
+            [0.4, 0.5],
+        ];
+        let fan = vec![[0, 1, 5], [0, 5, 4], [5, 1, 2], [5, 2, 3], [4, 5, 3]];
+        let pole = Pole {
+            vertex: 0,
+            side: Side::V0,
+        };
+        let mut t = Triangulation::new(places, Some(pole), fan);
+        t.check();
+        let [a, b] = t.ends((0, 2));
+        t.insert_on_edge((0, 2), [(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0]);
+        t.check();
+    }
+
+    #[test]
     fn insertions_and_flips_keep_the_square_covered() {
         let places = vec![[0.0, 0.0], [1.0, 0.0], [1.0, 1.0], [0.0, 1.0]];
-        let mut t = Triangulation::new(places, vec![[0, 1, 2], [0, 2, 3]]);
+        let mut t = Triangulation::new(places, None, vec![[0, 1, 2], [0, 2, 3]]);
         t.check();
         t.insert_inside(0, [0.6, 0.3]);
         t.check();
