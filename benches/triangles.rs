@@ -67,6 +67,33 @@ fn measure(
     let least: f64 = pieces
         .map(|(k, piece)| floor(&piece.surface, collapsed(k), chord))
         .sum();
+    if std::env::var("PARTS").is_ok() {
+        let mut rows: Vec<(f64, String)> = Vec::new();
+        for part in &mesh.parts {
+            let patch = set.patches().iter().find(|p| p.name == part.name).unwrap();
+            let least: f64 = patch
+                .pieces
+                .clone()
+                .map(|k| floor(&set.pieces()[k].surface, collapsed(k), chord))
+                .sum();
+            let n = part.triangles.len() as f64;
+            rows.push((
+                n - least,
+                format!(
+                    "{} {} n {} floor {:.0} ratio {:.2}",
+                    part.name,
+                    patch.kind,
+                    n,
+                    least,
+                    n / least
+                ),
+            ));
+        }
+        rows.sort_by(|a, b| b.0.total_cmp(&a.0));
+        for (e, r) in rows.iter().take(25) {
+            println!("   {e:.0} {r}");
+        }
+    }
     let count = mesh.triangles.len();
     #[allow(clippy::cast_precision_loss, reason = "counts stay far below 2^52")]
     let count_f = count as f64;

@@ -159,8 +159,8 @@ impl<'a> Prover<'a> {
             sideways = sideways.max(aside);
             hull = hull.max(height.hypot(aside));
         }
-        let (split, peak) = self.split_height();
-        let height = split.min(self.heights.iter().fold(0.0, |m: f64, h| m.max(h.abs())));
+        let (split, peak) = self.split(&self.heights);
+        let height = split.min(largest(&self.heights));
         Cell {
             height: height + self.slack,
             sideways: sideways + self.slack,
@@ -183,6 +183,45 @@ impl<'a> Prover<'a> {
         }
     }
 
+    /// How far the cell over `places` reaches beyond lines in the target's
+    /// plane, joined with its height: the largest sqrt(height^2 + beyond^2).
+    /// A line is a point and the unit vector away from the allowed side.
+    pub(super) fn beyond(
+        &mut self,
+        places: [[f64; 2]; 3],
+        target: &Flat,
+        lines: &[(Point, Vector)],
+        stretch: f64,
+    ) -> Option<f64> {
+        let normal = target.normal?;
+        let origin = target.corners[0];
+        self.surface
+            .restrict_triangle(places, &origin, &mut self.restriction, &mut self.net);
+        self.shape.prepare(self.net.degree);
+        let heights: Vec<f64> = self.net.points.iter().map(|b| b.dot(&normal)).collect();
+        let height = self.split(&heights).0.min(largest(&heights));
+        let mut out = vec![0.0_f64; heights.len()];
+        let mut beyond = 0.0_f64;
+        for (start, away) in lines {
+            let values: Vec<f64> = self
+                .net
+                .points
+                .iter()
+                .map(|b| (origin + b - start).dot(away))
+                .collect();
+            let hull = values.iter().copied().fold(0.0, f64::max);
+            if hull > 0.0 {
+                beyond = beyond.max(hull.min(self.split(&values).0));
+            }
+            for (most, value) in out.iter_mut().zip(values) {
+                *most = most.max(value);
+            }
+        }
+        let pointwise = heights.iter().zip(out).map(|(h, b)| h.hypot(b * stretch));
+        let pointwise = pointwise.fold(0.0, f64::max);
+        Some(pointwise.min(height.hypot(beyond * stretch)) + self.slack * stretch)
+    }
+
     fn weight(&self, i: usize) -> f64 {
         self.net.weights.get(i).copied().unwrap_or(1.0)
     }
@@ -198,8 +237,9 @@ impl<'a> Prover<'a> {
         sum / total
     }
 
-    fn split_height(&self) -> (f64, [f64; 3]) {
-        let h = &self.heights;
+    /// The bound on |f| by splitting off its quadratic part, from control
+    /// values, and where that part is largest.
+    fn split(&self, h: &[f64]) -> (f64, [f64; 3]) {
         let at = [0, 1, 2].map(|c| h[self.net.corner(c)]);
         let between =
             [0, 1, 2].map(|k| 2.0 * self.middle(k, |i| h[i]) - (at[k] + at[(k + 1) % 3]) / 2.0);
@@ -229,6 +269,12 @@ impl<'a> Prover<'a> {
         }
         chord_bound(&self.edge_points, &self.edge_weights, &a, &b)
     }
+}
+
+fn largest(values: &[f64]) -> f64 {
+    values
+        .iter()
+        .fold(0.0, |most: f64, value| most.max(value.abs()))
 }
 
 /// Distance of a point in the plane of a triangle from the triangle's border.

@@ -75,7 +75,7 @@ pub(crate) struct Stuck {
 
 pub(super) struct Work<'a> {
     surface: &'a BezierPatch,
-    limits: &'a Limits,
+    pub(super) limits: &'a Limits,
     field: &'a Field,
     pub(super) layout: Layout,
     normals: Vec<Option<Vector>>,
@@ -255,6 +255,7 @@ impl<'a> Work<'a> {
         for &t in &stale {
             self.stale[t as usize] = false;
         }
+        let mut prover = Prover::new(self.surface);
         let mut failed = Vec::new();
         for &t in &affected {
             let figure = match planar {
@@ -262,7 +263,7 @@ impl<'a> Work<'a> {
                     to_mesh: bound,
                     to_surface: bound,
                 },
-                None => verdict::judge(self, t, self.limits.chord, &mut ring),
+                None => verdict::judge(self, &mut prover, t, &mut ring),
             };
             self.figures[t as usize] = figure;
             let within = figure.to_mesh.max(figure.to_surface) <= self.limits.chord;

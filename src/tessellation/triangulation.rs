@@ -113,6 +113,21 @@ impl Triangulation {
         self.places_of(self.triangles[t as usize])
     }
 
+    /// The parameter triangles that `t` stands for: itself, or with a corner at
+    /// the pole the two halves of its trapezoid.
+    pub(super) fn cell(&self, t: u32) -> [Option<[[f64; 2]; 3]>; 2] {
+        let corners = self.triangles[t as usize];
+        let Some((k, pole)) = self.pole_corner(corners) else {
+            return [Some(self.corners(t)), None];
+        };
+        let at = corners.map(|v| self.places[v as usize]);
+        let (x, y) = (at[(k + 1) % 3], at[(k + 2) % 3]);
+        [
+            Some([pole.beside(x), x, y]),
+            Some([pole.beside(x), y, pole.beside(y)]),
+        ]
+    }
+
     /// Parameters of the ends of an edge; a pole takes the other end's.
     pub(super) fn ends(&self, (t, i): TriangleEdge) -> [[f64; 2]; 2] {
         let corners = self.triangles[t as usize];

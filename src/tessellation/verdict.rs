@@ -15,23 +15,40 @@
 //!
 //! Parameter lines that wander sideways *in* the surface spoil both figures
 //! without harm to the mesh. With the ring of triangles that share a corner
-//! with T (normals within theta of T's, sideways excess x at most and edge
-//! figures less than half the smallest altitude a):
+//! with T (normals within theta of T's; sideways excesses x and edge figures
+//! less than half the smallest altitude):
 //!
 //! ```text
 //! surface to mesh   <= height + x tan(theta)
-//! mesh to surface   <= height_ring + (2 x + height_ring tan(theta)) tan(theta)
+//! mesh to surface   <= max over the ring of  height'                                    (T itself)
+//!                                            height' + max(x', height' tan) tan         (beyond an edge of T)
+//!                                            height' + (2 x' + height' tan) tan         (at a corner of T)
 //! ```
 //!
 //! S over T leaves T by at most x, so it stands over the ring, which there is
 //! at most x tan(theta) off T's plane. For the reverse, the homotopy goes round
-//! the outer border of the ring, farther from T than it can sweep; what covers
-//! m may then belong to a neighbour, which adds its own excess and tilt. Where
-//! the ring meets the border of the piece the edge figures there are counted,
-//! and surface to mesh stays with `direct`.
+//! the outer border of the ring, farther from T than it can sweep. What covers
+//! m may belong to a neighbour T': its foot y in the plane of T' is then beyond
+//! T' by at most x'. Planes that share an edge of T part there, so y is at most
+//! x' tan off T's; planes that share a corner only part within twice x' of it
+//! (fans of 30 degrees or wider between them).
+//!
+//! Where the ring meets the border of the piece, S may stand beyond it. The
+//! lines of the ring's border edges bound a convex region with T inside; the
+//! foot of S moves into it by at most b / sin(alpha / 2), b its excess beyond
+//! the lines and alpha the least angle between border edges at one vertex,
+//! without getting farther from T:
+//!
+//! ```text
+//! surface to mesh   <= sqrt(height^2 + (b / sin(alpha / 2))^2) + x tan(theta)
+//! ```
+//!
+//! and the edge figures of border edges join the reverse.
 
+use super::certificate::Prover;
 use super::fill::{Proved, Work};
 use super::triangulation::BORDER;
+use crate::scalar::{Point, Vector};
 
 /// Rings that tilt more than this (45 degrees) prove nothing.
 const LARGEST_TAN: f64 = 1.0;
@@ -39,28 +56,40 @@ const LARGEST_TAN: f64 = 1.0;
 /// Below this part of the chord the triangle's own figures are good enough.
 const GOOD: f64 = 0.9;
 
-pub(super) fn judge(work: &Work, t: u32, chord: f64, ring: &mut Vec<u32>) -> Proved {
+/// Least half angle between border edges at a vertex, as a sine.
+const SHARPEST: f64 = 0.38;
+
+/// The figures of one triangle, from its cell and its ring.
+pub(super) fn judge(work: &Work, prover: &mut Prover, t: u32, ring: &mut Vec<u32>) -> Proved {
     let cell = &work.cells[t as usize];
     let edges = cell.edges.iter().copied().fold(0.0, f64::max);
     let alone = Proved {
         to_mesh: cell.direct,
         to_surface: cell.height.max(edges),
     };
-    if alone.to_mesh.max(alone.to_surface) <= GOOD * chord {
+    if alone.to_mesh.max(alone.to_surface) <= GOOD * work.limits.chord {
         return alone;
     }
     let border = work.layout.triangulation.ring(t, ring);
-    ring_figures(work, t, ring, border).map_or(alone, |with_ring| Proved {
-        to_mesh: alone.to_mesh.min(with_ring.to_mesh),
-        to_surface: alone.to_surface.min(with_ring.to_surface),
+    with_ring(work, prover, t, ring, border).map_or(alone, |ringed| Proved {
+        to_mesh: alone.to_mesh.min(ringed.to_mesh),
+        to_surface: alone.to_surface.min(ringed.to_surface),
     })
 }
 
-fn ring_figures(work: &Work, t: u32, ring: &[u32], border: bool) -> Option<Proved> {
-    let normal = work.flats[t as usize].normal?;
-    let (mut altitude, mut tan) = (f64::MAX, 0.0_f64);
-    let (mut height, mut sideways, mut edges, mut border_edges) =
-        (0.0_f64, 0.0_f64, 0.0_f64, 0.0_f64);
+fn with_ring(
+    work: &Work,
+    prover: &mut Prover,
+    t: u32,
+    ring: &[u32],
+    border: bool,
+) -> Option<Proved> {
+    let mesh = &work.layout.triangulation;
+    let cell = &work.cells[t as usize];
+    let flat = &work.flats[t as usize];
+    let normal = flat.normal?;
+    let (mut altitude, mut tan) = (flat.altitude(), 0.0_f64);
+    let (mut sideways, mut edges, mut border_edges) = (0.0_f64, 0.0_f64, 0.0_f64);
     for &member in ring.iter().chain(std::iter::once(&t)) {
         let flat = &work.flats[member as usize];
         let other = flat.normal?;
@@ -71,11 +100,10 @@ fn ring_figures(work: &Work, t: u32, ring: &[u32], border: bool) -> Option<Prove
         tan = tan.max(normal.cross(&other).norm() / cosine);
         altitude = altitude.min(flat.altitude());
         let cell = &work.cells[member as usize];
-        height = height.max(cell.height);
         sideways = sideways.max(cell.sideways);
         for (edge, figure) in cell.edges.iter().enumerate() {
             edges = edges.max(*figure);
-            if work.layout.triangulation.neighbours[member as usize][edge] == BORDER {
+            if mesh.neighbours[member as usize][edge] == BORDER {
                 border_edges = border_edges.max(*figure);
             }
         }
@@ -83,13 +111,82 @@ fn ring_figures(work: &Work, t: u32, ring: &[u32], border: bool) -> Option<Prove
     if tan > LARGEST_TAN || sideways.max(edges) > altitude / 2.0 {
         return None;
     }
-    let cell = &work.cells[t as usize];
-    Some(Proved {
-        to_mesh: if border {
-            cell.direct
+    let mut to_surface = cell.height.max(border_edges);
+    for &member in ring {
+        let other = &work.cells[member as usize];
+        let tilt = other.height * tan;
+        let beside = mesh.neighbours[t as usize].contains(&member);
+        let lean = if beside {
+            other.sideways.max(tilt)
         } else {
-            cell.height + cell.sideways * tan
-        },
-        to_surface: (height + (2.0 * sideways + height * tan) * tan).max(border_edges),
+            2.0 * other.sideways + tilt
+        };
+        to_surface = to_surface.max(other.height + lean * tan);
+    }
+    let height = if border {
+        at_border(work, prover, t, ring, &normal)?
+    } else {
+        cell.height
+    };
+    Some(Proved {
+        to_mesh: height + cell.sideways * tan,
+        to_surface,
     })
+}
+
+/// The height of a cell whose ring is cut by the border, joined with what it
+/// reaches beyond the border's lines.
+fn at_border(
+    work: &Work,
+    prover: &mut Prover,
+    t: u32,
+    ring: &[u32],
+    normal: &Vector,
+) -> Option<f64> {
+    let mesh = &work.layout.triangulation;
+    let flat = &work.flats[t as usize];
+    let mut ends: Vec<(u32, Vector)> = Vec::new();
+    let mut lines: Vec<(Point, Vector)> = Vec::new();
+    for &member in ring.iter().chain(std::iter::once(&t)) {
+        for edge in 0..3 {
+            if mesh.neighbours[member as usize][edge] != BORDER {
+                continue;
+            }
+            let corners = mesh.triangles[member as usize];
+            let [a, b] = [corners[edge], corners[(edge + 1) % 3]];
+            if !mesh.triangles[t as usize].iter().any(|&v| v == a || v == b) {
+                continue;
+            }
+            let [start, end] = [a, b].map(|v| work.layout.points[v as usize]);
+            let along = end - start;
+            let away = along.cross(normal).try_normalize(0.0)?;
+            let slack = 1e-9 * along.norm();
+            if flat.corners.iter().any(|c| (c - start).dot(&away) > slack) {
+                return None;
+            }
+            lines.push((start, away));
+            ends.push((a, along));
+            ends.push((b, -along));
+        }
+    }
+    let mut sharpest = 1.0_f64;
+    for (k, (vertex, along)) in ends.iter().enumerate() {
+        for (other, along_other) in &ends[k + 1..] {
+            if vertex == other {
+                let angle = along
+                    .cross(along_other)
+                    .norm()
+                    .atan2(along.dot(along_other));
+                sharpest = sharpest.min((angle / 2.0).sin());
+            }
+        }
+    }
+    if sharpest < SHARPEST {
+        return None;
+    }
+    let mut most = 0.0_f64;
+    for places in mesh.cell(t).into_iter().flatten() {
+        most = most.max(prover.beyond(places, flat, &lines, 1.0 / sharpest)?);
+    }
+    Some(most)
 }
