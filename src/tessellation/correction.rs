@@ -9,13 +9,16 @@
 /// Cells in each direction.
 const CELLS: usize = 6;
 
-/// The exponent of the mean over a cell: high, so that the worst triangles
-/// decide, not the average.
-const EXPONENT: i32 = 8;
+/// The figure that this share of a cell's triangles keep decides; the rest is
+/// left to refinement.
+const SHARE: f64 = 0.85;
 
 /// A layout aims this much below the chord, since the next one differs a
 /// little everywhere.
 const MARGIN: f64 = 1.015;
+
+/// Finer than this helps no further; what still fails is refined.
+const MOST: f64 = 4.0;
 
 /// How much finer a piece must be laid out than its second derivatives say.
 #[derive(Debug, Clone)]
@@ -42,25 +45,27 @@ impl Correction {
     /// Takes in the figures of a layout made with this correction: places of
     /// triangles, and deviation over chord.
     pub(super) fn learn(&mut self, figures: impl Iterator<Item = ([f64; 2], f64)>) {
-        let mut sums = [(0.0, 0.0); CELLS * CELLS];
-        let (mut all, mut count) = (0.0, 0.0);
+        let mut cells: Vec<Vec<f64>> = vec![Vec::new(); CELLS * CELLS];
+        let mut all = Vec::new();
         for ([u, v], figure) in figures {
-            let power = figure.min(8.0).powi(EXPONENT);
-            let sum = &mut sums[cell(u) * CELLS + cell(v)];
-            *sum = (sum.0 + power, sum.1 + 1.0);
-            all += power;
-            count += 1.0;
+            cells[cell(u) * CELLS + cell(v)].push(figure);
+            all.push(figure);
         }
-        let mean = |sum: f64, count: f64| (sum / count).powf(1.0 / f64::from(EXPONENT));
-        for (factor, (sum, in_cell)) in self.factors.iter_mut().zip(sums) {
-            let worst = match (in_cell > 0.0, count > 0.0) {
-                (true, _) => mean(sum, in_cell),
-                (false, true) => mean(all, count),
-                (false, false) => 1.0,
-            };
-            *factor *= (worst * MARGIN).clamp(0.85, 2.5);
+        let overall = quantile(&mut all).unwrap_or(1.0);
+        for (factor, figures) in self.factors.iter_mut().zip(&mut cells) {
+            let kept = quantile(figures).unwrap_or(overall);
+            *factor = (*factor * (kept * MARGIN).clamp(0.85, 2.0)).min(MOST);
         }
     }
+}
+
+fn quantile(figures: &mut [f64]) -> Option<f64> {
+    let count = figures.len();
+    let at = (1..count)
+        .find(|&k| crate::sampling::ratio(k, count) >= SHARE)
+        .unwrap_or(count);
+    let at = at.checked_sub(1)?;
+    Some(*figures.select_nth_unstable_by(at, f64::total_cmp).1)
 }
 
 #[allow(

@@ -19,6 +19,7 @@ use super::correction::Correction;
 use super::field::{Bend, Field};
 use crate::sampling::Limits;
 use crate::sampling::{Cumulative, ratio};
+use crate::scalar::Vector;
 
 /// Samples along a row, and of rows.
 const SAMPLES: usize = 16;
@@ -30,6 +31,11 @@ const SIDE_CLEARANCE: f64 = 0.5;
 /// A row count is rounded up only above this fraction: the rows then stand
 /// slightly wider than asked, and the certificate decides.
 const ROW_SLACK: f64 = 0.12;
+
+/// A step of the lattice along a parameter line may leave the straight line
+/// sideways by this multiple of the chord. The mesh does not care, but the
+/// proof of a triangle pays for it with the tilt of its neighbours.
+const WANDER: f64 = 3.0;
 
 /// Which parameter the rows run along.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -102,6 +108,9 @@ impl Step {
             // Straight in one direction: steps only where the heights bend.
             ((a.abs() / (8.0 * e)).sqrt(), (c.abs() / (8.0 * e)).sqrt())
         };
+        let wander = wander(bend, along);
+        rows_step = rows_step.max((wander[0] / (8.0 * WANDER * e)).sqrt());
+        rows_cross = rows_cross.max((wander[1] / (8.0 * WANDER * e)).sqrt());
         if let Some(turn) = limits.normal_rad {
             rows_step = rows_step.max(turn_rate(bend, along.place(1.0, 0.0)) / (0.9 * turn));
             rows_cross = rows_cross.max(turn_rate(bend, along.place(0.0, 1.0)) / (0.75 * turn));
@@ -138,6 +147,25 @@ impl Step {
         } else {
             h / 2.0 - 4.0 * e * c / (h * b * b)
         }
+    }
+}
+
+/// How fast the parameter lines in p and q leave the straight line sideways in
+/// the surface: |S_pp . (n x S_p)| / |S_p|, and the same in q.
+fn wander(bend: &Bend, along: Along) -> [f64; 2] {
+    let sideways = |first: &Vector, second: &Vector| {
+        let size = first.norm();
+        if size > 0.0 {
+            (second.dot(&bend.normal.cross(first)) / size).abs()
+        } else {
+            0.0
+        }
+    };
+    let u = sideways(&bend.first[0], &bend.second[0]);
+    let v = sideways(&bend.first[1], &bend.second[2]);
+    match along {
+        Along::U => [u, v],
+        Along::V => [v, u],
     }
 }
 

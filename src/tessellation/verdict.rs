@@ -37,7 +37,8 @@
 //! lines of the ring's border edges bound a convex region with T inside; the
 //! foot of S moves into it by at most b / sin(alpha / 2), b its excess beyond
 //! the lines and alpha the least angle between border edges at one vertex,
-//! without getting farther from T:
+//! without getting farther from T (where the border turns inwards at a vertex,
+//! one of the two lines there is enough):
 //!
 //! ```text
 //! surface to mesh   <= sqrt(height^2 + (b / sin(alpha / 2))^2) + x tan(theta)
@@ -145,40 +146,53 @@ fn at_border(
 ) -> Option<f64> {
     let mesh = &work.layout.triangulation;
     let flat = &work.flats[t as usize];
-    let mut ends: Vec<(u32, Vector)> = Vec::new();
+    let point = |v: u32| work.layout.points[v as usize];
     let mut lines: Vec<(Point, Vector)> = Vec::new();
-    for &member in ring.iter().chain(std::iter::once(&t)) {
-        for edge in 0..3 {
-            if mesh.neighbours[member as usize][edge] != BORDER {
-                continue;
-            }
-            let corners = mesh.triangles[member as usize];
-            let [a, b] = [corners[edge], corners[(edge + 1) % 3]];
-            if !mesh.triangles[t as usize].iter().any(|&v| v == a || v == b) {
-                continue;
-            }
-            let [start, end] = [a, b].map(|v| work.layout.points[v as usize]);
-            let along = end - start;
-            let away = along.cross(normal).try_normalize(0.0)?;
-            let slack = 1e-9 * along.norm();
-            if flat.corners.iter().any(|c| (c - start).dot(&away) > slack) {
-                return None;
-            }
-            lines.push((start, away));
-            ends.push((a, along));
-            ends.push((b, -along));
-        }
-    }
     let mut sharpest = 1.0_f64;
-    for (k, (vertex, along)) in ends.iter().enumerate() {
-        for (other, along_other) in &ends[k + 1..] {
-            if vertex == other {
-                let angle = along
-                    .cross(along_other)
-                    .norm()
-                    .atan2(along.dot(along_other));
-                sharpest = sharpest.min((angle / 2.0).sin());
+    for corner in mesh.triangles[t as usize] {
+        // The border edges that end and start at the corner.
+        let (mut before, mut after) = (None, None);
+        for &member in ring.iter().chain(std::iter::once(&t)) {
+            let corners = mesh.triangles[member as usize];
+            for edge in 0..3 {
+                if mesh.neighbours[member as usize][edge] == BORDER {
+                    let ends = [corners[edge], corners[(edge + 1) % 3]];
+                    if ends[1] == corner {
+                        before = Some((ends, member == t));
+                    }
+                    if ends[0] == corner {
+                        after = Some((ends, member == t));
+                    }
+                }
             }
+        }
+        let (Some(before), Some(after)) = (before, after) else {
+            continue;
+        };
+        let along = |([a, b], _): ([u32; 2], bool)| point(b) - point(a);
+        let line = |edge: ([u32; 2], bool)| {
+            let away = along(edge).cross(normal).try_normalize(0.0)?;
+            let start = point(edge.0[0]);
+            let slack = 1e-9 * along(edge).norm();
+            let holds = flat.corners.iter().all(|c| (c - start).dot(&away) <= slack);
+            holds.then_some((start, away))
+        };
+        let (incoming, outgoing) = (along(before), along(after));
+        if incoming.cross(&outgoing).dot(normal) >= 0.0 {
+            lines.extend([line(before)?, line(after)?]);
+            let angle = incoming
+                .cross(&outgoing)
+                .norm()
+                .atan2(-incoming.dot(&outgoing));
+            sharpest = sharpest.min((angle / 2.0).sin());
+        } else {
+            // Inside one of the two lines is inside the piece.
+            let first = if after.1 {
+                [after, before]
+            } else {
+                [before, after]
+            };
+            lines.push(first.into_iter().find_map(line)?);
         }
     }
     if sharpest < SHARPEST {
