@@ -3,14 +3,11 @@
 //! `cargo bench --bench triangles` prints the family; names of the family or
 //! paths of sets behind `--` choose.
 
-use std::time::Instant;
-
 use chordwise::demo::family;
-use chordwise::mesh::{Deviation, Mesh};
+use chordwise::mesh::Meshed;
 use chordwise::patch_set::PatchSet;
-use chordwise::sampling::{Limits, Samples};
-use chordwise::tessellation::{floor, tessellate};
-use chordwise::topology::Topology;
+use chordwise::sampling::Limits;
+use chordwise::tessellation::floor;
 
 fn main() {
     println!(
@@ -54,59 +51,51 @@ fn measure(
     chord: f64,
     goal: Option<f64>,
 ) -> Result<(), Box<dyn std::error::Error>> {
-    let limits = Limits::new(chord, None, None);
-    let topology = Topology::build(set)?;
-    let start = Instant::now();
-    let samples = Samples::new(set, &topology, &limits)?;
-    let done = tessellate(set, &topology, &samples, &limits, |_| true)?;
-    let seconds = start.elapsed().as_secs_f64();
-    let mesh = Mesh::assemble(set, &samples, &done);
-    let deviation = Deviation::of(set, &done, &mesh).ok_or("nothing was tessellated")?;
-    let collapsed = |k: usize| [0, 1, 2, 3].map(|s| topology.edges()[k * 4 + s].collapsed);
-    let pieces = set.pieces().iter().enumerate();
-    let least: f64 = pieces
-        .map(|(k, piece)| floor(&piece.surface, collapsed(k), chord))
-        .sum();
-    if std::env::var("PARTS").is_ok() {
-        let mut rows: Vec<(f64, String)> = Vec::new();
-        for part in &mesh.parts {
-            let patch = set.patches().iter().find(|p| p.name == part.name).unwrap();
-            let least: f64 = patch
-                .pieces
-                .clone()
-                .map(|k| floor(&set.pieces()[k].surface, collapsed(k), chord))
-                .sum();
-            let n = part.triangles.len() as f64;
-            rows.push((
-                n - least,
-                format!(
-                    "{} {} n {} floor {:.0} ratio {:.2}",
-                    part.name,
-                    patch.kind,
-                    n,
-                    least,
-                    n / least
-                ),
-            ));
-        }
-        rows.sort_by(|a, b| b.0.total_cmp(&a.0));
-        for (e, r) in rows.iter().take(25) {
-            println!("   {e:.0} {r}");
-        }
-    }
-    let count = mesh.triangles.len();
-    #[allow(clippy::cast_precision_loss, reason = "counts stay far below 2^52")]
-    let count_f = count as f64;
-    let ratio = count_f / least;
-    let goal = goal.map_or(String::new(), |g| {
-        format!("{g}{}", if ratio > g { " MISSED" } else { "" })
-    });
+    let made = Meshed::new(set, &Limits::new(chord, None, None), |_| true, |_| ())?;
+    let count = made.mesh.triangles.len();
+    let ratio = number(count) / made.floor;
+    let goal = match goal {
+        Some(goal) if ratio > goal => format!("{goal} MISSED"),
+        Some(goal) => format!("{goal}"),
+        None => String::new(),
+    };
+    let deviation = &made.deviation;
+    let seconds = made.seconds.sampling + made.seconds.tessellation;
     println!(
         "| {name} | {chord} | {count} | {ratio:.3} | {goal} | {:.3} | {:.3} | {:.3} | {:.2} |",
         deviation.to_mesh.proved / chord,
-        deviation.to_mesh.proved / deviation.to_mesh.attained,
+        deviation.to_mesh.proved / deviation.to_mesh.attained.max(f64::MIN_POSITIVE),
         deviation.to_surface / chord,
-        seconds * 1e6 / count_f,
+        seconds * 1e6 / number(count),
     );
+    if goal.is_empty() {
+        excess(set, &made, chord);
+    }
     Ok(())
+}
+
+/// The patches that take the most triangles beyond their floor.
+fn excess(set: &PatchSet, made: &Meshed, chord: f64) {
+    let mut patches = Vec::new();
+    for part in &made.mesh.parts {
+        let Some(patch) = set.patches().iter().find(|p| p.name == part.name) else {
+            continue;
+        };
+        let collapsed = |k: usize| [0, 1, 2, 3].map(|s| made.topology.edges()[k * 4 + s].collapsed);
+        let pieces = patch.pieces.clone();
+        let least: f64 = pieces
+            .map(|k| floor(&set.pieces()[k].surface, collapsed(k), chord))
+            .sum();
+        let count = number(part.triangles.len());
+        patches.push((count - least, count / least, part.name.as_str()));
+    }
+    patches.sort_by(|a, b| b.0.total_cmp(&a.0));
+    for (excess, ratio, name) in patches.iter().take(5) {
+        println!("|   {name} | | {excess:.0} over its floor | {ratio:.2} |");
+    }
+}
+
+#[allow(clippy::cast_precision_loss, reason = "counts stay far below 2^52")]
+fn number(count: usize) -> f64 {
+    count as f64
 }

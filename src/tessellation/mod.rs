@@ -4,8 +4,10 @@
 //! inside as rows of the optimal lattice (`lattice`, steps from a coarse
 //! `field` of second derivatives), stitched into triangles (`stitch`) and
 //! improved by exchanging diagonals. None of that is trusted: every triangle is
-//! then proved (`certificate`, `verdict`), and refined until it is, or the run
-//! fails and says where (`fill`).
+//! then proved (`certificate`, `verdict`, `planar`). A layout that fails in many
+//! places is made again with what the proof taught (`correction`); what still
+//! fails is refined until it is proved (`refine`), or the run fails and says
+//! where.
 
 mod certificate;
 mod correction;
@@ -16,9 +18,11 @@ mod lattice;
 mod layout;
 mod planar;
 mod quadratic;
+mod refine;
 mod stitch;
 mod triangulation;
 mod verdict;
+mod work;
 
 use rayon::prelude::*;
 use thiserror::Error;

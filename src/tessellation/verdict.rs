@@ -47,8 +47,9 @@
 //! and the edge figures of border edges join the reverse.
 
 use super::certificate::Prover;
-use super::fill::{Proved, Work};
+use super::fill::Proved;
 use super::triangulation::BORDER;
+use super::work::Work;
 use crate::scalar::{Point, Vector};
 
 /// Rings that tilt more than this (45 degrees) prove nothing.

@@ -1,0 +1,149 @@
+//! Refinement: a vertex more where a triangle fails, until none does.
+
+use super::fill::{Proved, Stuck};
+use super::layout::INNER;
+use super::triangulation::{BORDER, TriangleEdge};
+use super::work::Work;
+use crate::scalar::Vector;
+
+/// An inner edge shorter than this in both parameters is not split again: the
+/// surface is then too wild for its tolerance (or the gap too large), and the
+/// run must fail and say where.
+const SHORTEST: f64 = 1e-7;
+
+/// Refinement may multiply the triangles of the layout by this, and add as
+/// many as the second figure, before the piece is given up.
+const GROWTH: usize = 40;
+const GROWTH_BASE: usize = 20_000;
+
+impl Work<'_> {
+    /// Refines what failed until everything is proved; returns the figures of
+    /// the worst triangle.
+    pub(super) fn prove(
+        &mut self,
+        mut failed: Vec<u32>,
+        planar: Option<f64>,
+    ) -> Result<Proved, Stuck> {
+        let most = self.layout.triangulation.triangles.len() * GROWTH + GROWTH_BASE;
+        while !failed.is_empty() {
+            for t in failed {
+                if self.stale[t as usize] {
+                    continue;
+                }
+                let figure = self.figures[t as usize];
+                if self.refine(t) || self.layout.triangulation.triangles.len() > most {
+                    return Err(self.stuck(t, figure.to_mesh.max(figure.to_surface)));
+                }
+            }
+            failed = self.round(planar);
+        }
+        Ok(self
+            .figures
+            .iter()
+            .fold(Proved::default(), |worst, f| Proved {
+                to_mesh: worst.to_mesh.max(f.to_mesh),
+                to_surface: worst.to_surface.max(f.to_surface),
+            }))
+    }
+
+    fn stuck(&self, t: u32, proved: f64) -> Stuck {
+        let place = self.centre(t);
+        Stuck {
+            place,
+            point: self.surface.eval(place[0], place[1]),
+            proved,
+        }
+    }
+
+    /// Whether the triangle keeps to the normal angle and the largest edge.
+    pub(super) fn keeps_shape(&mut self, t: u32) -> bool {
+        let corners = self.layout.triangulation.triangles[t as usize];
+        if let Some(longest) = self.limits.max_edge {
+            let points = corners.map(|v| self.layout.points[v as usize]);
+            if (0..3).any(|k| (points[(k + 1) % 3] - points[k]).norm() > longest) {
+                return false;
+            }
+        }
+        if let Some(limit) = self.limits.normal_rad {
+            if self.flats[t as usize].normal.is_none() {
+                return true;
+            }
+            let places = self.layout.triangulation.corners(t);
+            let pole = self.layout.triangulation.pole_corner(corners);
+            let normals = [0, 1, 2].map(|k| match pole {
+                Some((at, _)) if at == k => self.surface.normal(places[k][0], places[k][1]),
+                _ => self.normal(corners[k]),
+            });
+            for k in 0..3 {
+                if let (Some(a), Some(b)) = (normals[k], normals[(k + 1) % 3])
+                    && turn(&a, &b) > limit
+                {
+                    return false;
+                }
+            }
+        }
+        true
+    }
+
+    fn normal(&mut self, vertex: u32) -> Option<Vector> {
+        let v = vertex as usize;
+        if self.normals[v].is_none() {
+            let [u, w] = self.layout.triangulation.places[v];
+            self.normals[v] = self.surface.normal(u, w);
+        }
+        self.normals[v]
+    }
+
+    /// Puts a vertex where the triangle is worst; true if that cannot be done.
+    fn refine(&mut self, t: u32) -> bool {
+        let mut best: Option<(f64, usize)> = None;
+        for i in 0..3 {
+            let [a, b] = self.layout.triangulation.ends((t, i));
+            let long = (a[0] - b[0]).abs().max((a[1] - b[1]).abs());
+            let border = self.layout.triangulation.neighbours[t as usize][i] == BORDER;
+            if border || long < SHORTEST {
+                continue;
+            }
+            let error = self.cells[t as usize].edges[i].max(1e-3 * self.limits.chord * long);
+            if best.is_none_or(|(most, _)| error > most) {
+                best = Some((error, i));
+            }
+        }
+        let border_error = (0..3)
+            .filter(|&i| self.layout.triangulation.neighbours[t as usize][i] == BORDER)
+            .map(|i| self.cells[t as usize].edges[i])
+            .fold(0.0, f64::max);
+        let Some((error, i)) = best else {
+            return true;
+        };
+        let mut outer: Vec<TriangleEdge>;
+        if error < 0.5 * border_error {
+            let place = self.centre(t);
+            self.add_vertex(place);
+            outer = self.layout.triangulation.insert_inside(t, place).to_vec();
+        } else {
+            let [a, b] = self.layout.triangulation.ends((t, i));
+            let place = [(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0];
+            self.add_vertex(place);
+            let other = self.layout.triangulation.neighbours[t as usize][i];
+            self.stale[other as usize] = true;
+            outer = self.layout.triangulation.insert_on_edge((t, i), place);
+        }
+        self.stale[t as usize] = true;
+        self.stale
+            .resize(self.layout.triangulation.triangles.len(), true);
+        self.improve(&mut outer);
+        false
+    }
+
+    fn add_vertex(&mut self, [u, v]: [f64; 2]) {
+        self.layout.points.push(self.surface.eval(u, v));
+        self.layout.vertices.push(INNER);
+        self.normals.push(None);
+    }
+}
+
+/// The angle between unit vectors.
+fn turn(a: &Vector, b: &Vector) -> f64 {
+    a.cross(b).norm().atan2(a.dot(b))
+}

@@ -1,0 +1,271 @@
+//! A piece at work: its triangulation, and what is known of each triangle.
+
+use super::certificate::{Cell, Flat, Prover};
+use super::field::Field;
+use super::fill::{Attained, Filled, Proved};
+use super::layout::{INNER, Layout};
+use super::triangulation::{Pole, TriangleEdge, is_proper};
+use super::verdict;
+use crate::bezier::BezierPatch;
+use crate::sampling::{Limits, ratio};
+use crate::scalar::{Point, Vector};
+
+/// An exchange of diagonals must lower the larger error by this factor, so
+/// that rounding cannot make it go round in circles.
+const FLIP_GAIN: f64 = 1.0 - 1e-9;
+
+pub(super) struct Work<'a> {
+    pub(super) surface: &'a BezierPatch,
+    pub(super) limits: &'a Limits,
+    pub(super) field: &'a Field,
+    pub(super) layout: Layout,
+    pub(super) normals: Vec<Option<Vector>>,
+    pub(super) flats: Vec<Flat>,
+    pub(super) cells: Vec<Cell>,
+    pub(super) stale: Vec<bool>,
+    pub(super) prover: Prover<'a>,
+    pub(super) figures: Vec<Proved>,
+    pub(super) ring: Vec<u32>,
+}
+
+pub(super) fn index(t: usize) -> u32 {
+    u32::try_from(t).expect("a piece has far fewer than 2^32 triangles")
+}
+
+impl<'a> Work<'a> {
+    pub(super) fn new(
+        surface: &'a BezierPatch,
+        field: &'a Field,
+        limits: &'a Limits,
+        layout: Layout,
+    ) -> Self {
+        let count = layout.triangulation.triangles.len();
+        let mut work = Self {
+            surface,
+            limits,
+            field,
+            normals: vec![None; layout.points.len()],
+            layout,
+            flats: Vec::new(),
+            cells: Vec::new(),
+            stale: vec![true; count],
+            prover: Prover::new(surface),
+            figures: Vec::new(),
+            ring: Vec::new(),
+        };
+        let all = (0..count).flat_map(|t| (0..3).map(move |i| (index(t), i)));
+        let mut edges: Vec<TriangleEdge> = all.collect();
+        work.improve(&mut edges);
+        work
+    }
+
+    fn error(&self, corners: [u32; 3]) -> f64 {
+        let places = self.layout.triangulation.places_of(corners);
+        self.field
+            .estimate(places, corners.map(|v| self.layout.points[v as usize]))
+    }
+
+    /// Exchanges diagonals while that lowers the larger error of the two
+    /// triangles beside them (Lawson's procedure with another criterion).
+    pub(super) fn improve(&mut self, edges: &mut Vec<TriangleEdge>) {
+        let mut budget = 40 * (edges.len() + 100);
+        while let Some(edge) = edges.pop() {
+            let Some([a, b, c, d]) = self.layout.triangulation.quad(edge) else {
+                continue;
+            };
+            let proper = |corners| is_proper(self.layout.triangulation.places_of(corners));
+            if !proper([d, a, b]) || !proper([b, c, d]) {
+                continue;
+            }
+            let now = self.error([a, c, d]).max(self.error([c, a, b]));
+            let then = self.error([d, a, b]).max(self.error([b, c, d]));
+            if then < now * FLIP_GAIN && budget > 0 {
+                budget -= 1;
+                let other = self.layout.triangulation.neighbours[edge.0 as usize][edge.1];
+                self.stale[edge.0 as usize] = true;
+                self.stale[other as usize] = true;
+                edges.extend(self.layout.triangulation.flip(edge));
+            }
+        }
+    }
+
+    fn is_inner(&self, t: u32) -> bool {
+        let corners = self.layout.triangulation.triangles[t as usize];
+        corners
+            .iter()
+            .all(|&v| self.layout.vertices[v as usize] == INNER)
+    }
+
+    /// The share of failing triangles among those that do not touch the
+    /// border; what touches it depends on the seams' samples as much.
+    pub(super) fn inner_failing(&self, failed: &[u32]) -> f64 {
+        let all = (0..index(self.figures.len()))
+            .filter(|&t| self.is_inner(t))
+            .count();
+        let bad = failed.iter().filter(|&&t| self.is_inner(t)).count();
+        ratio(bad, all.max(1))
+    }
+
+    /// Where the inner triangles are, and how much of the chord they use.
+    pub(super) fn lesson(&self) -> Vec<([f64; 2], f64)> {
+        (0..index(self.figures.len()))
+            .filter(|&t| self.is_inner(t))
+            .map(|t| {
+                let figure = self.figures[t as usize];
+                (
+                    self.centre(t),
+                    figure.to_mesh.max(figure.to_surface) / self.limits.chord,
+                )
+            })
+            .collect()
+    }
+
+    pub(super) fn centre(&self, t: u32) -> [f64; 2] {
+        let [a, b, c] = self.layout.triangulation.corners(t);
+        [(a[0] + b[0] + c[0]) / 3.0, (a[1] + b[1] + c[1]) / 3.0]
+    }
+
+    /// Brings all figures up to date; returns the triangles that fail.
+    pub(super) fn round(&mut self, planar: Option<f64>) -> Vec<u32> {
+        let count = self.layout.triangulation.triangles.len();
+        let stale: Vec<u32> = (0..index(count))
+            .filter(|&t| self.stale[t as usize])
+            .collect();
+        self.measure(&stale);
+        self.figures.resize(count, Proved::default());
+        let mut ring = std::mem::take(&mut self.ring);
+        let mut affected = stale.clone();
+        if stale.len() < count {
+            for &t in &stale {
+                self.layout.triangulation.ring(t, &mut ring);
+                affected.extend_from_slice(&ring);
+            }
+            affected.sort_unstable();
+            affected.dedup();
+        }
+        for &t in &stale {
+            self.stale[t as usize] = false;
+        }
+        let mut prover = Prover::new(self.surface);
+        let mut failed = Vec::new();
+        for &t in &affected {
+            let figure = match planar {
+                Some(bound) => Proved {
+                    to_mesh: bound,
+                    to_surface: bound,
+                },
+                None => verdict::judge(self, &mut prover, t, &mut ring),
+            };
+            self.figures[t as usize] = figure;
+            let within = figure.to_mesh.max(figure.to_surface) <= self.limits.chord;
+            if !within || !self.keeps_shape(t) {
+                failed.push(t);
+            }
+        }
+        self.ring = ring;
+        failed
+    }
+
+    /// Brings flats and cells up to date.
+    fn measure(&mut self, stale: &[u32]) {
+        let count = self.layout.triangulation.triangles.len();
+        self.flats.resize(count, Flat::new([Point::origin(); 3]));
+        self.cells.resize(count, Cell::default());
+        for &t in stale {
+            let corners = self.layout.triangulation.triangles[t as usize];
+            let flat = Flat::new(corners.map(|v| self.layout.points[v as usize]));
+            self.flats[t as usize] = flat;
+            self.cells[t as usize] = match self.layout.triangulation.pole_corner(corners) {
+                None => self
+                    .prover
+                    .cell(self.layout.triangulation.corners(t), &flat, true),
+                Some((k, pole)) => self.pole_cell(corners, k, pole, &flat),
+            };
+        }
+    }
+
+    /// The cell of a triangle at the pole is a trapezoid: the two parameter
+    /// triangles it falls into, by one diagonal for what lies over the flat
+    /// triangle, and by the other for the edge that diagonal does not end in.
+    fn pole_cell(&mut self, corners: [u32; 3], k: usize, pole: Pole, flat: &Flat) -> Cell {
+        let at = corners.map(|v| self.layout.triangulation.places[v as usize]);
+        let (x, y) = (at[(k + 1) % 3], at[(k + 2) % 3]);
+        let (below_x, below_y) = (pole.beside(x), pole.beside(y));
+        let with_pole_at = |place: [f64; 2]| {
+            let mut places = at;
+            places[k] = place;
+            places
+        };
+        let first = self.prover.cell(with_pole_at(below_x), flat, true);
+        let other = self.prover.cell(with_pole_at(below_y), flat, true);
+        let mut second = [[0.0; 2]; 3];
+        second[k] = below_x;
+        second[(k + 1) % 3] = y;
+        second[(k + 2) % 3] = below_y;
+        let second = self.prover.cell(second, flat, false);
+        let mut edges = first.edges;
+        edges[(k + 2) % 3] = other.edges[(k + 2) % 3];
+        Cell {
+            height: first.height.max(second.height),
+            sideways: first.sideways.max(second.sideways),
+            direct: first.direct.max(second.direct),
+            edges,
+            peak: first.peak,
+        }
+    }
+
+    /// Drops triangles without area and finds the largest true deviation.
+    pub(super) fn finish(mut self, proved: Proved) -> Filled {
+        let mut attained = Attained {
+            distance: 0.0,
+            place: [0.5, 0.5],
+            point: self.surface.eval(0.5, 0.5),
+        };
+        let mesh = &self.layout.triangulation;
+        let mut places = mesh.places.clone();
+        let mut triangles = Vec::with_capacity(mesh.triangles.len());
+        for (t, &corners) in mesh.triangles.iter().enumerate() {
+            let [a, b, c] = corners.map(|v| self.layout.vertices[v as usize]);
+            let same = |x: u32, y: u32| x == y && x != INNER;
+            if same(a, b) || same(b, c) || same(c, a) {
+                continue;
+            }
+            let mut written = corners;
+            if let Some((k, _)) = mesh.pole_corner(corners) {
+                // A pole has a parameter, and so a normal, in each triangle.
+                written[k] = index(places.len());
+                places.push(mesh.corners(index(t))[k]);
+                self.layout
+                    .points
+                    .push(self.layout.points[corners[k] as usize]);
+                self.layout
+                    .vertices
+                    .push(self.layout.vertices[corners[k] as usize]);
+            }
+            triangles.push(written);
+            let Some(normal) = self.flats[t].normal else {
+                continue;
+            };
+            let around = mesh.corners(index(t));
+            let peak = self.cells[t].peak;
+            let at = |axis: usize| (0..3).map(|k| peak[k] * around[k][axis]).sum::<f64>();
+            let point = self.surface.eval(at(0), at(1));
+            let distance = (point - self.flats[t].corners[0]).dot(&normal).abs();
+            if distance > attained.distance {
+                attained = Attained {
+                    distance,
+                    place: [at(0), at(1)],
+                    point,
+                };
+            }
+        }
+        Filled {
+            places,
+            points: self.layout.points,
+            vertices: self.layout.vertices,
+            triangles,
+            proved,
+            attained,
+        }
+    }
+}
