@@ -17,7 +17,7 @@ fn lerp<const N: usize>(a: SVector<f64, N>, b: SVector<f64, N>, t: f64) -> SVect
 
 /// One step: `points` shrinks by one; returns the new length.
 #[inline]
-pub(super) fn step<const N: usize>(points: &mut [SVector<f64, N>], t: f64) {
+fn step<const N: usize>(points: &mut [SVector<f64, N>], t: f64) {
     for i in 1..points.len() {
         points[i - 1] = lerp(points[i - 1], points[i], t);
     }

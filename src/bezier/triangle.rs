@@ -14,7 +14,6 @@
 
 use nalgebra::SVector;
 
-use super::casteljau;
 use crate::scalar::{Point, Vector};
 
 /// A triangular (rational) Bezier net: `S(t)` lies in the hull of `points`.
@@ -67,11 +66,16 @@ pub struct TriangleRestriction {
     scratch4: Scratch<4>,
 }
 
+/// Buffers of one restriction.
 #[derive(Debug, Clone, Default)]
 struct Scratch<const N: usize> {
-    rows: Vec<SVector<f64, N>>,
-    values: Vec<SVector<f64, N>>,
+    /// The net relative to the origin.
     local: Vec<SVector<f64, N>>,
+    /// For every column j of the net, its blossom at every u set.
+    columns: Vec<SVector<f64, N>>,
+    /// F(u set; v set), u set fastest.
+    values: Vec<SVector<f64, N>>,
+    stages: [Vec<SVector<f64, N>>; 3],
 }
 
 impl TriangleRestriction {
@@ -146,14 +150,14 @@ impl TriangleRestriction {
         self.terms.clear();
         self.ends.clear();
         let (m, n) = degree;
-        let v_sets = (n + 1) * (n + 2) / 2;
+        let u_sets = (m + 1) * (m + 2) / 2;
         let total = m + n;
         for (i, j, k) in triples(total) {
             for (a, b, c) in triples(m) {
                 if a <= i && b <= j && c <= k {
                     let factor =
                         binomial(i, a) * binomial(j, b) * binomial(k, c) / binomial(total, m);
-                    let f = index(m, a, b) * v_sets + index(n, i - a, j - b);
+                    let f = index(n, i - a, j - b) * u_sets + index(m, a, b);
                     self.terms.push((narrow(f), factor));
                 }
             }
@@ -178,62 +182,75 @@ fn binomial(n: usize, k: usize) -> f64 {
 }
 
 impl<const N: usize> Scratch<N> {
-    /// All tensor blossom values F(u set; v set), v set fastest.
+    /// All tensor blossom values F(u set; v set), u set fastest. The net's rows
+    /// are blossomed as wholes, then the columns of that, so that every inner
+    /// loop runs over neighbours in memory.
     fn blossoms(&mut self, degree: (usize, usize), corners: [[f64; 2]; 3]) {
         let (m, n) = degree;
-        let v_sets = (n + 1) * (n + 2) / 2;
         let u_sets = (m + 1) * (m + 2) / 2;
-        self.rows.resize((m + 1) * v_sets, SVector::zeros());
-        self.values.resize(u_sets * v_sets, SVector::zeros());
-        let v = corners.map(|c| c[1]);
-        let u = corners.map(|c| c[0]);
-        for (row, source) in self
-            .rows
-            .chunks_exact_mut(v_sets)
-            .zip(self.local.chunks_exact(n + 1))
-        {
-            multisets(source, v, |set, value| row[set] = value);
-        }
-        let mut column = casteljau::row::<N>();
-        for set_v in 0..v_sets {
-            for (i, target) in column[..=m].iter_mut().enumerate() {
-                *target = self.rows[i * v_sets + set_v];
-            }
-            let values = &mut self.values;
-            multisets(&column[..=m], u, |set, value| {
-                values[set * v_sets + set_v] = value
-            });
-        }
+        let v_sets = (n + 1) * (n + 2) / 2;
+        self.columns.resize((n + 1) * u_sets, SVector::zeros());
+        self.values.resize(v_sets * u_sets, SVector::zeros());
+        let columns = &mut self.columns;
+        multisets(
+            &self.local,
+            n + 1,
+            corners.map(|c| c[0]),
+            &mut self.stages,
+            |set, row| {
+                for (j, value) in row.iter().enumerate() {
+                    columns[j * u_sets + set] = *value;
+                }
+            },
+        );
+        let values = &mut self.values;
+        multisets(
+            &self.columns,
+            u_sets,
+            corners.map(|c| c[1]),
+            &mut self.stages,
+            |set, row| {
+                values[set * u_sets..(set + 1) * u_sets].copy_from_slice(row);
+            },
+        );
     }
 }
 
-/// The blossom of one row at every multiset of the three arguments, partial
-/// results shared.
+/// The blossom of a run of rows, each `width` long, at every multiset of the
+/// three arguments; partial results are shared.
 fn multisets<const N: usize>(
-    source: &[SVector<f64, N>],
+    rows: &[SVector<f64, N>],
+    width: usize,
     args: [f64; 3],
-    mut found: impl FnMut(usize, SVector<f64, N>),
+    [first, second, third]: &mut [Vec<SVector<f64, N>>; 3],
+    mut found: impl FnMut(usize, &[SVector<f64, N>]),
 ) {
-    let degree = source.len() - 1;
-    let (mut first, mut second, mut third) = (
-        casteljau::row::<N>(),
-        casteljau::row::<N>(),
-        casteljau::row::<N>(),
-    );
-    first[..=degree].copy_from_slice(source);
+    let degree = rows.len() / width - 1;
+    first.clear();
+    first.extend_from_slice(rows);
     for a in 0..=degree {
         let left = degree - a;
-        second[..=left].copy_from_slice(&first[..=left]);
+        second.clear();
+        second.extend_from_slice(&first[..(left + 1) * width]);
         for b in 0..=left {
             let rest = left - b;
-            third[..=rest].copy_from_slice(&second[..=rest]);
-            found(
-                index(degree, a, b),
-                casteljau::value(&mut third[..=rest], args[2]),
-            );
-            casteljau::step(&mut second[..=rest], args[1]);
+            third.clear();
+            third.extend_from_slice(&second[..(rest + 1) * width]);
+            for len in (2..=rest + 1).rev() {
+                step(&mut third[..len * width], width, args[2]);
+            }
+            found(index(degree, a, b), &third[..width]);
+            step(&mut second[..(rest + 1) * width], width, args[1]);
         }
-        casteljau::step(&mut first[..=left], args[0]);
+        step(&mut first[..(left + 1) * width], width, args[0]);
+    }
+}
+
+/// One step of de Casteljau's algorithm on rows.
+fn step<const N: usize>(rows: &mut [SVector<f64, N>], width: usize, t: f64) {
+    let s = 1.0 - t;
+    for at in 0..rows.len() - width {
+        rows[at] = rows[at] * s + rows[at + width] * t;
     }
 }
 

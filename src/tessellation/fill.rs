@@ -1,5 +1,6 @@
 //! One piece: laid out, proved, laid out better, refined until all is proved.
 
+use super::certificate::Prover;
 use super::correction::Correction;
 use super::field::Field;
 use super::lattice::Ground;
@@ -75,10 +76,11 @@ pub(crate) fn fill(
         limits,
         correction: Correction::none(),
     };
+    let mut prover = Prover::new(surface);
     let mut best: Option<Trial> = None;
     for _ in 0..LAYOUTS {
         let mut work = Work::new(surface, &field, limits, layout(surface, &ground, outline));
-        let failed = work.round(planar);
+        let failed = work.round(&mut prover, planar);
         let inner = work.inner_failing(&failed);
         let cost = work.figures.len() + 2 * failed.len();
         let lesson = (inner > FEW).then(|| work.lesson());
@@ -91,7 +93,7 @@ pub(crate) fn fill(
     let Trial {
         mut work, failed, ..
     } = best.expect("at least one layout is tried");
-    let proved = work.prove(failed, planar)?;
+    let proved = work.prove(&mut prover, failed, planar)?;
     Ok(work.finish(proved))
 }
 

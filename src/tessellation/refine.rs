@@ -1,5 +1,6 @@
 //! Refinement: a vertex more where a triangle fails, until none does.
 
+use super::certificate::Prover;
 use super::fill::{Proved, Stuck};
 use super::layout::INNER;
 use super::triangulation::{BORDER, TriangleEdge};
@@ -21,6 +22,7 @@ impl Work<'_> {
     /// the worst triangle.
     pub(super) fn prove(
         &mut self,
+        prover: &mut Prover,
         mut failed: Vec<u32>,
         planar: Option<f64>,
     ) -> Result<Proved, Stuck> {
@@ -35,7 +37,7 @@ impl Work<'_> {
                     return Err(self.stuck(t, figure.to_mesh.max(figure.to_surface)));
                 }
             }
-            failed = self.round(planar);
+            failed = self.round(prover, planar);
         }
         Ok(self
             .figures

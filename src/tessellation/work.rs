@@ -23,7 +23,6 @@ pub(super) struct Work<'a> {
     pub(super) flats: Vec<Flat>,
     pub(super) cells: Vec<Cell>,
     pub(super) stale: Vec<bool>,
-    pub(super) prover: Prover<'a>,
     pub(super) figures: Vec<Proved>,
     pub(super) ring: Vec<u32>,
 }
@@ -49,7 +48,6 @@ impl<'a> Work<'a> {
             flats: Vec::new(),
             cells: Vec::new(),
             stale: vec![true; count],
-            prover: Prover::new(surface),
             figures: Vec::new(),
             ring: Vec::new(),
         };
@@ -126,12 +124,12 @@ impl<'a> Work<'a> {
     }
 
     /// Brings all figures up to date; returns the triangles that fail.
-    pub(super) fn round(&mut self, planar: Option<f64>) -> Vec<u32> {
+    pub(super) fn round(&mut self, prover: &mut Prover, planar: Option<f64>) -> Vec<u32> {
         let count = self.layout.triangulation.triangles.len();
         let stale: Vec<u32> = (0..index(count))
             .filter(|&t| self.stale[t as usize])
             .collect();
-        self.measure(&stale);
+        self.measure(prover, &stale);
         self.figures.resize(count, Proved::default());
         let mut ring = std::mem::take(&mut self.ring);
         let mut affected = stale.clone();
@@ -146,7 +144,6 @@ impl<'a> Work<'a> {
         for &t in &stale {
             self.stale[t as usize] = false;
         }
-        let mut prover = Prover::new(self.surface);
         let mut failed = Vec::new();
         for &t in &affected {
             let figure = match planar {
@@ -154,7 +151,7 @@ impl<'a> Work<'a> {
                     to_mesh: bound,
                     to_surface: bound,
                 },
-                None => verdict::judge(self, &mut prover, t, &mut ring),
+                None => verdict::judge(self, prover, t, &mut ring),
             };
             self.figures[t as usize] = figure;
             let within = figure.to_mesh.max(figure.to_surface) <= self.limits.chord;
@@ -167,7 +164,7 @@ impl<'a> Work<'a> {
     }
 
     /// Brings flats and cells up to date.
-    fn measure(&mut self, stale: &[u32]) {
+    fn measure(&mut self, prover: &mut Prover, stale: &[u32]) {
         let count = self.layout.triangulation.triangles.len();
         self.flats.resize(count, Flat::new([Point::origin(); 3]));
         self.cells.resize(count, Cell::default());
@@ -176,10 +173,8 @@ impl<'a> Work<'a> {
             let flat = Flat::new(corners.map(|v| self.layout.points[v as usize]));
             self.flats[t as usize] = flat;
             self.cells[t as usize] = match self.layout.triangulation.pole_corner(corners) {
-                None => self
-                    .prover
-                    .cell(self.layout.triangulation.corners(t), &flat, true),
-                Some((k, pole)) => self.pole_cell(corners, k, pole, &flat),
+                None => prover.cell(self.layout.triangulation.corners(t), &flat, true),
+                Some((k, pole)) => self.pole_cell(prover, corners, k, pole, &flat),
             };
         }
     }
@@ -187,7 +182,14 @@ impl<'a> Work<'a> {
     /// The cell of a triangle at the pole is a trapezoid: the two parameter
     /// triangles it falls into, by one diagonal for what lies over the flat
     /// triangle, and by the other for the edge that diagonal does not end in.
-    fn pole_cell(&mut self, corners: [u32; 3], k: usize, pole: Pole, flat: &Flat) -> Cell {
+    fn pole_cell(
+        &self,
+        prover: &mut Prover,
+        corners: [u32; 3],
+        k: usize,
+        pole: Pole,
+        flat: &Flat,
+    ) -> Cell {
         let at = corners.map(|v| self.layout.triangulation.places[v as usize]);
         let (x, y) = (at[(k + 1) % 3], at[(k + 2) % 3]);
         let (below_x, below_y) = (pole.beside(x), pole.beside(y));
@@ -196,13 +198,13 @@ impl<'a> Work<'a> {
             places[k] = place;
             places
         };
-        let first = self.prover.cell(with_pole_at(below_x), flat, true);
-        let other = self.prover.cell(with_pole_at(below_y), flat, true);
+        let first = prover.cell(with_pole_at(below_x), flat, true);
+        let other = prover.cell(with_pole_at(below_y), flat, true);
         let mut second = [[0.0; 2]; 3];
         second[k] = below_x;
         second[(k + 1) % 3] = y;
         second[(k + 2) % 3] = below_y;
-        let second = self.prover.cell(second, flat, false);
+        let second = prover.cell(second, flat, false);
         let mut edges = first.edges;
         edges[(k + 2) % 3] = other.edges[(k + 2) % 3];
         Cell {
