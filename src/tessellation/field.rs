@@ -11,6 +11,10 @@ const CELLS: usize = 6;
 /// Grid cells where the surface may vary more.
 const CELLS_FINE: usize = 12;
 
+/// How much a sideways shift of an edge counts beside a height: about the tilt
+/// of neighbouring triangles, by which the proof multiplies it.
+const TILT: f64 = 0.1;
+
 /// What the steps need to know of the surface at one place.
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Bend {
@@ -104,8 +108,8 @@ impl Field {
     }
 
     /// Estimated deviation of a triangle, in length: the largest height error
-    /// for the Hessian at its centre, joined with the sideways shift of its
-    /// edges, which the certificate has to count too.
+    /// for the Hessian at its centre, joined with a part of the sideways shift
+    /// of its edges.
     pub(super) fn estimate(&self, places: [[f64; 2]; 3], points: [Point; 3]) -> f64 {
         let third = |axis: usize| (places[0][axis] + places[1][axis] + places[2][axis]) / 3.0;
         let bend = self.at([third(0), third(1)]);
@@ -125,7 +129,7 @@ impl Field {
             let length = along.norm();
             if length > 0.0 {
                 let sideways = q.dot(&bend.normal.cross(&along)) / length;
-                worst_edge = worst_edge.max(square[k].hypot(sideways) / 8.0);
+                worst_edge = worst_edge.max(square[k].hypot(TILT * sideways) / 8.0);
             }
         }
         let (height, _) = super::quadratic::Quadratic::interpolation_error(square).largest();
