@@ -5,6 +5,7 @@ use std::process::ExitCode;
 
 use clap::{Parser, Subcommand};
 
+mod audit;
 mod check;
 mod completions;
 mod demo;
@@ -55,6 +56,7 @@ pub struct Arguments {
 #[derive(Debug, Subcommand)]
 enum Command {
     Tessellate(tessellate::TessellateArguments),
+    Audit(audit::AuditArguments),
     Seams(seams::SeamsArguments),
     Check(check::CheckArguments),
     Demo(demo::DemoArguments),
@@ -66,6 +68,7 @@ enum Command {
 pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     match Arguments::try_parse_from(arguments) {
         Ok(arguments) => match arguments.command {
+            Command::Audit(arguments) => arguments.run(),
             Command::Check(arguments) => arguments.run(),
             Command::Completions(arguments) => arguments.run(),
             Command::Demo(arguments) => arguments.run(),

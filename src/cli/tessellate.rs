@@ -13,9 +13,9 @@ use super::panels::panels;
 use super::progress::Progress;
 use super::source;
 use super::style::OutputStyle;
-use crate::format::{self, Format, Layout, WriteOptions};
+use crate::format::{self, Format, FormatError, Layout, WriteOptions};
 use crate::mesh::{Meshed, Strips};
-use crate::patch_set::{PanelId, PatchSet};
+use crate::patch_set::{PanelId, PatchSet, PieceId};
 use crate::report::{SecondsLine, Summary};
 use crate::sampling::Limits;
 use crate::scalar::{Length, Point, Tolerance, Vector};
@@ -26,6 +26,7 @@ Examples:
   chordwise tessellate front.ron -o wing.stl --chord 0.02mm --panel wing
   chordwise tessellate front.ron -o front.ply --normal-angle 10 --max-edge 25
   chordwise tessellate front.ron --as obj -o - | gzip > front.obj.gz
+  chordwise tessellate front.ron -o front.ply --evidence
 
 The format follows the extension. Every triangle is proved to lie within the
 chord tolerance of the surface, and the surface of the mesh, or nothing is
@@ -83,6 +84,11 @@ pub(super) struct TessellateArguments {
     /// [default: all cores]
     #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..))]
     jobs: Option<u16>,
+
+    /// Keep the patch, u and v of every corner in the file (PLY and OBJ), so
+    /// that `chordwise audit` can prove a PLY file anew
+    #[arg(long)]
+    evidence: bool,
 
     /// How the summary is printed
     #[arg(long, value_enum, default_value_t)]
@@ -145,6 +151,9 @@ impl TessellateArguments {
         if self.normals && format == Format::Stl {
             return Err(UsageError::Normals.into());
         }
+        if self.evidence && !format.holds_evidence() {
+            return Err(FormatError::Evidence(format).into());
+        }
         if let Some(jobs) = self.jobs {
             // Fails only if the pool exists already, which then has its size.
             let _ = rayon::ThreadPoolBuilder::new()
@@ -176,12 +185,12 @@ impl TessellateArguments {
             limits.max_edge,
         );
         let wanted = self.wanted(set)?;
-        let made = Meshed::new(
-            set,
-            &held,
-            |piece| wanted[piece.index()],
-            |name| progress.stage(name),
-        )?;
+        let of = |piece: PieceId| wanted[piece.index()];
+        let made = if self.evidence {
+            Meshed::with_evidence(set, &held, of, |name| progress.stage(name))?
+        } else {
+            Meshed::new(set, &held, of, |name| progress.stage(name))?
+        };
         progress.stage("finding strips");
         let clock = Instant::now();
         let strips = Strips::of(&made.mesh);

@@ -21,6 +21,11 @@ pub enum FormatError {
         /// The layout asked for.
         layout: Layout,
     },
+    /// The format has no room for the parameters of every corner.
+    #[error(
+        "{0}: evidence (patch, u and v of every corner) cannot be stored; write ply, which keeps it whole, or obj"
+    )]
+    Evidence(Format),
     /// Single precision is too coarse for the tolerance at these coordinates.
     #[error(
         "{format}: rounding to single precision moves a point by up to {rounding:.3e} {unit}; it must stay below a tenth of the chord tolerance {chord} {unit}: write ply or obj, which keep doubles{}",

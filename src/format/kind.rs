@@ -79,6 +79,12 @@ impl Format {
         rounding::reserve(self, low, high, chord)
     }
 
+    /// Whether the format has room for the patch, u and v of every corner.
+    #[must_use]
+    pub fn holds_evidence(self) -> bool {
+        matches!(self, Self::Obj | Self::Ply)
+    }
+
     /// The layout to use where the given one was asked for.
     ///
     /// # Errors

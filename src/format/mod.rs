@@ -12,6 +12,9 @@
 //! precision moves a point by is returned, to be added to the proved
 //! deviation; where it would exceed a tenth of the chord tolerance nothing is
 //! written.
+//!
+//! Evidence (patch, u and v of every corner) goes into PLY, the form that
+//! [`read_evidence`] reads back, and into OBJ as texture coordinates.
 
 mod error;
 mod glb;
@@ -20,6 +23,7 @@ mod names;
 mod normals;
 mod obj;
 mod ply;
+mod ply_reading;
 mod rounding;
 mod sink;
 mod stl;
@@ -28,6 +32,7 @@ use std::io::Write;
 
 pub use error::FormatError;
 pub use kind::{Format, FormatNameError, Layout, LayoutNameError};
+pub use ply_reading::{EvidenceError, read_evidence};
 
 use crate::mesh::{Mesh, Part, Strips};
 use crate::scalar::Tolerance;
@@ -79,7 +84,7 @@ pub struct Written {
 ///
 /// # Errors
 /// [`FormatError`] where the mesh has no triangles, the format does not have
-/// the layout, single precision is too coarse, a count exceeds what the format
+/// the layout or no room for the evidence the mesh carries, single precision is too coarse, a count exceeds what the format
 /// can hold (all these before the first byte), or the writer fails.
 pub fn write(
     mesh: &Mesh,
@@ -91,6 +96,9 @@ pub fn write(
         return Err(FormatError::Empty);
     }
     let layout = format.layout(options.layout)?;
+    if mesh.evidence.is_some() && !format.holds_evidence() {
+        return Err(FormatError::Evidence(format));
+    }
     match format {
         Format::Stl => stl::write(mesh, options.chord, out),
         Format::Obj => obj::write(mesh, layout, out),

@@ -46,9 +46,39 @@ impl fmt::Display for Encoded<'_> {
     }
 }
 
+/// The name that was encoded; what is no encoding stays as it is.
+pub(super) fn decoded(text: &str) -> String {
+    let mut bytes = Vec::with_capacity(text.len());
+    let mut rest = text.as_bytes();
+    while let Some((&byte, tail)) = rest.split_first() {
+        let code = tail
+            .get(..2)
+            .filter(|hex| byte == b'%' && hex.iter().all(u8::is_ascii_hexdigit))
+            .and_then(|hex| u8::from_str_radix(std::str::from_utf8(hex).ok()?, 16).ok());
+        bytes.push(code.unwrap_or(byte));
+        rest = &tail[if code.is_some() { 2 } else { 0 }..];
+    }
+    String::from_utf8_lossy(&bytes).into_owned()
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn names_come_back() {
+        for name in [
+            "wing/1",
+            "front wing\n1",
+            "50%",
+            "100%25",
+            "Kotflügel\u{85}",
+            "%",
+        ] {
+            assert_eq!(decoded(&Encoded::line(name).to_string()), name);
+            assert_eq!(decoded(&Encoded::word(name).to_string()), name);
+        }
+    }
 
     #[test]
     fn names_stay_on_their_line_and_apart() {

@@ -2,7 +2,9 @@
 //! double. A panel is an object (`o`), a patch a group (`g`) with its full
 //! name; white space, control characters, `#` and `%` in names are
 //! percent-encoded. Points are shared by index across everything, normals have
-//! indices of their own, so a crease costs no point.
+//! indices of their own, so a crease costs no point. A mesh with evidence has
+//! the patch's own (u, v) of every corner as texture coordinates (`vt`), in the
+//! order of the corners.
 
 use std::io::Write;
 
@@ -31,7 +33,7 @@ pub(super) fn write(
             normal(&mut sink, &normals, v)?;
         }
     }
-    let mut corner = 0_u64;
+    let (mut corner, mut places) = (0_u64, 0_u64);
     for (name, parts) in panels(mesh) {
         writeln!(sink, "o {}", Encoded::word(name))?;
         for (_, part) in parts {
@@ -52,7 +54,16 @@ pub(super) fn write(
                 };
                 // Indices count from one.
                 let [[a, n], [b, m], [c, o]] = indices.map(|(p, n)| [p + 1, n + 1]);
-                writeln!(sink, "f {a}//{n} {b}//{m} {c}//{o}")?;
+                if let Some(evidence) = &mesh.evidence {
+                    for [u, v] in evidence[t] {
+                        writeln!(sink, "vt {u:?} {v:?}")?;
+                    }
+                    let [r, s, t] = [1, 2, 3].map(|k| places + k);
+                    places += 3;
+                    writeln!(sink, "f {a}/{r}/{n} {b}/{s}/{m} {c}/{t}/{o}")?;
+                } else {
+                    writeln!(sink, "f {a}//{n} {b}//{m} {c}//{o}")?;
+                }
             }
         }
     }

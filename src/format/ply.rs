@@ -7,6 +7,10 @@
 //! on the faces themselves would be neater, but not every reader takes faces
 //! with more than their corners. With normals a point is repeated where they
 //! differ.
+//!
+//! A mesh with evidence has seven more properties a face: `int patch`, the
+//! number of the patch comment it belongs to, counted from 0, and the doubles
+//! `u0 v0 u1 v1 u2 v2`, the patch's own parameters of its corners.
 
 use std::io::Write;
 
@@ -16,6 +20,9 @@ use super::sink::Sink;
 use super::{Format, FormatError, Layout, Written};
 use crate::mesh::Mesh;
 use crate::scalar::Point;
+
+/// The parameters of a face's corners, as its properties are called.
+pub(super) const EVIDENCE: [&str; 6] = ["u0", "v0", "u1", "v1", "u2", "v2"];
 
 pub(super) fn write(
     mesh: &Mesh,
@@ -69,7 +76,8 @@ pub(super) fn write(
         }
     }
     let mut corner = 0_u32;
-    for t in mesh.parts.iter().flat_map(|part| part.triangles.clone()) {
+    let numbered = (0_i32..).zip(&mesh.parts);
+    for (number, t) in numbered.flat_map(|(k, part)| part.triangles.clone().map(move |t| (k, t))) {
         let indices = match (repeated, with_normals) {
             (true, _) => {
                 corner += 3;
@@ -83,6 +91,12 @@ pub(super) fn write(
             four.copy_from_slice(&index.to_le_bytes());
         }
         sink.put(&face)?;
+        if let Some(evidence) = &mesh.evidence {
+            sink.put(&number.to_le_bytes())?;
+            let [[a, b], [c, d], [e, f]] = evidence[t];
+            sink.doubles([a, b, c])?;
+            sink.doubles([d, e, f])?;
+        }
     }
     Ok(Written {
         bytes: sink.finish()?,
@@ -122,5 +136,12 @@ fn header(
         writeln!(sink, "property double {name}")?;
     }
     writeln!(sink, "element face {}", mesh.triangles.len())?;
-    writeln!(sink, "property list uchar int vertex_indices\nend_header")
+    writeln!(sink, "property list uchar int vertex_indices")?;
+    if mesh.evidence.is_some() {
+        writeln!(sink, "property int patch")?;
+        for name in EVIDENCE {
+            writeln!(sink, "property double {name}")?;
+        }
+    }
+    writeln!(sink, "end_header")
 }

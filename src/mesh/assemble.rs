@@ -3,7 +3,7 @@
 use rayon::prelude::*;
 
 use super::{Mesh, Part, Vertex};
-use crate::patch_set::{PatchSet, PieceId};
+use crate::patch_set::{PatchSet, Piece, PieceId};
 use crate::sampling::Samples;
 use crate::scalar::Vector;
 use crate::tessellation::{Filled, Tessellation};
@@ -15,9 +15,15 @@ impl Mesh {
     /// Joins filled pieces into one mesh. Border vertices are shared by
     /// identity; their normals too, where the surfaces that meet there agree
     /// within the set's tangent tolerance. Pieces that were left out leave out
-    /// their patch.
+    /// their patch. With `evidence` every triangle keeps the parameters of its
+    /// corners.
     #[must_use]
-    pub fn assemble(set: &PatchSet, samples: &Samples, tessellation: &Tessellation) -> Self {
+    pub fn assemble(
+        set: &PatchSet,
+        samples: &Samples,
+        tessellation: &Tessellation,
+        evidence: bool,
+    ) -> Self {
         let smooth = set.tolerances().tangent_deg.get().to_radians().cos();
         let normals: Vec<Option<Vec<Vector>>> = tessellation
             .pieces
@@ -38,6 +44,7 @@ impl Mesh {
             vertices: Vec::new(),
             triangles: Vec::new(),
             parts: Vec::new(),
+            evidence: evidence.then(Vec::new),
         };
         for patch in set.patches() {
             let start = mesh.triangles.len();
@@ -47,6 +54,9 @@ impl Mesh {
                     (&tessellation.pieces[index], &normals[index])
                 {
                     joined.add(&mut mesh, filled, normals, patch.flipped, smooth);
+                    if let Some(evidence) = &mut mesh.evidence {
+                        corners(&set.pieces()[index], filled, patch.flipped, evidence);
+                    }
                     any = true;
                 }
             }
@@ -60,6 +70,15 @@ impl Mesh {
         }
         mesh
     }
+}
+
+/// Appends the patch's own parameters of the corners of a piece's triangles.
+fn corners(piece: &Piece, filled: &Filled, flipped: bool, into: &mut Vec<[[f64; 2]; 3]>) {
+    let at = |corner: u32| piece.patch_parameters(filled.places[corner as usize]);
+    into.extend(filled.triangles.iter().map(|triangle| {
+        let [a, b, c] = triangle.map(at);
+        if flipped { [a, c, b] } else { [a, b, c] }
+    }));
 }
 
 /// The outward unit normal at every vertex of a piece; where the surface has

@@ -108,6 +108,30 @@ impl Meshed {
         set: &PatchSet,
         limits: &Limits,
         wanted: impl Fn(PieceId) -> bool + Sync,
+        stage: impl FnMut(&'static str),
+    ) -> Result<Self, MeshError> {
+        Self::make(set, limits, wanted, false, stage)
+    }
+
+    /// As [`Meshed::new`], and the mesh keeps the parameters of every corner
+    /// (see [`Mesh::evidence`]).
+    ///
+    /// # Errors
+    /// [`MeshError`] says which stage failed, where and why.
+    pub fn with_evidence(
+        set: &PatchSet,
+        limits: &Limits,
+        wanted: impl Fn(PieceId) -> bool + Sync,
+        stage: impl FnMut(&'static str),
+    ) -> Result<Self, MeshError> {
+        Self::make(set, limits, wanted, true, stage)
+    }
+
+    fn make(
+        set: &PatchSet,
+        limits: &Limits,
+        wanted: impl Fn(PieceId) -> bool + Sync,
+        evidence: bool,
         mut stage: impl FnMut(&'static str),
     ) -> Result<Self, MeshError> {
         let mut seconds = Stages::default();
@@ -133,7 +157,7 @@ impl Meshed {
         let filled = tessellate(set, &topology, &samples, limits, &wanted)?;
         seconds.tessellation = lap();
         stage("assembling");
-        let mesh = Mesh::assemble(set, &samples, &filled);
+        let mesh = Mesh::assemble(set, &samples, &filled, evidence);
         let deviation = Deviation::of(set, &filled, &mesh).filter(|_| !mesh.triangles.is_empty());
         let deviation = deviation.ok_or(MeshError::Empty)?;
         seconds.assembly = lap();

@@ -1,6 +1,7 @@
 //! The indexed triangle mesh, its strips and its storage.
 
 mod assemble;
+mod audit;
 mod deviation;
 mod edges;
 mod job;
@@ -9,6 +10,7 @@ mod model;
 mod storage;
 mod strips;
 
+pub use audit::{Audit, AuditError, Evidence, Face, Fault, Finding, Worst};
 pub use deviation::Deviation;
 pub use job::{MeshError, Meshed, Stages};
 pub use measure::Measures;

@@ -44,6 +44,10 @@ pub struct Mesh {
     pub triangles: Vec<[u32; 3]>,
     /// One part a patch, in file order; together they cover all triangles.
     pub parts: Vec<Part>,
+    /// Where asked for, the patch's own (u, v) of the corners of every
+    /// triangle, by triangle: with the part's name all that is needed to prove
+    /// the mesh anew. At a pole u (or v) is one of many that would do.
+    pub evidence: Option<Vec<[[f64; 2]; 3]>>,
 }
 
 impl Mesh {

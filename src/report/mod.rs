@@ -1,11 +1,13 @@
 //! What is told to people and programs: summaries and seam lists.
 
+mod audit;
 mod caution;
 mod seams;
 mod seams_text;
 mod summary;
 mod summary_text;
 
+pub use audit::{AuditDeviation, AuditReport, FindingLine};
 pub use caution::CAUTION;
 pub use seams::{
     CrowdLine, EdgeName, FigureLine, LoopLine, NearMissLine, PlaceLine, SeamLine, SeamReport,

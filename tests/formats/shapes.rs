@@ -66,6 +66,7 @@ pub(crate) fn sphere(k: u32, r: u32, radius: f64, centre: Vector) -> Mesh {
             .collect(),
         triangles,
         parts: vec![part("ball/north", 0..north), part("ball/south", north..all)],
+        evidence: None,
     }
 }
 
@@ -96,6 +97,7 @@ pub(crate) fn case(corner: Vector) -> Mesh {
         vertices: Vec::new(),
         triangles: Vec::new(),
         parts: Vec::new(),
+        evidence: None,
     };
     for (i, (corners, normal)) in faces.into_iter().enumerate() {
         let first = u32::try_from(mesh.vertices.len()).unwrap();
@@ -147,6 +149,7 @@ pub(crate) fn grid(n: u32, m: u32) -> Mesh {
             triangles: 0..triangles.len(),
         }],
         triangles,
+        evidence: None,
     }
 }
 

@@ -1,0 +1,488 @@
+//! The deviation of each cell, proved from its net and the flat triangles.
+//!
+//! **Surface to mesh.** The surface over a part of a cell lies in the hull of
+//! that part's net, so it is no farther from the mesh than the largest of a
+//! convex distance at the control points (`facet`): to one triangle, or to the
+//! roof of two. The triangle is chosen for each part by walking to the one
+//! nearest its middle; parts that are not good enough are quartered.
+//!
+//! **Mesh to surface.** Take cells R, T's own among them, whose flat triangles
+//! all face T's way. Projected along T's normal, their flat triangles go round
+//! every point m of T once at least. The outline of S(R) is moved to theirs by
+//! straight lines between points of each edge curve and its chord, no longer
+//! than the edge's figure (`bezier::chord_bound`, or the distance of the corners
+//! if that is more). So either an edge whose figure reaches T sweeps m, which is
+//! then as near to the curve, or the projection of S(R) goes round m too, hence
+//! covers it, and m is as near as S(R) is high over T's plane there:
+//!
+//! ```text
+//! mesh to surface <= max(figures of R's outer edges that reach T,
+//!                        heights of the parts of S(R) whose nets project on T)
+//! ```
+//!
+//! R is T's cell alone, or all cells of the piece that share a mesh vertex with
+//! T, whichever is better. Degree of a map: any text on topology; the hull lemma:
+//! Farin, *Curves and Surfaces for CAGD*.
+//!
+//! **Rounding.** `TriangleRestriction` is good to (2 d + 2) ulp of the largest
+//! coordinate, times the ratio of weights; middles of parameters are rounded by
+//! an ulp, which moves the surface by at most d ratio^2 (extent of the net) ulp
+//! (Floater 1992 for the derivative). Both, doubled, are added to every bound.
+
+use rayon::prelude::*;
+
+use super::cell::Cell;
+use super::corner::scale;
+use super::evidence::Evidence;
+use super::facet::{Facet, Facets, to_segment, to_triangle};
+use crate::bezier::{BezierPatch, TriangleNet, TriangleRestriction, chord_bound};
+use crate::patch_set::PatchSet;
+use crate::scalar::{Point, Vector};
+
+/// Proved figures are brought within this factor of the attained one.
+const TIGHT: f64 = 1.02;
+
+/// What is below this part of the chord is not looked at more closely.
+const SMALL: f64 = 1e-3;
+
+/// Parts looked at for one cell: while the chord is not proved, and to come
+/// closer to the attained figure.
+const MOST_PARTS: usize = 20_000;
+const MORE_PARTS: usize = 500;
+
+/// A point of the surface and its distance from the mesh nearby.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Peak {
+    pub(super) distance: f64,
+    pub(super) place: [f64; 2],
+    pub(super) point: Point,
+}
+
+/// What is proved of one cell.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Figures {
+    pub(super) to_mesh: f64,
+    pub(super) to_surface: f64,
+    pub(super) peak: Peak,
+}
+
+/// A first look at a cell.
+#[derive(Debug, Clone, Copy)]
+struct First {
+    edges: [f64; 3],
+    peak: Peak,
+}
+
+#[derive(Debug, Default)]
+struct Scratch {
+    restriction: TriangleRestriction,
+    net: TriangleNet,
+    parts: Vec<([[f64; 2]; 3], u32)>,
+}
+
+/// A table of everything a proof looks at.
+pub(super) struct Prover<'a> {
+    set: &'a PatchSet,
+    evidence: &'a Evidence,
+    cells: &'a [Cell],
+    facets: Facets,
+    chord: f64,
+    /// By piece: what rounding may have taken from a bound.
+    slack: Vec<f64>,
+    /// (piece, mesh point, cell), ascending.
+    around: Vec<(usize, u32, usize)>,
+}
+
+impl<'a> Prover<'a> {
+    pub(super) fn new(
+        set: &'a PatchSet,
+        evidence: &'a Evidence,
+        cells: &'a [Cell],
+        chord: f64,
+    ) -> Self {
+        let slack = set.pieces().par_iter().map(|p| slack(&p.surface)).collect();
+        let mut around: Vec<_> = cells
+            .iter()
+            .enumerate()
+            .flat_map(|(index, cell)| cell.points.map(|p| (cell.piece, p, index)))
+            .collect();
+        around.sort_unstable();
+        around.dedup();
+        Self {
+            set,
+            evidence,
+            cells,
+            facets: Facets::of(evidence),
+            chord,
+            slack,
+            around,
+        }
+    }
+
+    /// The figures of every cell.
+    pub(super) fn prove(&self) -> Vec<Figures> {
+        let first: Vec<First> = self
+            .cells
+            .par_iter()
+            .map_init(Scratch::default, |scratch, cell| self.first(cell, scratch))
+            .collect();
+        let attained = first
+            .iter()
+            .map(|f| f.peak.distance)
+            .fold(0.0, f64::max)
+            .min(self.chord);
+        (0..self.cells.len())
+            .into_par_iter()
+            .map_init(Scratch::default, |scratch, index| {
+                self.figures(index, &first, attained, scratch)
+            })
+            .collect()
+    }
+
+    /// Distance of a point from the nearest triangle of the whole mesh.
+    pub(super) fn distance(&self, point: &Point) -> f64 {
+        self.facets
+            .facets
+            .par_iter()
+            .map(|facet| to_triangle(&Vector::zeros(), &facet.from(point)))
+            .reduce(|| f64::INFINITY, f64::min)
+    }
+
+    fn surface(&self, cell: &Cell) -> &BezierPatch {
+        &self.set.pieces()[cell.piece].surface
+    }
+
+    fn corners(&self, cell: &Cell) -> [Point; 3] {
+        cell.points.map(|p| self.evidence.points[p as usize])
+    }
+
+    /// A part's middle, and its distance from the mesh nearby.
+    fn sample(&self, cell: &Cell, place: [f64; 2], hint: u32) -> (u32, Peak) {
+        let point = self.surface(cell).eval(place[0], place[1]);
+        let (facet, distance) = self.facets.walk(hint, &point);
+        let peak = Peak {
+            distance,
+            place,
+            point,
+        };
+        (facet, peak)
+    }
+
+    fn first(&self, cell: &Cell, scratch: &mut Scratch) -> First {
+        let [a, b, c] = cell.places;
+        let corners = self.corners(cell);
+        let origin = corners[0];
+        self.surface(cell).restrict_triangle(
+            cell.places,
+            &origin,
+            &mut scratch.restriction,
+            &mut scratch.net,
+        );
+        let net = &scratch.net;
+        let ends = corners.map(|p| p - origin);
+        let off = [0, 1, 2].map(|k| (net.points[net.corner(k)] - ends[k]).norm());
+        let edges = [0, 1, 2].map(|k| {
+            let d = net.degree;
+            let of = (0..=d).map(|s| match k {
+                0 => net.index(d - s, s),
+                1 => net.index(0, d - s),
+                _ => net.index(s, 0),
+            });
+            let points: Vec<Vector> = of.clone().map(|i| net.points[i]).collect();
+            let weights: Vec<f64> = if net.weights.is_empty() {
+                Vec::new()
+            } else {
+                of.map(|i| net.weights[i]).collect()
+            };
+            let next = (k + 1) % 3;
+            chord_bound(&points, &weights, &ends[k], &ends[next])
+                .max(off[k])
+                .max(off[next])
+                + self.slack[cell.piece]
+        });
+        let hint = facet_index(cell.face);
+        let mut peak = self.sample(cell, centre(cell.places), hint).1;
+        for (p, q) in [(a, b), (b, c), (c, a)] {
+            let other = self.sample(cell, middle(p, q), hint).1;
+            if other.distance > peak.distance {
+                peak = other;
+            }
+        }
+        First { edges, peak }
+    }
+
+    fn figures(
+        &self,
+        index: usize,
+        first: &[First],
+        attained: f64,
+        scratch: &mut Scratch,
+    ) -> Figures {
+        let cell = &self.cells[index];
+        let own = Facet::new(self.corners(cell));
+        let mut peak = first[index].peak;
+        let mut to_mesh = 0.0_f64;
+        let mut height = 0.0_f64;
+        let origin = own.corners[0];
+        let mut looked = 0;
+        scratch.parts.clear();
+        scratch.parts.push((cell.places, facet_index(cell.face)));
+        while let Some((part, mut hint)) = scratch.parts.pop() {
+            looked += 1;
+            let goal = self.goal(attained, peak.distance);
+            self.surface(cell).restrict_triangle(
+                part,
+                &origin,
+                &mut scratch.restriction,
+                &mut scratch.net,
+            );
+            let points = &scratch.net.points;
+            let slack = self.slack[cell.piece];
+            let mut bound = self.to_facet(hint, points, &origin) + slack;
+            if bound > goal {
+                let (nearest, found) = self.sample(cell, centre(part), hint);
+                if found.distance > peak.distance {
+                    peak = found;
+                }
+                if nearest != hint {
+                    hint = nearest;
+                    bound = bound.min(self.to_facet(hint, points, &origin) + slack);
+                }
+                for k in 0..3 {
+                    if bound > goal
+                        && let Some(roof) = self.facets.roof(hint, k, points, &origin)
+                    {
+                        bound = bound.min(roof + slack);
+                    }
+                }
+            }
+            let high = height_over(&own, points, &origin).map_or(0.0, |h| h + slack);
+            let worst = bound.max(high);
+            let most = if worst > self.chord {
+                MOST_PARTS
+            } else {
+                MORE_PARTS
+            };
+            if worst <= self.goal(attained, peak.distance) || looked >= most || is_tiny(part) {
+                to_mesh = to_mesh.max(bound);
+                height = height.max(high);
+            } else {
+                scratch.parts.extend(quarters(part).map(|p| (p, hint)));
+            }
+        }
+        let to_surface = if cell.fill {
+            0.0
+        } else {
+            let edges = first[index].edges.iter().copied().fold(0.0, f64::max);
+            let alone = height.max(edges);
+            let goal = self.goal(attained, peak.distance);
+            if alone <= goal {
+                alone
+            } else {
+                self.ring(index, &own, first, goal, scratch)
+                    .map_or(alone, |ring| ring.min(alone))
+            }
+        };
+        Figures {
+            to_mesh,
+            to_surface,
+            peak,
+        }
+    }
+
+    /// What a part must be proved within: close to what is attained, and within
+    /// the chord unless a real point is farther.
+    fn goal(&self, attained: f64, here: f64) -> f64 {
+        let tight = (TIGHT * attained.max(here)).max(SMALL * self.chord);
+        if here <= self.chord {
+            tight.min(self.chord)
+        } else {
+            tight
+        }
+    }
+
+    fn to_facet(&self, facet: u32, points: &[Vector], origin: &Point) -> f64 {
+        let corners = self.facets.facets[facet as usize].from(origin);
+        points
+            .iter()
+            .map(|p| to_triangle(p, &corners))
+            .fold(0.0, f64::max)
+    }
+
+    /// Mesh to surface for a facet, by all cells round it; `None` where they do
+    /// not all face its way.
+    fn ring(
+        &self,
+        index: usize,
+        own: &Facet,
+        first: &[First],
+        goal: f64,
+        scratch: &mut Scratch,
+    ) -> Option<f64> {
+        let cell = &self.cells[index];
+        let normal = own.normal?;
+        let mut ring: Vec<usize> = Vec::new();
+        for point in cell.points {
+            let key = (cell.piece, point);
+            let start = self.around.partition_point(|a| (a.0, a.1) < key);
+            let here = self.around[start..].iter();
+            ring.extend(here.take_while(|a| (a.0, a.1) == key).map(|a| a.2));
+        }
+        ring.sort_unstable();
+        ring.dedup();
+        let mut edges: Vec<([[u64; 2]; 2], usize, usize)> = Vec::with_capacity(3 * ring.len());
+        for &member in &ring {
+            let of = &self.cells[member];
+            if !of.fill {
+                let facet = Facet::new(self.corners(of));
+                if facet.normal.is_some_and(|n| n.dot(&normal) <= 0.0) {
+                    return None;
+                }
+            }
+            for k in 0..3 {
+                let mut ends = [of.places[k], of.places[(k + 1) % 3]].map(|p| p.map(f64::to_bits));
+                ends.sort_unstable();
+                edges.push((ends, member, k));
+            }
+        }
+        edges.sort_unstable();
+        let mut most = 0.0_f64;
+        for group in edges
+            .chunk_by(|a, b| a.0 == b.0)
+            .filter(|g| g.len() % 2 == 1)
+        {
+            let (_, member, k) = group[0];
+            let corners = self.corners(&self.cells[member]);
+            let figure = first[member].edges[k];
+            let away = apart(own, &normal, &corners[k], &corners[(k + 1) % 3]);
+            if away <= figure {
+                most = most.max(figure);
+            }
+        }
+        let origin = own.corners[0];
+        for member in ring {
+            let of = &self.cells[member];
+            let mut looked = 0;
+            scratch.parts.clear();
+            scratch.parts.push((of.places, 0));
+            while let Some((part, _)) = scratch.parts.pop() {
+                looked += 1;
+                self.surface(of).restrict_triangle(
+                    part,
+                    &origin,
+                    &mut scratch.restriction,
+                    &mut scratch.net,
+                );
+                let high = height_over(own, &scratch.net.points, &origin)
+                    .map_or(0.0, |h| h + self.slack[of.piece]);
+                if high <= goal.max(most) || looked >= MORE_PARTS || is_tiny(part) {
+                    most = most.max(high);
+                } else {
+                    scratch.parts.extend(quarters(part).map(|p| (p, 0)));
+                }
+            }
+        }
+        Some(most)
+    }
+}
+
+fn facet_index(face: usize) -> u32 {
+    u32::try_from(face).expect("files hold fewer than 2^31 faces")
+}
+
+/// The largest height of a hull over a facet's plane, or `None` where the hull
+/// projects beside the facet: all of it beyond one of the facet's edges. Hulls
+/// that come near an edge count, so that rounding cannot leave one out.
+fn height_over(facet: &Facet, points: &[Vector], origin: &Point) -> Option<f64> {
+    let normal = facet.normal?;
+    let corners = facet.from(origin);
+    let beside = |k: usize| {
+        facet.outward(k).is_some_and(|out| {
+            let near = 1e-9 * (corners[(k + 1) % 3] - corners[k]).norm();
+            points.iter().all(|p| (p - corners[k]).dot(&out) > near)
+        })
+    };
+    if (0..3).any(beside) {
+        return None;
+    }
+    Some(
+        points
+            .iter()
+            .map(|p| (p - corners[0]).dot(&normal).abs())
+            .fold(0.0, f64::max),
+    )
+}
+
+/// A lower bound of the distance between a facet and a segment, both projected
+/// on the facet's plane: the best of the separating lines along their sides.
+fn apart(facet: &Facet, normal: &Vector, from: &Point, to: &Point) -> f64 {
+    let flat = |p: &Point| {
+        let from_corner = p - facet.corners[0];
+        from_corner - normal * from_corner.dot(normal)
+    };
+    let (p, q) = (flat(from), flat(to));
+    let corners = facet.corners.map(|c| flat(&c));
+    let mut best = f64::NEG_INFINITY;
+    for k in 0..3 {
+        if let Some(out) = facet.outward(k) {
+            best = best.max((p - corners[k]).dot(&out).min((q - corners[k]).dot(&out)));
+        }
+    }
+    if let Some(out) = (q - p).cross(normal).try_normalize(0.0) {
+        let sides = corners.map(|c| (c - p).dot(&out));
+        let least = sides.iter().copied().fold(f64::INFINITY, f64::min);
+        let most = sides.iter().copied().fold(f64::NEG_INFINITY, f64::max);
+        if least > 0.0 || most < 0.0 {
+            // Wholly on one side: the true distance is that of corners and segment,
+            // or ends and sides.
+            let exact = corners
+                .iter()
+                .map(|c| to_segment(c, &p, &q))
+                .chain([&p, &q].map(|e| to_triangle(e, &corners)))
+                .fold(f64::INFINITY, f64::min);
+            best = best.max(exact);
+        }
+    }
+    best
+}
+
+/// See the module's text.
+fn slack(surface: &BezierPatch) -> f64 {
+    let (m, n) = surface.degree();
+    let (mut least, mut most) = (f64::INFINITY, 0.0_f64);
+    for (i, j) in (0..=m).flat_map(|i| (0..=n).map(move |j| (i, j))) {
+        least = least.min(surface.weight(i, j));
+        most = most.max(surface.weight(i, j));
+    }
+    let ratio = most / least;
+    let anchor = surface.control_point(0, 0);
+    let extent = surface
+        .control_points()
+        .map(|p| (p - anchor).norm())
+        .fold(0.0, f64::max);
+    #[allow(clippy::cast_precision_loss, reason = "degrees are at most 15")]
+    let degree = (m + n) as f64;
+    let nets = (2.0 * degree + 8.0) * scale(surface) * ratio;
+    let places = 4.0 * degree * ratio * ratio * extent;
+    2.0 * f64::EPSILON * (nets + places)
+}
+
+fn middle(a: [f64; 2], b: [f64; 2]) -> [f64; 2] {
+    [(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0]
+}
+
+fn centre([a, b, c]: [[f64; 2]; 3]) -> [f64; 2] {
+    [(a[0] + b[0] + c[0]) / 3.0, (a[1] + b[1] + c[1]) / 3.0]
+}
+
+fn quarters([a, b, c]: [[f64; 2]; 3]) -> [[[f64; 2]; 3]; 4] {
+    let (p, q, r) = (middle(a, b), middle(b, c), middle(c, a));
+    [[a, p, r], [p, b, q], [r, q, c], [p, q, r]]
+}
+
+/// Parameters so close that middles fall on ends.
+fn is_tiny([a, b, c]: [[f64; 2]; 3]) -> bool {
+    [(a, b), (b, c), (c, a)]
+        .iter()
+        .all(|(p, q)| (p[0] - q[0]).abs().max((p[1] - q[1]).abs()) < 1e-12)
+}
