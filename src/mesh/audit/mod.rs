@@ -39,6 +39,10 @@ use crate::topology::{EdgeId, Topology, TopologyError};
 /// How many of the worst points are measured against the whole mesh.
 const CANDIDATES: usize = 8;
 
+/// How many failing triangles are measured against the whole mesh; further ones
+/// are told by what could be proved of them.
+const MOST_MEASURED: usize = 200;
+
 /// A mesh that cannot be held against a set at all.
 #[derive(Debug, Error)]
 pub enum AuditError {
@@ -191,37 +195,32 @@ impl Audit {
                 self.worst = Some(spot(index));
             }
         }
-        // A distance from the mesh nearby may still be too large where another
-        // part of the mesh is nearer, so what is found is measured again.
-        let failing: Vec<Option<Fault>> = (0..cells.len())
-            .into_par_iter()
-            .map(|index| {
-                let of = &figures[index];
-                let proved = of.to_mesh.max(of.to_surface);
-                if proved <= chord {
-                    return None;
-                }
-                let attained = if of.peak.distance > chord {
-                    prover.distance(&of.peak.point)
-                } else {
-                    of.peak.distance
-                };
-                Some(if attained > chord {
-                    Fault::Deviates { attained }
-                } else {
-                    Fault::Unproved { proved }
-                })
-            })
-            .collect();
+        let mut measured = 0;
         for (index, of) in figures.iter().enumerate() {
             self.to_mesh.proved = self.to_mesh.proved.max(of.to_mesh);
             if index < faces {
                 self.to_surface = self.to_surface.max(of.to_surface);
             }
-            if let Some(fault) = failing[index] {
+            let proved = of.to_mesh.max(of.to_surface);
+            if proved > chord {
+                // Another part of the mesh may be nearer than what lies about,
+                // so what is found is measured again.
+                let mut attained = of.peak.distance;
+                if attained > chord {
+                    attained = if measured < MOST_MEASURED {
+                        prover.distance(&of.peak.point)
+                    } else {
+                        0.0
+                    };
+                    measured += 1;
+                }
                 let at = spot(index);
                 self.findings.push(Finding {
-                    fault,
+                    fault: if attained > chord {
+                        Fault::Deviates { attained }
+                    } else {
+                        Fault::Unproved { proved }
+                    },
                     triangle: Some(at.triangle),
                     patch: at.patch,
                     place: Some(at.place),

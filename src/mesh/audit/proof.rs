@@ -20,8 +20,8 @@
 //!                        heights of the parts of S(R) whose nets project on T)
 //! ```
 //!
-//! R is T's cell alone, or all cells of the piece that share a mesh vertex with
-//! T, whichever is better. Degree of a map: any text on topology; the hull lemma:
+//! R is T's cell alone, or grown from it over edges whose figure is too large,
+//! whichever is better. Degree of a map: any text on topology; the hull lemma:
 //! Farin, *Curves and Surfaces for CAGD*.
 //!
 //! **Rounding.** `TriangleRestriction` is good to (2 d + 2) ulp of the largest
@@ -29,9 +29,11 @@
 //! an ulp, which moves the surface by at most d ratio^2 (extent of the net) ulp
 //! (Floater 1992 for the derivative). Both, doubled, are added to every bound.
 
+use std::collections::BTreeSet;
+
 use rayon::prelude::*;
 
-use super::cell::Cell;
+use super::cell::{Cell, NONE};
 use super::corner::scale;
 use super::evidence::Evidence;
 use super::facet::{Facet, Facets, to_segment, to_triangle};
@@ -49,6 +51,9 @@ const SMALL: f64 = 1e-3;
 /// closer to the attained figure.
 const MOST_PARTS: usize = 20_000;
 const MORE_PARTS: usize = 500;
+
+/// Cells taken together at most for one triangle.
+const MOST_CELLS: usize = 400;
 
 /// A point of the surface and its distance from the mesh nearby.
 #[derive(Debug, Clone, Copy)]
@@ -89,8 +94,8 @@ pub(super) struct Prover<'a> {
     chord: f64,
     /// By piece: what rounding may have taken from a bound.
     slack: Vec<f64>,
-    /// (piece, mesh point, cell), ascending.
-    around: Vec<(usize, u32, usize)>,
+    /// Beyond edge k of each cell in its piece, or `NONE`.
+    across: Vec<[u32; 3]>,
 }
 
 impl<'a> Prover<'a> {
@@ -101,13 +106,6 @@ impl<'a> Prover<'a> {
         chord: f64,
     ) -> Self {
         let slack = set.pieces().par_iter().map(|p| slack(&p.surface)).collect();
-        let mut around: Vec<_> = cells
-            .iter()
-            .enumerate()
-            .flat_map(|(index, cell)| cell.points.map(|p| (cell.piece, p, index)))
-            .collect();
-        around.sort_unstable();
-        around.dedup();
         Self {
             set,
             evidence,
@@ -115,7 +113,7 @@ impl<'a> Prover<'a> {
             facets: Facets::of(evidence),
             chord,
             slack,
-            around,
+            across: across(cells),
         }
     }
 
@@ -309,8 +307,9 @@ impl<'a> Prover<'a> {
             .fold(0.0, f64::max)
     }
 
-    /// Mesh to surface for a facet, by all cells round it; `None` where they do
-    /// not all face its way.
+    /// Mesh to surface for a facet, by the cells round it: wherever an edge
+    /// reaches the facet with a figure above the goal, the cell beyond it is
+    /// taken in, if it faces the facet's way.
     fn ring(
         &self,
         index: usize,
@@ -319,46 +318,42 @@ impl<'a> Prover<'a> {
         goal: f64,
         scratch: &mut Scratch,
     ) -> Option<f64> {
-        let cell = &self.cells[index];
         let normal = own.normal?;
-        let mut ring: Vec<usize> = Vec::new();
-        for point in cell.points {
-            let key = (cell.piece, point);
-            let start = self.around.partition_point(|a| (a.0, a.1) < key);
-            let here = self.around[start..].iter();
-            ring.extend(here.take_while(|a| (a.0, a.1) == key).map(|a| a.2));
-        }
-        ring.sort_unstable();
-        ring.dedup();
-        let mut edges: Vec<([[u64; 2]; 2], usize, usize)> = Vec::with_capacity(3 * ring.len());
-        for &member in &ring {
-            let of = &self.cells[member];
-            if !of.fill {
-                let facet = Facet::new(self.corners(of));
-                if facet.normal.is_some_and(|n| n.dot(&normal) <= 0.0) {
-                    return None;
-                }
-            }
-            for k in 0..3 {
-                let mut ends = [of.places[k], of.places[(k + 1) % 3]].map(|p| p.map(f64::to_bits));
-                ends.sort_unstable();
-                edges.push((ends, member, k));
-            }
-        }
-        edges.sort_unstable();
-        let mut most = 0.0_f64;
-        for group in edges
-            .chunk_by(|a, b| a.0 == b.0)
-            .filter(|g| g.len() % 2 == 1)
-        {
-            let (_, member, k) = group[0];
+        let reach = |member: usize, k: usize| {
             let corners = self.corners(&self.cells[member]);
             let figure = first[member].edges[k];
             let away = apart(own, &normal, &corners[k], &corners[(k + 1) % 3]);
-            if away <= figure {
-                most = most.max(figure);
+            if away <= figure { figure } else { 0.0 }
+        };
+        let faces = |member: usize| {
+            let of = &self.cells[member];
+            of.fill
+                || Facet::new(self.corners(of))
+                    .normal
+                    .is_none_or(|n| n.dot(&normal) > 0.0)
+        };
+        let mut ring: BTreeSet<usize> = BTreeSet::from([index]);
+        let mut edges: Vec<(usize, usize)> = (0..3).map(|k| (index, k)).collect();
+        let mut next = 0;
+        while let Some(&(member, k)) = edges.get(next) {
+            next += 1;
+            let other = self.across[member][k];
+            if other == NONE || ring.len() >= MOST_CELLS || reach(member, k) <= goal {
+                continue;
+            }
+            let other = other as usize;
+            if !ring.contains(&other) && faces(other) {
+                ring.insert(other);
+                edges.extend((0..3).map(|k| (other, k)));
             }
         }
+        let outer = edges.iter().filter(|&&(member, k)| {
+            let other = self.across[member][k];
+            other == NONE || !ring.contains(&(other as usize))
+        });
+        let mut most = outer
+            .map(|&(member, k)| reach(member, k))
+            .fold(0.0, f64::max);
         let origin = own.corners[0];
         for member in ring {
             let of = &self.cells[member];
@@ -384,6 +379,28 @@ impl<'a> Prover<'a> {
         }
         Some(most)
     }
+}
+
+/// Which cell of the same piece each edge is shared with, by parameters.
+fn across(cells: &[Cell]) -> Vec<[u32; 3]> {
+    let mut edges = Vec::with_capacity(3 * cells.len());
+    for (index, cell) in cells.iter().enumerate() {
+        for k in 0..3 {
+            let mut ends = [cell.places[k], cell.places[(k + 1) % 3]].map(|p| p.map(f64::to_bits));
+            ends.sort_unstable();
+            edges.push((cell.piece, ends, index, k));
+        }
+    }
+    edges.sort_unstable();
+    let mut across = vec![[NONE; 3]; cells.len()];
+    // An edge of more than two cells is none that can be crossed.
+    let shared = edges.chunk_by(|a, b| (a.0, a.1) == (b.0, b.1));
+    for pair in shared.filter(|group| group.len() == 2) {
+        for (from, to) in [(pair[0], pair[1]), (pair[1], pair[0])] {
+            across[from.2][from.3] = facet_index(to.2);
+        }
+    }
+    across
 }
 
 fn facet_index(face: usize) -> u32 {
@@ -423,9 +440,9 @@ fn apart(facet: &Facet, normal: &Vector, from: &Point, to: &Point) -> f64 {
     let (p, q) = (flat(from), flat(to));
     let corners = facet.corners.map(|c| flat(&c));
     let mut best = f64::NEG_INFINITY;
-    for k in 0..3 {
+    for (k, corner) in corners.iter().enumerate() {
         if let Some(out) = facet.outward(k) {
-            best = best.max((p - corners[k]).dot(&out).min((q - corners[k]).dot(&out)));
+            best = best.max((p - corner).dot(&out).min((q - corner).dot(&out)));
         }
     }
     if let Some(out) = (q - p).cross(normal).try_normalize(0.0) {
