@@ -168,6 +168,7 @@ mod tests {
             vertices: Vec::new(),
             triangles: Vec::new(),
             parts: Vec::<Part>::new(),
+            evidence: None,
         }
     }
 

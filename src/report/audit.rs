@@ -22,7 +22,7 @@ pub struct AuditReport {
     /// Version of these fields.
     pub schema_version: u32,
     /// The set's name.
-    pub set: String,
+    pub name: String,
     /// The unit of all lengths.
     pub unit: &'static str,
     /// The chord tolerance the mesh was held to.
@@ -116,7 +116,7 @@ impl AuditReport {
         let worst = audit.worst.as_ref();
         Self {
             schema_version: SCHEMA_VERSION,
-            set: set.name().to_owned(),
+            name: set.name().to_owned(),
             unit: set.unit().symbol(),
             chord: chord.get(),
             verdict: if audit.findings.is_empty() {
@@ -153,8 +153,8 @@ impl AuditReport {
 
     fn write_text(&self, out: &mut String) -> std::fmt::Result {
         let unit = self.unit;
-        if !self.set.is_empty() {
-            writeln!(out, "{}", self.set)?;
+        if !self.name.is_empty() {
+            writeln!(out, "{}", self.name)?;
         }
         let few = self.absent.iter().take(5).map(String::as_str);
         let names = few.collect::<Vec<_>>().join(", ");

@@ -174,3 +174,30 @@ fn placed(set: &PatchSet, patch: &Patch, face: &Face) -> Result<(usize, [[f64; 2
         .map(|[u, v]| [local(piece.u, u), local(piece.v, v)]);
     Ok((index, places))
 }
+
+/// Which cell of the same piece each edge is shared with, by parameters.
+pub(super) fn across(cells: &[Cell]) -> Vec<[u32; 3]> {
+    let mut edges = Vec::with_capacity(3 * cells.len());
+    for (index, cell) in cells.iter().enumerate() {
+        for k in 0..3 {
+            let mut ends = [cell.places[k], cell.places[(k + 1) % 3]].map(|p| p.map(f64::to_bits));
+            ends.sort_unstable();
+            edges.push((cell.piece, ends, index, k));
+        }
+    }
+    edges.sort_unstable();
+    let mut across = vec![[NONE; 3]; cells.len()];
+    // An edge of more than two cells is none that can be crossed.
+    let shared = edges.chunk_by(|a, b| (a.0, a.1) == (b.0, b.1));
+    for pair in shared.filter(|group| group.len() == 2) {
+        for (from, to) in [(pair[0], pair[1]), (pair[1], pair[0])] {
+            across[from.2][from.3] = facet_index(to.2);
+        }
+    }
+    across
+}
+
+/// A face's number as facets are numbered.
+pub(super) fn facet_index(face: usize) -> u32 {
+    u32::try_from(face).expect("files hold fewer than 2^31 faces")
+}

@@ -11,20 +11,12 @@ use rayon::prelude::*;
 use super::cell::Cell;
 use super::evidence::Evidence;
 use super::finding::{Fault, Finding};
-use crate::bezier::BezierPatch;
+use super::rounding::scale;
 use crate::patch_set::{PatchSet, PieceId};
 
 /// Whether a place is on the border of the unit square.
 pub(super) fn on_border([u, v]: [f64; 2]) -> bool {
     [u, v].iter().any(|&t| t <= 0.0 || t >= 1.0)
-}
-
-/// The largest coordinate of a net.
-pub(super) fn scale(surface: &BezierPatch) -> f64 {
-    surface
-        .control_points()
-        .map(|p| p.coords.amax())
-        .fold(0.0, f64::max)
 }
 
 /// Finds the vertices that are off their patches, each once a patch.

@@ -23,7 +23,9 @@ mod cover;
 mod evidence;
 mod facet;
 mod finding;
+mod part;
 mod proof;
+mod rounding;
 
 use rayon::prelude::*;
 use thiserror::Error;

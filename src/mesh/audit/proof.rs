@@ -24,19 +24,17 @@
 //! whichever is better. Degree of a map: any text on topology; the hull lemma:
 //! Farin, *Curves and Surfaces for CAGD*.
 //!
-//! **Rounding.** `TriangleRestriction` is good to (2 d + 2) ulp of the largest
-//! coordinate, times the ratio of weights; middles of parameters are rounded by
-//! an ulp, which moves the surface by at most d ratio^2 (extent of the net) ulp
-//! (Floater 1992 for the derivative). Both, doubled, are added to every bound.
+//! Rounding is added to every bound (`rounding`).
 
 use std::collections::BTreeSet;
 
 use rayon::prelude::*;
 
-use super::cell::{Cell, NONE};
-use super::corner::scale;
+use super::cell::{Cell, NONE, across, facet_index};
 use super::evidence::Evidence;
-use super::facet::{Facet, Facets, to_segment, to_triangle};
+use super::facet::{Facet, Facets, to_triangle};
+use super::part::{apart, centre, height_over, is_tiny, middle, quarters};
+use super::rounding::slack;
 use crate::bezier::{BezierPatch, TriangleNet, TriangleRestriction, chord_bound};
 use crate::patch_set::PatchSet;
 use crate::scalar::{Point, Vector};
@@ -379,127 +377,4 @@ impl<'a> Prover<'a> {
         }
         Some(most)
     }
-}
-
-/// Which cell of the same piece each edge is shared with, by parameters.
-fn across(cells: &[Cell]) -> Vec<[u32; 3]> {
-    let mut edges = Vec::with_capacity(3 * cells.len());
-    for (index, cell) in cells.iter().enumerate() {
-        for k in 0..3 {
-            let mut ends = [cell.places[k], cell.places[(k + 1) % 3]].map(|p| p.map(f64::to_bits));
-            ends.sort_unstable();
-            edges.push((cell.piece, ends, index, k));
-        }
-    }
-    edges.sort_unstable();
-    let mut across = vec![[NONE; 3]; cells.len()];
-    // An edge of more than two cells is none that can be crossed.
-    let shared = edges.chunk_by(|a, b| (a.0, a.1) == (b.0, b.1));
-    for pair in shared.filter(|group| group.len() == 2) {
-        for (from, to) in [(pair[0], pair[1]), (pair[1], pair[0])] {
-            across[from.2][from.3] = facet_index(to.2);
-        }
-    }
-    across
-}
-
-fn facet_index(face: usize) -> u32 {
-    u32::try_from(face).expect("files hold fewer than 2^31 faces")
-}
-
-/// The largest height of a hull over a facet's plane, or `None` where the hull
-/// projects beside the facet: all of it beyond one of the facet's edges. Hulls
-/// that come near an edge count, so that rounding cannot leave one out.
-fn height_over(facet: &Facet, points: &[Vector], origin: &Point) -> Option<f64> {
-    let normal = facet.normal?;
-    let corners = facet.from(origin);
-    let beside = |k: usize| {
-        facet.outward(k).is_some_and(|out| {
-            let near = 1e-9 * (corners[(k + 1) % 3] - corners[k]).norm();
-            points.iter().all(|p| (p - corners[k]).dot(&out) > near)
-        })
-    };
-    if (0..3).any(beside) {
-        return None;
-    }
-    Some(
-        points
-            .iter()
-            .map(|p| (p - corners[0]).dot(&normal).abs())
-            .fold(0.0, f64::max),
-    )
-}
-
-/// A lower bound of the distance between a facet and a segment, both projected
-/// on the facet's plane: the best of the separating lines along their sides.
-fn apart(facet: &Facet, normal: &Vector, from: &Point, to: &Point) -> f64 {
-    let flat = |p: &Point| {
-        let from_corner = p - facet.corners[0];
-        from_corner - normal * from_corner.dot(normal)
-    };
-    let (p, q) = (flat(from), flat(to));
-    let corners = facet.corners.map(|c| flat(&c));
-    let mut best = f64::NEG_INFINITY;
-    for (k, corner) in corners.iter().enumerate() {
-        if let Some(out) = facet.outward(k) {
-            best = best.max((p - corner).dot(&out).min((q - corner).dot(&out)));
-        }
-    }
-    if let Some(out) = (q - p).cross(normal).try_normalize(0.0) {
-        let sides = corners.map(|c| (c - p).dot(&out));
-        let least = sides.iter().copied().fold(f64::INFINITY, f64::min);
-        let most = sides.iter().copied().fold(f64::NEG_INFINITY, f64::max);
-        if least > 0.0 || most < 0.0 {
-            // Wholly on one side: the true distance is that of corners and segment,
-            // or ends and sides.
-            let exact = corners
-                .iter()
-                .map(|c| to_segment(c, &p, &q))
-                .chain([&p, &q].map(|e| to_triangle(e, &corners)))
-                .fold(f64::INFINITY, f64::min);
-            best = best.max(exact);
-        }
-    }
-    best
-}
-
-/// See the module's text.
-fn slack(surface: &BezierPatch) -> f64 {
-    let (m, n) = surface.degree();
-    let (mut least, mut most) = (f64::INFINITY, 0.0_f64);
-    for (i, j) in (0..=m).flat_map(|i| (0..=n).map(move |j| (i, j))) {
-        least = least.min(surface.weight(i, j));
-        most = most.max(surface.weight(i, j));
-    }
-    let ratio = most / least;
-    let anchor = surface.control_point(0, 0);
-    let extent = surface
-        .control_points()
-        .map(|p| (p - anchor).norm())
-        .fold(0.0, f64::max);
-    #[allow(clippy::cast_precision_loss, reason = "degrees are at most 15")]
-    let degree = (m + n) as f64;
-    let nets = (2.0 * degree + 8.0) * scale(surface) * ratio;
-    let places = 4.0 * degree * ratio * ratio * extent;
-    2.0 * f64::EPSILON * (nets + places)
-}
-
-fn middle(a: [f64; 2], b: [f64; 2]) -> [f64; 2] {
-    [(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0]
-}
-
-fn centre([a, b, c]: [[f64; 2]; 3]) -> [f64; 2] {
-    [(a[0] + b[0] + c[0]) / 3.0, (a[1] + b[1] + c[1]) / 3.0]
-}
-
-fn quarters([a, b, c]: [[f64; 2]; 3]) -> [[[f64; 2]; 3]; 4] {
-    let (p, q, r) = (middle(a, b), middle(b, c), middle(c, a));
-    [[a, p, r], [p, b, q], [r, q, c], [p, q, r]]
-}
-
-/// Parameters so close that middles fall on ends.
-fn is_tiny([a, b, c]: [[f64; 2]; 3]) -> bool {
-    [(a, b), (b, c), (c, a)]
-        .iter()
-        .all(|(p, q)| (p[0] - q[0]).abs().max((p[1] - q[1]).abs()) < 1e-12)
 }
