@@ -215,7 +215,15 @@ fn the_readme_names_only_what_can_be_typed_and_all_of_it() {
     let commands = commands();
     assert_eq!(
         commands,
-        ["tessellate", "seams", "check", "demo", "completions", "man"]
+        [
+            "tessellate",
+            "audit",
+            "seams",
+            "check",
+            "demo",
+            "completions",
+            "man"
+        ]
     );
     let pages: Vec<String> = commands.iter().map(|name| help(&[name])).collect();
     let known: BTreeSet<&str> = pages.iter().flat_map(|page| options(page)).collect();

@@ -71,18 +71,25 @@ pub(super) fn check(
 /// the mesh leaves out.
 fn is_border(topology: &Topology, cell: &Cell, corner: usize, present: &[bool]) -> bool {
     let (a, b) = (cell.places[corner], cell.places[(corner + 1) % 3]);
-    let on = |side: Side, [u, v]: [f64; 2]| match side {
-        Side::U0 => (u <= 0.0).then_some(v),
-        Side::U1 => (u >= 1.0).then_some(v),
-        Side::V0 => (v <= 0.0).then_some(u),
-        Side::V1 => (v >= 1.0).then_some(u),
+    let of = |side: Side| &topology.edges()[EdgeId::of(PieceId::new(cell.piece), side).index()];
+    let pole = Side::ALL.map(|side| of(side).collapsed);
+    // A place at a pole is at both ends of its side.
+    let on = |side: Side, [u, v]: [f64; 2]| {
+        let (at, end, along, poles) = match side {
+            Side::U0 => (u, 0.0, v, [pole[2], pole[3]]),
+            Side::U1 => (u, 1.0, v, [pole[2], pole[3]]),
+            Side::V0 => (v, 0.0, u, [pole[0], pole[1]]),
+            Side::V1 => (v, 1.0, u, [pole[0], pole[1]]),
+        };
+        let at_pole = (poles[0] && along <= 0.0) || (poles[1] && along >= 1.0);
+        (at_pole || at.to_bits() == f64::to_bits(end)).then_some(along)
     };
     Side::ALL.into_iter().any(|side| {
         let (Some(s), Some(t)) = (on(side, a), on(side, b)) else {
             return false;
         };
         let middle = (s + t) / 2.0;
-        let edge = &topology.edges()[EdgeId::of(PieceId::new(cell.piece), side).index()];
+        let edge = of(side);
         let spans = &topology.spans()[edge.spans.clone()];
         let span = spans.iter().find(|span| middle <= span.t[1]);
         span.is_some_and(|span| {

@@ -188,10 +188,11 @@ fn fill(side: Side, cells: &[(usize, &Cell)], loose: &mut Vec<Loose>, fills: &mu
     });
     let [start, end] = ends(side);
     for (vertex, [out, back]) in beside {
-        let (to_pole, from_pole, given) = match (&out[..], &back[..]) {
-            ([o], [b]) => (o.to, b.from, *o),
-            ([o], []) => (o.to, corner(vertex, [start, end]), *o),
-            ([], [b]) => (corner(vertex, [start, end]), b.from, *b),
+        let end = corner(vertex, [start, end]);
+        let (to_pole, from_pole, given) = match (&out[..], &back[..], end) {
+            ([o], [b], _) => (o.to, b.from, *o),
+            ([o], [], Some(end)) => (o.to, end, *o),
+            ([], [b], Some(end)) => (end, b.from, *b),
             _ => {
                 loose.extend(out);
                 loose.extend(back);
@@ -233,14 +234,13 @@ fn fill(side: Side, cells: &[(usize, &Cell)], loose: &mut Vec<Loose>, fills: &mu
 }
 
 /// The end of the collapsed side that lies on the same side of the square as
-/// the vertex does; its start if there is none, which then shows as a flaw.
-fn corner(vertex: Key, ends: [Key; 2]) -> Key {
-    let shares = |end: Key| {
+/// the vertex does, if there is one.
+fn corner(vertex: Key, ends: [Key; 2]) -> Option<Key> {
+    ends.into_iter().find(|end| {
         Side::ALL
             .iter()
-            .any(|&s| along(s, place(vertex)).is_some() && along(s, place(end)).is_some())
-    };
-    if shares(ends[1]) { ends[1] } else { ends[0] }
+            .any(|&s| along(s, place(vertex)).is_some() && along(s, place(*end)).is_some())
+    })
 }
 
 /// Edges that hang together, as one flaw each.

@@ -368,7 +368,12 @@ impl<'a> Prover<'a> {
                 );
                 let high = height_over(own, &scratch.net.points, &origin)
                     .map_or(0.0, |h| h + self.slack[of.piece]);
-                if high <= goal.max(most) || looked >= MORE_PARTS || is_tiny(part) {
+                let limit = if high > self.chord {
+                    MOST_PARTS
+                } else {
+                    MORE_PARTS
+                };
+                if high <= goal.max(most) || looked >= limit || is_tiny(part) {
                     most = most.max(high);
                 } else {
                     scratch.parts.extend(quarters(part).map(|p| (p, 0)));
