@@ -15,7 +15,7 @@
 //! it. Both are convex, so the largest value at the b_i bounds them (hull lemma).
 //! It lets the surface leave F sideways without counting that as distance.
 
-use super::cell::NONE;
+use super::cell::{Cell, NONE, facet_index};
 use super::evidence::Evidence;
 use crate::scalar::{Point, Vector};
 
@@ -59,16 +59,18 @@ pub(super) struct Facets {
 }
 
 impl Facets {
-    /// The facets of a mesh; an edge that more than two share has for each the
-    /// next of them.
-    pub(super) fn of(evidence: &Evidence) -> Self {
+    /// The facets of a mesh, joined where they have cells: a double has none. An
+    /// edge that more than two share has for each the next of them.
+    pub(super) fn of(evidence: &Evidence, cells: &[Cell]) -> Self {
         let facets = evidence
             .faces
             .iter()
             .map(|face| Facet::new(evidence.corners(face)))
             .collect();
-        let mut edges: Vec<(u32, u32, u32, usize)> = Vec::with_capacity(3 * evidence.faces.len());
-        for (face, of) in (0_u32..).zip(&evidence.faces) {
+        let mut edges: Vec<(u32, u32, u32, usize)> = Vec::with_capacity(3 * cells.len());
+        for cell in cells.iter().filter(|cell| !cell.fill) {
+            let of = &evidence.faces[cell.face];
+            let face = facet_index(cell.face);
             for k in 0..3 {
                 let (a, b) = (of.points[k], of.points[(k + 1) % 3]);
                 edges.push((a.min(b), a.max(b), face, k));

@@ -108,7 +108,7 @@ impl<'a> Prover<'a> {
             set,
             evidence,
             cells,
-            facets: Facets::of(evidence),
+            facets: Facets::of(evidence, cells),
             chord,
             slack,
             across: across(cells),
