@@ -204,6 +204,10 @@ fn syntax(error: &SpannedError, text: &str) -> Diagnostic {
             format!("the field `{field}` is given twice; once is enough"),
             None,
         ),
+        RonError::ExpectedStructLike | RonError::ExpectedNamedStructLike(_) => (
+            "expected `(`; a structure stands in round brackets".to_owned(),
+            None,
+        ),
         RonError::ExpectedAttribute => (
             "this is no patch set; a set begins with `(`, comments with `//`".to_owned(),
             None,

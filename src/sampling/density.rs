@@ -63,6 +63,10 @@ pub(super) fn density(curve: &CurveJet, uses: &[Use], s: f64, limits: &Limits) -
     least.max((curvature / (8.0 * lambda * e)).sqrt())
 }
 
+/// A surface that is narrower across than this part of its speed along has run
+/// into a pole: its second form there is rounding over rounding.
+const NARROW: f64 = 1e-9;
+
 /// The second form of a use in the frame of its edge, and its width.
 struct Shape {
     along: f64,
@@ -85,7 +89,7 @@ fn shape(usage: &Use, s: f64) -> Option<Shape> {
     let lean = first.dot(&second) / speed;
     let perpendicular = second - first * lean;
     let width = perpendicular.norm();
-    if speed <= 0.0 || width <= 0.0 {
+    if speed <= 0.0 || width <= NARROW * speed.sqrt() {
         return None;
     }
     Some(Shape {

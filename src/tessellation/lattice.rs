@@ -179,6 +179,15 @@ fn turn_rate(bend: &Bend, direction: [f64; 2]) -> f64 {
         bend.first[0].dot(&bend.first[1]),
         bend.first[1].norm_squared(),
     );
+    // At a pole one side is rounding, and all that is divided by it.
+    if e.min(g) <= 1e-18 * e.max(g) {
+        let (bent, squared) = if e < g { (n * dv, g) } else { (l * du, e) };
+        return if squared > 0.0 {
+            bent.abs() / squared.sqrt()
+        } else {
+            0.0
+        };
+    }
     let determinant = e * g - f * f;
     if determinant <= 1e-18 * e * g {
         return 0.0;
