@@ -363,3 +363,29 @@ fn index_in(chain: &[f64], p: f64) -> f64 {
 pub(super) fn round_up(total: f64, slack: f64) -> usize {
     ((total - slack).ceil().max(1.0)) as usize
 }
+
+#[cfg(test)]
+mod pole_tests {
+    use super::*;
+
+    /// At a pole the rate at which normals turn was rounding divided by
+    /// rounding: more memory was asked for than there is in the world.
+    #[test]
+    fn normals_turn_no_faster_at_a_pole_than_beside_it() {
+        let radius = 500.0;
+        let side = |x: f64, y: f64| [Vector::new(x, 0.0, 0.0), Vector::new(0.0, y, 0.0)];
+        let bend = |first: [Vector; 2], l: f64| Bend {
+            normal: Vector::new(0.0, 0.0, 1.0),
+            first,
+            second: [Vector::zeros(); 3],
+            form: [l, 0.0, radius],
+        };
+        // Beside the pole, and at it, where rounding is left of S_u and of L.
+        let beside = bend(side(0.1, radius), 0.01 / radius);
+        let at = bend(side(1e-14, radius), 1e-13);
+        for (direction, most) in [([1.0, 0.0], 1e-3), ([0.0, 1.0], 1.001)] {
+            assert!(turn_rate(&beside, direction) <= most);
+            assert!(turn_rate(&at, direction) <= most);
+        }
+    }
+}
