@@ -58,22 +58,34 @@ impl<'a> Atlas<'a> {
         if best.distance <= enough {
             return best;
         }
-        // Every lattice vertex of every piece that could be near, best first.
-        let mut starts: Vec<(f64, usize, [f64; 2])> = self
+        // A fine grid of the likeliest pieces, its best places refined.
+        let mut likely: Vec<(f64, usize)> = self
             .places
             .iter()
             .zip(self.lattice.corners())
-            .map(|((piece, places), corners)| ((corners[0] - p).norm(), *piece, places[0]))
+            .map(|((piece, _), corners)| ((corners[0] - p).norm(), *piece))
             .collect();
-        starts.sort_by(|a, b| a.0.total_cmp(&b.0));
-        for &(_, piece, start) in starts.iter().take(60) {
-            let foot = self.descend(p, piece, start);
-            let foot = self.creep(p, foot, enough);
-            if foot.distance < best.distance {
-                best = foot;
+        likely.sort_by(|a, b| a.0.total_cmp(&b.0));
+        let mut tried: Vec<usize> = Vec::new();
+        for (_, piece) in likely {
+            if tried.contains(&piece) || tried.len() == 4 {
+                continue;
             }
-            if best.distance <= enough {
-                break;
+            tried.push(piece);
+            let at = |k: u32| f64::from(k) / 250.0;
+            let mut starts: Vec<(f64, [f64; 2])> = (0..=250)
+                .flat_map(|i| (0..=250).map(move |j| [at(i), at(j)]))
+                .map(|place| (self.at(p, piece, place), place))
+                .collect();
+            starts.sort_by(|a, b| a.0.total_cmp(&b.0));
+            for &(_, start) in starts.iter().take(40) {
+                let foot = self.creep(p, self.descend(p, piece, start), enough);
+                if foot.distance < best.distance {
+                    best = foot;
+                }
+                if best.distance <= enough {
+                    return best;
+                }
             }
         }
         best

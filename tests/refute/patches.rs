@@ -12,7 +12,7 @@ pub(crate) enum Manner {
     Honest,
     /// The same with weights of 1 to 10.
     Weighted,
-    /// Weights over four orders of magnitude.
+    /// Weights over three orders of magnitude.
     Lopsided,
     /// Up to 10,000 times as long as wide.
     Long,
@@ -75,7 +75,8 @@ pub(crate) fn trial(number: u64) -> Trial {
     } else {
         MANNERS[1 + chance.below(MANNERS.len() - 1)]
     };
-    let (m, n) = (1 + chance.below(9), 1 + chance.below(9));
+    // Degrees 1 to 9, the low ones more often.
+    let (m, n) = (degree(&mut chance), degree(&mut chance));
     let bend = chance.power(-2.0, -0.3);
     let jitter = 0.25;
     let mut net: Vec<Vec<[f64; 3]>> = (0..=m)
@@ -90,7 +91,8 @@ pub(crate) fn trial(number: u64) -> Trial {
         })
         .collect();
     let mut weights = None;
-    let mut chord = chance.power(-3.0, -0.523);
+    // 0.3 down to 1e-3 of the size, mostly coarse: fine ones take their time.
+    let mut chord = 10.0_f64.powf(-0.523 - 2.477 * chance.unit().powi(3));
     let weighted = |chance: &mut Chance, span: f64| {
         (0..=m)
             .map(|_| (0..=n).map(|_| chance.power(-span / 2.0, span / 2.0)).collect())
@@ -103,7 +105,7 @@ pub(crate) fn trial(number: u64) -> Trial {
     match manner {
         Manner::Honest => {}
         Manner::Weighted => weights = Some(weighted(&mut chance, 1.0)),
-        Manner::Lopsided => weights = Some(weighted(&mut chance, 4.0)),
+        Manner::Lopsided => weights = Some(weighted(&mut chance, 3.0)),
         Manner::Long => {
             let stretch = chance.power(1.0, 4.0);
             each(&mut net, |p| p[0] *= stretch);
@@ -171,6 +173,10 @@ pub(crate) fn trial(number: u64) -> Trial {
         file,
         chord,
     }
+}
+
+fn degree(chance: &mut Chance) -> usize {
+    1 + (9.0 * chance.unit().powi(2)) as usize
 }
 
 fn each(net: &mut [Vec<[f64; 3]>], mut change: impl FnMut(&mut [f64; 3])) {
