@@ -89,10 +89,18 @@ fn hangs_together(name: &str, set: &PatchSet, chord: f64) -> (Meshed, Measures) 
                 .flat_map(|&a| at(&pair[1]).iter().map(move |&b| [a, b]))
                 .find(|&[a, b]| uses(a, b) != (0, 0));
             let Some([a, b]) = found else {
-                panic!("{name}: no triangle at the segment {} to {}", pair[0], pair[1]);
+                panic!(
+                    "{name}: no triangle at the segment {} to {}",
+                    pair[0], pair[1]
+                );
             };
             let (forth, back) = uses(a, b);
-            assert_eq!(forth + back, count, "{name}: uses of a segment at {}", pair[0]);
+            assert_eq!(
+                forth + back,
+                count,
+                "{name}: uses of a segment at {}",
+                pair[0]
+            );
             match count {
                 1 => open_segments += 1,
                 2 => assert_eq!((forth, back), (1, 1), "{name}: at {}", pair[0]),
@@ -111,13 +119,20 @@ fn hangs_together(name: &str, set: &PatchSet, chord: f64) -> (Meshed, Measures) 
     assert_eq!(measures.open_edges, open_segments, "{name}");
     assert_eq!(measures.non_manifold_edges, branching, "{name}");
     assert_eq!(measures.degenerate, 0, "{name}");
-    assert_eq!(measures.open_loops, made.topology.open_loops().len(), "{name}");
+    assert_eq!(
+        measures.open_loops,
+        made.topology.open_loops().len(),
+        "{name}"
+    );
     assert_eq!(measures.closed, measures.open_edges == 0, "{name}");
     // No point twice, but where two parts of the teapot touch without being
     // joined.
     let touching = numbers.values().filter(|v| v.len() > 1).count();
     let meant = usize::from(name == "teapot");
-    assert_eq!(touching, meant, "{name}: points that coincide without being one");
+    assert_eq!(
+        touching, meant,
+        "{name}: points that coincide without being one"
+    );
     (made, measures)
 }
 
@@ -171,7 +186,13 @@ fn teapot_counts() {
     let (made, measures) = hangs_together("teapot", &set, 0.01);
     let edges = made.topology.edges();
     assert_eq!(edges.iter().filter(|e| e.collapsed).count(), 8);
-    let spans = |n: usize| made.topology.seams().iter().filter(|s| s.spans.len() == n).count();
+    let spans = |n: usize| {
+        made.topology
+            .seams()
+            .iter()
+            .filter(|s| s.spans.len() == n)
+            .count()
+    };
     assert_eq!((spans(1), spans(2), spans(3)), (16, 52, 0));
     assert_eq!(made.topology.open_loops().len(), 6);
     assert_eq!(measures.components, 4);
@@ -209,7 +230,11 @@ impl Welded {
         loop {
             let mut changed = false;
             for corners in &triangles {
-                let low = corners.map(|p| least[p as usize]).into_iter().min().unwrap();
+                let low = corners
+                    .map(|p| least[p as usize])
+                    .into_iter()
+                    .min()
+                    .unwrap();
                 for &p in corners {
                     changed |= least[p as usize] != low;
                     least[p as usize] = low;
@@ -254,10 +279,16 @@ fn teapot_areas() {
         ("bottom", 7.4992),
     ] {
         let (c, f) = (coarse[panel], fine[panel]);
-        println!("{panel}: {area} {c:.5} {f:.5} extrapolated {:.5}", f + (f - c) / 3.0);
+        println!(
+            "{panel}: {area} {c:.5} {f:.5} extrapolated {:.5}",
+            f + (f - c) / 3.0
+        );
         // The error is linear in the chord; what is left is a small part of it.
         assert!((f - area).abs() < 2.5e-3 * area, "{panel}: {f}");
-        assert!((f + (f - c) / 3.0 - area).abs() < 5e-5 + 0.2 * (f - c).abs(), "{panel}");
+        assert!(
+            (f + (f - c) / 3.0 - area).abs() < 5e-5 + 0.2 * (f - c).abs(),
+            "{panel}"
+        );
         whole += f;
     }
     assert!((whole - 52.8833).abs() < 1.5e-3 * 52.8833, "{whole}");
@@ -297,7 +328,10 @@ fn areas_and_volumes_converge() {
             assert!(errors[0] > 0.0 || name == "torus", "{name}: inscribed");
             let reach = made.deviation.proved() * area;
             assert!(errors[1].abs() <= reach, "{name}: volume off {errors:?}");
-            println!("{name} {chord}: area off {:.3e}, volume off {:.3e} of at most {reach:.3e}", errors[0], errors[1]);
+            println!(
+                "{name} {chord}: area off {:.3e}, volume off {:.3e} of at most {reach:.3e}",
+                errors[0], errors[1]
+            );
             if let Some(coarse) = before {
                 for (fine, coarse) in errors.iter().zip(coarse).filter(|(_, c)| *c != 0.0) {
                     let ratio = fine / coarse;
@@ -332,7 +366,12 @@ fn a_corner_on_an_edge_is_a_vertex_of_it() {
         .iter()
         .position(|p| (p - Point::new(80.0, 100.0, 0.0)).norm() < 1e-9)
         .unwrap() as u32;
-    let long = made.mesh.parts.iter().find(|p| p.name == "floor/long").unwrap();
+    let long = made
+        .mesh
+        .parts
+        .iter()
+        .find(|p| p.name == "floor/long")
+        .unwrap();
     let touches = |t: usize| made.mesh.triangle_points(t).contains(&corner);
     assert!(long.triangles.clone().any(touches));
     assert_eq!((m.components, m.open_loops, m.euler), (1, 1, 1));

@@ -52,8 +52,7 @@ impl<'a> Atlas<'a> {
     pub(crate) fn foot(&self, p: &Point, enough: f64) -> Foot {
         let hit = self.lattice.nearest(p);
         let (piece, corners) = self.places[hit.triangle];
-        let at =
-            |axis: usize| (0..3).map(|k| hit.place[k] * corners[k][axis]).sum::<f64>();
+        let at = |axis: usize| (0..3).map(|k| hit.place[k] * corners[k][axis]).sum::<f64>();
         let mut best = self.descend(p, piece, [at(0), at(1)]);
         if best.distance <= enough {
             return best;

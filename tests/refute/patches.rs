@@ -24,9 +24,9 @@ pub(crate) enum Manner {
     TwoPoles,
     /// Two neighbouring rows or columns coincide.
     DoubleRow,
-    /// A row of the net on a line, unevenly, even running back.
+    /// A row of the net on a line, unevenly.
     StraightRow,
-    /// All control points on one line.
+    /// All control points on one line: no area to cover.
     Line,
     /// A sheet folded back over itself.
     Folded,
@@ -91,11 +91,21 @@ pub(crate) fn trial(number: u64) -> Trial {
         })
         .collect();
     let mut weights = None;
-    // 0.3 down to 1e-3 of the size, mostly coarse: fine ones take their time.
-    let mut chord = 10.0_f64.powf(-0.523 - 2.477 * chance.unit().powi(3));
+    // 0.3 down to 1e-3 of the size, mostly coarse: fine ones take their time,
+    // most of all where the net is rough.
+    let rough = matches!(
+        manner,
+        Manner::Wild | Manner::Lopsided | Manner::Long | Manner::StraightRow | Manner::Line
+    );
+    let decades = if rough { 1.2 } else { 2.477 };
+    let mut chord = 10.0_f64.powf(-0.523 - decades * chance.unit().powi(6));
     let weighted = |chance: &mut Chance, span: f64| {
         (0..=m)
-            .map(|_| (0..=n).map(|_| chance.power(-span / 2.0, span / 2.0)).collect())
+            .map(|_| {
+                (0..=n)
+                    .map(|_| chance.power(-span / 2.0, span / 2.0))
+                    .collect()
+            })
             .collect::<Vec<Vec<f64>>>()
     };
     // Half of what is not about weights has some.
@@ -135,8 +145,9 @@ pub(crate) fn trial(number: u64) -> Trial {
         Manner::StraightRow => {
             let i = [0, m, chance.below(m + 1)][chance.below(3)];
             let [a, b] = [net[i][0], net[i][n]];
-            for p in &mut net[i] {
-                let t = chance.between(-0.3, 1.3);
+            let mut ts: Vec<f64> = (0..=n).map(|_| chance.unit()).collect();
+            ts.sort_by(f64::total_cmp);
+            for (p, t) in net[i].iter_mut().zip(ts) {
                 *p = [0, 1, 2].map(|k| a[k] + (b[k] - a[k]) * t);
             }
         }
@@ -179,8 +190,8 @@ fn degree(chance: &mut Chance) -> usize {
     1 + (9.0 * chance.unit().powi(2)) as usize
 }
 
-fn each(net: &mut [Vec<[f64; 3]>], mut change: impl FnMut(&mut [f64; 3])) {
-    net.iter_mut().flatten().for_each(|p| change(p));
+fn each(net: &mut [Vec<[f64; 3]>], change: impl FnMut(&mut [f64; 3])) {
+    net.iter_mut().flatten().for_each(change);
 }
 
 /// Makes one side (u = 0, u = 1, v = 0, v = 1) a point.

@@ -48,7 +48,11 @@ pub(crate) fn rounding(set: &PatchSet) -> f64 {
 /// The mesh as a soup.
 pub(crate) fn soup(made: &Meshed) -> Soup {
     let mesh = &made.mesh;
-    Soup::new((0..mesh.triangles.len()).map(|t| mesh.triangle_corners(t)).collect())
+    Soup::new(
+        (0..mesh.triangles.len())
+            .map(|t| mesh.triangle_corners(t))
+            .collect(),
+    )
 }
 
 /// Measures both ways; a message where a proved figure is exceeded.
@@ -170,8 +174,7 @@ fn farthest(
         let t = at(k, effort.edge);
         places.extend([[0.0, t], [1.0, t], [t, 0.0], [t, 1.0]]);
     }
-    let mut measured: Vec<(f64, [f64; 2])> =
-        places.into_iter().map(|p| (measure(p), p)).collect();
+    let mut measured: Vec<(f64, [f64; 2])> = places.into_iter().map(|p| (measure(p), p)).collect();
     measured.sort_by(|a, b| b.0.total_cmp(&a.0));
     let mut best = measured[0];
     for &(distance, place) in measured.iter().take(effort.climbs) {
