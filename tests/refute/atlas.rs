@@ -71,7 +71,8 @@ impl<'a> Atlas<'a> {
                 continue;
             }
             tried.push(piece);
-            let at = |k: u32| f64::from(k) / 250.0;
+            // Closer at the ends, where uneven weights crowd the surface.
+            let at = |k: u32| (1.0 - (f64::from(k) / 250.0 * std::f64::consts::PI).cos()) / 2.0;
             let mut starts: Vec<(f64, [f64; 2])> = (0..=250)
                 .flat_map(|i| (0..=250).map(move |j| [at(i), at(j)]))
                 .map(|place| (self.at(p, piece, place), place))

@@ -12,7 +12,7 @@ pub(crate) enum Manner {
     Honest,
     /// The same with weights of 1 to 10.
     Weighted,
-    /// Weights over three orders of magnitude.
+    /// Weights of 1 to 300.
     Lopsided,
     /// Up to 10,000 times as long as wide.
     Long,
@@ -76,7 +76,14 @@ pub(crate) fn trial(number: u64) -> Trial {
         MANNERS[1 + chance.below(MANNERS.len() - 1)]
     };
     // Degrees 1 to 9, the low ones more often.
-    let (m, n) = (degree(&mut chance), degree(&mut chance));
+    let (mut m, mut n) = (degree(&mut chance), degree(&mut chance));
+    if matches!(
+        manner,
+        Manner::TwoPoles | Manner::DoubleRow | Manner::Closed
+    ) {
+        // With a degree of 1 they would be curves, and lines are tried anyway.
+        (m, n) = (m.max(2), n.max(2));
+    }
     let bend = chance.power(-2.0, -0.3);
     let jitter = 0.25;
     let mut net: Vec<Vec<[f64; 3]>> = (0..=m)
@@ -115,7 +122,7 @@ pub(crate) fn trial(number: u64) -> Trial {
     match manner {
         Manner::Honest => {}
         Manner::Weighted => weights = Some(weighted(&mut chance, 1.0)),
-        Manner::Lopsided => weights = Some(weighted(&mut chance, 3.0)),
+        Manner::Lopsided => weights = Some(weighted(&mut chance, 2.5)),
         Manner::Long => {
             let stretch = chance.power(1.0, 4.0);
             each(&mut net, |p| p[0] *= stretch);
