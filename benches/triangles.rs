@@ -64,7 +64,7 @@ fn measure(
     println!(
         "| {name} | {chord} | {count} | {ratio:.3} | {goal} | {:.3} | {:.3} | {:.3} | {:.2} |",
         deviation.to_mesh.proved / chord,
-        deviation.to_mesh.proved / deviation.to_mesh.attained.max(f64::MIN_POSITIVE),
+        deviation.to_mesh.proved.max(1e-12) / deviation.to_mesh.attained.max(1e-12),
         deviation.to_surface / chord,
         seconds * 1e6 / number(count),
     );

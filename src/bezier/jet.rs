@@ -2,6 +2,9 @@
 
 use crate::scalar::{Point, Vector};
 
+/// A first derivative this much smaller than the other one is rounding.
+const VANISHED: f64 = 1e-12;
+
 /// S and its derivatives up to second order at one (u, v).
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct SurfaceJet {
@@ -27,12 +30,17 @@ impl SurfaceJet {
     }
 
     /// The unit normal S_u x S_v / |S_u x S_v|, or `None` where the two are
-    /// parallel or zero to rounding (sine below 1e-9).
+    /// parallel to rounding (sine below 1e-9), or one of them is rounding beside
+    /// the other (at a pole).
     #[must_use]
     pub fn normal(&self) -> Option<Vector> {
         let cross = self.cross();
         let norm = cross.norm();
-        let scale = self.du.norm() * self.dv.norm();
+        let (a, b) = (self.du.norm(), self.dv.norm());
+        if a.min(b) <= VANISHED * a.max(b) {
+            return None;
+        }
+        let scale = a * b;
         (norm > scale * 1e-9 && norm > f64::MIN_POSITIVE).then(|| cross / norm)
     }
 

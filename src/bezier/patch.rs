@@ -345,6 +345,21 @@ mod tests {
         assert_relative_eq!(mean.abs(), 1.0, epsilon = 1e-12);
     }
 
+    /// A pole whose control points agree to rounding only has its limit normal
+    /// too, not a direction made of rounding.
+    #[test]
+    fn a_pole_moved_by_rounding_has_its_limit_normal() {
+        let turn = nalgebra::Rotation3::from_euler_angles(0.3, 0.7, 1.1);
+        let centre = Point::new(120.3, -40.7, 77.1);
+        let patch = octant().map(|p| centre + turn * p.coords * 500.0);
+        for k in 0..=10 {
+            let u = f64::from(k) / 10.0;
+            let radial = (patch.eval(u, 0.0) - centre).normalize();
+            let normal = patch.normal(u, 0.0).unwrap();
+            assert_relative_eq!(normal.dot(&radial).abs(), 1.0, epsilon = 1e-9);
+        }
+    }
+
     #[test]
     fn derivatives_match_differences() {
         let patch = octant();

@@ -75,6 +75,7 @@ pub(crate) fn fill(
         field: &field,
         limits,
         correction: Correction::none(),
+        flat: planar.is_some(),
     };
     let mut prover = Prover::new(surface);
     let mut best: Option<Trial> = None;

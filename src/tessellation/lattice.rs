@@ -78,7 +78,7 @@ struct Step {
 }
 
 impl Step {
-    fn new(bend: &Bend, along: Along, limits: &Limits, correction: f64) -> Self {
+    fn new(bend: &Bend, along: Along, limits: &Limits, correction: f64, flat: bool) -> Self {
         let [l, m, n] = bend.form;
         let (form, first) = match along {
             Along::U => ([l, m, n], bend.first),
@@ -108,7 +108,7 @@ impl Step {
             // Straight in one direction: steps only where the heights bend.
             ((a.abs() / (8.0 * e)).sqrt(), (c.abs() / (8.0 * e)).sqrt())
         };
-        let wander = wander(bend, along);
+        let wander = if flat { [0.0; 2] } else { wander(bend, along) };
         rows_step = rows_step.max((wander[0] / (8.0 * WANDER * e)).sqrt());
         rows_cross = rows_cross.max((wander[1] / (8.0 * WANDER * e)).sqrt());
         if let Some(turn) = limits.normal_rad {
@@ -231,16 +231,21 @@ pub(super) struct Ground<'a> {
     pub(super) field: &'a Field,
     pub(super) limits: &'a Limits,
     pub(super) correction: Correction,
+    /// Whether the piece is proved as a plane, where steps need not follow how
+    /// the parameters run.
+    pub(super) flat: bool,
 }
 
 impl Ground<'_> {
     fn step(&self, along: Along, p: f64, q: f64) -> Step {
         let place = along.place(p, q);
+        let correction = self.correction.at(place);
         Step::new(
             &self.field.at(place),
             along,
             self.limits,
-            self.correction.at(place),
+            correction,
+            self.flat,
         )
     }
 }

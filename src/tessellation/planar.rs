@@ -53,7 +53,13 @@ pub(super) fn proof(surface: &BezierPatch, outline: &Outline, limits: &Limits) -
         .iter()
         .map(|&side| border_bound(surface, outline, side))
         .fold(0.0, f64::max);
-    let bound = thick.hypot(aside.max(edges)) * (1.0 + 1e-12);
+    let reach = surface
+        .control_points()
+        .map(|p| p.coords.amax())
+        .fold(0.0, f64::max);
+    // Differences and dot products of coordinates: a few roundings each.
+    let slack = 64.0 * f64::EPSILON * reach;
+    let bound = thick.hypot(aside.max(edges)) + slack;
     (bound <= limits.chord).then_some(bound)
 }
 
