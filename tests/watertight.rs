@@ -269,7 +269,7 @@ fn teapot_areas() {
         areas
     };
     let (coarse, fine) = (areas(0.004), areas(0.001));
-    let mut whole = 0.0;
+    let (mut whole, mut all_allowed) = (0.0, 0.0);
     for (panel, area) in [
         ("rim", 2.3198),
         ("body", 28.7035),
@@ -283,15 +283,45 @@ fn teapot_areas() {
             "{panel}: {area} {c:.5} {f:.5} extrapolated {:.5}",
             f + (f - c) / 3.0
         );
-        // The error is linear in the chord; what is left is a small part of it.
-        assert!((f - area).abs() < 2.5e-3 * area, "{panel}: {f}");
+        // Moved by no more than the chord along its normal, a surface changes
+        // its area by no more than the chord times the curvatures' sum (first
+        // variation of area); and the error is linear in the chord.
+        let allowed = 0.001 * bending(&set, panel);
+        assert!(
+            (f - area).abs() < 5e-5 + allowed,
+            "{panel}: {f}, allowed {allowed}"
+        );
         assert!(
             (f + (f - c) / 3.0 - area).abs() < 5e-5 + 0.2 * (f - c).abs(),
             "{panel}"
         );
+        all_allowed += allowed;
         whole += f;
     }
-    assert!((whole - 52.8833).abs() < 1.5e-3 * 52.8833, "{whole}");
+    assert!((whole - 52.8833).abs() < 5e-5 + all_allowed, "{whole}");
+}
+
+/// The integral of |k_1| + |k_2| over a panel, by midpoints.
+fn bending(set: &PatchSet, panel: &str) -> f64 {
+    let panel = set.panels().iter().find(|p| p.name == panel).unwrap();
+    let pieces = panel
+        .patches
+        .iter()
+        .flat_map(|id| set.patches()[id.index()].pieces.clone());
+    let at = |k: u32| (f64::from(k) + 0.5) / 40.0;
+    let mut sum = 0.0;
+    for piece in pieces.map(|k| &set.pieces()[k].surface) {
+        for (i, j) in (0..40).flat_map(|i| (0..40).map(move |j| (i, j))) {
+            let jet = piece.jet(at(i), at(j));
+            let Some((gaussian, mean)) = jet.gaussian_and_mean() else {
+                continue;
+            };
+            let root = (mean * mean - gaussian).max(0.0).sqrt();
+            let curvatures = (mean + root).abs() + (mean - root).abs();
+            sum += curvatures * jet.cross().norm() / 1600.0;
+        }
+    }
+    sum
 }
 
 /// Area and volume of a set and the errors against what they should be.

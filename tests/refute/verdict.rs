@@ -121,7 +121,7 @@ fn stated(set: &PatchSet, made: &Meshed, soup: &Soup, slack: f64) -> Result<(), 
             d.to_mesh.attained
         ));
     }
-    if d.to_mesh.attained > d.to_mesh.proved + slack {
+    if d.to_mesh.attained > d.to_mesh.proved {
         return Err(format!("attained above proved: {d:?}"));
     }
     let patch = set
