@@ -133,6 +133,11 @@ fn edges_are_no_longer_than_asked() {
         ("saddle", 17.0),
         ("bspline", 20.0),
         ("torus", 40.0),
+        ("plane", 10.0),
+        ("cylinder", 9.0),
+        ("cone", 8.0),
+        ("t_junction", 7.0),
+        ("degree_mismatch", 6.0),
     ] {
         let set = shipped_set(name);
         let made = with(&set, 20.0, None, Some(longest));
@@ -147,6 +152,12 @@ fn edges_are_no_longer_than_asked() {
         assert!(worst <= longest, "{name}: {worst}");
         assert!(worst > 0.5 * longest, "{name}: finer than asked, {worst}");
         let area = Measures::of(&made.mesh).area;
+        let fewest = area / (3.0_f64.sqrt() / 4.0 * longest * longest);
+        let count = made.mesh.triangles.len() as f64;
+        assert!(
+            count <= 4.0 * fewest,
+            "{name}: {count} triangles, far too many"
+        );
         println!(
             "{name}: asked {longest}, longest {worst:.4}, {} triangles, {:.2} of the fewest equilateral ones",
             made.mesh.triangles.len(),
@@ -365,5 +376,43 @@ fn units_do_not_matter() {
         let set = PatchSet::build(file(units)).unwrap().set;
         assert!((set.tolerances().chord.get() * mm - 0.1).abs() < 1e-15);
         assert!((set.tolerances().gap.get() * mm - 0.01).abs() < 1e-15);
+    }
+}
+
+#[test]
+fn facets_face_outwards() {
+    for (name, set) in shipped() {
+        for factor in [1.0 / 3.0, 1.0, 3.0] {
+            let mesh = meshed(&set, set.tolerances().chord.get() * factor).mesh;
+            let inward = (0..mesh.triangles.len())
+                .filter(|&t| {
+                    let [a, b, c] = mesh.triangle_corners(t);
+                    let facet = (b - a).cross(&(c - a));
+                    let normal = |v: u32| mesh.vertices[v as usize].normal;
+                    mesh.triangles[t]
+                        .iter()
+                        .any(|&v| normal(v).dot(&facet) <= 0.0)
+                })
+                .count();
+            assert_eq!(inward, 0, "{name} x {factor}, of {}", mesh.triangles.len());
+        }
+    }
+}
+
+/// The normal angle once halved the first triangle at a pole without end: the
+/// border beside it had been sampled too widely.
+#[test]
+fn a_pole_keeps_a_small_normal_angle() {
+    let made = with(&shipped_set("octant"), 0.071, Some(2.0), None);
+    assert!(made.mesh.triangles.len() < 20_000);
+}
+
+/// A piece that was one triangle with all its edges on the border could not be
+/// refined.
+#[test]
+fn a_lone_pole_triangle_is_refined() {
+    for seed in [2277, 8402, 9704, 9819, 10093, 11254] {
+        let trial = refute::patches::trial(seed);
+        meshed(&PatchSet::build(trial.file).unwrap().set, trial.chord);
     }
 }

@@ -39,9 +39,12 @@ pub(super) fn density(curve: &CurveJet, uses: &[Use], s: f64, limits: &Limits) -
     let e = limits.chord;
     let curvature = curve.curvature();
     let mut bent = 0.0_f64;
-    let mut least = limits.max_edge.map_or(0.0, |edge| 1.0 / edge);
+    // A hair closer than asked, so that rounding cannot make an edge too long.
+    let mut least = limits.max_edge.map_or(0.0, |edge| (1.0 + 1e-9) / edge);
     for usage in uses {
-        let Some(shape) = shape(usage, s) else {
+        // At a pole the form is that of the surface just inside.
+        let inside = s + (0.5 - s) * 0.01;
+        let Some(shape) = shape(usage, s).or_else(|| shape(usage, inside)) else {
             continue;
         };
         let gaussian = shape.along * shape.across - shape.twist * shape.twist;

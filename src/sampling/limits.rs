@@ -29,4 +29,18 @@ impl Limits {
             max_edge,
         }
     }
+
+    /// What a length says of a triangle beside its deviation: the chord where
+    /// the length is just allowed, more where it is too long, growing with its
+    /// square as deviations do. Zero where no largest edge is asked for.
+    pub(crate) fn length_error(&self, length: f64) -> f64 {
+        self.max_edge
+            .map_or(0.0, |longest| self.chord * (length / longest).powi(2))
+    }
+
+    /// The same for a turn of the normal, in radians.
+    pub(crate) fn turn_error(&self, turn: f64) -> f64 {
+        self.normal_rad
+            .map_or(0.0, |most| self.chord * (turn / most).powi(2))
+    }
 }

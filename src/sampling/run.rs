@@ -8,7 +8,7 @@ use super::cumulative::{Cumulative, ratio};
 use super::density::{Use, density};
 use crate::bezier::BezierCurve;
 use crate::patch_set::PatchSet;
-use crate::scalar::Point;
+use crate::scalar::{Point, angle_rad};
 use crate::topology::{EdgeId, Seam, Span, Topology};
 
 /// Stations at which the density is taken along a span.
@@ -27,7 +27,7 @@ const MOST_SAMPLES: usize = 100_000_000;
 pub enum SamplingError {
     /// No number of samples holds the edge within the chord.
     #[error(
-        "patch `{patch}`, edge {side}: {count} samples do not bring the edge within the chord tolerance {chord}; the tolerance is below what the coordinates can resolve - use a larger chord"
+        "patch `{patch}`, edge {side}: {count} samples do not bring the edge within the chord tolerance {chord}, the normal angle and the largest edge asked for; they are below what the edge and its coordinates can resolve - use larger ones"
     )]
     Unreachable {
         /// The patch of the master edge.
@@ -116,7 +116,9 @@ fn run(
         if backwards {
             ts.reverse();
         }
-        if within(&curve, master.t, &ts, limits.chord * SEGMENT) {
+        if within(&curve, master.t, &ts, limits)
+            && turns_within(&uses, master.t, backwards, &ts, limits)
+        {
             let points = ts.iter().map(|&t| curve.eval(t)).collect();
             return Ok(Run { t: ts, points });
         }
@@ -137,12 +139,48 @@ pub(super) fn edge_curve(set: &PatchSet, edge: EdgeId) -> BezierCurve {
     set.pieces()[edge.piece().index()].surface.edge(edge.side())
 }
 
-fn within(curve: &BezierCurve, ends: [f64; 2], inner: &[f64], limit: f64) -> bool {
+/// Whether every segment is proved within its part of the chord, and no longer
+/// than asked.
+fn within(curve: &BezierCurve, ends: [f64; 2], inner: &[f64], limits: &Limits) -> bool {
+    let longest = limits.max_edge.unwrap_or(f64::INFINITY);
     let mut from = ends[0];
     inner.iter().chain(std::iter::once(&ends[1])).all(|&to| {
         let part = curve.restrict(from, to);
+        let length = (curve.eval(to) - curve.eval(from)).norm();
         from = to;
-        part.chord_bound() <= limit
+        part.chord_bound() <= limits.chord * SEGMENT && length <= longest
+    })
+}
+
+/// Whether the normal of no use turns more than asked between neighbouring
+/// samples: triangles have these for edges, and could not mend it.
+fn turns_within(
+    uses: &[Use],
+    ends: [f64; 2],
+    backwards: bool,
+    inner: &[f64],
+    limits: &Limits,
+) -> bool {
+    let Some(limit) = limits.normal_rad else {
+        return true;
+    };
+    uses.iter().all(|usage| {
+        let normal = |t: f64| {
+            let along = (t - ends[0]) / (ends[1] - ends[0]);
+            let s = if backwards { 1.0 - along } else { along };
+            let [u, v] = usage.side.at(usage.t[0] * (1.0 - s) + usage.t[1] * s);
+            usage.surface.normal(u, v)
+        };
+        let mut before = normal(ends[0]);
+        inner.iter().chain(std::iter::once(&ends[1])).all(|&t| {
+            let here = normal(t);
+            let turn = match (before, here) {
+                (Some(a), Some(b)) => angle_rad(&a, &b),
+                _ => 0.0,
+            };
+            before = here;
+            turn <= limit
+        })
     })
 }
 

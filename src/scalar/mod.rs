@@ -10,4 +10,5 @@ pub use bracket::Bracket;
 pub(crate) use id::id;
 pub use tolerance::{Tolerance, ToleranceError};
 pub use unit::{Length, LengthError, LengthUnit};
+pub(crate) use vector::angle_rad;
 pub use vector::{Point, Vector};

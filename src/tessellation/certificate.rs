@@ -122,6 +122,11 @@ impl<'a> Prover<'a> {
         }
     }
 
+    /// What rounding adds to every figure.
+    pub(super) fn slack(&self) -> f64 {
+        self.slack
+    }
+
     /// Bounds the cell over `places` against `target`. `own` says that the
     /// cell's corners are the target's: only then do the edge figures mean
     /// anything.

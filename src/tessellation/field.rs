@@ -2,7 +2,7 @@
 //! diagonals by. Nothing here proves anything.
 
 use crate::bezier::BezierPatch;
-use crate::sampling::ratio;
+use crate::sampling::{Limits, ratio};
 use crate::scalar::{Point, Vector};
 
 /// Grid cells in each direction for a polynomial of degree 3 or less.
@@ -109,12 +109,23 @@ impl Field {
 
     /// Estimated deviation of a triangle, in length: the largest height error
     /// for the Hessian at its centre, joined with a part of the sideways shift
-    /// of its edges.
-    pub(super) fn estimate(&self, places: [[f64; 2]; 3], points: [Point; 3]) -> f64 {
+    /// of its edges, and with what a largest edge asks. Infinite for a triangle that faces inwards or has no area,
+    /// so that exchanges of diagonals do away with it.
+    pub(super) fn estimate(
+        &self,
+        places: [[f64; 2]; 3],
+        points: [Point; 3],
+        limits: &Limits,
+    ) -> f64 {
         let third = |axis: usize| (places[0][axis] + places[1][axis] + places[2][axis]) / 3.0;
         let bend = self.at([third(0), third(1)]);
+        let facet = (points[1] - points[0]).cross(&(points[2] - points[0]));
+        if bend.normal != Vector::zeros() && facet.dot(&bend.normal) <= 0.0 {
+            return f64::INFINITY;
+        }
         let mut square = [0.0; 3];
         let mut worst_edge = 0.0_f64;
+        let mut longest = 0.0_f64;
         for k in 0..3 {
             let next = (k + 1) % 3;
             let step = [
@@ -127,12 +138,13 @@ impl Field {
                 + bend.form[2] * step[1] * step[1];
             let along = points[next] - points[k];
             let length = along.norm();
+            longest = longest.max(length);
             if length > 0.0 {
                 let sideways = q.dot(&bend.normal.cross(&along)) / length;
                 worst_edge = worst_edge.max(square[k].hypot(TILT * sideways) / 8.0);
             }
         }
         let (height, _) = super::quadratic::Quadratic::interpolation_error(square).largest();
-        height.max(worst_edge)
+        height.max(worst_edge).max(limits.length_error(longest))
     }
 }

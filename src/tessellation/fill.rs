@@ -69,6 +69,9 @@ pub(crate) fn fill(
     outline: &Outline,
     limits: &Limits,
 ) -> Result<Filled, Stuck> {
+    if is_curve(surface) {
+        return Ok(Filled::empty());
+    }
     let field = Field::new(surface);
     let planar = planar::proof(surface, outline, limits);
     let mut ground = Ground {
@@ -78,6 +81,14 @@ pub(crate) fn fill(
         flat: planar.is_some(),
     };
     let mut prover = Prover::new(surface);
+    if prover.slack() > limits.chord {
+        // Rounding alone exceeds the chord: no refinement can help.
+        return Err(Stuck {
+            place: [0.5, 0.5],
+            point: surface.eval(0.5, 0.5),
+            proved: prover.slack(),
+        });
+    }
     let mut best: Option<Trial> = None;
     for _ in 0..LAYOUTS {
         let mut work = Work::new(surface, &field, limits, layout(surface, &ground, outline));
@@ -95,7 +106,7 @@ pub(crate) fn fill(
         mut work, failed, ..
     } = best.expect("at least one layout is tried");
     let proved = work.prove(&mut prover, failed, planar)?;
-    Ok(work.finish(proved))
+    work.finish(proved)
 }
 
 /// Layouts tried at most.
@@ -112,4 +123,77 @@ struct Trial<'a> {
     /// Triangles, failing ones counted three times: about what refinement
     /// would make of them.
     cost: usize,
+}
+
+impl Filled {
+    /// A piece without area, which has no triangles.
+    fn empty() -> Self {
+        Self {
+            places: Vec::new(),
+            points: Vec::new(),
+            vertices: Vec::new(),
+            triangles: Vec::new(),
+            proved: Proved::default(),
+            attained: Attained {
+                distance: 0.0,
+                place: [0.5, 0.5],
+                point: Point::origin(),
+            },
+        }
+    }
+}
+
+/// Control points nearer to a line, or to each other, than this part of the
+/// piece's size are on it.
+const ON_LINE: f64 = 1e-12;
+
+/// Whether a piece is only a curve or a point: its control points lie on one
+/// line, or do not change along one parameter (weights included).
+fn is_curve(surface: &BezierPatch) -> bool {
+    let origin = surface.control_point(0, 0);
+    let far = |p: &Point| (p - origin).norm_squared();
+    let farthest = surface
+        .control_points()
+        .max_by(|a, b| far(a).total_cmp(&far(b)))
+        .unwrap_or(origin);
+    let axis = farthest - origin;
+    let near = ON_LINE * axis.norm();
+    let on_line = |p: Point| (p - origin).cross(&axis).norm() <= near * axis.norm();
+    if surface.control_points().all(on_line) {
+        return true;
+    }
+    let (m, n) = surface.degree();
+    let same = |a: (usize, usize), b: (usize, usize)| {
+        let (p, q) = (
+            surface.control_point(a.0, a.1),
+            surface.control_point(b.0, b.1),
+        );
+        let (v, w) = (surface.weight(a.0, a.1), surface.weight(b.0, b.1));
+        (p - q).norm() <= near && (v - w).abs() <= ON_LINE * v
+    };
+    let all = |test: &dyn Fn(usize, usize) -> bool| (0..=m).all(|i| (0..=n).all(|j| test(i, j)));
+    all(&|i, j| same((i, j), (0, j))) || all(&|i, j| same((i, j), (i, 0)))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn patch(point: impl Fn(f64, f64) -> Point) -> BezierPatch {
+        let at = [0.0, 1.0, 2.0];
+        let points = at.iter().flat_map(|&u| at.map(|v| point(u, v)));
+        BezierPatch::new((2, 2), points.collect(), None).unwrap()
+    }
+
+    #[test]
+    fn curves_are_told_from_surfaces() {
+        assert!(is_curve(&patch(|_, _| Point::new(3.0, 4.0, 5.0))));
+        assert!(is_curve(&patch(
+            |u, v| Point::new(1.0, 2.0, 3.0) * (u * v + v)
+        )));
+        assert!(is_curve(&patch(|u, _| Point::new(u, u * u, 0.0))));
+        assert!(is_curve(&patch(|_, v| Point::new(v * v, v, 1.0))));
+        assert!(!is_curve(&patch(|u, v| Point::new(u, 1e-6 * v, 0.0))));
+        assert!(!is_curve(&patch(|u, v| Point::new(u * v, v, 0.0))));
+    }
 }

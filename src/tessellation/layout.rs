@@ -151,7 +151,9 @@ pub(super) fn layout(surface: &BezierPatch, ground: &Ground, outline: &Outline) 
     let proper = |corners: [u32; 3]| is_proper(unlinked.places_of(orient(corners)));
     let error = |corners: [u32; 3]| {
         let points = corners.map(|v| build.points[v as usize]);
-        ground.field.estimate(unlinked.places_of(corners), points)
+        ground
+            .field
+            .estimate(unlinked.places_of(corners), points, ground.limits)
     };
     if row_chains.is_empty() {
         if is_plain(outline, left, right) {

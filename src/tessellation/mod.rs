@@ -60,6 +60,18 @@ pub enum TessellationError {
         /// What was asked.
         chord: f64,
     },
+    /// Refinement ended within the chord, but not within the other limits.
+    #[error(
+        "patch `{patch}` at (u, v) = ({u:.6}, {v:.6}): a triangle could not be brought within the normal angle and the largest edge asked for; the normal may jump there - larger limits let the run through"
+    )]
+    Shape {
+        /// The patch.
+        patch: String,
+        /// The patch's own parameters.
+        u: f64,
+        /// The patch's own parameters.
+        v: f64,
+    },
 }
 
 /// The filled pieces of a set.
@@ -97,6 +109,10 @@ pub fn tessellate(
                 .map_err(|stuck| {
                     let [u, v] = piece.patch_parameters(stuck.place);
                     let Point { coords } = stuck.point;
+                    if stuck.proved <= limits.chord {
+                        let patch = set.patch_of(id).name.clone();
+                        return TessellationError::Shape { patch, u, v };
+                    }
                     TessellationError::Unproved {
                         patch: set.patch_of(id).name.clone(),
                         u,

@@ -3,9 +3,9 @@
 use super::certificate::Prover;
 use super::fill::{Proved, Stuck};
 use super::layout::INNER;
-use super::triangulation::{BORDER, TriangleEdge};
+use super::triangulation::{BORDER, TriangleEdge, doubled_area};
 use super::work::Work;
-use crate::scalar::Vector;
+use crate::scalar::{Vector, angle_rad};
 
 /// An inner edge shorter than this in both parameters is not split again: the
 /// surface is then too wild for its tolerance (or the gap too large), and the
@@ -48,7 +48,7 @@ impl Work<'_> {
             }))
     }
 
-    fn stuck(&self, t: u32, proved: f64) -> Stuck {
+    pub(super) fn stuck(&self, t: u32, proved: f64) -> Stuck {
         let place = self.centre(t);
         Stuck {
             place,
@@ -78,7 +78,7 @@ impl Work<'_> {
             });
             for k in 0..3 {
                 if let (Some(a), Some(b)) = (normals[k], normals[(k + 1) % 3])
-                    && turn(&a, &b) > limit
+                    && angle_rad(&a, &b) > limit
                 {
                     return false;
                 }
@@ -106,36 +106,66 @@ impl Work<'_> {
             if border || long < SHORTEST {
                 continue;
             }
-            let error = self.cells[t as usize].edges[i].max(1e-3 * self.limits.chord * long);
+            let error = self.edge_error((t, i)).max(1e-3 * self.limits.chord * long);
             if best.is_none_or(|(most, _)| error > most) {
                 best = Some((error, i));
             }
         }
         let border_error = (0..3)
             .filter(|&i| self.layout.triangulation.neighbours[t as usize][i] == BORDER)
-            .map(|i| self.cells[t as usize].edges[i])
+            .map(|i| self.edge_error((t, i)))
             .fold(0.0, f64::max);
-        let Some((error, i)) = best else {
-            return true;
-        };
+        let best = best.filter(|(error, _)| *error >= 0.5 * border_error);
         let mut outer: Vec<TriangleEdge>;
-        if error < 0.5 * border_error {
+        let Some((_, i)) = best else {
+            // The seams hold the edges: a vertex inside, if there is room.
+            if doubled_area(self.layout.triangulation.corners(t)) < SHORTEST * SHORTEST {
+                return true;
+            }
             let place = self.centre(t);
             self.add_vertex(place);
             outer = self.layout.triangulation.insert_inside(t, place).to_vec();
-        } else {
-            let [a, b] = self.layout.triangulation.ends((t, i));
-            let place = [(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0];
-            self.add_vertex(place);
-            let other = self.layout.triangulation.neighbours[t as usize][i];
-            self.stale[other as usize] = true;
-            outer = self.layout.triangulation.insert_on_edge((t, i), place);
-        }
-        self.stale[t as usize] = true;
-        self.stale
-            .resize(self.layout.triangulation.triangles.len(), true);
-        self.improve(&mut outer);
+            self.settle(t, &mut outer);
+            return false;
+        };
+        let [a, b] = self.layout.triangulation.ends((t, i));
+        let place = [(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0];
+        self.add_vertex(place);
+        let other = self.layout.triangulation.neighbours[t as usize][i];
+        self.stale[other as usize] = true;
+        outer = self.layout.triangulation.insert_on_edge((t, i), place);
+        self.settle(t, &mut outer);
         false
+    }
+
+    /// Marks what a new vertex has changed, and improves round it.
+    fn settle(&mut self, t: u32, outer: &mut Vec<TriangleEdge>) {
+        self.stale[t as usize] = true;
+        let count = self.layout.triangulation.triangles.len();
+        self.stale.resize(count, true);
+        self.improve(outer);
+    }
+
+    /// How much an edge asks to be split: its distance from the surface, or
+    /// what its length or the turn of the normal along it say, whichever is
+    /// largest.
+    fn edge_error(&self, (t, i): TriangleEdge) -> f64 {
+        let corners = self.layout.triangulation.triangles[t as usize];
+        let ends = [corners[i], corners[(i + 1) % 3]];
+        let [a, b] = ends.map(|v| self.layout.points[v as usize]);
+        let mut error =
+            self.cells[t as usize].edges[i].max(self.limits.length_error((b - a).norm()));
+        if self.limits.normal_rad.is_some() {
+            let normals = self
+                .layout
+                .triangulation
+                .ends((t, i))
+                .map(|[u, v]| self.surface.normal(u, v));
+            if let [Some(a), Some(b)] = normals {
+                error = error.max(self.limits.turn_error(angle_rad(&a, &b)));
+            }
+        }
+        error
     }
 
     fn add_vertex(&mut self, [u, v]: [f64; 2]) {
@@ -143,9 +173,4 @@ impl Work<'_> {
         self.layout.vertices.push(INNER);
         self.normals.push(None);
     }
-}
-
-/// The angle between unit vectors.
-fn turn(a: &Vector, b: &Vector) -> f64 {
-    a.cross(b).norm().atan2(a.dot(b))
 }

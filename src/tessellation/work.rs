@@ -2,7 +2,7 @@
 
 use super::certificate::{Cell, Flat, Prover};
 use super::field::Field;
-use super::fill::{Attained, Filled, Proved};
+use super::fill::{Attained, Filled, Proved, Stuck};
 use super::layout::{INNER, Layout};
 use super::triangulation::{Pole, TriangleEdge, is_proper};
 use super::verdict;
@@ -59,8 +59,8 @@ impl<'a> Work<'a> {
 
     fn error(&self, corners: [u32; 3]) -> f64 {
         let places = self.layout.triangulation.places_of(corners);
-        self.field
-            .estimate(places, corners.map(|v| self.layout.points[v as usize]))
+        let points = corners.map(|v| self.layout.points[v as usize]);
+        self.field.estimate(places, points, self.limits)
     }
 
     /// Exchanges diagonals while that lowers the larger error of the two
@@ -217,7 +217,7 @@ impl<'a> Work<'a> {
     }
 
     /// Drops triangles without area and finds the largest true deviation.
-    pub(super) fn finish(mut self, proved: Proved) -> Filled {
+    pub(super) fn finish(mut self, proved: Proved) -> Result<Filled, Stuck> {
         let mut attained = Attained {
             distance: 0.0,
             place: [0.5, 0.5],
@@ -226,10 +226,12 @@ impl<'a> Work<'a> {
         let mesh = &self.layout.triangulation;
         let mut places = mesh.places.clone();
         let mut triangles = Vec::with_capacity(mesh.triangles.len());
+        let mut dropped = Vec::new();
         for (t, &corners) in mesh.triangles.iter().enumerate() {
             let [a, b, c] = corners.map(|v| self.layout.vertices[v as usize]);
             let same = |x: u32, y: u32| x == y && x != INNER;
             if same(a, b) || same(b, c) || same(c, a) {
+                dropped.push(index(t));
                 continue;
             }
             let mut written = corners;
@@ -261,13 +263,34 @@ impl<'a> Work<'a> {
                 };
             }
         }
-        Filled {
+        if let Some(&t) = dropped.iter().find(|&&t| !self.is_beside_another(t)) {
+            return Err(self.stuck(t, f64::INFINITY));
+        }
+        Ok(Filled {
             places,
             points: self.layout.points,
             vertices: self.layout.vertices,
             triangles,
             proved,
             attained,
-        }
+        })
+    }
+
+    /// Whether a triangle that is not written, because two of its corners are
+    /// one vertex, shares its remaining edge with one that is: its cell was
+    /// proved against that edge, which must then be in the mesh.
+    fn is_beside_another(&self, t: u32) -> bool {
+        let identity = |v: u32| match self.layout.vertices[v as usize] {
+            INNER => (1, v),
+            vertex => (0, vertex),
+        };
+        let of = |t: u32| self.layout.triangulation.triangles[t as usize].map(identity);
+        let mut own = of(t).to_vec();
+        own.dedup();
+        (0..index(self.figures.len())).any(|other| {
+            let corners = of(other);
+            let [a, b, c] = corners;
+            a != b && b != c && c != a && own.iter().all(|v| corners.contains(v))
+        })
     }
 }
