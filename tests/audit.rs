@@ -200,6 +200,14 @@ fn a_moved_vertex_is_found_and_placed() {
     }
 }
 
+/// Kinds of findings, without those of triangles beside a fault that were
+/// proved by their neighbours and no longer are.
+fn kinds_but_proof(audit: &Audit) -> Vec<&'static str> {
+    let mut kinds = kinds(audit);
+    kinds.retain(|kind| !["deviates", "unproved"].contains(kind));
+    kinds
+}
+
 #[test]
 fn a_missing_triangle_is_a_hole_at_its_place() {
     let mut case = case("bspline.ron");
@@ -223,7 +231,7 @@ fn a_missing_triangle_is_a_hole_at_its_place() {
     let cracks = named(&audit, "crack");
     assert_eq!(cracks.len(), 1);
     assert!(matches!(cracks[0].fault, Fault::Crack { edges: 3 }));
-    assert_eq!(kinds(&audit), ["crack", "hole"]);
+    assert_eq!(kinds_but_proof(&audit), ["crack", "hole"]);
 }
 
 /// Border triangles and pole triangles, every one in turn: each leaves a hole.
@@ -315,7 +323,7 @@ fn a_crack_is_found() {
     let place: Point = case1.evidence.points[point as usize] + normal * (0.1 * case1.chord);
     loosen(&mut case1.evidence, point, faces[0], place);
     let found = audit(&case1);
-    assert_eq!(kinds(&found), ["crack", "off_surface"]);
+    assert_eq!(kinds_but_proof(&found), ["crack", "off_surface"]);
     let cracks = named(&found, "crack");
     assert!(matches!(cracks[0].fault, Fault::Crack { edges: 4 }));
     assert!((cracks[0].point.unwrap() - place).norm() < 100.0);

@@ -46,7 +46,7 @@ fn corners_on_surface(
     mut each: impl FnMut(usize, [Option<Vector>; 3], [f64; 3]),
 ) {
     let mesh = &made.mesh;
-    let near = 2.0 * set.tolerances().gap.get();
+    let near = set.tolerances().gap.get();
     for part in &mesh.parts {
         let patch = set.patches().iter().find(|p| p.name == part.name).unwrap();
         let pieces = &set.pieces()[patch.pieces.clone()];
@@ -387,11 +387,9 @@ fn facets_face_outwards() {
             let inward = (0..mesh.triangles.len())
                 .filter(|&t| {
                     let [a, b, c] = mesh.triangle_corners(t);
-                    let facet = (b - a).cross(&(c - a));
-                    let normal = |v: u32| mesh.vertices[v as usize].normal;
-                    mesh.triangles[t]
-                        .iter()
-                        .any(|&v| normal(v).dot(&facet) <= 0.0)
+                    let normals = mesh.triangles[t].map(|v| mesh.vertices[v as usize].normal);
+                    let normal = normals.iter().sum::<Vector>();
+                    normal.dot(&(b - a).cross(&(c - a))) <= 0.0
                 })
                 .count();
             assert_eq!(inward, 0, "{name} x {factor}, of {}", mesh.triangles.len());

@@ -84,10 +84,10 @@ fn outcome(seed: u64) -> Result<(Manner, Result<usize, String>), String> {
     if made.deviation.proved() > trial.chord {
         return fail(format!("proved {:e} only", made.deviation.proved()));
     }
-    if set.pieces().iter().all(|piece| has_no_area(&piece.surface)) {
-        // A point or a curve must not bring the run down; there is no surface
-        // to measure.
-        return Ok((manner, Ok(made.mesh.triangles.len())));
+    let no_area = || set.pieces().iter().all(|piece| has_no_area(&piece.surface));
+    if made.mesh.triangles.is_empty() && no_area() {
+        // Only a point or a curve may be left out of a mesh.
+        return Ok((manner, Ok(0)));
     }
     match verdict::refute(&set, &made, EFFORT, &mut Chance::new(seed)) {
         Ok(_) => Ok((manner, Ok(made.mesh.triangles.len()))),

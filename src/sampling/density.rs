@@ -42,24 +42,25 @@ pub(super) fn density(curve: &CurveJet, uses: &[Use], s: f64, limits: &Limits) -
     // A hair closer than asked, so that rounding cannot make an edge too long.
     let mut least = limits.max_edge.map_or(0.0, |edge| (1.0 + 1e-9) / edge);
     for usage in uses {
-        // At a pole the form is that of the surface just inside.
-        let inside = s + (0.5 - s) * 0.01;
-        let Some(shape) = shape(usage, s).or_else(|| shape(usage, inside)) else {
+        if let Some(turn) = limits.normal_rad {
+            // At a pole the form is that of the surface just inside.
+            let inside = s + (0.5 - s) * 0.01;
+            if let Some(form) = shape(usage, s).or_else(|| shape(usage, inside)) {
+                least = least.max(form.along.hypot(form.twist) / (0.9 * turn));
+            }
+        }
+        let Some(shape) = shape(usage, s) else {
             continue;
         };
         let gaussian = shape.along * shape.across - shape.twist * shape.twist;
-        if gaussian > 0.0 {
-            bent = bent.max((shape.across.abs() * shape.width * shape.width / (8.0 * e)).min(1.0));
-        } else if shape.twist.abs() > 0.0 {
+        bent = bent.max((shape.across.abs() * shape.width * shape.width / (8.0 * e)).min(1.0));
+        if gaussian < 0.0 && shape.twist.abs() > 0.0 {
             let twist = shape.twist.abs();
             least = least.max(
                 (twist / (8.94 * e))
                     .sqrt()
                     .min(twist * shape.width / (8.0 * e)),
             );
-        }
-        if let Some(turn) = limits.normal_rad {
-            least = least.max(shape.along.hypot(shape.twist) / (0.9 * turn));
         }
     }
     let lambda = STRAIGHT_ACROSS - (STRAIGHT_ACROSS - BENT_ACROSS) * bent;

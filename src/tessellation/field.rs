@@ -15,6 +15,10 @@ const CELLS_FINE: usize = 12;
 /// of neighbouring triangles, by which the proof multiplies it.
 const TILT: f64 = 0.1;
 
+/// A triangle that faces inwards counts as this part of the chord at least:
+/// enough to be exchanged for good triangles, not for such as need refinement.
+const INWARD: f64 = 0.5;
+
 /// What the steps need to know of the surface at one place.
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Bend {
@@ -55,13 +59,14 @@ impl Bend {
 
 /// The table.
 #[derive(Debug)]
-pub(super) struct Field {
+pub(super) struct Field<'a> {
+    surface: &'a BezierPatch,
     cells: usize,
     bends: Vec<Bend>,
 }
 
-impl Field {
-    pub(super) fn new(surface: &BezierPatch) -> Self {
+impl<'a> Field<'a> {
+    pub(super) fn new(surface: &'a BezierPatch) -> Self {
         let (m, n) = surface.degree();
         let fine = surface.is_rational() || m.max(n) > 3;
         let cells = if fine { CELLS_FINE } else { CELLS };
@@ -80,7 +85,11 @@ impl Field {
                 });
             }
         }
-        Self { cells, bends }
+        Self {
+            surface,
+            cells,
+            bends,
+        }
     }
 
     /// The bend at (u, v), bilinear between grid places.
@@ -109,8 +118,8 @@ impl Field {
 
     /// Estimated deviation of a triangle, in length: the largest height error
     /// for the Hessian at its centre, joined with a part of the sideways shift
-    /// of its edges, and with what a largest edge asks. Infinite for a triangle that faces inwards or has no area,
-    /// so that exchanges of diagonals do away with it.
+    /// of its edges, and with what a largest edge asks; never small for a triangle
+    /// that faces inwards, so that exchanges of diagonals do away with it.
     pub(super) fn estimate(
         &self,
         places: [[f64; 2]; 3],
@@ -120,8 +129,9 @@ impl Field {
         let third = |axis: usize| (places[0][axis] + places[1][axis] + places[2][axis]) / 3.0;
         let bend = self.at([third(0), third(1)]);
         let facet = (points[1] - points[0]).cross(&(points[2] - points[0]));
-        if bend.normal != Vector::zeros() && facet.dot(&bend.normal) <= 0.0 {
-            return f64::INFINITY;
+        let mut inward = 0.0;
+        if facet.dot(&bend.normal) <= 0.0 && self.faces_inwards(facet, [third(0), third(1)]) {
+            inward = INWARD * limits.chord;
         }
         let mut square = [0.0; 3];
         let mut worst_edge = 0.0_f64;
@@ -145,6 +155,15 @@ impl Field {
             }
         }
         let (height, _) = super::quadratic::Quadratic::interpolation_error(square).largest();
-        height.max(worst_edge).max(limits.length_error(longest))
+        height
+            .max(worst_edge)
+            .max(limits.length_error(longest))
+            .max(inward)
+    }
+
+    /// Whether a facet faces against the surface's own normal.
+    pub(super) fn faces_inwards(&self, facet: Vector, [u, v]: [f64; 2]) -> bool {
+        let normal = self.surface.normal(u, v);
+        normal.is_some_and(|normal| facet.dot(&normal) <= 0.0)
     }
 }

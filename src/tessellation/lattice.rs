@@ -228,7 +228,7 @@ pub(super) fn rows(ground: &Ground, along: Along, before: &[f64]) -> Vec<(f64, V
 /// layouts have taught.
 #[derive(Debug)]
 pub(super) struct Ground<'a> {
-    pub(super) field: &'a Field,
+    pub(super) field: &'a Field<'a>,
     pub(super) limits: &'a Limits,
     pub(super) correction: Correction,
     /// Whether the piece is proved as a plane, where steps need not follow how

@@ -19,6 +19,7 @@ mod layout;
 mod planar;
 mod quadratic;
 mod refine;
+mod remainder;
 mod stitch;
 mod triangulation;
 mod verdict;

@@ -3,8 +3,8 @@
 use super::certificate::Prover;
 use super::fill::{Proved, Stuck};
 use super::layout::INNER;
-use super::triangulation::{BORDER, TriangleEdge, doubled_area};
-use super::work::Work;
+use super::triangulation::{BORDER, TriangleEdge, doubled_area, is_proper};
+use super::work::{Work, index};
 use crate::scalar::{Vector, angle_rad};
 
 /// An inner edge shorter than this in both parameters is not split again: the
@@ -39,6 +39,7 @@ impl Work<'_> {
             }
             failed = self.round(prover, planar);
         }
+        self.face_outwards(prover, planar);
         Ok(self
             .figures
             .iter()
@@ -46,6 +47,51 @@ impl Work<'_> {
                 to_mesh: worst.to_mesh.max(f.to_mesh),
                 to_surface: worst.to_surface.max(f.to_surface),
             }))
+    }
+
+    /// Exchanges diagonals of triangles that face inwards where what results
+    /// is proved as well. Such triangles are slivers; the bounds hold for them.
+    pub(super) fn face_outwards(&mut self, prover: &mut Prover, planar: Option<f64>) {
+        for t in 0..index(self.figures.len()) {
+            let corners = self.layout.triangulation.triangles[t as usize];
+            if !self.faces_inwards(corners) {
+                continue;
+            }
+            for i in 0..3 {
+                let Some([a, b, c, d]) = self.layout.triangulation.quad((t, i)) else {
+                    continue;
+                };
+                let good = |corners| {
+                    is_proper(self.layout.triangulation.places_of(corners))
+                        && !self.faces_inwards(corners)
+                };
+                if !good([d, a, b]) || !good([b, c, d]) {
+                    continue;
+                }
+                self.exchange((t, i));
+                if self.round(prover, planar).is_empty() {
+                    break;
+                }
+                // Flipping the new diagonal restores the old one.
+                self.exchange((t, 2));
+                self.round(prover, planar);
+            }
+        }
+    }
+
+    fn exchange(&mut self, (t, i): TriangleEdge) {
+        let other = self.layout.triangulation.neighbours[t as usize][i];
+        self.stale[t as usize] = true;
+        self.stale[other as usize] = true;
+        self.layout.triangulation.flip((t, i));
+    }
+
+    fn faces_inwards(&self, corners: [u32; 3]) -> bool {
+        let [a, b, c] = corners.map(|v| self.layout.points[v as usize]);
+        let [p, q, r] = self.layout.triangulation.places_of(corners);
+        let middle = [0, 1].map(|axis| (p[axis] + q[axis] + r[axis]) / 3.0);
+        let facet = (b - a).cross(&(c - a));
+        facet.dot(&self.field.at(middle).normal) <= 0.0 && self.field.faces_inwards(facet, middle)
     }
 
     pub(super) fn stuck(&self, t: u32, proved: f64) -> Stuck {

@@ -1,5 +1,7 @@
 //! A piece at work: its triangulation, and what is known of each triangle.
 
+use std::collections::HashSet;
+
 use super::certificate::{Cell, Flat, Prover};
 use super::field::Field;
 use super::fill::{Attained, Filled, Proved, Stuck};
@@ -17,7 +19,7 @@ const FLIP_GAIN: f64 = 1.0 - 1e-9;
 pub(super) struct Work<'a> {
     pub(super) surface: &'a BezierPatch,
     pub(super) limits: &'a Limits,
-    pub(super) field: &'a Field,
+    pub(super) field: &'a Field<'a>,
     pub(super) layout: Layout,
     pub(super) normals: Vec<Option<Vector>>,
     pub(super) flats: Vec<Flat>,
@@ -34,7 +36,7 @@ pub(super) fn index(t: usize) -> u32 {
 impl<'a> Work<'a> {
     pub(super) fn new(
         surface: &'a BezierPatch,
-        field: &'a Field,
+        field: &'a Field<'a>,
         limits: &'a Limits,
         layout: Layout,
     ) -> Self {
@@ -263,7 +265,7 @@ impl<'a> Work<'a> {
                 };
             }
         }
-        if let Some(&t) = dropped.iter().find(|&&t| !self.is_beside_another(t)) {
+        if let Some(t) = self.uncovered(&dropped) {
             return Err(self.stuck(t, f64::INFINITY));
         }
         Ok(Filled {
@@ -276,21 +278,30 @@ impl<'a> Work<'a> {
         })
     }
 
-    /// Whether a triangle that is not written, because two of its corners are
-    /// one vertex, shares its remaining edge with one that is: its cell was
-    /// proved against that edge, which must then be in the mesh.
-    fn is_beside_another(&self, t: u32) -> bool {
+    /// A dropped triangle whose remaining edge is in no triangle that is
+    /// written. A triangle two of whose corners are one vertex was proved
+    /// against that edge, which must then be in the mesh.
+    fn uncovered(&self, dropped: &[u32]) -> Option<u32> {
+        if dropped.is_empty() {
+            return None;
+        }
         let identity = |v: u32| match self.layout.vertices[v as usize] {
-            INNER => (1, v),
-            vertex => (0, vertex),
+            INNER => (true, v),
+            vertex => (false, vertex),
         };
-        let of = |t: u32| self.layout.triangulation.triangles[t as usize].map(identity);
-        let mut own = of(t).to_vec();
-        own.dedup();
-        (0..index(self.figures.len())).any(|other| {
-            let corners = of(other);
-            let [a, b, c] = corners;
-            a != b && b != c && c != a && own.iter().all(|v| corners.contains(v))
+        let corners_of = |t: u32| self.layout.triangulation.triangles[t as usize].map(identity);
+        let edges_of = |t: u32| {
+            let [a, b, c] = corners_of(t);
+            [[a, b], [b, c], [c, a]].map(|[x, y]| [x.min(y), x.max(y)])
+        };
+        let unwritten: HashSet<u32> = dropped.iter().copied().collect();
+        let written: HashSet<_> = (0..index(self.figures.len()))
+            .filter(|t| !unwritten.contains(t))
+            .flat_map(edges_of)
+            .collect();
+        dropped.iter().copied().find(|&t| {
+            let remaining = edges_of(t).into_iter().find(|[x, y]| x != y);
+            remaining.is_none_or(|edge| !written.contains(&edge))
         })
     }
 }
