@@ -111,6 +111,36 @@ fn components(topology: &Topology) -> usize {
     }
 }
 
+/// Every figure of every shipped set is known to two parts in a hundred, or to
+/// 1e-9 of the size, 1e-6 degrees, 1e-6 over the size. Only at the cone's tip,
+/// where the curvature grows without limit, nothing is proved.
+#[test]
+fn brackets_of_shipped_sets_are_narrow() {
+    let folder = format!("{}/patches", env!("CARGO_MANIFEST_DIR"));
+    for entry in std::fs::read_dir(folder).unwrap() {
+        let path = entry.unwrap().path();
+        if path.extension().is_none_or(|e| e != "ron") {
+            continue;
+        }
+        let name = path.file_stem().unwrap().to_str().unwrap();
+        let (set, topology) = shipped(name);
+        let size = topology.size();
+        let per_mm = 1e-6 / size / set.unit().in_mm();
+        for seam in Survey::of(&set, &topology).seams {
+            let narrow = |figure: Option<chordwise::continuity::Figure>, floor: f64| {
+                figure.is_none_or(|f| f.bracket.proved <= (f.bracket.attained * 1.02).max(floor))
+            };
+            assert!(narrow(Some(seam.gap), 1e-9 * size), "{name} {seam:?}");
+            assert!(narrow(seam.angle_deg, 1e-6), "{name} {seam:?}");
+            let tip = name == "cone";
+            assert!(
+                tip || narrow(seam.curvature_per_mm, per_mm),
+                "{name} {seam:?}"
+            );
+        }
+    }
+}
+
 /// The same bytes at any number of threads.
 #[test]
 fn reports_do_not_depend_on_threads() {

@@ -46,14 +46,39 @@ fn ratio(a: usize, b: usize) -> f64 {
     a / b
 }
 
-fn binomials(n: usize) -> Vec<f64> {
+/// The largest degree whose binomials are at hand: the normal of a rational
+/// piece of degree 15, squared, has 88.
+const MOST: usize = 96;
+
+/// Pascal's triangle.
+static BINOMIALS: [[f64; MOST + 1]; MOST + 1] = pascal();
+
+const fn pascal() -> [[f64; MOST + 1]; MOST + 1] {
+    let mut rows = [[0.0; MOST + 1]; MOST + 1];
+    let mut n = 0;
+    while n <= MOST {
+        rows[n][0] = 1.0;
+        let mut k = 1;
+        while k <= n {
+            rows[n][k] = rows[n - 1][k - 1] + rows[n - 1][k];
+            k += 1;
+        }
+        n += 1;
+    }
+    rows
+}
+
+fn binomials(n: usize) -> std::borrow::Cow<'static, [f64]> {
+    if let Some(row) = BINOMIALS.get(n) {
+        return std::borrow::Cow::Borrowed(&row[..=n]);
+    }
     let mut row = Vec::with_capacity(n + 1);
     let mut value = 1.0;
     for k in 0..=n {
         row.push(value);
         value *= ratio(n - k, k + 1);
     }
-    row
+    std::borrow::Cow::Owned(row)
 }
 
 impl<T: Coefficient> Bernstein<T> {
@@ -75,7 +100,7 @@ impl<T: Coefficient> Bernstein<T> {
                 found[i + j] = found[i + j] + times(a, b) * (row[i] * column[j]);
             }
         }
-        for (value, factor) in found.iter_mut().zip(all) {
+        for (value, factor) in found.iter_mut().zip(all.iter()) {
             *value = *value * (1.0 / factor);
         }
         Bernstein(found)
@@ -98,7 +123,15 @@ impl<T: Coefficient> Bernstein<T> {
 
     /// The value at `t`, by de Casteljau's algorithm.
     pub(crate) fn eval(&self, t: f64) -> T {
-        let mut work = self.0.clone();
+        let mut held = [T::zero(); 24];
+        let mut long = Vec::new();
+        let work = if let Some(work) = held.get_mut(..self.0.len()) {
+            work.copy_from_slice(&self.0);
+            work
+        } else {
+            long.clone_from(&self.0);
+            &mut long[..]
+        };
         for len in (1..work.len()).rev() {
             for i in 0..len {
                 work[i] = work[i] * (1.0 - t) + work[i + 1] * t;
@@ -120,20 +153,43 @@ impl<T: Coefficient> Bernstein<T> {
         (Self(left), Self(work))
     }
 
-    /// The part from `range[0]` to `range[1]`; a descending range reverses it.
+    /// The part from `range[0]` to `range[1]`, which may reach beyond the unit
+    /// interval; a descending range reverses it.
     pub(crate) fn restrict(&self, range: [f64; 2]) -> Self {
         let (low, high) = (range[0].min(range[1]), range[0].max(range[1]));
         let mut part = self.clone();
-        if high < 1.0 {
+        if (high - 1.0).abs() > 0.0 {
             part = part.split(high).0;
         }
-        if low > 0.0 && high > 0.0 {
+        if low.abs() > 0.0 && high > 0.0 {
             part = part.split(low / high).1;
         }
         if range[0] > range[1] {
             part.0.reverse();
         }
         part
+    }
+
+    /// Every coefficient times `factor`.
+    pub(crate) fn scaled(&self, factor: f64) -> Self {
+        Self(self.0.iter().map(|&x| x * factor).collect())
+    }
+
+    /// Divides out t^ends[0] (1 - t)^ends[1], together at most the degree; the
+    /// coefficients that stand in the way are taken for zero.
+    pub(crate) fn divided(&self, ends: [usize; 2]) -> Self {
+        let mut found = self.clone();
+        for count in ends {
+            for _ in 0..count {
+                let n = found.degree();
+                found.0.remove(0);
+                for (k, value) in found.0.iter_mut().enumerate() {
+                    *value = *value * ratio(n, k + 1);
+                }
+            }
+            found.0.reverse();
+        }
+        found
     }
 
     /// Divides out factors t and 1 - t as long as the end coefficients are as

@@ -10,17 +10,21 @@
 //! (convex hull property). Beyond 90 degrees the cotangent is bounded alike.
 //! Along a seam of one parametrisation this *proves* the angle; it is the
 //! determinant criterion of Liu and Hoschek (1989) and DeRose (1990) in
-//! another dress. Where the parametrisations differ, points matched by the
-//! affine map of a part are not quite the nearest ones, and the turn of the
-//! normal in between is added ([`super::slip`]). The part with the largest bound is halved until the bound
-//! meets what is attained.
+//! another dress: for two polynomial sides that share a tangent T,
+//! N1 x N2 = +- det(A1, T, A2) T, so the c_k vanish together with the nine
+//! coefficients (two bicubics) of the determinant. Where the parametrisations
+//! differ, the second normal is taken at the nearest place, which is known as a
+//! polynomial with a proved remainder ([`super::follow`]), and the square of the
+//! tangent is bounded in the same form. The part with the largest bound is
+//! halved until the bound meets what is attained.
 
-use super::slip::Slip;
+use super::follow::Follow;
+use super::matched::Matched;
 use super::strip::Strip;
-use crate::bezier::BezierCurve;
+use super::taylor::{Taylor, cross, dot};
 use crate::patch_set::PatchSet;
-use crate::scalar::{Bracket, Point, Vector};
-use crate::topology::{EdgeId, nearest_from};
+use crate::scalar::{Bracket, Vector};
+use crate::topology::EdgeId;
 
 /// Parts after which a bracket stays as wide as it is.
 const PARTS: usize = 256;
@@ -66,14 +70,19 @@ impl Meeting {
     /// [`Meeting::normals_agree`] says: 0 goes on smoothly, 180 folds back.
     #[must_use]
     pub fn angle(&self, set: &PatchSet) -> Angle {
-        Sides::new(self, set).bracket()
+        self.angle_of(set, &Matched::new(self, set))
+    }
+
+    pub(super) fn angle_of(&self, set: &PatchSet, matched: &Matched) -> Angle {
+        Sides::new(self, set, matched).bracket()
     }
 
     /// The largest angle at nine places, in degrees: sampled, for deciding
     /// where vertex normals are shared.
     #[must_use]
     pub fn sampled_angle_deg(&self, set: &PatchSet) -> f64 {
-        let sides = Sides::new(self, set);
+        let matched = Matched::new(self, set);
+        let sides = Sides::new(self, set, &matched);
         (0..=8)
             .filter_map(|k| sides.angle_at(f64::from(k) / 8.0, None))
             .fold(0.0, |worst, (angle, _)| angle.max(worst))
@@ -96,18 +105,9 @@ fn counterclockwise(set: &PatchSet, edge: EdgeId) -> bool {
 }
 
 /// Both sides of a meeting, on one parameter 0 to 1.
-struct Sides {
+struct Sides<'a> {
     strips: [Strip; 2],
-    /// The second edge on its stretch, for feet.
-    second: BezierCurve,
-    first: BezierCurve,
-    meeting: Meeting,
-    /// Changes of parameter, see [`Strip::standard`].
-    lambda: [f64; 2],
-    /// Largest difference of the two edges at equal parameters.
-    apart: f64,
-    /// Below this the edges are one curve of one parametrisation.
-    same: f64,
+    matched: &'a Matched,
 }
 
 struct Part {
@@ -117,69 +117,62 @@ struct Part {
     upper: f64,
 }
 
-impl Sides {
-    fn new(meeting: &Meeting, set: &PatchSet) -> Self {
-        let pieces = meeting
-            .edges
-            .map(|e| &set.pieces()[e.piece().index()].surface);
-        let edges = [0, 1].map(|k| pieces[k].edge(meeting.edges[k].side()));
+impl<'a> Sides<'a> {
+    fn new(meeting: &Meeting, set: &PatchSet, matched: &'a Matched) -> Self {
         let ranges = [meeting.first, meeting.second];
-        let cut = |k: usize| {
-            let stretch = crate::topology::Stretch {
-                curve: &edges[k],
-                range: ranges[k],
-            };
-            stretch.cut()
-        };
-        let (first, second) = (cut(0), cut(1));
-        let origin = first.control_point(0);
-        let lambda = [&first, &second].map(to_standard);
         let mut strips = [0, 1].map(|k| {
-            Strip::new(pieces[k], meeting.edges[k].side(), &origin)
+            let surface = &set.pieces()[meeting.edges[k].piece().index()].surface;
+            Strip::new(surface, meeting.edges[k].side(), &matched.origin)
                 .restrict(ranges[k])
-                .reparametrised(lambda[k])
+                .reparametrised(matched.lambda[k])
         });
-        let first = reparametrised(first, lambda[0]);
-        let second = reparametrised(second, lambda[1]);
         let flipped = meeting.edges.map(|e| set.patch_of(e.piece()).flipped);
-        if flipped[0] != flipped[1] {
+        if (flipped[0] != flipped[1]) == meeting.normals_agree(set) {
             strips[1] = strips[1].clone().opposed();
         }
-        if !meeting.normals_agree(set) {
-            strips[1] = strips[1].clone().opposed();
-        }
-        let apart = crate::topology::difference_bound(&first, &second);
-        let largest = first
-            .control_points()
-            .map(|p: Point| p.coords.amax())
-            .fold(0.0, f64::max);
-        Self {
-            strips,
-            meeting: *meeting,
-            lambda,
-            apart,
-            same: largest * 1e-12 + first.chord_bound() * 1e-12,
-            first,
-            second,
-        }
-    }
-
-    fn aligned(&self) -> bool {
-        self.apart <= self.same
+        Self { strips, matched }
     }
 
     /// Angle in radians at place `s` of the first edge and the nearest place
     /// of the second, whose parameter is returned.
     fn angle_at(&self, s: f64, guess: Option<f64>) -> Option<(f64, f64)> {
-        let t = if self.aligned() {
-            s
-        } else {
-            let point = self.first.eval(s);
-            nearest_from(&self.second, &point, guess.unwrap_or(s), [0.0, 1.0]).t
-        };
+        let t = self.matched.foot(s, guess);
         let a = self.strips[0].unit_normal(s)?;
         let b = self.strips[1].unit_normal(t)?;
         Some((a.cross(&b).norm().atan2(a.dot(&b)), t))
+    }
+
+    /// Proved bound of the angle over a part whose edges run at speeds of their
+    /// own, in radians; `None` where nothing can be proved.
+    fn followed_bound(&self, follow: &Follow, s: [f64; 2], t: [f64; 2]) -> Option<f64> {
+        let guess = t[0].midpoint(t[1]);
+        let (area, y) = follow.over(&self.matched.curves, s, guess)?;
+        let models = |strip: &Strip, range: [f64; 2], y: Option<&Taylor>| {
+            let part = strip.normal.restrict(range);
+            Taylor::of_vectors(&part.0, y)
+        };
+        let a = models(&self.strips[0], s, None)?;
+        let b = models(&self.strips[1], area, Some(&y))?;
+        let (sines, cosine) = (cross(&a, &b), dot(&a, &b));
+        let square = dot(&sines, &sines);
+        let root = |x: f64| x.max(0.0).sqrt();
+        if let Some(inverse) = cosine.power(-1.0) {
+            let tangent = square.times(&inverse).times(&inverse);
+            return Some(root(tangent.most()).atan());
+        }
+        // Obtuse: by the cotangent, which is largest where the sine is least.
+        let least = root(square.range()[0]);
+        let [low, _] = cosine.range();
+        let bent = match square.power(-1.0) {
+            Some(inverse) => root(cosine.times(&cosine).times(&inverse).most()),
+            None => f64::INFINITY,
+        };
+        let plain = if least > 0.0 {
+            (-low).max(0.0) / least
+        } else {
+            f64::INFINITY
+        };
+        Some(std::f64::consts::FRAC_PI_2 + bent.min(plain).atan())
     }
 
     fn bracket(&self) -> Angle {
@@ -190,10 +183,13 @@ impl Sides {
             }
             best.0
         };
-        let slip = (!self.aligned()).then(|| Slip::of(&self.strips[1]));
-        let bound = |strips: &[Strip; 2], width: f64| {
-            let slip = slip.as_ref().map_or(0.0, |s| s.bound(strips, width));
-            (angle_bound(strips) + slip).min(std::f64::consts::PI)
+        let follow = (!self.matched.aligned())
+            .then(|| Follow::new(&self.matched.curves, &self.matched.origin));
+        let bound = |strips: &[Strip; 2], s: [f64; 2], t: [f64; 2]| match &follow {
+            None => angle_bound(strips),
+            Some(follow) => self
+                .followed_bound(follow, s, t)
+                .unwrap_or(std::f64::consts::PI),
         };
         let mut attained = 0.0;
         for s in [0.0, 1.0, 0.5] {
@@ -203,7 +199,7 @@ impl Sides {
             s: [0.0, 1.0],
             t: [0.0, 1.0],
             strips: self.strips.clone(),
-            upper: bound(&self.strips, 1.0),
+            upper: bound(&self.strips, [0.0, 1.0], [0.0, 1.0]),
         };
         let mut parts = vec![whole];
         let mut proved = std::f64::consts::PI;
@@ -221,7 +217,7 @@ impl Sides {
             attained = raise(found, s);
             let width = part.t[1] - part.t[0];
             let x = match found {
-                Some((_, t)) if !self.aligned() && width > 0.0 => {
+                Some((_, t)) if !self.matched.aligned() && width > 0.0 => {
                     ((t - part.t[0]) / width).clamp(1.0 / 16.0, 15.0 / 16.0)
                 }
                 _ => 0.5,
@@ -233,7 +229,7 @@ impl Sides {
                 ([part.s[0], s], [part.t[0], t], [a0, b0]),
                 ([s, part.s[1]], [t, part.t[1]], [a1, b1]),
             ] {
-                let upper = bound(&strips, t[1] - t[0]).min(part.upper);
+                let upper = bound(&strips, s, t).min(part.upper);
                 parts.push(Part {
                     s,
                     t,
@@ -242,19 +238,12 @@ impl Sides {
                 });
             }
         }
-        let along = |r: [f64; 2], k: usize, tau: f64| {
-            let x = parameter_before(tau, self.lambda[k]);
-            r[0] * (1.0 - x) + r[1] * x
-        };
         Angle {
             bracket: Bracket {
                 proved: proved.to_degrees().max(best.0.to_degrees()),
                 attained: best.0.to_degrees(),
             },
-            at: [
-                along(self.meeting.first, 0, best.1),
-                along(self.meeting.second, 1, best.2),
-            ],
+            at: self.matched.on_edges([best.1, best.2]),
         }
     }
 }
@@ -289,36 +278,4 @@ fn angle_bound(strips: &[Strip; 2]) -> f64 {
         }
     }
     bound
-}
-
-/// The change of parameter t = lambda tau / (1 - tau + lambda tau) that makes
-/// both end weights of a rational curve equal (Farin, *NURBS*).
-fn to_standard(curve: &BezierCurve) -> f64 {
-    let n = curve.degree();
-    #[allow(clippy::cast_precision_loss, reason = "a degree is at most 15")]
-    let root = 1.0 / n as f64;
-    if curve.is_rational() {
-        (curve.weight(0) / curve.weight(n)).powf(root)
-    } else {
-        1.0
-    }
-}
-
-fn parameter_before(tau: f64, lambda: f64) -> f64 {
-    lambda * tau / (1.0 - tau + lambda * tau)
-}
-
-fn reparametrised(curve: BezierCurve, lambda: f64) -> BezierCurve {
-    if !curve.is_rational() {
-        return curve;
-    }
-    let mut factor = 1.0;
-    let weights = (0..=curve.degree()).map(|i| {
-        let weight = curve.weight(i) * factor;
-        factor *= lambda;
-        weight
-    });
-    let weights = weights.collect();
-    // Positive finite weights stay so short of overflow.
-    BezierCurve::new(curve.control_points().collect(), Some(weights)).unwrap_or(curve)
 }

@@ -1,16 +1,22 @@
-//! Continuity across seams: gap (G0), tangent angle (G1), curvature (G2,
-//! sampled), and the verdict.
+//! Continuity across seams: gap (G0), tangent angle (G1), curvature (G2), all
+//! bracketed, and the verdict.
 
 mod angle;
 mod apart;
+mod bend;
 mod curvature;
+#[cfg(test)]
+mod curvature_tests;
 mod figure;
-mod slip;
+mod follow;
+mod matched;
+mod rows;
 mod standing;
 mod strip;
 mod survey;
 #[cfg(test)]
 mod survey_tests;
+mod taylor;
 #[cfg(test)]
 mod tests;
 

@@ -9,6 +9,7 @@
 //! multiple of the normal. At a pole it vanishes; the factors t and 1 - t are
 //! divided out, which leaves the limit normal.
 
+use super::rows::Rows;
 use crate::bezier::bernstein::Bernstein;
 use crate::bezier::{BezierPatch, Side};
 use crate::scalar::{Point, Vector};
@@ -27,42 +28,14 @@ pub(super) struct Strip {
 impl Strip {
     /// The strip of `surface` along `side`, coordinates relative to `origin`.
     pub(super) fn new(surface: &BezierPatch, side: Side, origin: &Point) -> Self {
-        let (m, n) = surface.degree();
-        let (along, across) = match side {
-            Side::U0 | Side::U1 => (n, m),
-            Side::V0 | Side::V1 => (m, n),
-        };
-        // Row 0 is the edge, row 1 the next one inside.
-        let index = |row: usize, k: usize| match side {
-            Side::U0 => (row, k),
-            Side::U1 => (m - row, k),
-            Side::V0 => (k, row),
-            Side::V1 => (k, n - row),
-        };
-        let weights = |row: usize| {
-            let list = (0..=along).map(|k| {
-                let (i, j) = index(row, k);
-                surface.weight(i, j)
-            });
-            Bernstein(list.collect())
-        };
-        let places = |row: usize| {
-            let list = (0..=along).map(|k| {
-                let (i, j) = index(row, k);
-                (surface.control_point(i, j) - origin) * surface.weight(i, j)
-            });
-            Bernstein(list.collect::<Vec<Vector>>())
-        };
+        let rows = Rows::new(surface, side, *origin);
         // The derivative across, in the sense of the growing parameter.
         #[allow(clippy::cast_precision_loss, reason = "a degree is at most 15")]
-        let degree = across as f64;
-        let outward = match side {
-            Side::U0 | Side::V0 => 1.0,
-            Side::U1 | Side::V1 => -1.0,
-        };
-        let (x, w) = (places(0), weights(0));
-        let x_across = scaled(&places(1).plus(&x, -1.0), degree * outward);
-        let w_across = scaled(&weights(1).plus(&w, -1.0), degree * outward);
+        let degree = rows.degrees()[1] as f64;
+        let outward = rows.inwards();
+        let (x, w) = (rows.places(0), rows.weights(0));
+        let x_across = rows.places(1).plus(&x, -1.0).scaled(degree * outward);
+        let w_across = rows.weights(1).plus(&w, -1.0).scaled(degree * outward);
         let (x_along, w_along) = (x.derivative(), w.derivative());
         let cross = |a: &Bernstein<Vector>, b: &Bernstein<Vector>| a.product(b, |p, q| p.cross(&q));
         let by = |a: &Bernstein<Vector>, b: &Bernstein<f64>| a.product(b, |p, q| p * q);
@@ -73,15 +46,10 @@ impl Strip {
         } else {
             cross(&x_across, &x_along)
         };
-        // Across x along is S_u x S_v where u runs across.
-        let turned = match side {
-            Side::U0 | Side::U1 => 1.0,
-            Side::V0 | Side::V1 => -1.0,
-        };
         Self {
             place: x,
             weight: w,
-            normal: scaled(&normal, turned).deflated(),
+            normal: normal.scaled(rows.turned()).deflated(),
         }
     }
 
@@ -143,7 +111,7 @@ impl Strip {
 
     /// The same with the normal turned over.
     pub(super) fn opposed(mut self) -> Self {
-        self.normal = scaled(&self.normal, -1.0);
+        self.normal = self.normal.scaled(-1.0);
         self
     }
 
@@ -153,10 +121,6 @@ impl Strip {
         let length = normal.norm();
         (length > f64::MIN_POSITIVE).then(|| normal / length)
     }
-}
-
-fn scaled<T: crate::bezier::bernstein::Coefficient>(a: &Bernstein<T>, factor: f64) -> Bernstein<T> {
-    Bernstein(a.0.iter().map(|&x| x * factor).collect())
 }
 
 #[cfg(test)]

@@ -7,11 +7,15 @@ use rayon::prelude::*;
 use super::angle::Meeting;
 use super::apart::apart;
 use super::figure::{End, Figure, Finding, PatchEdge, Place, Verdict};
+use super::matched::Matched;
 use super::standing::{Standing, judge};
 use crate::bezier::Side;
 use crate::patch_set::{Demand, PatchSet, PieceId, SeamEnd};
 use crate::scalar::Bracket;
 use crate::topology::{Contact, EdgeId, Stretch, Topology};
+
+/// A step of curvature below this over the set's size is as good as none.
+const CURVATURE_FLOOR: f64 = 1e-6;
 
 /// One seam: all that two patch edges have in common.
 #[derive(Debug, Clone)]
@@ -30,8 +34,8 @@ pub struct SurveyedSeam {
     pub gap: Figure,
     /// The angle of the tangent planes in degrees; `None` for edges apart.
     pub angle_deg: Option<Figure>,
-    /// The step of normal curvature in 1/mm, sampled: its bracket's upper end
-    /// is infinite, since nothing is proved of it.
+    /// The step of normal curvature in 1/mm; its bracket's upper end is infinite
+    /// where the curvature grows without limit.
     pub curvature_per_mm: Option<Figure>,
     /// What is demanded.
     pub demand: Demand,
@@ -90,9 +94,10 @@ impl Survey {
         contacts.sort_by_key(|(a, b, c)| (*a, *b, c.edges));
         let groups: Vec<&[(End, End, &Contact)]> =
             contacts.chunk_by(|p, q| (p.0, p.1) == (q.0, q.1)).collect();
+        let floor = CURVATURE_FLOOR / topology.size();
         let mut seams: Vec<SurveyedSeam> = groups
             .par_iter()
-            .map(|group| survey(set, group))
+            .map(|group| survey(set, group, floor))
             .filter(|seam| {
                 // Pieces of one patch need no mention where they go on smoothly.
                 !(seam.between.0 == seam.and.0
@@ -178,7 +183,7 @@ pub(super) fn place(set: &PatchSet, edges: [EdgeId; 2], at: [f64; 2]) -> Place {
     }
 }
 
-fn survey(set: &PatchSet, group: &[(End, End, &Contact)]) -> SurveyedSeam {
+fn survey(set: &PatchSet, group: &[(End, End, &Contact)], floor: f64) -> SurveyedSeam {
     let (between, and, _) = group[0];
     let mut length = 0.0;
     let (mut gap, mut angle, mut curvature) = (None, None, None);
@@ -207,16 +212,13 @@ fn survey(set: &PatchSet, group: &[(End, End, &Contact)]) -> SurveyedSeam {
         raise(&mut gap, contact.gap, || {
             place(set, contact.edges, [contact.gap_at, foot.t])
         });
-        let found = meeting.angle(set);
+        let matched = Matched::new(&meeting, set);
+        let found = meeting.angle_of(set, &matched);
         raise(&mut angle, found.bracket, || {
             place(set, contact.edges, found.at)
         });
-        if let Some(step) = meeting.curvature_step(set) {
-            let bracket = Bracket {
-                proved: f64::INFINITY,
-                attained: step.difference_per_mm,
-            };
-            raise(&mut curvature, bracket, || {
+        if let Some(step) = meeting.curvature_of(set, &matched, floor) {
+            raise(&mut curvature, step.bracket, || {
                 place(set, contact.edges, step.at)
             });
         }

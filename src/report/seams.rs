@@ -90,8 +90,8 @@ pub struct SeamLine {
     pub gap: FigureLine,
     /// Angle of the tangent planes, degrees; null for edges apart.
     pub angle_deg: Option<FigureLine>,
-    /// Step of normal curvature across the seam, 1/mm. Sampled: `proved` is
-    /// null.
+    /// Step of normal curvature across the seam, 1/mm. `proved` is null where
+    /// the curvature grows without limit.
     pub curvature_per_mm: Option<FigureLine>,
     /// `G0`, `G1`, `G2`, `crease` or `open`.
     pub demand: Demand,

@@ -45,7 +45,7 @@ impl SeamReport {
         }
         writeln!(
             out,
-            "figures: attained value, then the proved upper bound in brackets; curvature is sampled; a demand in brackets follows from the angle"
+            "figures: attained value, then the proved upper bound in brackets; a demand in brackets follows from the angle"
         )?;
         if !self.seams.is_empty() {
             writeln!(out)?;
@@ -188,9 +188,7 @@ fn cells(seam: &SeamLine) -> [String; 8] {
         },
         bracket(&seam.gap),
         seam.angle_deg.as_ref().map_or_else(dash, bracket),
-        seam.curvature_per_mm
-            .as_ref()
-            .map_or_else(dash, |c| figure(c.attained)),
+        seam.curvature_per_mm.as_ref().map_or_else(dash, bracket),
         length(seam.length),
         format!("{} | {}", edge(&seam.between), edge(&seam.and)),
     ]

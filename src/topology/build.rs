@@ -59,6 +59,7 @@ impl Topology {
             nodes,
             contacts,
             loops,
+            size,
         })
     }
 }

@@ -81,9 +81,16 @@ pub struct Topology {
     pub(crate) nodes: Vec<Node>,
     pub(crate) contacts: Vec<Contact>,
     pub(crate) loops: Vec<Vec<SpanId>>,
+    pub(crate) size: f64,
 }
 
 impl Topology {
+    /// The diagonal of the box of all control points.
+    #[must_use]
+    pub fn size(&self) -> f64 {
+        self.size
+    }
+
     /// All edges; an [`EdgeId`] is its index.
     #[must_use]
     pub fn edges(&self) -> &[Edge] {
