@@ -31,6 +31,8 @@ pub mod format;
 
 pub mod report;
 
+pub mod picture;
+
 pub mod demo;
 
 pub mod cli;

@@ -214,6 +214,7 @@ fn the_readme_names_only_what_can_be_typed_and_all_of_it() {
             "tessellate",
             "audit",
             "seams",
+            "draw",
             "check",
             "demo",
             "completions",

@@ -9,6 +9,7 @@ mod audit;
 mod check;
 mod completions;
 mod demo;
+mod draw;
 mod interrupt;
 mod man;
 mod outcome;
@@ -27,7 +28,8 @@ Examples:
   chordwise demo -o front.ron                      a set to try things on
   chordwise check front.ron                        what is wrong with it
   chordwise tessellate front.ron -o front.glb      a proved mesh
-  chordwise seams front.ron                        how its patches meet";
+  chordwise seams front.ron                        how its patches meet
+  chordwise draw front.ron -o front.png            a picture of it";
 
 const ENDINGS: &str = "\
 Every command has examples of its own: chordwise tessellate --help
@@ -58,6 +60,7 @@ enum Command {
     Tessellate(tessellate::TessellateArguments),
     Audit(audit::AuditArguments),
     Seams(seams::SeamsArguments),
+    Draw(draw::DrawArguments),
     Check(check::CheckArguments),
     Demo(demo::DemoArguments),
     Completions(completions::CompletionsArguments),
@@ -72,6 +75,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
             Command::Check(arguments) => arguments.run(),
             Command::Completions(arguments) => arguments.run(),
             Command::Demo(arguments) => arguments.run(),
+            Command::Draw(arguments) => arguments.run(),
             Command::Man(arguments) => arguments.run(),
             Command::Seams(arguments) => arguments.run(),
             Command::Tessellate(arguments) => arguments.run(),

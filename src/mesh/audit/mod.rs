@@ -156,6 +156,38 @@ impl Audit {
         Ok(audit)
     }
 
+    /// The proved deviation of every triangle, the larger of both directions;
+    /// what cannot be placed on its patch is infinite. Findings are not looked
+    /// for: this is for a mesh that was proved as it was made.
+    ///
+    /// # Errors
+    /// [`AuditError`] where mesh and set cannot be compared.
+    pub fn by_triangle(
+        set: &PatchSet,
+        evidence: &Evidence,
+        chord: Tolerance,
+    ) -> Result<Vec<f64>, AuditError> {
+        let topology = Topology::build(set)?;
+        let mut cells = cell::cells(set, evidence, &mut Vec::new());
+        let mut present = vec![false; set.pieces().len()];
+        for cell in &cells {
+            present[cell.piece] = true;
+        }
+        let placed = cells.len();
+        let fills = covered(set, &topology, &cells, &present, &mut Vec::new());
+        cells.extend(fills);
+        let figures = proof::Prover::new(set, evidence, &cells, chord.get()).prove();
+        let mut proved = vec![f64::INFINITY; evidence.faces.len()];
+        for cell in &cells[..placed] {
+            proved[cell.face] = 0.0;
+        }
+        for (cell, of) in cells.iter().zip(&figures) {
+            let most = &mut proved[cell.face];
+            *most = most.max(of.to_mesh.max(of.to_surface));
+        }
+        Ok(proved)
+    }
+
     /// The larger proved bound of the two directions.
     #[must_use]
     pub fn proved(&self) -> f64 {

@@ -1,0 +1,25 @@
+//! Pictures that need no graphics processor: a z-buffer rasteriser of our own,
+//! shadings computed from the surfaces, legends, seams, sections.
+
+mod camera;
+mod canvas;
+mod colour;
+mod curves;
+mod legend;
+mod lettering;
+mod lights;
+mod marks;
+mod paint;
+mod picture;
+mod raster;
+mod scene;
+
+pub use camera::{Camera, View, Window};
+pub use canvas::{Anchor, Canvas};
+pub use colour::{Colour, Ramp, Scale, mix, panel_colour, round_up, srgb, to_srgb};
+pub use curves::{SeamCurve, borders, deciding, finding_bytes, finding_colour, seam_curves};
+pub use lights::Lights;
+pub use paint::{Curvature, Shading};
+pub use picture::{Focus, Picture, PictureOptions};
+pub use raster::{Fragment, Raster};
+pub use scene::{NoEvidence, Scene, Sight, largest_principal};
