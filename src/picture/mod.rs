@@ -13,6 +13,7 @@ mod paint;
 mod picture;
 mod raster;
 mod scene;
+mod setup;
 
 pub use camera::{Camera, View, Window};
 pub use canvas::{Anchor, Canvas};
