@@ -2,9 +2,9 @@
 
 use super::canvas::Anchor;
 use super::colour::{Colour, srgb};
+use super::composition::Picture;
 use super::curves::{SeamCurve, finding_colour};
 use super::legend::Swatch;
-use super::picture::Picture;
 use crate::continuity::{Finding, Verdict};
 
 /// Numbers shown at most; further ones would hide what they mark.

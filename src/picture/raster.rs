@@ -253,11 +253,11 @@ fn cover(
         let mut at = setup
             .edges
             .map(|[a, b, c]| a * x0 * STEPS + b * y * STEPS + c);
-        let mut pixel = ((y - top) * tile + x0 - left) as usize;
+        let first = ((y - top) * tile + x0 - left) as usize;
         let mut depth = setup.depth[0] * (x0 * STEPS) as f64
             + setup.depth[1] * (y * STEPS) as f64
             + setup.depth[2];
-        for _ in x0..x1 {
+        for pixel in first..first + (x1 - x0).max(0) as usize {
             if (0..3).all(|k| at[k] + extremes[k].1 >= 0) {
                 let whole = (0..3).all(|k| at[k] + extremes[k].0 >= 0);
                 let (ids, deep) = (&mut ids[pixel], &mut deep[pixel]);
@@ -270,11 +270,10 @@ fn cover(
                     }
                 }
             }
-            for k in 0..3 {
-                at[k] += setup.edges[k][0] * STEPS;
+            for (at, edge) in at.iter_mut().zip(&setup.edges) {
+                *at += edge[0] * STEPS;
             }
             depth += setup.depth[0] * STEPS as f64;
-            pixel += 1;
         }
     }
 }

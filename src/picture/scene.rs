@@ -127,11 +127,29 @@ impl<'a> Scene<'a> {
         })
     }
 
+    /// The patch's own (u, v) of corner `k` of a triangle.
+    #[must_use]
+    pub fn corner(&self, triangle: usize, k: usize) -> [f64; 2] {
+        self.places[triangle][k]
+    }
+
+    /// Gaussian and mean curvature at corner `k` of a triangle.
+    #[must_use]
+    pub fn corner_curvatures(&self, triangle: usize, k: usize) -> Option<(f64, f64)> {
+        let mut weights = [0.0; 3];
+        weights[k] = 1.0;
+        self.curvatures(triangle, weights)
+    }
+
     /// Gaussian and mean curvature at the middle of a triangle's parameters.
     #[must_use]
     pub fn middle_curvatures(&self, triangle: usize) -> Option<(f64, f64)> {
+        self.curvatures(triangle, [1.0 / 3.0; 3])
+    }
+
+    fn curvatures(&self, triangle: usize, weights: [f64; 3]) -> Option<(f64, f64)> {
         let piece = &self.set.pieces()[self.piece(triangle)];
-        let [u, v] = local(piece, &self.places[triangle], [1.0 / 3.0; 3]);
+        let [u, v] = local(piece, &self.places[triangle], weights);
         let (gaussian, mean) = piece.surface.jet(u, v).gaussian_and_mean()?;
         let flipped = self.set.patches()[piece.patch.index()].flipped;
         Some((gaussian, if flipped { -mean } else { mean }))
