@@ -201,7 +201,7 @@ fn limits_beyond_all_measure_are_refused_before_the_work() {
         let file = file.to_str().unwrap();
         let err = refused(&[&[file, "-o", "-", "--as", "ply"], &limit[..]].concat());
         assert!(
-            err.contains("triangles would be needed; at most 5e8 are made"),
+            err.contains("triangles are needed; at most 5.0e7 are to be made"),
             "{limit:?}: {err}"
         );
     }

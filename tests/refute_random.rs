@@ -75,7 +75,7 @@ fn outcome(seed: u64) -> Result<(Manner, Result<usize, String>), String> {
                 MeshError::Sampling(_) => "sampling",
                 MeshError::Tessellation(_) => "unproved",
                 MeshError::Empty => "empty",
-                MeshError::TooMany { .. } => "too many",
+                MeshError::TooMany { .. } | MeshError::Memory { .. } => "too many",
             };
             return Ok((manner, Err(kind.to_owned())));
         }

@@ -5,6 +5,7 @@ use std::path::{Path, PathBuf};
 use clap::Args;
 
 use super::Outcome;
+use super::message;
 use super::progress::Progress;
 use super::source;
 use super::style::OutputStyle;
@@ -92,8 +93,7 @@ impl AuditArguments {
             OutputStyle::Text => report.text(),
             OutputStyle::Json => serde_json::to_string_pretty(&report)? + "\n",
         };
-        // A reader who has gone misses the report, not the verdict.
-        let _ = std::io::Write::write_all(&mut std::io::stdout(), text.as_bytes());
+        message::report(&text, false)?;
         Ok(if report.findings.is_empty() {
             Outcome::Done
         } else {

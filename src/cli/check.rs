@@ -41,14 +41,14 @@ impl CheckArguments {
         } else {
             Outcome::Refused
         };
-        match self.print(&read, &mut io::stdout().lock()) {
+        let mut out = io::stdout().lock();
+        match self.print(&read, &mut out).and_then(|()| out.flush()) {
             Ok(()) => outcome,
             // Whoever reads our output may stop when they have seen enough.
             Err(error) if error.kind() == io::ErrorKind::BrokenPipe => outcome,
-            Err(error) => {
-                anstream::eprintln!("error: the result cannot be written: {error}");
-                Outcome::Refused
-            }
+            Err(error) => Outcome::refuse(format_args!(
+                "standard output: cannot write the report; {error}"
+            )),
         }
     }
 

@@ -3,6 +3,8 @@
 use std::fs::{self, File};
 use std::io;
 use std::path::{Path, PathBuf};
+#[cfg(unix)]
+use std::sync::Arc;
 use std::sync::{Mutex, MutexGuard, Once, PoisonError};
 
 use tempfile::NamedTempFile;
@@ -20,6 +22,32 @@ fn half_written() -> MutexGuard<'static, Vec<PathBuf>> {
     HALF_WRITTEN.lock().unwrap_or_else(PoisonError::into_inner)
 }
 
+/// From here on an interrupt cleans up and ends the program with 130.
+pub(super) fn watch() {
+    WATCH.call_once(|| {
+        #[cfg(unix)]
+        outlive_size_limit();
+        // It fails where a signal is ignored already, by the wish of whoever
+        // started the program. Then it stays so.
+        let _ = ctrlc::try_set_handler(|| {
+            let files = half_written();
+            for file in files.iter() {
+                let _ = fs::remove_file(file);
+            }
+            std::process::exit(INTERRUPTED);
+        });
+    });
+}
+
+/// Lets writing beyond a file-size limit fail, as writing to a full disk does,
+/// where it would end the program and leave a half-written file.
+#[cfg(unix)]
+fn outlive_size_limit() {
+    // A handler that sets a flag nobody looks at. Where it cannot be set the
+    // limit still ends the program.
+    let _ = signal_hook::flag::register(signal_hook::consts::SIGXFSZ, Arc::default());
+}
+
 /// A half-written file, removed when dropped, at an interrupt, a hang-up or a
 /// request to terminate.
 #[derive(Debug)]
@@ -31,17 +59,7 @@ pub(super) struct Pending {
 impl Pending {
     /// Lists the file that `create` makes.
     pub(super) fn create(create: impl FnOnce() -> io::Result<NamedTempFile>) -> io::Result<Self> {
-        WATCH.call_once(|| {
-            // It fails where a signal is ignored already, by the wish of whoever
-            // started the program. Then it stays so.
-            let _ = ctrlc::try_set_handler(|| {
-                let files = half_written();
-                for file in files.iter() {
-                    let _ = fs::remove_file(file);
-                }
-                std::process::exit(INTERRUPTED);
-            });
-        });
+        watch();
         let mut files = half_written();
         let file = create()?;
         let path = file.path().to_owned();

@@ -6,12 +6,15 @@ use std::process::ExitCode;
 use clap::{Parser, Subcommand};
 
 mod audit;
+mod budget;
 mod check;
 mod completions;
 mod demo;
+mod disk;
 mod draw;
 mod interrupt;
 mod man;
+mod message;
 mod outcome;
 mod output;
 mod panels;
@@ -41,7 +44,7 @@ unreadable, refused or unprovable.";
 #[derive(Debug, Parser)]
 #[command(
     name = "chordwise",
-    version,
+    version = env!("CHORDWISE_VERSION"),
     about = "Certified meshes and seam reports from parametric patch sets",
     before_help = EXAMPLES,
     after_help = ENDINGS,

@@ -3,6 +3,8 @@
 use std::fmt::Display;
 use std::process::ExitCode;
 
+use super::message::say;
+
 /// The three endings, which are the exit codes 0, 1 and 2.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Outcome {
@@ -21,7 +23,7 @@ impl Outcome {
         reason = "so that it can stand where a function of an error is wanted"
     )]
     pub(super) fn refuse(why: impl Display) -> Self {
-        anstream::eprintln!("error: {why}");
+        say(format_args!("error: {why}"));
         Self::Refused
     }
 }

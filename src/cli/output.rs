@@ -4,16 +4,16 @@
 //! and renamed, so that a reader finds the old file or the new one and never a
 //! mix. A link is followed: what it points to is replaced, the link stays. What
 //! is no plain file (a device, a named pipe) is written in place. An interrupt
-//! removes what is half written and ends the program with 130.
+//! removes what is half written and ends the program with 130. The steps on
+//! the disk are in `disk`.
 
-use std::fs::{self, File, OpenOptions};
+use std::fs::{self, OpenOptions};
 use std::io::{self, ErrorKind, Write};
 use std::path::{Path, PathBuf};
 
-use tempfile::NamedTempFile;
 use thiserror::Error;
 
-use super::interrupt;
+use super::{disk, interrupt};
 use crate::format::FormatError;
 
 /// Why a result did not get to where it should go.
@@ -62,6 +62,7 @@ impl Output {
     /// [`OutputError`] where it is a folder or one of the inputs, or where its
     /// folder is missing.
     pub(crate) fn open(name: &Path, inputs: &[&Path]) -> Result<Self, OutputError> {
+        interrupt::watch();
         if name.as_os_str() == "-" {
             return Ok(Self::Standard);
         }
@@ -92,6 +93,8 @@ impl Output {
                 folder: folder.to_owned(),
             });
         }
+        // Tried out now, and not after an hour of work.
+        disk::create(folder).map_err(|error| system(name, "make a file beside it", error))?;
         Ok(Self::File {
             name: name.to_owned(),
             target,
@@ -148,54 +151,20 @@ fn replace<T>(
     job: impl FnOnce(&mut dyn Write) -> Result<T, FormatError>,
 ) -> Result<T, OutputError> {
     let folder = folder_of(target);
-    let mut pending = interrupt::Pending::create(|| create(folder))
-        .map_err(|error| system(name, "make a file beside it", error))?;
-    let done = job(pending.file()).map_err(|error| failed(name, error))?;
-    if let Ok(old) = fs::metadata(target) {
-        // Whoever restricted the file wants its successor restricted too.
-        fs::set_permissions(pending.path(), old.permissions())
-            .map_err(|error| system(name, "keep its permissions", error))?;
-    }
-    pending
-        .file()
-        .sync_all()
-        .map_err(|error| system(name, "sync it", error))?;
-    pending
-        .persist(target)
-        .map_err(|error| system(name, "put it in place", error))?;
-    sync_folder(folder).map_err(|error| system(folder, "sync it", error))?;
+    let mut pending =
+        disk::create(folder).map_err(|error| system(name, "make a file beside it", error))?;
+    let done = job(&mut disk::Written(pending.file())).map_err(|error| failed(name, error))?;
+    disk::permit(&pending, target).map_err(|error| system(name, "keep its permissions", error))?;
+    disk::sync(&mut pending).map_err(|error| system(name, "sync it", error))?;
+    disk::rename(pending, target).map_err(|error| system(name, "put it in place", error))?;
+    disk::sync_folder(folder).map_err(|error| {
+        system(
+            name,
+            "be sure that it lasts: its folder was not synced",
+            error,
+        )
+    })?;
     Ok(done)
-}
-
-/// A file with a name of its own, readable to whom the process's mask allows.
-fn create(folder: &Path) -> io::Result<NamedTempFile> {
-    let mut builder = tempfile::Builder::new();
-    builder.prefix(".chordwise-").suffix(".part");
-    #[cfg(unix)]
-    {
-        use std::os::unix::fs::PermissionsExt;
-        builder.permissions(fs::Permissions::from_mode(0o666));
-    }
-    builder.tempfile_in(folder)
-}
-
-/// Makes the renaming last. Systems that cannot sync a folder say so, and are
-/// believed.
-fn sync_folder(folder: &Path) -> io::Result<()> {
-    if !cfg!(unix) {
-        return Ok(());
-    }
-    match File::open(folder).and_then(|folder| folder.sync_all()) {
-        Err(error)
-            if matches!(
-                error.kind(),
-                ErrorKind::InvalidInput | ErrorKind::Unsupported | ErrorKind::PermissionDenied
-            ) =>
-        {
-            Ok(())
-        }
-        result => result,
-    }
 }
 
 /// What a path means once links are followed, whether it exists or not.
@@ -303,6 +272,59 @@ mod tests {
         assert!(error.to_string().contains("mesh.obj: cannot write it; "));
         assert_eq!(fs::read_to_string(&name).unwrap(), "old");
         assert_eq!(names(folder.path()), ["mesh.obj"]);
+    }
+
+    /// Whichever step fails, and however, the file is the old one or, where only
+    /// the folder was not synced, the new one, whole; and nothing lies beside it.
+    #[test]
+    fn every_step_can_fail_and_nothing_is_lost() {
+        use super::disk::Step;
+        const EIO: i32 = 5;
+        const ENOSPC: i32 = 28;
+        let folder = tempfile::tempdir().unwrap();
+        let name = folder.path().join("mesh.obj");
+        let blocks = 7;
+        let save = || {
+            Output::open(&name, &[])?.write(|out| {
+                for block in 0..blocks {
+                    out.write_all(&[block; 1000])?;
+                }
+                Ok(())
+            })
+        };
+        let mut tried = 0;
+        for (step, times) in [
+            (Step::Create, 1),
+            (Step::Write, usize::from(blocks)),
+            (Step::Permit, 1),
+            (Step::Sync, 1),
+            (Step::Rename, 1),
+            (Step::SyncFolder, 1),
+        ] {
+            for (after, code) in (0..times).flat_map(|n| [(n, EIO), (n, ENOSPC)]) {
+                for old in [None, Some("old")] {
+                    match old {
+                        None => drop(fs::remove_file(&name)),
+                        Some(text) => fs::write(&name, text).unwrap(),
+                    }
+                    let error = disk::broken::with(step, after, code, save).unwrap_err();
+                    let said = error.to_string();
+                    assert!(said.contains("mesh.obj: cannot "), "{said}");
+                    assert!(said.contains(&io::Error::from_raw_os_error(code).to_string()));
+                    let left = fs::read(&name).ok();
+                    if step == Step::SyncFolder {
+                        assert_eq!(left.unwrap().len(), 7000);
+                    } else {
+                        assert_eq!(left.as_deref(), old.map(str::as_bytes), "{step:?}");
+                    }
+                    assert!(names(folder.path()).len() <= 1, "{step:?}: litter");
+                    tried += 1;
+                }
+            }
+        }
+        assert_eq!(tried, 4 * 12);
+        save().unwrap();
+        assert_eq!(fs::metadata(&name).unwrap().len(), 7000);
     }
 
     #[test]

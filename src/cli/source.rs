@@ -3,6 +3,7 @@
 use std::io::Read;
 use std::path::Path;
 
+use super::message::say;
 use crate::patch_set::{Diagnostic, Faults, PatchSet, Reading};
 
 /// How many diagnostics are shown in full; a script that goes wrong can make
@@ -26,16 +27,16 @@ pub(super) fn read(path: &Path) -> Result<Reading, Faults> {
 pub(super) fn show_faults(faults: &Faults) {
     if faults.list.iter().all(|fault| fault.position.is_none()) {
         // Of the file as a whole: there is no line to show.
-        anstream::eprintln!("error: {faults}");
+        say(format_args!("error: {faults}"));
         return;
     }
     show(&faults.list, &faults.source_name);
     let count = faults.list.len();
     let plural = if count == 1 { "fault" } else { "faults" };
-    anstream::eprintln!(
+    say(format_args!(
         "{}: {count} {plural}; the set is not used",
         faults.source_name
-    );
+    ));
 }
 
 /// Shows all warnings on standard error, in colour on a terminal.
@@ -45,9 +46,9 @@ pub(super) fn show_warnings(reading: &Reading) {
 
 fn show(list: &[Diagnostic], source_name: &str) {
     for diagnostic in list.iter().take(SHOWN) {
-        anstream::eprintln!("{}\n", diagnostic.render(source_name, true));
+        say(format_args!("{}\n", diagnostic.render(source_name, true)));
     }
     if list.len() > SHOWN {
-        anstream::eprintln!("and {} more", list.len() - SHOWN);
+        say(format_args!("and {} more", list.len() - SHOWN));
     }
 }

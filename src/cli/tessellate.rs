@@ -1,6 +1,5 @@
 //! `chordwise tessellate`: from a patch set to a proved mesh in a file.
 
-use std::io::Write;
 use std::path::PathBuf;
 use std::time::Instant;
 
@@ -8,15 +7,17 @@ use clap::Args;
 use clap::builder::{PossibleValuesParser, TypedValueParser};
 
 use super::Outcome;
+use super::budget::BudgetArguments;
+use super::message::report;
 use super::output::Output;
 use super::panels::panels;
 use super::progress::Progress;
 use super::source;
 use super::style::OutputStyle;
 use crate::format::{self, Format, FormatError, Layout, WriteOptions};
-use crate::mesh::{Meshed, Strips};
+use crate::mesh::{Meshed, Prediction, Strips};
 use crate::patch_set::{PanelId, PatchSet, PieceId};
-use crate::report::{SecondsLine, Summary};
+use crate::report::{Forecast, SecondsLine, Summary};
 use crate::sampling::Limits;
 use crate::scalar::{Length, Point, Tolerance, Vector};
 
@@ -27,6 +28,7 @@ Examples:
   chordwise tessellate front.ron -o front.ply --normal-angle 10 --max-edge 25
   chordwise tessellate front.ron --as obj -o - | gzip > front.obj.gz
   chordwise tessellate front.ron -o front.ply --evidence
+  chordwise tessellate front.ron -o front.glb --chord 0.001 --dry-run
 
 The format follows the extension. Every triangle is proved to lie within the
 chord tolerance of the surface, and the surface of the mesh, or nothing is
@@ -89,6 +91,14 @@ pub(super) struct TessellateArguments {
     /// that `chordwise audit` can prove a PLY file anew
     #[arg(long)]
     evidence: bool,
+
+    #[command(flatten)]
+    budget: BudgetArguments,
+
+    /// Say how many triangles, bytes and seconds it would take, and write
+    /// nothing. The file is named all the same: its extension says the format
+    #[arg(long)]
+    dry_run: bool,
 
     /// How the summary is printed
     #[arg(long, value_enum, default_value_t)]
@@ -186,11 +196,29 @@ impl TessellateArguments {
         );
         let wanted = self.wanted(set)?;
         let of = |piece: PieceId| wanted[piece.index()];
-        let made = if self.evidence {
-            Meshed::with_evidence(set, &held, of, |name| progress.stage(name))?
-        } else {
-            Meshed::new(set, &held, of, |name| progress.stage(name))?
-        };
+        let budget = self.budget.budget();
+        if self.dry_run {
+            let stage = |name| progress.stage(name);
+            let prediction = Prediction::new(set, &held, of, self.evidence, stage)?;
+            let options = WriteOptions {
+                layout,
+                normals: self.normals,
+                ..WriteOptions::new(chord)
+            };
+            let written = format::predict(&prediction, set, format, &options)?;
+            let refused = prediction.affordable(&budget).err();
+            drop(progress);
+            let why = refused.as_ref().map(ToString::to_string);
+            let forecast = Forecast::new(set, &limits, &prediction, format, &written, why);
+            let text = match self.format {
+                OutputStyle::Text => forecast.text(),
+                OutputStyle::Json => serde_json::to_string_pretty(&forecast)? + "\n",
+            };
+            report(&text, false)?;
+            return Ok(refused.map_or(Outcome::Done, Outcome::refuse));
+        }
+        let stage = |name| progress.stage(name);
+        let made = Meshed::within(set, &held, &budget, of, self.evidence, stage)?;
         progress.stage("finding strips");
         let clock = Instant::now();
         let strips = Strips::of(&made.mesh);
@@ -216,7 +244,7 @@ impl TessellateArguments {
             OutputStyle::Text => summary.text(),
             OutputStyle::Json => serde_json::to_string_pretty(&summary)? + "\n",
         };
-        tell(standard, &text);
+        report(&text, standard)?;
         Ok(Outcome::Done)
     }
 
@@ -271,14 +299,4 @@ fn extents(set: &PatchSet) -> (Point, Point) {
         bound(f64::min, f64::INFINITY),
         bound(f64::max, f64::NEG_INFINITY),
     )
-}
-
-/// The summary goes where the mesh does not.
-fn tell(standard: bool, text: &str) {
-    // The mesh is safe; a reader who has gone misses only the summary.
-    let _ = if standard {
-        std::io::stderr().write_all(text.as_bytes())
-    } else {
-        std::io::stdout().write_all(text.as_bytes())
-    };
 }

@@ -26,6 +26,7 @@ mod ply;
 mod ply_reading;
 mod rounding;
 mod sink;
+mod size;
 mod stl;
 
 use std::io::Write;
@@ -33,6 +34,7 @@ use std::io::Write;
 pub use error::FormatError;
 pub use kind::{Format, FormatNameError, Layout, LayoutNameError};
 pub use ply_reading::{EvidenceError, read_evidence};
+pub use size::{Counts, bytes_of, predict};
 
 use crate::mesh::{Mesh, Part, Strips};
 use crate::scalar::Tolerance;

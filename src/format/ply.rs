@@ -17,12 +17,34 @@ use std::io::Write;
 use super::names::Encoded;
 use super::normals::Normals;
 use super::sink::Sink;
-use super::{Format, FormatError, Layout, Written};
+use super::{Counts, Format, FormatError, Layout, Written};
 use crate::mesh::Mesh;
 use crate::scalar::Point;
 
 /// The parameters of a face's corners, as its properties are called.
 pub(super) const EVIDENCE: [&str; 6] = ["u0", "v0", "u1", "v1", "u2", "v2"];
+
+/// Bytes of a file with these counts.
+pub(super) fn bytes(counts: &Counts<'_>, layout: Layout, with_normals: bool) -> u64 {
+    let triangles = counts.triangles();
+    let vertices = match (layout, with_normals) {
+        (Layout::Triangles, _) => 3 * triangles,
+        (_, true) => counts.vertices,
+        (_, false) => counts.points,
+    };
+    let mut nowhere = std::io::sink();
+    let mut sink = Sink::new(&mut nowhere);
+    let shape = [vertices, triangles];
+    let head = header(counts.outline, shape, with_normals, &mut sink).and_then(|()| sink.finish());
+    let head = head.expect("writing to nowhere cannot fail");
+    let point = if with_normals { 48 } else { 24 };
+    let face = if counts.outline.evidence.is_some() {
+        13 + 52
+    } else {
+        13
+    };
+    head + point * vertices + face * triangles
+}
 
 pub(super) fn write(
     mesh: &Mesh,
@@ -48,7 +70,8 @@ pub(super) fn write(
         }
     }
     let mut sink = Sink::new(out);
-    header(mesh, vertices, with_normals, &mut sink)?;
+    let shape = [vertices as u64, mesh.triangles.len() as u64];
+    header(mesh, shape, with_normals, &mut sink)?;
     let normals = with_normals.then(|| Normals::of(mesh));
     let vertex = |sink: &mut Sink<'_>, point: Point, v: u32| {
         sink.doubles(point.coords.into())?;
@@ -108,7 +131,7 @@ pub(super) fn write(
 
 fn header(
     mesh: &Mesh,
-    vertices: usize,
+    [vertices, triangles]: [u64; 2],
     with_normals: bool,
     sink: &mut Sink<'_>,
 ) -> std::io::Result<()> {
@@ -135,7 +158,7 @@ fn header(
     for name in ["x", "y", "z"].iter().chain(normals) {
         writeln!(sink, "property double {name}")?;
     }
-    writeln!(sink, "element face {}", mesh.triangles.len())?;
+    writeln!(sink, "element face {triangles}")?;
     writeln!(sink, "property list uchar int vertex_indices")?;
     if mesh.evidence.is_some() {
         writeln!(sink, "property int patch")?;

@@ -11,6 +11,11 @@ use super::{Format, FormatError, Layout, Written};
 use crate::mesh::Mesh;
 use crate::scalar::{Tolerance, Vector};
 
+/// Bytes of a file with so many triangles.
+pub(super) fn bytes(triangles: u64) -> u64 {
+    84 + 50 * triangles
+}
+
 pub(super) fn write(
     mesh: &Mesh,
     chord: Tolerance,

@@ -1,19 +1,28 @@
 //! The whole way from a patch set to a proved mesh, stage by stage.
 
+use std::ops::Range;
 use std::time::Instant;
 
+use rayon::prelude::*;
 use thiserror::Error;
 
-use super::{Deviation, Mesh};
+use super::budget::as_float;
+use super::prediction::{Prediction, sizes};
+use super::rough::Size;
+use super::{Budget, Deviation, Mesh};
 use crate::patch_set::{PatchSet, PieceId};
 use crate::sampling::{Limits, Samples, SamplingError};
-use crate::tessellation::{TessellationError, floor, tessellate};
+use crate::tessellation::{Tessellation, TessellationError, floor, tessellate};
 use crate::topology::{EdgeId, Topology, TopologyError};
 
-/// Corners are numbered in 32 bits, three a triangle, and a mesh has more
-/// triangles than the least that would do: what needs more than this is refused
-/// before anything is set aside for it.
-const MOST_TRIANGLES: f64 = 5e8;
+/// A mesh has at most this many triangles for the size of its pieces, as far as
+/// has been seen: a size below the limits by so much needs no closer look.
+const BEYOND_DOUBT: f64 = 8.0;
+
+/// Pieces are filled in batches of about this size together, and the triangles
+/// counted in between: so a run that takes many more than was predicted ends
+/// soon after its limit.
+const BATCH: f64 = 1e6;
 
 /// Why no mesh was made.
 #[derive(Debug, Error)]
@@ -39,13 +48,32 @@ pub enum MeshError {
         /// The chord tolerance.
         chord: f64,
     },
-    /// More triangles than a mesh can number.
+    /// More triangles than are allowed.
     #[error(
-        "mesh: about {least:.0e} triangles would be needed; at most {MOST_TRIANGLES:.0e} are made - ask for a larger chord, normal angle or edge, or for fewer panels"
+        "mesh: {} {predicted:.1e} triangles are needed; at most {most:.1e} are to be made - a larger chord, normal angle or edge, fewer panels, or a higher --max-triangles lets the run through",
+        if *.least { "more than" } else { "about" }
     )]
     TooMany {
-        /// How few triangles would do for any of the limits: sampled.
-        least: f64,
+        /// How many are needed: sampled.
+        predicted: f64,
+        /// Whether that is how few would do at best, and not a prediction.
+        least: bool,
+        /// How many are allowed.
+        most: f64,
+    },
+    /// More memory than is allowed.
+    #[error(
+        "mesh: {triangles:.1e} triangles are predicted, which take about {:.1} GB of memory; at most {:.1} GB are to be taken - a larger chord, normal angle or edge, fewer panels, or a higher --max-memory lets the run through",
+        bytes / 1e9,
+        most / 1e9
+    )]
+    Memory {
+        /// How many triangles are predicted.
+        triangles: f64,
+        /// What they take, bytes.
+        bytes: f64,
+        /// What is allowed, bytes.
+        most: f64,
     },
     /// An edge cannot be sampled.
     #[error(transparent)]
@@ -110,7 +138,7 @@ impl Meshed {
         wanted: impl Fn(PieceId) -> bool + Sync,
         stage: impl FnMut(&'static str),
     ) -> Result<Self, MeshError> {
-        Self::make(set, limits, wanted, false, stage)
+        Self::within(set, limits, &Budget::default(), wanted, false, stage)
     }
 
     /// As [`Meshed::new`], and the mesh keeps the parameters of every corner
@@ -124,12 +152,19 @@ impl Meshed {
         wanted: impl Fn(PieceId) -> bool + Sync,
         stage: impl FnMut(&'static str),
     ) -> Result<Self, MeshError> {
-        Self::make(set, limits, wanted, true, stage)
+        Self::within(set, limits, &Budget::default(), wanted, true, stage)
     }
 
-    fn make(
+    /// As [`Meshed::new`], within a budget of one's own, with or without the
+    /// parameters of every corner.
+    ///
+    /// # Errors
+    /// [`MeshError`] says which stage failed, where and why, or that more would
+    /// be taken than the budget allows.
+    pub fn within(
         set: &PatchSet,
         limits: &Limits,
+        budget: &Budget,
         wanted: impl Fn(PieceId) -> bool + Sync,
         evidence: bool,
         mut stage: impl FnMut(&'static str),
@@ -147,14 +182,32 @@ impl Meshed {
         seconds.pairing = lap();
         let floor = whole_floor(set, &topology, limits, &wanted);
         let least = floor.max(least(set, limits, &wanted));
-        if least.is_nan() || least > MOST_TRIANGLES {
-            return Err(MeshError::TooMany { least });
+        if least.is_nan() || least > budget.triangles() {
+            return Err(MeshError::TooMany {
+                predicted: least,
+                least: true,
+                most: budget.triangles(),
+            });
+        }
+        let sizes = sizes(set, &topology, limits, &wanted);
+        let total: f64 = BEYOND_DOUBT * sizes.iter().map(|size| size.whole()).sum::<f64>();
+        let taken = Budget::predicted_bytes(total, set.pieces().len(), evidence);
+        if total > budget.triangles() || taken > budget.bytes() {
+            stage("predicting");
+            Prediction::of(set, &topology, limits, &wanted, evidence)?.affordable(budget)?;
         }
         stage("sampling seams");
         let samples = Samples::new(set, &topology, limits)?;
         seconds.sampling = lap();
         stage("tessellating and proving");
-        let filled = tessellate(set, &topology, &samples, limits, &wanted)?;
+        let filled = batches(
+            &sizes,
+            |batch| {
+                let within = |piece: PieceId| batch.contains(&piece.index()) && wanted(piece);
+                tessellate(set, &topology, &samples, limits, within)
+            },
+            budget,
+        )?;
         seconds.tessellation = lap();
         stage("assembling");
         let mesh = Mesh::assemble(set, &samples, &filled, evidence);
@@ -171,21 +224,57 @@ impl Meshed {
     }
 }
 
+/// Fills all pieces, batch by batch, and counts.
+fn batches(
+    sizes: &[Size],
+    fill: impl Fn(Range<usize>) -> Result<Tessellation, TessellationError>,
+    budget: &Budget,
+) -> Result<Tessellation, MeshError> {
+    let mut pieces = Vec::with_capacity(sizes.len());
+    let mut made = 0;
+    while pieces.len() < sizes.len() {
+        let start = pieces.len();
+        let mut size = 0.0;
+        let count = sizes[start..].iter().take_while(|own| {
+            size += own.whole();
+            size <= BATCH
+        });
+        let batch = start..start + count.count().max(1);
+        let filled = fill(batch.clone())?;
+        let filled = filled.pieces.into_iter().skip(start).take(batch.len());
+        pieces.extend(filled.inspect(|piece| {
+            made += piece
+                .as_ref()
+                .map_or(0, |piece| piece.triangles.len() as u64);
+        }));
+        if made > budget.triangles {
+            return Err(MeshError::TooMany {
+                predicted: as_float(made),
+                least: true,
+                most: budget.triangles(),
+            });
+        }
+    }
+    Ok(Tessellation { pieces })
+}
+
 /// The floor of all pieces for which `wanted` holds.
 fn whole_floor(
     set: &PatchSet,
     topology: &Topology,
     limits: &Limits,
-    wanted: &impl Fn(PieceId) -> bool,
+    wanted: &(impl Fn(PieceId) -> bool + Sync),
 ) -> f64 {
-    let pieces = set.pieces().iter().enumerate();
-    pieces
+    let pieces = set.pieces().par_iter().enumerate();
+    let floors: Vec<f64> = pieces
         .filter(|(index, _)| wanted(PieceId::new(*index)))
         .map(|(index, piece)| {
             let collapsed = [0, 1, 2, 3].map(|side| topology.edges()[index * 4 + side].collapsed);
             floor(&piece.surface, collapsed, limits.chord)
         })
-        .sum()
+        .collect();
+    // Added in order, whatever the threads did.
+    floors.iter().sum()
 }
 
 /// How few triangles would do for the largest edge and the normal angle, where
@@ -216,7 +305,11 @@ fn least(set: &PatchSet, limits: &Limits, wanted: &impl Fn(PieceId) -> bool) -> 
 
 /// Joined edges must lie closer together than the chord: nothing could be
 /// proved across a wider gap.
-fn bridgeable(set: &PatchSet, topology: &Topology, limits: &Limits) -> Result<(), MeshError> {
+pub(super) fn bridgeable(
+    set: &PatchSet,
+    topology: &Topology,
+    limits: &Limits,
+) -> Result<(), MeshError> {
     for seam in topology.seams() {
         let master = &topology.spans()[seam.spans[0].index()];
         for other in seam.spans.iter().map(|s| &topology.spans()[s.index()]) {

@@ -2,18 +2,23 @@
 
 mod assemble;
 mod audit;
+mod budget;
 mod deviation;
 mod edges;
 mod job;
 mod measure;
 mod model;
+mod prediction;
+mod rough;
 mod storage;
 mod strips;
 
 pub use audit::{Audit, AuditError, Evidence, Face, Fault, Finding, Worst};
+pub use budget::{Budget, MOST_BYTES, MOST_TRIANGLES};
 pub use deviation::Deviation;
 pub use job::{MeshError, Meshed, Stages};
 pub use measure::Measures;
 pub use model::{Mesh, Part, Vertex};
+pub use prediction::Prediction;
 pub use storage::Storage;
 pub use strips::{RESTART, Strips};

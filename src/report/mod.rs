@@ -2,6 +2,7 @@
 
 mod audit;
 mod caution;
+mod forecast;
 mod seams;
 mod seams_text;
 mod summary;
@@ -9,6 +10,7 @@ mod summary_text;
 
 pub use audit::{AuditDeviation, AuditReport, FindingLine};
 pub use caution::CAUTION;
+pub use forecast::Forecast;
 pub use seams::{
     CrowdLine, EdgeName, FigureLine, LoopLine, NearMissLine, PlaceLine, SeamLine, SeamReport,
     SeamSummary, ToleranceLines,
