@@ -1,6 +1,10 @@
 //! What a dry run says, against the run; and that limits hold before the work.
 #![allow(clippy::unwrap_used, reason = "a panic is how a test fails")]
-#![allow(clippy::cast_precision_loss, reason = "counts far below 2^52")]
+#![allow(
+    clippy::cast_precision_loss,
+    clippy::cast_possible_truncation,
+    reason = "counts far below 2^52"
+)]
 
 use std::fs;
 use std::path::Path;
