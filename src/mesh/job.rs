@@ -63,9 +63,9 @@ pub enum MeshError {
     },
     /// More memory than is allowed.
     #[error(
-        "mesh: {triangles:.1e} triangles are predicted, which take about {:.1} GB of memory; at most {:.1} GB are to be taken - a larger chord, normal angle or edge, fewer panels, or a higher --max-memory lets the run through",
-        bytes / 1e9,
-        most / 1e9
+        "mesh: {triangles:.1e} triangles are predicted, which take about {} of memory; at most {} are to be taken - a larger chord, normal angle or edge, fewer panels, or a higher --max-memory lets the run through",
+        size(*bytes),
+        size(*most)
     )]
     Memory {
         /// How many triangles are predicted.
@@ -86,6 +86,15 @@ pub enum MeshError {
         "no triangles: every patch that was asked for is a point or a line; nothing can be meshed"
     )]
     Empty,
+}
+
+/// Bytes in the unit that suits them.
+fn size(bytes: f64) -> String {
+    if bytes < 1e9 {
+        format!("{:.0} MB", bytes / 1e6)
+    } else {
+        format!("{:.1} GB", bytes / 1e9)
+    }
 }
 
 /// Wall-clock seconds by stage.
