@@ -30,7 +30,14 @@ fn snapshot() -> PathBuf {
 fn played(case: &cases::Case) -> String {
     let folder = tempfile::tempdir().unwrap();
     for (name, bytes) in &case.files {
-        fs::write(folder.path().join(name), bytes).unwrap();
+        let path = folder.path().join(name);
+        match bytes.strip_prefix(b"-> ") {
+            #[cfg(unix)]
+            Some(to) => {
+                std::os::unix::fs::symlink(str::from_utf8(to).unwrap(), path).unwrap();
+            }
+            _ => fs::write(path, bytes).unwrap(),
+        }
     }
     let output = Command::new(assert_cmd::cargo::cargo_bin!("chordwise"))
         .args(&case.arguments)
@@ -52,7 +59,7 @@ fn played(case: &cases::Case) -> String {
         case.arguments.join(" ")
     );
     for line in &said[from..] {
-        writeln!(text, "{}", line.trim_end()).unwrap();
+        writeln!(text, "{}", without_places(line.trim_end())).unwrap();
     }
     let code = output.status.code().unwrap();
     let litter = fs::read_dir(folder.path()).unwrap().count();
@@ -63,6 +70,26 @@ fn played(case: &cases::Case) -> String {
     );
     writeln!(text, "exit {code}\n").unwrap();
     text
+}
+
+/// A line with the figures taken out that any change of the mesher moves: those
+/// with six decimals.
+fn without_places(line: &str) -> String {
+    let mut out = String::new();
+    let mut number = String::new();
+    for letter in line.chars().chain(std::iter::once('\n')) {
+        if letter.is_ascii_digit() || (letter == '.' && !number.is_empty()) {
+            number.push(letter);
+            continue;
+        }
+        match number.split_once('.') {
+            Some((_, decimals)) if decimals.len() == 6 => out.push_str("0.######"),
+            _ => out.push_str(&number),
+        }
+        number.clear();
+        out.push(letter);
+    }
+    out.trim_end().to_owned()
 }
 
 /// What no test of decent size can provoke, as it would be said.
@@ -174,7 +201,9 @@ fn templates() -> Vec<(String, Vec<String>)> {
 }
 
 /// Messages of the library alone, which no command passes on.
-const NOT_OF_THE_PROGRAM: [&str; 4] = [
+const NOT_OF_THE_PROGRAM: [&str; 5] = [
+    // The program makes its meshes with evidence where it draws them.
+    "src/picture/scene.rs",
     // What the parser of nets says is said of the patch set's fields instead.
     "src/bezier/net.rs",
     // Broken invariants, for tests.
@@ -226,6 +255,10 @@ fn messages_are_in_the_house_style() {
             continue;
         };
         seen += 1;
+        if message.contains("(os error") || message.contains(": Open is demanded") {
+            // The system has its own words, the schema its own spelling.
+            continue;
+        }
         assert!(!message.ends_with('.'), "{message}: a full stop");
         let first = message.rsplit(": ").next().unwrap().chars().next().unwrap();
         assert!(!first.is_uppercase(), "{message}: a capital");

@@ -27,7 +27,7 @@ const MOST_SAMPLES: usize = 100_000_000;
 pub enum SamplingError {
     /// No number of samples holds the edge within the chord.
     #[error(
-        "patch `{patch}`, edge {side}: {count} samples do not bring the edge within the chord tolerance {chord}, the normal angle and the largest edge asked for; they are below what the edge and its coordinates can resolve - use larger ones"
+        "patch `{patch}`, edge {side}: {count} samples do not bring the edge within the chord tolerance {chord:.3e}, the normal angle and the largest edge asked for; they are below what the edge and its coordinates can resolve - use larger ones"
     )]
     Unreachable {
         /// The patch of the master edge.

@@ -1,7 +1,7 @@
 //! What provokes each message: files and a command line.
 
-/// A case: its name, the files that it needs, and what is typed after
-/// `chordwise`.
+/// A case: its name, the files that it needs (a text that begins with `-> ` is a
+/// link), and what is typed after `chordwise`.
 pub(crate) struct Case {
     pub(crate) name: String,
     pub(crate) files: Vec<(&'static str, Vec<u8>)>,
@@ -60,9 +60,7 @@ fn spline(name: &str, degree: &str, knots: &str) -> Case {
     let knots_v = "[0, 0, 0, 1, 1, 1]";
     surface(
         name,
-        &format!(
-            "BSpline(degree: {degree}, knots_u: {knots}, knots_v: {knots_v}, net: [{SPLINE}])"
-        ),
+        &format!("BSpline(degree: {degree}, knots: ({knots}, {knots_v}), net: [{SPLINE}])"),
     )
 }
 
@@ -120,10 +118,7 @@ fn surfaces() -> Vec<Case> {
             "Bezier(net: [[(0, 0, 0), (0, 2e9, 0)], [(1, 0, 0), (1, 1, 0)]])",
         ),
         surface("not positive", "Sphere(radius: 0)"),
-        surface(
-            "negative",
-            "Cone(radius_start: -1, radius_end: 2, height: 5)",
-        ),
+        surface("negative", "Cone(radius: -1, top_radius: 2, height: 5)"),
         surface(
             "weight",
             &format!("Bezier({NET}, weights: [[1, 1], [1, 0]])"),
@@ -139,11 +134,14 @@ fn surfaces() -> Vec<Case> {
         surface("degree", "Bezier(net: [[(0, 0, 0)], [(1, 0, 0)]])"),
         surface(
             "too few points",
-            "BSpline(degree: (3, 1), knots_u: [0, 0, 1, 1], knots_v: [0, 0, 1, 1], net: [[(0, 0, 0), (0, 1, 0)], [(1, 0, 0), (1, 1, 0)]])",
+            "BSpline(degree: (3, 1), knots: ([0, 0, 1, 1], [0, 0, 1, 1]), net: [[(0, 0, 0), (0, 1, 0)], [(1, 0, 0), (1, 1, 0)]])",
         ),
         spline("knot count", "(2, 2)", "[0, 0, 1, 1]"),
         spline("knot order", "(2, 2)", "[0, 0, 0, 1, 0.5, 1]"),
-        spline("knot multiplicity", "(1, 2)", "[0, 0.5, 0.5, 0.5, 1]"),
+        surface(
+            "knot multiplicity",
+            "BSpline(degree: (1, 1), knots: ([0, 0, 0.5, 0.5, 1, 1], [0, 0, 1, 1]), net: [[(0, 0, 0), (0, 1, 0)], [(1, 0, 0), (1, 1, 0)], [(2, 0, 0), (2, 1, 0)], [(3, 0, 0), (3, 1, 0)]])",
+        ),
         spline("empty domain", "(2, 2)", "[0, 0, 1, 1, 2, 2]"),
         surface("index", "Bezier(indexed: [[0, 1], [2, 3]])"),
         surface(
@@ -164,10 +162,7 @@ fn surfaces() -> Vec<Case> {
         ),
         surface("latitude", "Sphere(radius: 1, latitude_deg: (-90, 120))"),
         surface("spindle", "Torus(major: 1, minor: 2)"),
-        surface(
-            "flat cone",
-            "Cone(radius_start: 1, radius_end: 1, height: 0)",
-        ),
+        surface("flat cone", "Cone(radius: 1, top_radius: 1, height: 0)"),
         surface(
             "profile on axis",
             "Revolution(profile: Line(from: (0, 0, 0), to: (0, 0, 5)))",
@@ -278,6 +273,17 @@ fn usage() -> Vec<Case> {
             "no size of memory",
             "tessellate ball.ron -o a.stl --max-memory 8GiB",
         ),
+        ball("no PNG", "draw ball.ron -o ball.jpg"),
+        ball("no such seam", "draw ball.ron -o ball.png --zoom-seam 900"),
+        ball(
+            "no direction of view",
+            "draw ball.ron -o ball.png --direction 0,0,0",
+        ),
+        ball(
+            "no range",
+            "draw ball.ron -o ball.png --shading mean --range 2:1",
+        ),
+        ball("no size", "draw ball.ron -o ball.png --size 1x1"),
         ball("no manual", "man tesselate"),
         ball("no shell", "completions ed"),
         ball("too many panels", "demo --panels 0 -o a.ron"),
@@ -327,7 +333,7 @@ fn runs() -> Vec<Case> {
             "single precision",
             &[(
                 "far.ron",
-                "(units: m, patches: [(name: \"a\", surface: Plane(origin: (500000, 0, 0), u: (1, 0, 0), v: (0, 1, 0)))])",
+                "(units: m, patches: [(name: \"a\", surface: Plane(origin: (500000.3, 0.7, 0.1), u: (1, 0, 0), v: (0, 1, 0)))])",
             )],
             "tessellate far.ron -o a.stl",
         ),
@@ -400,6 +406,30 @@ fn runs() -> Vec<Case> {
         ply(
             "audit in another unit",
             &head(&xyz.replace("vertex 1", "vertex 0"), face).replace("unit mm", "unit m"),
+        ),
+        case(
+            "audit of a face without corners",
+            &[
+                BALL,
+                (
+                    "mesh.ply",
+                    &(head(xyz, &face.replace("face 0", "face 1")) + &"\0".repeat(24 + 65)),
+                ),
+            ],
+            "audit mesh.ply ball.ron",
+        ),
+        case(
+            "links that go round",
+            &[BALL, ("round.stl", "-> round.stl")],
+            "tessellate ball.ron -o round.stl",
+        ),
+        case(
+            "a chord below all numbers",
+            &[(
+                "metres.ron",
+                "(units: m, patches: [(name: \"ball\", surface: Sphere(radius: 20))])",
+            )],
+            "tessellate metres.ron -o a.stl --chord 5e-324mm",
         ),
         ball("audit of no file", "audit mesh.ply ball.ron"),
     ]
