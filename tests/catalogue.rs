@@ -234,7 +234,7 @@ fn no_message_is_missing() {
                     None => false,
                 })
             };
-            !parts.is_empty() && !lines.iter().any(|line| said(line))
+            !parts.is_empty() && !lines.iter().any(said)
         })
         .map(|(name, _)| name)
         .collect();
