@@ -2,8 +2,9 @@
 #![allow(clippy::unwrap_used, reason = "a panic is how a test fails")]
 
 use approx::assert_relative_eq;
-use chordwise::mesh::{Measures, Mesh, RESTART, Storage, Strips};
-use chordwise::scalar::Vector;
+use chordwise::format::{Format, FormatError, Layout, WriteOptions, write};
+use chordwise::mesh::{Measures, Mesh, Part, RESTART, Storage, Strips};
+use chordwise::scalar::{Tolerance, Vector};
 use proptest::prelude::*;
 
 #[path = "formats/shapes.rs"]
@@ -230,4 +231,31 @@ proptest! {
         mesh.triangles = triangles;
         check(&mesh);
     }
+}
+
+/// Found by fuzzing: a panel of nothing but triangles that repeat a corner has
+/// no strip, and made a mesh without points, which readers refuse.
+#[test]
+fn a_panel_without_strips_makes_no_mesh_in_glb() {
+    let mut mesh = shapes::case(Vector::zeros());
+    let options = WriteOptions {
+        layout: Some(Layout::Strips),
+        ..WriteOptions::new(Tolerance::new(0.05).unwrap())
+    };
+    let start = mesh.triangles.len();
+    mesh.triangles.push([0, 0, 0]);
+    mesh.panels.push("pinched".to_owned());
+    mesh.parts.push(Part {
+        name: "pinched/1".to_owned(),
+        panel: mesh.panels.len() - 1,
+        triangles: start..start + 1,
+    });
+    let mut bytes = Vec::new();
+    write(&mesh, Format::Glb, &options, &mut bytes).unwrap();
+    let read = gltf::Gltf::from_slice(&bytes).unwrap();
+    assert!(read.meshes().all(|m| m.name() != Some("pinched")));
+    mesh.parts.drain(..mesh.parts.len() - 1);
+    bytes.clear();
+    let error = write(&mesh, Format::Glb, &options, &mut bytes).unwrap_err();
+    assert!(matches!(error, FormatError::Empty) && bytes.is_empty());
 }

@@ -52,6 +52,9 @@ pub(super) fn write(
         _ => None,
     };
     let streams = Streams::of(mesh, layout, strips);
+    if streams.panels.is_empty() {
+        return Err(FormatError::Empty);
+    }
     let vertices = streams.vertices.len() as u64;
     let binary = 2 * TRIPLE * vertices + INDEX * streams.indices.len() as u64;
     let json = Document::of(mesh, layout, &streams, &rounding, binary).padded();

@@ -46,6 +46,11 @@ impl<'a> Streams<'a> {
             if layout != Layout::Triangles {
                 streams.number(&mut local, vertices.start, indices.start);
             }
+            if streams.vertices.len() == vertices.start {
+                // Nothing but triangles that repeat a corner: these are in no
+                // strip, and the standard wants at least one point a mesh.
+                continue;
+            }
             streams.panels.push(Panel {
                 name,
                 vertices: vertices.start..streams.vertices.len(),

@@ -89,6 +89,7 @@ fuzz_target!(|bytes: &[u8]| {
                     mesh.evidence = None;
                 }
                 match write(&mesh, format, &options, &mut out) {
+                    // Refused before the first byte, or not at all.
                     Err(error) => assert!(out.is_empty(), "{error} after {} bytes", out.len()),
                     Ok(written) => {
                         assert_eq!(written.bytes, out.len() as u64);
