@@ -2,13 +2,12 @@
 
 use std::path::PathBuf;
 
-use clap::Args;
+use clap::{Args, ValueEnum};
 
 use super::Outcome;
 use super::output::Output;
 use super::panels::panels;
 use super::source;
-use super::style::OutputStyle;
 use crate::continuity::Survey;
 use crate::report::SeamReport;
 use crate::topology::Topology;
@@ -18,9 +17,22 @@ Examples:
   chordwise seams front.ron
   chordwise seams front.ron --panel bonnet --panel wing
   chordwise seams front.ron --format json -o seams.json
+  chordwise seams front.ron --format csv -o seams.csv
 
 Exit code 0: every seam is as demanded. 1: there are findings. 2: the set
 cannot be used.";
+
+/// How a seam report is printed.
+#[derive(Debug, Clone, Copy, Default, PartialEq, Eq, ValueEnum)]
+enum SeamStyle {
+    /// For people
+    #[default]
+    Text,
+    /// For programs: everything
+    Json,
+    /// For tables: one line a seam
+    Csv,
+}
 
 /// List every seam with its gap, angle, demand and verdict, worst first
 #[derive(Debug, Args)]
@@ -32,7 +44,7 @@ pub(super) struct SeamsArguments {
 
     /// How the report is printed
     #[arg(long, value_enum, default_value_t)]
-    format: OutputStyle,
+    format: SeamStyle,
 
     /// Only seams and loops in which this panel takes part; may be repeated
     #[arg(long = "panel", value_name = "NAME")]
@@ -70,8 +82,9 @@ impl SeamsArguments {
         let survey = Survey::of(set, &topology);
         let report = SeamReport::new(set, &survey, panels.as_deref());
         let text = match self.format {
-            OutputStyle::Text => report.text(),
-            OutputStyle::Json => match serde_json::to_string_pretty(&report) {
+            SeamStyle::Text => report.text(),
+            SeamStyle::Csv => report.csv(),
+            SeamStyle::Json => match serde_json::to_string_pretty(&report) {
                 Ok(text) => text + "\n",
                 Err(error) => return Outcome::refuse(error),
             },

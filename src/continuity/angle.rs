@@ -24,7 +24,7 @@ use super::strip::Strip;
 use super::taylor::{Taylor, cross, dot};
 use crate::patch_set::PatchSet;
 use crate::scalar::{Bracket, Vector};
-use crate::topology::EdgeId;
+use crate::topology::{Contact, EdgeId};
 
 /// Parts after which a bracket stays as wide as it is.
 const PARTS: usize = 256;
@@ -34,6 +34,9 @@ const RATIO: f64 = 1.015;
 
 /// Angles below this, in radians, are not told from zero (1e-6 degrees).
 const FLOOR: f64 = 1.745e-8;
+
+/// A determinant below this fraction of what it could be is rounding.
+const SAME: f64 = 1e-12;
 
 /// The common stretch of two edges, run from end to end together.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -53,9 +56,23 @@ pub struct Angle {
     pub bracket: Bracket,
     /// The parameters on both edges where `bracket.attained` is reached.
     pub at: [f64; 2],
+    /// Whether the coefficients of det(A1, T, A2) vanish to rounding, and the
+    /// normals point to one side: that proves the tangent planes equal all
+    /// along. Only where two polynomial sides share their parametrisation.
+    pub by_determinant: bool,
 }
 
 impl Meeting {
+    /// The stretch of a contact.
+    #[must_use]
+    pub fn of(contact: &Contact) -> Self {
+        Self {
+            edges: contact.edges,
+            first: contact.first,
+            second: contact.second,
+        }
+    }
+
     /// Whether the stated normals of the two patches point to one side of the
     /// joined surface. Decided by the sides alone: neighbours run opposite
     /// ways round their common edge.
@@ -105,7 +122,7 @@ fn counterclockwise(set: &PatchSet, edge: EdgeId) -> bool {
 }
 
 /// Both sides of a meeting, on one parameter 0 to 1.
-struct Sides<'a> {
+pub(super) struct Sides<'a> {
     strips: [Strip; 2],
     matched: &'a Matched,
 }
@@ -118,7 +135,7 @@ struct Part {
 }
 
 impl<'a> Sides<'a> {
-    fn new(meeting: &Meeting, set: &PatchSet, matched: &'a Matched) -> Self {
+    pub(super) fn new(meeting: &Meeting, set: &PatchSet, matched: &'a Matched) -> Self {
         let ranges = [meeting.first, meeting.second];
         let mut strips = [0, 1].map(|k| {
             let surface = &set.pieces()[meeting.edges[k].piece().index()].surface;
@@ -135,11 +152,29 @@ impl<'a> Sides<'a> {
 
     /// Angle in radians at place `s` of the first edge and the nearest place
     /// of the second, whose parameter is returned.
-    fn angle_at(&self, s: f64, guess: Option<f64>) -> Option<(f64, f64)> {
+    pub(super) fn angle_at(&self, s: f64, guess: Option<f64>) -> Option<(f64, f64)> {
         let t = self.matched.foot(s, guess);
         let a = self.strips[0].unit_normal(s)?;
         let b = self.strips[1].unit_normal(t)?;
         Some((a.cross(&b).norm().atan2(a.dot(&b)), t))
+    }
+
+    /// See [`Angle::by_determinant`].
+    fn determinant_vanishes(&self) -> bool {
+        if !self.matched.aligned() {
+            return false;
+        }
+        let [Some(a), Some(b)] = self.strips.each_ref().map(|s| s.across.as_ref()) else {
+            return false;
+        };
+        let along = self.strips[0].place.derivative();
+        let turned = along.product(b, |t, b: Vector| t.cross(&b));
+        let determinant = a.product(&turned, |a: Vector, b: Vector| a.dot(&b));
+        let largest = |list: &[Vector]| list.iter().map(Vector::norm).fold(0.0, f64::max);
+        let scale = largest(&a.0) * largest(&b.0) * largest(&along.0);
+        let [n, m] = self.strips.each_ref().map(|s| &s.normal);
+        let agree = n.product(m, |p: Vector, q: Vector| p.dot(&q));
+        determinant.0.iter().all(|c| c.abs() <= SAME * scale) && agree.0.iter().all(|d| *d > 0.0)
     }
 
     /// Proved bound of the angle over a part whose edges run at speeds of their
@@ -244,6 +279,7 @@ impl<'a> Sides<'a> {
                 attained: best.0.to_degrees(),
             },
             at: self.matched.on_edges([best.1, best.2]),
+            by_determinant: best.0 <= FLOOR && self.determinant_vanishes(),
         }
     }
 }

@@ -24,6 +24,15 @@ impl PatchEdge {
         !matches!(self, Self::Side(_))
     }
 
+    /// The side, if it is one.
+    #[must_use]
+    pub fn side(self) -> Option<Side> {
+        match self {
+            Self::Side(side) => Some(side),
+            Self::U(_) | Self::V(_) => None,
+        }
+    }
+
     /// The edge in words: `U0`, or `u=0.5` for a line inside `patch`.
     #[must_use]
     pub fn label(self, patch: &Patch) -> String {

@@ -72,6 +72,27 @@ impl Matched {
         nearest_from(&self.curves[1], &point, guess.unwrap_or(s), [0.0, 1.0]).t
     }
 
+    /// The parameter on the second edge nearest to a parameter of the first.
+    pub(super) fn foot_of_edge(&self, at: f64) -> f64 {
+        let s = self.on_curve(at);
+        self.on_edges([s, self.foot(s, None)])[1]
+    }
+
+    /// The first curve's parameter for one of the first edge.
+    pub(super) fn on_curve(&self, at: f64) -> f64 {
+        let [from, to] = self.meeting.first;
+        let x = (at - from) / (to - from);
+        // Back from `parameter_before`.
+        x / (x + self.lambda[0] * (1.0 - x))
+    }
+
+    /// Distance of place `s` of the first curve from the second, and the
+    /// parameter there.
+    pub(super) fn distance(&self, s: f64) -> (f64, f64) {
+        let t = self.foot(s, None);
+        ((self.curves[0].eval(s) - self.curves[1].eval(t)).norm(), t)
+    }
+
     /// Parameters on the curves as parameters of the two edges.
     pub(super) fn on_edges(&self, at: [f64; 2]) -> [f64; 2] {
         let ranges = [self.meeting.first, self.meeting.second];

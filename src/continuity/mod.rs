@@ -4,13 +4,17 @@
 mod angle;
 mod apart;
 mod bend;
+mod boundary;
 mod curvature;
 #[cfg(test)]
 mod curvature_tests;
+mod failing;
 mod figure;
 mod follow;
 mod matched;
+mod place;
 mod rows;
+mod seam;
 mod standing;
 mod strip;
 mod survey;
@@ -21,6 +25,10 @@ mod taylor;
 mod tests;
 
 pub use angle::{Angle, Meeting};
+pub use boundary::{Crowd, OpenLoop};
 pub use curvature::CurvatureStep;
+pub use failing::Failing;
 pub use figure::{End, Figure, Finding, PatchEdge, Place, Verdict};
-pub use survey::{Crowd, OpenLoop, Survey, SurveyedSeam, patch_edge};
+pub use place::patch_edge;
+pub use seam::{RATIO_FLOOR_PER_MM, SurveyedSeam};
+pub use survey::Survey;

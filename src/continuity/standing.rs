@@ -1,7 +1,7 @@
 //! From figures to demand, finding and verdict.
 
 use super::figure::{Finding, Verdict};
-use crate::patch_set::{Demand, Tolerances};
+use crate::patch_set::{Demand, SeamLimits, Tolerances};
 use crate::scalar::Bracket;
 
 /// How a seam stands.
@@ -18,16 +18,17 @@ pub(super) struct Standing {
 /// a crease from the crease angle on.
 pub(super) fn judge(
     tolerances: &Tolerances,
+    limits: &SeamLimits,
     stated: Option<Demand>,
     joined: bool,
     gap: Bracket,
     angle_deg: Bracket,
-    curvature_per_mm: Option<f64>,
+    curvature_per_mm: Option<Bracket>,
 ) -> Standing {
-    let tangent = tolerances.tangent_deg.get();
+    let tangent = limits.tangent_deg.value;
     let creased = angle_deg.attained >= tolerances.crease_deg.get();
     let demand = stated.unwrap_or(if creased { Demand::Crease } else { Demand::G1 });
-    let gap_units = gap.attained / tolerances.gap.get();
+    let gap_units = gap.attained / limits.gap.value;
     if demand == Demand::Open {
         return Standing {
             demand,
@@ -74,8 +75,11 @@ pub(super) fn judge(
     if let (Demand::G2, Some(limit), Some(step)) =
         (demand, tolerances.curvature_per_mm, curvature_per_mm)
     {
-        let steps = step / limit.get();
+        let steps = step.attained / limit.get();
         severity = severity.max(steps);
+        if step.proved > limit.get() && verdict == Verdict::Met {
+            verdict = Verdict::Undecided;
+        }
         if steps > 1.0 && finding == Finding::Tangent {
             finding = Finding::Curvature;
             verdict = Verdict::Fault;

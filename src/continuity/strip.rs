@@ -23,6 +23,8 @@ pub(super) struct Strip {
     pub(super) weight: Bernstein<f64>,
     /// A positive multiple of S_u x S_v inside the edge.
     pub(super) normal: Bernstein<Vector>,
+    /// The derivative across; for polynomial pieces.
+    pub(super) across: Option<Bernstein<Vector>>,
 }
 
 impl Strip {
@@ -47,6 +49,7 @@ impl Strip {
             cross(&x_across, &x_along)
         };
         Self {
+            across: (!surface.is_rational()).then_some(x_across),
             place: x,
             weight: w,
             normal: normal.scaled(rows.turned()).deflated(),
@@ -59,6 +62,7 @@ impl Strip {
             place: self.place.restrict(range),
             weight: self.weight.restrict(range),
             normal: self.normal.restrict(range),
+            across: self.across.as_ref().map(|a| a.restrict(range)),
         }
     }
 
@@ -74,11 +78,13 @@ impl Strip {
                 place: place.0,
                 weight: weight.0,
                 normal: normal.0,
+                across: None,
             },
             Self {
                 place: place.1,
                 weight: weight.1,
                 normal: normal.1,
+                across: None,
             },
         ]
     }

@@ -6,7 +6,7 @@
 
 use serde::{Deserialize, Deserializer, Serialize, Serializer, de, ser::SerializeTuple};
 
-use super::Demand;
+use super::{Class, Demand};
 use crate::bezier::Side;
 use crate::scalar::LengthUnit;
 use crate::surface::Surface;
@@ -48,6 +48,9 @@ pub struct SetFile {
     /// Demands on seams.
     #[serde(default)]
     pub seams: Vec<SeamEntry>,
+    /// Tolerance classes of panels.
+    #[serde(default)]
+    pub classes: Vec<ClassEntry>,
 }
 
 impl SetFile {
@@ -91,6 +94,9 @@ impl From<Units> for LengthUnit {
 #[derive(Debug, Clone, Copy, PartialEq, Default, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 pub struct ToleranceEntry {
+    /// The class of the whole set, for what is not given as a number here.
+    #[serde(default)]
+    pub class: Option<Class>,
     /// Largest distance between mesh and surface. Default 0.1 mm.
     #[serde(default)]
     pub chord: Option<f64>,
@@ -206,6 +212,19 @@ pub struct SeamEntry {
     pub and: SeamEndEntry,
     /// What is asked.
     pub demand: Demand,
+    /// The tolerance class the seam is held to.
+    #[serde(default)]
+    pub class: Option<Class>,
+}
+
+/// The tolerance class of a panel, or of all panels that fit a pattern.
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct ClassEntry {
+    /// The panel; `*` stands for any run of letters.
+    pub of: String,
+    /// Its class.
+    pub class: Class,
 }
 
 /// One end of a seam as written: `("wing/1", U1)` for an edge, `"wing"` for
@@ -214,7 +233,8 @@ pub struct SeamEntry {
 pub enum SeamEndEntry {
     /// One edge of a patch.
     Edge(String, Side),
-    /// All edges of a panel, or of a patch if no panel has the name.
+    /// All edges of a panel, or of a patch if no panel has the name; with `*`
+    /// for any run of letters, of all panels that fit.
     Any(String),
 }
 

@@ -17,19 +17,22 @@ mod motion;
 mod name;
 mod reading;
 mod resolve;
+mod standard;
 mod tolerance;
 mod warning;
 
 pub use diagnostic::{Diagnostic, Faults, Finding, Position, Reading, render};
 pub use fault::SetFault;
 pub use file::{
-    Axis, CopyEntry, PatchEntry, PlaceEntry, SeamEndEntry, SeamEntry, SetFile, ToleranceEntry,
-    Units,
+    Axis, ClassEntry, CopyEntry, PatchEntry, PlaceEntry, SeamEndEntry, SeamEntry, SetFile,
+    ToleranceEntry, Units,
 };
 pub use model::{
     Demand, Panel, PanelId, Patch, PatchId, PatchSet, Piece, PieceId, SeamDemand, SeamEnd,
     Tolerances,
 };
+pub(crate) use standard::Standard;
+pub use standard::{Class, DemandSource, Limit, SeamLimits, Source};
 pub use tolerance::{
     DEFAULT_CHORD_MM, DEFAULT_CREASE_DEG, DEFAULT_GAP_MM, DEFAULT_SEARCH_GAPS, DEFAULT_TANGENT_DEG,
 };

@@ -5,6 +5,7 @@ use std::ops::Range;
 
 use serde::{Deserialize, Serialize};
 
+use super::{DemandSource, Standard};
 use crate::bezier::{BezierPatch, Side};
 use crate::scalar::{LengthUnit, Tolerance, id};
 
@@ -29,6 +30,8 @@ pub struct PatchSet {
     pub(crate) demands: Vec<SeamDemand>,
     /// The same demands by their two ends in ascending order.
     pub(crate) demand_of: BTreeMap<[SeamEnd; 2], Demand>,
+    /// Tolerance classes, and demands by pattern.
+    pub(crate) standard: Standard,
 }
 
 /// A named group of patches: the part of their names before the last `/`.
@@ -143,6 +146,8 @@ pub struct Tolerances {
     pub crease_deg: Tolerance,
     /// Largest difference of normal curvature at a G2 seam, 1/mm, if asked for.
     pub curvature_per_mm: Option<Tolerance>,
+    /// Wider gaps than `gap` that are to be closed in the mesh, if asked for.
+    pub close_gaps: Option<Tolerance>,
 }
 
 /// Pairs of widths (0 edge, 1 patch, 2 panel) in the order they are tried.
@@ -211,6 +216,35 @@ impl PatchSet {
     /// and of two statements the one whose wider end is narrower.
     #[must_use]
     pub fn demand(&self, a: (PatchId, Side), b: (PatchId, Side)) -> Option<Demand> {
+        self.statement(a, b).map(|(demand, _)| demand)
+    }
+
+    /// As [`PatchSet::demand`], and whether it was stated by name or by a
+    /// pattern of panel names. Names go before patterns; of patterns the first
+    /// that fits holds.
+    #[must_use]
+    pub fn statement(
+        &self,
+        a: (PatchId, Side),
+        b: (PatchId, Side),
+    ) -> Option<(Demand, DemandSource)> {
+        if let Some(demand) = self.narrowest(&self.demand_of, a, b) {
+            return Some((demand, DemandSource::Stated));
+        }
+        let rule = self.rule(a, b)?;
+        Some((rule.demand, DemandSource::Pattern))
+    }
+
+    /// The entry for the narrowest pair of ends.
+    pub(super) fn narrowest<T: Copy>(
+        &self,
+        map: &BTreeMap<[SeamEnd; 2], T>,
+        a: (PatchId, Side),
+        b: (PatchId, Side),
+    ) -> Option<T> {
+        if map.is_empty() {
+            return None;
+        }
         let ends = |(patch, side): (PatchId, Side)| {
             [
                 SeamEnd::Edge(patch, side),
@@ -222,7 +256,7 @@ impl PatchSet {
         NARROW_TO_WIDE.iter().find_map(|&[i, j]| {
             let mut key = [a[i], b[j]];
             key.sort_unstable();
-            self.demand_of.get(&key).copied()
+            map.get(&key).copied()
         })
     }
 

@@ -3,10 +3,11 @@
 
 use super::build::Build;
 use super::collector::Collector;
+use super::demand::Stated;
 use super::diagnostic::Diagnostic;
 use super::fault::SetFault;
 use super::file::SetFile;
-use super::{PatchSet, tolerance};
+use super::{PatchSet, Standard, tolerance};
 use crate::scalar::{LengthUnit, Point};
 use crate::surface::Step;
 
@@ -23,7 +24,18 @@ pub(super) fn resolve(file: SetFile) -> Result<(PatchSet, Vec<Diagnostic>), Vec<
     let gap = tolerances.as_ref().map_or(0.01, |t| t.gap.get());
     let warnings = build.patches(file.patches, &table, gap, &mut faults);
     build.copies(&file.copies, &mut faults);
-    let (demands, demand_of) = build.seams(&file.seams, &mut faults);
+    let Stated {
+        demands,
+        demand_of,
+        class_of,
+        rules,
+    } = build.seams(&file.seams, &mut faults);
+    let standard = Standard {
+        sources: tolerance::sources(&file.tolerance),
+        panels: build.classes(&file.classes, &mut faults),
+        class_of,
+        rules,
+    };
     match tolerances {
         Some(tolerances) if faults.list.is_empty() => Ok((
             PatchSet {
@@ -35,6 +47,7 @@ pub(super) fn resolve(file: SetFile) -> Result<(PatchSet, Vec<Diagnostic>), Vec<
                 pieces: build.pieces,
                 demands,
                 demand_of,
+                standard,
             },
             warnings,
         )),

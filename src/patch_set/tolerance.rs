@@ -1,9 +1,9 @@
 //! Tolerances: what the file says, and the defaults.
 
-use super::Tolerances;
 use super::collector::Collector;
 use super::fault::SetFault;
 use super::file::ToleranceEntry;
+use super::{Class, Source, Tolerances};
 use crate::scalar::{LengthUnit, Tolerance};
 use crate::surface::{MAX_COORDINATE, Step};
 
@@ -50,7 +50,9 @@ pub(super) fn resolve(
 
     let default = |value: f64| Tolerance::new(value).ok();
     let length = |mm: f64| default(mm / unit.in_mm());
-    let gap = gap?.or(length(DEFAULT_GAP_MM))?;
+    let class_gap = entry.class.map_or(DEFAULT_GAP_MM, Class::gap_mm);
+    let class_tangent = entry.class.map_or(DEFAULT_TANGENT_DEG, Class::tangent_deg);
+    let gap = gap?.or(length(class_gap))?;
     let search = match search? {
         Some(search) if search < gap => {
             faults.fault(
@@ -72,8 +74,18 @@ pub(super) fn resolve(
         max_edge: max_edge?,
         gap,
         search,
-        tangent_deg: tangent_deg?.or(default(DEFAULT_TANGENT_DEG))?,
+        tangent_deg: tangent_deg?.or(default(class_tangent))?,
         crease_deg: crease_deg?.or(default(DEFAULT_CREASE_DEG))?,
         curvature_per_mm: curvature_per_mm?,
+        close_gaps: None,
+    })
+}
+
+/// Where gap and tangent tolerance come from.
+pub(super) fn sources(entry: &ToleranceEntry) -> [Source; 2] {
+    [entry.gap, entry.tangent_deg].map(|given| match (given, entry.class) {
+        (Some(_), _) => Source::Set,
+        (None, Some(class)) => Source::SetClass(class),
+        (None, None) => Source::Default,
     })
 }

@@ -3,7 +3,10 @@
 mod audit;
 mod caution;
 mod forecast;
+mod panel_pairs;
+mod seam_line;
 mod seams;
+mod seams_csv;
 mod seams_text;
 mod summary;
 mod summary_text;
@@ -11,8 +14,7 @@ mod summary_text;
 pub use audit::{AuditDeviation, AuditReport, FindingLine};
 pub use caution::CAUTION;
 pub use forecast::Forecast;
-pub use seams::{
-    CrowdLine, EdgeName, FigureLine, LoopLine, NearMissLine, PlaceLine, SeamLine, SeamReport,
-    SeamSummary, ToleranceLines,
-};
+pub use panel_pairs::PanelPairLine;
+pub use seam_line::{EdgeName, FailingLine, FigureLine, LimitLine, PlaceLine, SeamLine};
+pub use seams::{CrowdLine, LoopLine, NearMissLine, SeamReport, SeamSummary, ToleranceLines};
 pub use summary::{DeviationLine, SecondsLine, StorageLine, Summary, WrittenLine};

@@ -4,12 +4,10 @@
 use serde::Serialize;
 
 use super::CAUTION;
-use crate::continuity::{End, Figure, Finding, Survey, SurveyedSeam, Verdict};
-use crate::patch_set::{Demand, PanelId, PatchSet};
-
-/// A patch edge: the patch's name, and the side (`U0`, `U1`, `V0`, `V1`) or
-/// the line inside the patch (`u=0.5`).
-pub type EdgeName = (String, String);
+use super::panel_pairs::{PanelPairLine, pairs};
+use super::seam_line::{EdgeName, SeamLine};
+use crate::continuity::{End, Finding, RATIO_FLOOR_PER_MM, Survey, SurveyedSeam, Verdict};
+use crate::patch_set::{DemandSource, PanelId, PatchSet};
 
 /// Everything `seams` tells.
 #[derive(Debug, Clone, Serialize)]
@@ -24,6 +22,8 @@ pub struct SeamReport {
     pub tolerances: ToleranceLines,
     /// Counts.
     pub summary: SeamSummary,
+    /// Seams by the two panels they join, worst first.
+    pub panel_pairs: Vec<PanelPairLine>,
     /// The seams, worst first.
     pub seams: Vec<SeamLine>,
     /// Seams of three edges or more, each a finding.
@@ -50,6 +50,10 @@ pub struct ToleranceLines {
     pub crease_deg: f64,
     /// Largest step of normal curvature, if a verdict on it is asked for.
     pub curvature_per_mm: Option<f64>,
+    /// Wider gaps than the tolerance that are closed in the mesh, if asked for.
+    pub close_gaps: Option<f64>,
+    /// Curvatures below this have no ratio.
+    pub ratio_floor_per_mm: f64,
 }
 
 /// Counts over the report.
@@ -61,6 +65,8 @@ pub struct SeamSummary {
     pub faults: usize,
     /// Of these not proved to be as demanded, though no place says otherwise.
     pub undecided: usize,
+    /// Seams whose gap is closed in the mesh though it is beyond the tolerance.
+    pub bridged: usize,
     /// Seams whose demand follows from their angle.
     pub inferred: usize,
     /// Seams across which the stated normals point to opposite sides.
@@ -71,60 +77,6 @@ pub struct SeamSummary {
     pub open_loops: usize,
     /// Their whole length.
     pub open_length: f64,
-}
-
-/// One seam.
-#[derive(Debug, Clone, Serialize)]
-pub struct SeamLine {
-    /// The edge of lesser name.
-    pub between: EdgeName,
-    /// The other edge.
-    pub and: EdgeName,
-    /// Length of the common stretch (quadrature, not proved).
-    pub length: f64,
-    /// Whether the mesh is joined all along.
-    pub joined: bool,
-    /// Whether the stated normals point to one side.
-    pub normals_agree: bool,
-    /// Hausdorff distance of the common stretches.
-    pub gap: FigureLine,
-    /// Angle of the tangent planes, degrees; null for edges apart.
-    pub angle_deg: Option<FigureLine>,
-    /// Step of normal curvature across the seam, 1/mm. `proved` is null where
-    /// the curvature grows without limit.
-    pub curvature_per_mm: Option<FigureLine>,
-    /// `G0`, `G1`, `G2`, `crease` or `open`.
-    pub demand: Demand,
-    /// `stated` in the file, or `inferred` from the angle.
-    pub demand_source: &'static str,
-    /// `tangent`, `curvature`, `break`, `crease`, `open`, `gap` or `apart`.
-    pub finding: String,
-    /// `met`, `undecided` or `fault`.
-    pub verdict: String,
-    /// The deciding figure in units of its tolerance.
-    pub severity: f64,
-}
-
-/// A figure as stated.
-#[derive(Debug, Clone, Copy, Serialize)]
-pub struct FigureLine {
-    /// Proved upper bound; null where nothing is proved.
-    pub proved: Option<f64>,
-    /// Attained value.
-    pub attained: f64,
-    /// Where it is attained.
-    pub at: PlaceLine,
-}
-
-/// A place on a seam.
-#[derive(Debug, Clone, Copy, Serialize)]
-pub struct PlaceLine {
-    /// In space, on the first patch.
-    pub point: [f64; 3],
-    /// (u, v) of the first patch.
-    pub between: [f64; 2],
-    /// (u, v) of the second patch.
-    pub and: [f64; 2],
 }
 
 /// A seam of three edges or more.
@@ -166,10 +118,7 @@ impl SeamReport {
         let counts = |end: &End| {
             panels.is_none_or(|list| list.contains(&set.patches()[end.0.index()].panel))
         };
-        let name = |end: &End| {
-            let patch = &set.patches()[end.0.index()];
-            (patch.name.clone(), end.1.label(patch))
-        };
+        let name = |end: &End| super::seam_line::name(set, end);
         let names = |ends: &[End]| ends.iter().map(name).collect::<Vec<_>>();
         let seams: Vec<&SurveyedSeam> = survey
             .seams
@@ -198,7 +147,7 @@ impl SeamReport {
             |what: &dyn Fn(&SurveyedSeam) -> bool| seams.iter().filter(|s| what(s)).count();
         let tolerances = set.tolerances();
         Self {
-            schema_version: 1,
+            schema_version: 2,
             name: set.name().to_owned(),
             unit: set.unit().symbol(),
             tolerances: ToleranceLines {
@@ -207,12 +156,15 @@ impl SeamReport {
                 tangent_deg: tolerances.tangent_deg.get(),
                 crease_deg: tolerances.crease_deg.get(),
                 curvature_per_mm: tolerances.curvature_per_mm.map(|t| t.get()),
+                close_gaps: tolerances.close_gaps.map(|t| t.get()),
+                ratio_floor_per_mm: RATIO_FLOOR_PER_MM,
             },
             summary: SeamSummary {
+                bridged: having(&|s| s.bridged),
                 seams: seams.len(),
                 faults: having(&|s| s.verdict == Verdict::Fault),
                 undecided: having(&|s| s.verdict == Verdict::Undecided),
-                inferred: having(&|s| !s.stated),
+                inferred: having(&|s| s.demand_source == DemandSource::Inferred),
                 normals_opposed: having(&|s| !s.normals_agree),
                 non_manifold: non_manifold.len(),
                 open_loops: open_loops.len(),
@@ -220,7 +172,7 @@ impl SeamReport {
             },
             near_misses: seams
                 .iter()
-                .filter(|s| s.finding == Finding::Gap)
+                .filter(|s| s.finding == Finding::Gap && !s.joined)
                 .map(|s| NearMissLine {
                     between: name(&s.between),
                     and: name(&s.and),
@@ -228,24 +180,8 @@ impl SeamReport {
                     length: s.length,
                 })
                 .collect(),
-            seams: seams
-                .iter()
-                .map(|s| SeamLine {
-                    between: name(&s.between),
-                    and: name(&s.and),
-                    length: s.length,
-                    joined: s.joined,
-                    normals_agree: s.normals_agree,
-                    gap: FigureLine::new(&s.gap),
-                    angle_deg: s.angle_deg.as_ref().map(FigureLine::new),
-                    curvature_per_mm: s.curvature_per_mm.as_ref().map(FigureLine::new),
-                    demand: s.demand,
-                    demand_source: if s.stated { "stated" } else { "inferred" },
-                    finding: s.finding.to_string(),
-                    verdict: s.verdict.to_string(),
-                    severity: s.severity,
-                })
-                .collect(),
+            panel_pairs: pairs(set, &seams),
+            seams: seams.iter().map(|s| SeamLine::new(set, s)).collect(),
             non_manifold,
             open_loops,
             caution: CAUTION,
@@ -256,21 +192,5 @@ impl SeamReport {
     #[must_use]
     pub fn has_findings(&self) -> bool {
         self.summary.faults + self.summary.undecided + self.summary.non_manifold > 0
-    }
-}
-
-impl FigureLine {
-    fn new(figure: &Figure) -> Self {
-        let proved = figure.bracket.proved;
-        let point = figure.at.point;
-        Self {
-            proved: proved.is_finite().then_some(proved),
-            attained: figure.bracket.attained,
-            at: PlaceLine {
-                point: [point.x, point.y, point.z],
-                between: figure.at.between,
-                and: figure.at.and,
-            },
-        }
     }
 }

@@ -2,7 +2,9 @@
 
 use std::fmt::Write;
 
-use super::seams::{EdgeName, FigureLine, LoopLine, SeamLine, SeamReport};
+use super::seam_line::{EdgeName, FailingLine, FigureLine, SeamLine};
+use super::seams::{LoopLine, SeamReport};
+use crate::patch_set::Demand;
 
 /// Edges of a loop named in full; the rest is counted.
 const LOOP_EDGES: usize = 6;
@@ -51,6 +53,7 @@ impl SeamReport {
             writeln!(out)?;
             self.write_table(out)?;
         }
+        self.write_pairs(out)?;
         for crowd in &self.non_manifold {
             let edges: Vec<String> = crowd.edges.iter().map(edge).collect();
             writeln!(
@@ -107,6 +110,58 @@ impl SeamReport {
         writeln!(out, "\n{}", self.caution)
     }
 
+    fn cells(&self, seam: &SeamLine) -> [String; 9] {
+        let demand = serde_json::to_value(seam.demand)
+            .ok()
+            .and_then(|v| v.as_str().map(str::to_owned))
+            .unwrap_or_default();
+        [
+            seam.verdict.clone(),
+            seam.finding.clone(),
+            // What the file does not state stands in brackets.
+            if seam.demand_source != "inferred" {
+                demand
+            } else {
+                format!("({demand})")
+            },
+            bracket(&seam.gap),
+            seam.angle_deg.as_ref().map_or_else(dash, bracket),
+            seam.curvature_per_mm.as_ref().map_or_else(dash, bracket),
+            length(seam.length),
+            held(seam, self.unit, self.tolerances.curvature_per_mm),
+            format!("{} | {}", edge(&seam.between), edge(&seam.and)),
+        ]
+    }
+
+    /// Pairs of panels with findings, worst first.
+    fn write_pairs(&self, out: &mut String) -> std::fmt::Result {
+        let bad = self.panel_pairs.iter();
+        let bad: Vec<_> = bad.filter(|p| p.faults + p.undecided > 0).collect();
+        if bad.is_empty() {
+            return Ok(());
+        }
+        writeln!(out, "\nby panels, worst first:")?;
+        for pair in bad {
+            let name = if pair.between == pair.and {
+                format!("within {}", pair.and)
+            } else {
+                format!("{} | {}", pair.between, pair.and)
+            };
+            writeln!(
+                out,
+                "  {name}: {} of {}{}, up to {:.1} x the tolerance, {} of {} {} fail",
+                many(pair.faults, "fault", "faults"),
+                many(pair.seams, "seam", "seams"),
+                some(pair.undecided, ", ", " undecided"),
+                pair.severity,
+                length(pair.failing_length),
+                length(pair.length),
+                self.unit
+            )?;
+        }
+        Ok(())
+    }
+
     fn write_table(&self, out: &mut String) -> std::fmt::Result {
         let head = [
             "verdict".to_owned(),
@@ -116,20 +171,21 @@ impl SeamReport {
             "angle deg".to_owned(),
             "curvature 1/mm".to_owned(),
             format!("length {}", self.unit),
+            "held against".to_owned(),
             "seam".to_owned(),
         ];
-        let rows: Vec<[String; 8]> = self.seams.iter().map(cells).collect();
+        let rows: Vec<[String; 9]> = self.seams.iter().map(|s| self.cells(s)).collect();
         let mut widths = head.each_ref().map(|h| h.chars().count());
         for row in &rows {
             for (width, cell) in widths.iter_mut().zip(row) {
                 *width = (*width).max(cell.chars().count());
             }
         }
-        let mut line = |cells: &[String; 8]| -> std::fmt::Result {
+        let mut line = |cells: &[String; 9]| -> std::fmt::Result {
             let mut text = String::new();
             for (k, (cell, width)) in cells.iter().zip(widths).enumerate() {
                 // Figures end in one column, words begin in one.
-                let width = if k == 7 { 0 } else { width };
+                let width = if k == 8 { 0 } else { width };
                 if (3..7).contains(&k) {
                     write!(text, "{cell:>width$}  ")?;
                 } else {
@@ -142,10 +198,10 @@ impl SeamReport {
         for (seam, row) in self.seams.iter().zip(&rows) {
             line(row)?;
             if seam.verdict != "met" {
-                let place = worst(seam);
+                let place = seam.deciding();
                 let [x, y, z] = place.at.point.map(length);
-                let mut cells = [const { String::new() }; 8];
-                cells[7] = format!(
+                let mut cells = [const { String::new() }; 9];
+                cells[8] = format!(
                     "  at ({x}, {y}, {z}): {} {}, {} {}",
                     seam.between.0,
                     parameters(place.at.between),
@@ -153,45 +209,47 @@ impl SeamReport {
                     parameters(place.at.and)
                 );
                 line(&cells)?;
+                for stretch in &seam.failing {
+                    cells[8] = failing(stretch, self.unit);
+                    line(&cells)?;
+                }
             }
         }
         Ok(())
     }
 }
 
-/// The figure that decided.
-fn worst(seam: &SeamLine) -> &FigureLine {
-    match (
-        seam.finding.as_str(),
-        &seam.angle_deg,
-        &seam.curvature_per_mm,
-    ) {
-        ("curvature", _, Some(step)) => step,
-        ("gap" | "apart" | "open", _, _) | (_, None, _) => &seam.gap,
-        (_, Some(angle), _) => angle,
+/// What the figures are held against, and where that comes from.
+fn held(seam: &SeamLine, unit: &str, curvature: Option<f64>) -> String {
+    let (gap, angle) = (&seam.gap_limit, &seam.angle_limit);
+    let mut text = match seam.demand {
+        Demand::Open => return dash(),
+        Demand::G0 | Demand::Crease => format!("{} {unit} ({})", gap.value, gap.source),
+        Demand::G1 | Demand::G2 if gap.source == angle.source => {
+            format!("{} {unit}, {} deg ({})", gap.value, angle.value, gap.source)
+        }
+        Demand::G1 | Demand::G2 => format!(
+            "{} {unit} ({}), {} deg ({})",
+            gap.value, gap.source, angle.value, angle.source
+        ),
+    };
+    if let (Demand::G2, Some(limit)) = (seam.demand, curvature) {
+        text += &format!(", {limit} 1/mm (set)");
     }
+    text
 }
 
-fn cells(seam: &SeamLine) -> [String; 8] {
-    let demand = serde_json::to_value(seam.demand)
-        .ok()
-        .and_then(|v| v.as_str().map(str::to_owned))
-        .unwrap_or_default();
-    [
-        seam.verdict.clone(),
-        seam.finding.clone(),
-        // What the file does not state stands in brackets.
-        if seam.demand_source == "stated" {
-            demand
-        } else {
-            format!("({demand})")
-        },
-        bracket(&seam.gap),
-        seam.angle_deg.as_ref().map_or_else(dash, bracket),
-        seam.curvature_per_mm.as_ref().map_or_else(dash, bracket),
-        length(seam.length),
-        format!("{} | {}", edge(&seam.between), edge(&seam.and)),
-    ]
+fn failing(stretch: &FailingLine, unit: &str) -> String {
+    let place = |point: [f64; 3]| {
+        let [x, y, z] = point.map(length);
+        format!("({x}, {y}, {z})")
+    };
+    format!(
+        "  fails from {} to {}, {} {unit}",
+        place(stretch.from.point),
+        place(stretch.to.point),
+        length(stretch.length)
+    )
 }
 
 fn dash() -> String {

@@ -70,6 +70,8 @@ pub struct Contact {
     /// tolerance (and half the shorter edge), the seam is not demanded open,
     /// and joining does not close up an edge shorter than the tolerance.
     pub joined: bool,
+    /// Whether it is joined only because wider gaps were to be closed.
+    pub bridged: bool,
 }
 
 /// Who meets whom in a patch set.

@@ -137,6 +137,7 @@ fn pair(
             gap: gap.bracket,
             gap_at: gap.at,
             joined: joined && joinable(a, b),
+            bridged: false,
         });
     }
 }

@@ -4,7 +4,8 @@ use std::collections::BTreeMap;
 
 use crate::bezier::{BezierPatch, Side};
 use crate::patch_set::{
-    Demand, Panel, PanelId, Patch, PatchId, PatchSet, Piece, SeamDemand, SeamEnd, Tolerances,
+    Demand, Panel, PanelId, Patch, PatchId, PatchSet, Piece, SeamDemand, SeamEnd, Standard,
+    Tolerances,
 };
 use crate::scalar::{LengthUnit, Point, Tolerance};
 
@@ -23,12 +24,14 @@ pub(crate) fn empty() -> PatchSet {
             tangent_deg: tolerance(0.1),
             crease_deg: tolerance(10.0),
             curvature_per_mm: None,
+            close_gaps: None,
         },
         panels: vec![],
         patches: vec![],
         pieces: vec![],
         demands: vec![],
         demand_of: BTreeMap::new(),
+        standard: Standard::default(),
     }
 }
 
