@@ -54,7 +54,7 @@ fn json_goes_to_a_file_and_can_be_narrowed_to_a_panel() {
     assert!(run.stdout.is_empty());
     let json: serde_json::Value =
         serde_json::from_str(&std::fs::read_to_string(&path).unwrap()).unwrap();
-    assert_eq!(json["schema_version"], 1);
+    assert_eq!(json["schema_version"], 2);
     let list = json["seams"].as_array().unwrap();
     assert_eq!(list[0]["finding"], "gap");
     assert_eq!(list[0]["verdict"], "fault");

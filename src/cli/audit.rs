@@ -46,6 +46,10 @@ pub(super) struct AuditArguments {
     #[arg(long, value_name = "LENGTH")]
     chord: Option<Length>,
 
+    /// The mesh was made with --orient
+    #[arg(long)]
+    orient: bool,
+
     /// How the report is printed
     #[arg(long, value_enum, default_value_t)]
     format: OutputStyle,
@@ -71,7 +75,7 @@ impl AuditArguments {
     fn try_run(&self) -> Result<Outcome, Box<dyn std::error::Error>> {
         let progress = Progress::new();
         progress.stage("reading");
-        let reading = match source::read(&self.set) {
+        let mut reading = match source::read(&self.set) {
             Ok(reading) => reading,
             Err(faults) => {
                 drop(progress);
@@ -79,6 +83,9 @@ impl AuditArguments {
                 return Ok(Outcome::Refused);
             }
         };
+        if self.orient {
+            super::joining::orient(&mut reading.set)?;
+        }
         let set = &reading.set;
         let bytes = std::fs::read(&self.mesh).map_err(|e| fault(&self.mesh, &e))?;
         let evidence = read_evidence(&bytes).map_err(|e| fault(&self.mesh, &e))?;

@@ -13,6 +13,7 @@ mod demo;
 mod disk;
 mod draw;
 mod interrupt;
+mod joining;
 mod man;
 mod message;
 mod outcome;

@@ -5,12 +5,14 @@ use std::path::PathBuf;
 use clap::{Args, ValueEnum};
 
 use super::Outcome;
+use super::joining::close_gaps;
 use super::output::Output;
 use super::panels::panels;
 use super::source;
 use crate::continuity::Survey;
 use crate::report::SeamReport;
-use crate::topology::Topology;
+use crate::scalar::Length;
+use crate::topology::{Orientation, Topology};
 
 const EXAMPLES: &str = "\
 Examples:
@@ -50,6 +52,15 @@ pub(super) struct SeamsArguments {
     #[arg(long = "panel", value_name = "NAME")]
     panels: Vec<String>,
 
+    /// Turn patches over so that each part faces one way, closed parts outwards
+    #[arg(long)]
+    orient: bool,
+
+    /// Judge the mesh with gaps up to this closed, in the set's unit or with m,
+    /// cm, mm or in behind it
+    #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
+    close_gaps: Option<Length>,
+
     /// The file to write; `-` is standard output
     #[arg(short, long, value_name = "FILE", default_value = "-")]
     output: PathBuf,
@@ -62,7 +73,7 @@ impl SeamsArguments {
             Ok(output) => output,
             Err(error) => return Outcome::refuse(error),
         };
-        let reading = match source::read(&self.set) {
+        let mut reading = match source::read(&self.set) {
             Ok(reading) => reading,
             Err(faults) => {
                 source::show_faults(&faults);
@@ -70,16 +81,28 @@ impl SeamsArguments {
             }
         };
         source::show_warnings(&reading);
-        let set = &reading.set;
-        let panels = match panels(set, &self.panels) {
+        if let Err(error) = close_gaps(&mut reading.set, self.close_gaps) {
+            return Outcome::refuse(error);
+        }
+        let panels = match panels(&reading.set, &self.panels) {
             Ok(panels) => panels,
             Err(error) => return Outcome::refuse(error),
         };
-        let topology = match Topology::build(set) {
+        let topology = match Topology::build(&reading.set) {
             Ok(topology) => topology,
             Err(error) => return Outcome::refuse(error),
         };
-        let survey = Survey::of(set, &topology);
+        let turned_over = if self.orient {
+            Orientation::of(&reading.set, &topology).turned()
+        } else {
+            Vec::new()
+        };
+        reading.set.turn_over(&turned_over);
+        let set = &reading.set;
+        let survey = Survey {
+            turned_over,
+            ..Survey::of(set, &topology)
+        };
         let report = SeamReport::new(set, &survey, panels.as_deref());
         let text = match self.format {
             SeamStyle::Text => report.text(),

@@ -9,6 +9,7 @@ use clap::builder::{PossibleValuesParser, TypedValueParser};
 use super::Outcome;
 use super::budget::BudgetArguments;
 use super::message::report;
+use super::joining::{close_gaps, orient};
 use super::output::Output;
 use super::panels::panels;
 use super::progress::Progress;
@@ -100,6 +101,15 @@ pub(super) struct TessellateArguments {
     #[arg(long)]
     dry_run: bool,
 
+    /// Turn patches over so that each part faces one way, closed parts outwards
+    #[arg(long)]
+    orient: bool,
+
+    /// Close gaps up to this in the mesh, in the set's unit or with m, cm, mm
+    /// or in behind it; must be below the chord tolerance
+    #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
+    close_gaps: Option<Length>,
+
     /// How the summary is printed
     #[arg(long, value_enum, default_value_t)]
     format: OutputStyle,
@@ -173,7 +183,7 @@ impl TessellateArguments {
         let progress = Progress::new();
         progress.stage("reading");
         let clock = Instant::now();
-        let reading = match source::read(&self.set) {
+        let mut reading = match source::read(&self.set) {
             Ok(reading) => reading,
             Err(faults) => {
                 drop(progress);
@@ -184,6 +194,12 @@ impl TessellateArguments {
         let mut seconds = SecondsLine {
             reading: clock.elapsed().as_secs_f64(),
             ..SecondsLine::default()
+        };
+        close_gaps(&mut reading.set, self.close_gaps)?;
+        let turned_over = if self.orient {
+            orient(&mut reading.set)?
+        } else {
+            Vec::new()
         };
         let set = &reading.set;
         let limits = self.limits(set)?;
@@ -239,7 +255,8 @@ impl TessellateArguments {
         let Some(written) = written else {
             return Ok(Outcome::Done);
         };
-        let summary = Summary::new(set, &limits, &made, &strips, format, &written, seconds);
+        let summary = Summary::new(set, &limits, &made, &strips, format, &written, seconds)
+            .with_turned_over(set, &turned_over);
         let text = match self.format {
             OutputStyle::Text => summary.text(),
             OutputStyle::Json => serde_json::to_string_pretty(&summary)? + "\n",

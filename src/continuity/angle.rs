@@ -24,7 +24,7 @@ use super::strip::Strip;
 use super::taylor::{Taylor, cross, dot};
 use crate::patch_set::PatchSet;
 use crate::scalar::{Bracket, Vector};
-use crate::topology::{Contact, EdgeId};
+use crate::topology::{Contact, EdgeId, normals_agree};
 
 /// Parts after which a bracket stays as wide as it is.
 const PARTS: usize = 256;
@@ -78,9 +78,7 @@ impl Meeting {
     /// ways round their common edge.
     #[must_use]
     pub fn normals_agree(&self, set: &PatchSet) -> bool {
-        let against = (self.first[0] > self.first[1]) != (self.second[0] > self.second[1]);
-        let [a, b] = self.edges.map(|edge| counterclockwise(set, edge));
-        (a == b) == against
+        normals_agree(set, self.edges, self.first, self.second)
     }
 
     /// The bracketed angle along the stretch, the orientation settled as
@@ -111,14 +109,6 @@ impl Meeting {
     pub fn at(&self, x: f64) -> [f64; 2] {
         [self.first, self.second].map(|r| r[0] * (1.0 - x) + r[1] * x)
     }
-}
-
-/// Whether an edge's parameter runs counterclockwise round its piece, seen
-/// from outside.
-fn counterclockwise(set: &PatchSet, edge: EdgeId) -> bool {
-    use crate::bezier::Side;
-    let plain = matches!(edge.side(), Side::V0 | Side::U1);
-    plain != set.patch_of(edge.piece()).flipped
 }
 
 /// Both sides of a meeting, on one parameter 0 to 1.

@@ -9,8 +9,9 @@ use super::boundary::{Crowd, OpenLoop, crowds, loops};
 use super::figure::{End, Finding, Verdict};
 use super::place::patch_edge;
 use super::seam::{CURVATURE_FLOOR, SurveyedSeam, survey};
-use crate::patch_set::{Demand, PatchSet};
-use crate::topology::{Contact, EdgeId, Topology};
+use super::slit::{Slit, slits};
+use crate::patch_set::{Demand, PatchId, PatchSet};
+use crate::topology::{Contact, EdgeId, Orientation, Overlap, Sliver, Topology};
 
 /// All seams of a set, worst first, and its open boundary.
 #[derive(Debug, Clone)]
@@ -21,6 +22,17 @@ pub struct Survey {
     pub crowds: Vec<Crowd>,
     /// The open boundary.
     pub loops: Vec<OpenLoop>,
+    /// Open edges that run near one another for a while and then part further
+    /// than the search distance: each is a finding.
+    pub slits: Vec<Slit>,
+    /// Patches that lie on one another: each is a finding.
+    pub overlaps: Vec<Overlap>,
+    /// Patches nowhere wider than the search distance.
+    pub slivers: Vec<Sliver>,
+    /// Components, and patches that face the wrong way.
+    pub orientation: Orientation,
+    /// Patches that were turned over beforehand, for the report.
+    pub turned_over: Vec<PatchId>,
 }
 
 impl Survey {
@@ -57,14 +69,20 @@ impl Survey {
             seams,
             crowds: crowds(set, topology),
             loops: loops(set, topology),
+            slits: slits(set, topology),
+            overlaps: Topology::overlaps(set),
+            slivers: Topology::slivers(set),
+            orientation: Orientation::of(set, topology),
+            turned_over: Vec::new(),
         }
     }
 
-    /// Seams that are not as demanded or not proved to be, and crowds.
+    /// Seams that are not as demanded or not proved to be, crowds, slits and
+    /// overlaps.
     #[must_use]
     pub fn findings(&self) -> usize {
         let seams = self.seams.iter().filter(|s| s.verdict != Verdict::Met);
-        seams.count() + self.crowds.len()
+        seams.count() + self.crowds.len() + self.slits.len() + self.overlaps.len()
     }
 }
 

@@ -168,10 +168,10 @@ impl PatchSet {
                 source: self.standard.sources[1],
             },
         };
-        let standard = &self.standard;
-        if standard.panels.is_empty() && standard.class_of.is_empty() && standard.rules.is_empty() {
+        if !self.has_classes() {
             return own;
         }
+        let standard = &self.standard;
         let of = |class: Class, source: Source| SeamLimits {
             gap: Limit {
                 value: class.gap_mm() / self.unit.in_mm(),
@@ -202,6 +202,13 @@ impl PatchSet {
             gap: stricter(p.gap, q.gap),
             tangent_deg: stricter(p.tangent_deg, q.tangent_deg),
         }
+    }
+
+    /// Whether anything is said of classes beyond the set's own.
+    pub(crate) fn has_classes(&self) -> bool {
+        let own = &self.standard;
+        !(own.panels.is_empty() && own.class_of.is_empty())
+            || own.rules.iter().any(|rule| rule.class.is_some())
     }
 
     fn is_named(&self, a: (PatchId, Side), b: (PatchId, Side)) -> bool {

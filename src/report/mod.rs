@@ -7,6 +7,7 @@ mod panel_pairs;
 mod seam_line;
 mod seams;
 mod seams_csv;
+mod seams_rest;
 mod seams_text;
 mod summary;
 mod summary_text;
@@ -16,5 +17,8 @@ pub use caution::CAUTION;
 pub use forecast::Forecast;
 pub use panel_pairs::PanelPairLine;
 pub use seam_line::{EdgeName, FailingLine, FigureLine, LimitLine, PlaceLine, SeamLine};
-pub use seams::{CrowdLine, LoopLine, NearMissLine, SeamReport, SeamSummary, ToleranceLines};
-pub use summary::{DeviationLine, SecondsLine, StorageLine, Summary, WrittenLine};
+pub use seams::{
+    CrowdLine, LoopLine, NearMissLine, OrientationLine, OverlapLine, SeamReport, SeamSummary,
+    SliverLine, ToleranceLines,
+};
+pub use summary::{BridgedLine, DeviationLine, SecondsLine, StorageLine, Summary, WrittenLine};

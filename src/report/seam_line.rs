@@ -158,7 +158,7 @@ impl SeamLine {
 }
 
 impl PlaceLine {
-    fn new(place: &Place) -> Self {
+    pub(super) fn new(place: &Place) -> Self {
         Self {
             point: [place.point.x, place.point.y, place.point.z],
             between: place.between,

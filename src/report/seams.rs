@@ -5,9 +5,9 @@ use serde::Serialize;
 
 use super::CAUTION;
 use super::panel_pairs::{PanelPairLine, pairs};
-use super::seam_line::{EdgeName, SeamLine};
+use super::seam_line::{EdgeName, PlaceLine, SeamLine};
 use crate::continuity::{End, Finding, RATIO_FLOOR_PER_MM, Survey, SurveyedSeam, Verdict};
-use crate::patch_set::{DemandSource, PanelId, PatchSet};
+use crate::patch_set::{DemandSource, PanelId, PatchId, PatchSet};
 
 /// Everything `seams` tells.
 #[derive(Debug, Clone, Serialize)]
@@ -29,8 +29,17 @@ pub struct SeamReport {
     /// Seams of three edges or more, each a finding.
     pub non_manifold: Vec<CrowdLine>,
     /// Edges nearer than the search distance that are not joined and not
-    /// demanded open, again for themselves.
+    /// demanded open.
     pub near_misses: Vec<NearMissLine>,
+    /// Seams whose gap is beyond the tolerance and closed in the mesh even so,
+    /// because that was asked for.
+    pub bridged: Vec<NearMissLine>,
+    /// Patches that lie on one another.
+    pub overlaps: Vec<OverlapLine>,
+    /// Patches nowhere wider than the search distance.
+    pub slivers: Vec<SliverLine>,
+    /// How the patches face.
+    pub orientation: OrientationLine,
     /// The open boundary.
     pub open_loops: Vec<LoopLine>,
     /// What the report does not say.
@@ -73,6 +82,10 @@ pub struct SeamSummary {
     pub normals_opposed: usize,
     /// Seams of three edges or more.
     pub non_manifold: usize,
+    /// Near misses that widen beyond the search distance.
+    pub slits: usize,
+    /// Pairs of patches that lie on one another.
+    pub overlaps: usize,
     /// Open loops.
     pub open_loops: usize,
     /// Their whole length.
@@ -99,6 +112,46 @@ pub struct NearMissLine {
     pub gap: f64,
     /// Over this length.
     pub length: f64,
+    /// Whether the edges part further than the search distance beyond it.
+    pub widens: bool,
+    /// Where the gap is attained.
+    pub at: PlaceLine,
+}
+
+/// Two patches that lie on one another.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct OverlapLine {
+    /// The patches.
+    pub patches: [String; 2],
+    /// Whether one is the other again: all places looked at lie on both.
+    pub duplicate: bool,
+    /// A place on both.
+    pub at: [f64; 3],
+}
+
+/// A patch nowhere wider than the search distance.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct SliverLine {
+    /// The patch.
+    pub patch: String,
+    /// A proved bound of its width.
+    pub width: f64,
+}
+
+/// How the patches face.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct OrientationLine {
+    /// Parts that hang together by joined seams.
+    pub components: usize,
+    /// Of these closed.
+    pub closed: usize,
+    /// Parts that cannot face one way, by their first patch.
+    pub not_orientable: Vec<String>,
+    /// Patches that face against the rest of their part; inwards, where it is
+    /// closed.
+    pub flipped: Vec<String>,
+    /// Patches that were turned over because that was asked for.
+    pub turned_over: Vec<String>,
 }
 
 /// An open loop.
@@ -145,6 +198,42 @@ impl SeamReport {
             .collect();
         let having =
             |what: &dyn Fn(&SurveyedSeam) -> bool| seams.iter().filter(|s| what(s)).count();
+        let slits: Vec<NearMissLine> = survey
+            .slits
+            .iter()
+            .filter(|s| counts(&s.between) || counts(&s.and))
+            .map(|s| NearMissLine {
+                between: name(&s.between),
+                and: name(&s.and),
+                gap: s.gap.bracket.attained,
+                length: s.length,
+                widens: true,
+                at: PlaceLine::new(&s.gap.at),
+            })
+            .collect();
+        let patch = |id: PatchId| set.patches()[id.index()].name.clone();
+        let within =
+            |id: PatchId| panels.is_none_or(|list| list.contains(&set.patches()[id.index()].panel));
+        let overlaps: Vec<OverlapLine> = survey
+            .overlaps
+            .iter()
+            .filter(|o| o.patches.iter().any(|p| within(*p)))
+            .map(|o| OverlapLine {
+                patches: o.patches.map(patch),
+                duplicate: o.duplicate,
+                at: [o.at.x, o.at.y, o.at.z],
+            })
+            .collect();
+        let slivers: Vec<SliverLine> = survey
+            .slivers
+            .iter()
+            .filter(|s| within(s.patch))
+            .map(|s| SliverLine {
+                patch: patch(s.patch),
+                width: s.width,
+            })
+            .collect();
+        let components = || survey.orientation.components.iter();
         let tolerances = set.tolerances();
         Self {
             schema_version: 2,
@@ -167,19 +256,34 @@ impl SeamReport {
                 inferred: having(&|s| s.demand_source == DemandSource::Inferred),
                 normals_opposed: having(&|s| !s.normals_agree),
                 non_manifold: non_manifold.len(),
+                slits: slits.len(),
+                overlaps: overlaps.len(),
                 open_loops: open_loops.len(),
                 open_length: open_loops.iter().map(|l| l.length).sum(),
             },
             near_misses: seams
                 .iter()
                 .filter(|s| s.finding == Finding::Gap && !s.joined)
-                .map(|s| NearMissLine {
-                    between: name(&s.between),
-                    and: name(&s.and),
-                    gap: s.gap.bracket.attained,
-                    length: s.length,
-                })
+                .map(|s| NearMissLine::of(set, s))
+                .chain(slits)
                 .collect(),
+            bridged: seams
+                .iter()
+                .filter(|s| s.bridged)
+                .map(|s| NearMissLine::of(set, s))
+                .collect(),
+            overlaps,
+            slivers,
+            orientation: OrientationLine {
+                components: survey.orientation.components.len(),
+                closed: components().filter(|c| c.closed).count(),
+                not_orientable: components()
+                    .filter(|c| !c.orientable)
+                    .map(|c| patch(c.patches[0]))
+                    .collect(),
+                flipped: survey.orientation.turned().into_iter().map(patch).collect(),
+                turned_over: survey.turned_over.iter().copied().map(patch).collect(),
+            },
             panel_pairs: pairs(set, &seams),
             seams: seams.iter().map(|s| SeamLine::new(set, s)).collect(),
             non_manifold,
@@ -191,6 +295,20 @@ impl SeamReport {
     /// Whether anything is not as demanded.
     #[must_use]
     pub fn has_findings(&self) -> bool {
-        self.summary.faults + self.summary.undecided + self.summary.non_manifold > 0
+        let sum = &self.summary;
+        sum.faults + sum.undecided + sum.non_manifold + sum.slits + sum.overlaps > 0
+    }
+}
+
+impl NearMissLine {
+    fn of(set: &PatchSet, seam: &SurveyedSeam) -> Self {
+        Self {
+            between: super::seam_line::name(set, &seam.between),
+            and: super::seam_line::name(set, &seam.and),
+            gap: seam.gap.bracket.attained,
+            length: seam.length,
+            widens: false,
+            at: PlaceLine::new(&seam.gap.at),
+        }
     }
 }

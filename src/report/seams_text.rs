@@ -64,20 +64,7 @@ impl SeamReport {
                 edges.join(" | ")
             )?;
         }
-        if !self.near_misses.is_empty() {
-            writeln!(out, "\nnear misses, open in the mesh:")?;
-            for miss in &self.near_misses {
-                writeln!(
-                    out,
-                    "  {} | {}: {} {unit} apart over {} {unit}, no seam at the gap tolerance {}",
-                    edge(&miss.between),
-                    edge(&miss.and),
-                    figure(miss.gap),
-                    length(miss.length),
-                    t.gap
-                )?;
-            }
-        }
+        self.write_near(out)?;
         writeln!(
             out,
             "\nopen loops: {}",
@@ -100,13 +87,7 @@ impl SeamReport {
                 trail(chain)
             )?;
         }
-        if sum.normals_opposed > 0 {
-            writeln!(
-                out,
-                "\nnormals: across {} they point to opposite sides",
-                many(sum.normals_opposed, "seam", "seams")
-            )?;
-        }
+        self.write_orientation(out)?;
         writeln!(out, "\n{}", self.caution)
     }
 
@@ -264,7 +245,7 @@ fn bracket(line: &FigureLine) -> String {
 }
 
 /// Three figures, the last one rounded.
-fn figure(value: f64) -> String {
+pub(super) fn figure(value: f64) -> String {
     if value.abs() < 5e-13 {
         "0".to_owned()
     } else if value.abs() < 1e-3 {
@@ -282,7 +263,7 @@ fn figure(value: f64) -> String {
 }
 
 /// As [`figure`], but never below the value: a bound stays a bound in print.
-fn upward(value: f64) -> String {
+pub(super) fn upward(value: f64) -> String {
     if value <= 0.0 {
         return "0".to_owned();
     }
@@ -302,7 +283,7 @@ fn upward(value: f64) -> String {
     format!("{value:e}")
 }
 
-fn length(value: f64) -> String {
+pub(super) fn length(value: f64) -> String {
     let text = format!("{value:.3}");
     let text = text.trim_end_matches('0').trim_end_matches('.');
     if text == "-0" { "0" } else { text }.to_owned()
@@ -316,7 +297,7 @@ fn parameters([u, v]: [f64; 2]) -> String {
     format!("({}, {})", short(u), short(v))
 }
 
-fn edge((patch, side): &EdgeName) -> String {
+pub(super) fn edge((patch, side): &EdgeName) -> String {
     format!("{patch} {side}")
 }
 
@@ -329,7 +310,7 @@ fn trail(chain: &LoopLine) -> String {
     names.join(", ")
 }
 
-fn many(count: usize, one: &str, more: &str) -> String {
+pub(super) fn many(count: usize, one: &str, more: &str) -> String {
     format!("{count} {}", if count == 1 { one } else { more })
 }
 

@@ -7,9 +7,9 @@ use serde::Serialize;
 use super::CAUTION;
 use crate::format::Written;
 use crate::mesh::{Measures, Meshed, Storage, Strips};
-use crate::patch_set::PatchSet;
+use crate::patch_set::{PatchId, PatchSet};
 use crate::sampling::Limits;
-use crate::topology::EdgeId;
+use crate::topology::{Contact, EdgeId, SpanId, Topology};
 
 /// Version of the JSON fields of [`Summary`]; raised when one changes meaning
 /// or goes away.
@@ -69,6 +69,14 @@ pub struct Summary {
     pub closed: bool,
     /// Whether the mesh is watertight, and why or why not, in words.
     pub watertight: String,
+    /// Open chains of edges on the surfaces of the whole set, lengths in the
+    /// set's unit (quadrature), the longest first.
+    pub open_loop_lengths: Vec<f64>,
+    /// Seams whose gap is beyond the tolerance and closed even so, because that
+    /// was asked for: patches, sides and the proved gap.
+    pub bridged: Vec<BridgedLine>,
+    /// Patches turned over because that was asked for.
+    pub turned_over: Vec<String>,
     /// Area of the mesh.
     pub area: f64,
     /// Volume, if the mesh is closed.
@@ -81,6 +89,17 @@ pub struct Summary {
     pub seconds: SecondsLine,
     /// The usual caution.
     pub caution: &'static str,
+}
+
+/// A gap that is closed because that was asked for.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct BridgedLine {
+    /// A patch and its side.
+    pub between: (String, String),
+    /// The other patch and its side.
+    pub and: (String, String),
+    /// The gap, proved.
+    pub gap: f64,
 }
 
 /// Deviation, proved and attained.
@@ -222,6 +241,9 @@ impl Summary {
             touching: measures.touching,
             closed: measures.closed,
             watertight: watertight(&measures, made, set),
+            open_loop_lengths: loop_lengths(set, &made.topology),
+            bridged: bridged(set, &made.topology),
+            turned_over: Vec::new(),
             area: measures.area,
             volume: measures.volume,
             storage: StorageLine {
@@ -239,6 +261,43 @@ impl Summary {
             caution: CAUTION,
         }
     }
+}
+
+impl Summary {
+    /// The same, telling of patches that were turned over.
+    #[must_use]
+    pub fn with_turned_over(mut self, set: &PatchSet, patches: &[PatchId]) -> Self {
+        let name = |patch: &PatchId| set.patches()[patch.index()].name.clone();
+        self.turned_over = patches.iter().map(name).collect();
+        self
+    }
+}
+
+fn loop_lengths(set: &PatchSet, topology: &Topology) -> Vec<f64> {
+    let length = |span: &SpanId| {
+        let span = &topology.spans()[span.index()];
+        let surface = &set.pieces()[span.edge.piece().index()].surface;
+        let edge = surface.edge(span.edge.side());
+        edge.restrict(span.t[0], span.t[1]).length()
+    };
+    let chains = topology.open_loops().iter();
+    let mut lengths: Vec<f64> = chains.map(|chain| chain.iter().map(length).sum()).collect();
+    lengths.sort_by(|a, b| b.total_cmp(a));
+    lengths
+}
+
+fn bridged(set: &PatchSet, topology: &Topology) -> Vec<BridgedLine> {
+    let name = |edge: EdgeId| {
+        let patch = set.patch_of(edge.piece());
+        (patch.name.clone(), edge.side().to_string())
+    };
+    let contacts = topology.contacts().iter().filter(|c| c.bridged);
+    let line = |contact: &Contact| BridgedLine {
+        between: name(contact.edges[0]),
+        and: name(contact.edges[1]),
+        gap: contact.gap.proved,
+    };
+    contacts.map(line).collect()
 }
 
 fn watertight(measures: &Measures, made: &Meshed, set: &PatchSet) -> String {
@@ -262,10 +321,17 @@ fn watertight(measures: &Measures, made: &Meshed, set: &PatchSet) -> String {
     let pairs: BTreeSet<_> = contacts.map(|c| c.edges.map(name)).collect();
     let apart = pairs.len();
     let loops = measures.open_loops;
-    let along = if loops == 1 {
-        "1 open loop"
+    let lengths = loop_lengths(set, &made.topology);
+    let all: f64 = lengths.iter().sum();
+    let plural = if loops == 1 { "loop" } else { "loops" };
+    // Lengths are of the whole set: of a part of it only the number is told.
+    let along = &if lengths.len() == loops {
+        format!(
+            "{loops} open {plural}, {all:.1} {} in all",
+            set.unit().symbol()
+        )
     } else {
-        &format!("{loops} open loops")
+        format!("{loops} open {plural}")
     };
     match apart {
         0 => format!("no: {along}, where edges have no neighbour; all joined seams are crack-free"),

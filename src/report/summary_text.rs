@@ -76,6 +76,33 @@ impl Summary {
             self.triangles_over_floor, self.floor
         )?;
         writeln!(out, "watertight  {}", self.watertight)?;
+        if !self.bridged.is_empty() {
+            writeln!(
+                out,
+                "bridged     {}, as asked for:",
+                many(self.bridged.len(), "gap")
+            )?;
+        }
+        for line in &self.bridged {
+            writeln!(
+                out,
+                "            {} {} | {} {}: up to {} {unit}, proved",
+                line.between.0,
+                line.between.1,
+                line.and.0,
+                line.and.1,
+                figure(line.gap)
+            )?;
+        }
+        if !self.turned_over.is_empty() {
+            let count = self.turned_over.len();
+            let word = if count == 1 { "patch" } else { "patches" };
+            writeln!(
+                out,
+                "turned over {count} {word}: {}",
+                self.turned_over.join(", ")
+            )?;
+        }
         match self.volume {
             Some(volume) => writeln!(
                 out,

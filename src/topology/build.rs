@@ -8,10 +8,11 @@ use super::edge_curve::{Cuboid, EdgeCurve, edges_of};
 use super::error::TopologyError;
 use super::loops::loops;
 use super::model::{Contact, Topology};
+use super::near::near_misses;
 use super::nodes::{Marks, Unsettled};
-use super::pairing::{Reach, contacts};
-use super::place::{demand_between, place};
-use crate::patch_set::{Demand, PatchSet, PieceId};
+use super::pairing::{Limits, Reach, contacts};
+use super::place::{demand_between, gap_between, place};
+use crate::patch_set::{Class, Demand, PatchSet, PieceId};
 
 /// Rounds of giving up joints before a set is refused.
 const GIVE_UPS: usize = 64;
@@ -36,14 +37,25 @@ impl Topology {
             .map_or(0.0, |cuboid| cuboid.diagonal());
         let curves = edge_curves(set, size);
         let gap = set.tolerances().gap.get();
+        let close = set.tolerances().close_gaps.map_or(0.0, |t| t.get());
+        let classes = if set.has_classes() {
+            Class::C.gap_mm() / set.unit().in_mm()
+        } else {
+            0.0
+        };
         let reach = Reach {
             gap,
-            search: set.tolerances().search.get(),
+            search: set.tolerances().search.get().max(close).max(classes),
             floor: (FLOOR * size).min(gap * 1e-3),
         };
-        let mut contacts = contacts(&curves, reach, |a, b| {
-            demand_between(set, a.id, b.id) != Some(Demand::Open)
-        });
+        let parted =
+            |a: &EdgeCurve, b: &EdgeCurve| demand_between(set, a.id, b.id) == Some(Demand::Open);
+        let limits = Limits {
+            close,
+            gap: &|a: &EdgeCurve, b: &EdgeCurve| gap_between(set, a.id, b.id),
+            parted: &parted,
+        };
+        let mut contacts = contacts(&curves, reach, &limits);
         let marks = settle(set, &curves, &mut contacts, reach)?;
         let Assembly {
             edges,
@@ -52,7 +64,17 @@ impl Topology {
             nodes,
         } = assemble(&curves, &contacts, &marks, reach.floor);
         let loops = loops(&edges, &spans, &seams);
+        let near_misses = near_misses(
+            set,
+            &curves,
+            &spans,
+            &seams,
+            &contacts,
+            (reach.search, reach.floor),
+            parted,
+        );
         Ok(Self {
+            near_misses,
             edges,
             spans,
             seams,
@@ -84,6 +106,7 @@ fn settle(
             match contact {
                 Some(contact) if contacts[contact].gap.proved > reach.floor => {
                     contacts[contact].joined = false;
+                    contacts[contact].bridged = false;
                 }
                 _ => {
                     let (patch, side, piece) = at(edge);

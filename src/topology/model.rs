@@ -2,7 +2,10 @@
 
 use std::ops::Range;
 
+use super::near::NearMiss;
+use super::overlap::{Overlap, Sliver, overlaps, slivers};
 use super::{EdgeId, NodeId, SeamId, SpanId};
+use crate::patch_set::PatchSet;
 use crate::scalar::{Bracket, Point};
 
 /// One edge of a Bezier piece.
@@ -84,9 +87,30 @@ pub struct Topology {
     pub(crate) contacts: Vec<Contact>,
     pub(crate) loops: Vec<Vec<SpanId>>,
     pub(crate) size: f64,
+    pub(crate) near_misses: Vec<NearMiss>,
 }
 
 impl Topology {
+    /// Open edges that keep near one another for a stretch, but part further
+    /// than the search distance; by edge.
+    #[must_use]
+    pub fn near_misses(&self) -> &[NearMiss] {
+        &self.near_misses
+    }
+
+    /// Patches of the set that lie on one another, by patch: judged at nine
+    /// places a piece.
+    #[must_use]
+    pub fn overlaps(set: &PatchSet) -> Vec<Overlap> {
+        overlaps(set)
+    }
+
+    /// Patches of the set nowhere wider than the search distance, by patch.
+    #[must_use]
+    pub fn slivers(set: &PatchSet) -> Vec<Sliver> {
+        slivers(set)
+    }
+
     /// The diagonal of the box of all control points.
     #[must_use]
     pub fn size(&self) -> f64 {

@@ -37,6 +37,19 @@ impl Reach {
     }
 }
 
+/// A question about two edges.
+type Ask<'a, T> = &'a (dyn Fn(&EdgeCurve, &EdgeCurve) -> T + Sync);
+
+/// What a pair of edges is held to.
+pub(super) struct Limits<'a> {
+    /// The gap tolerance of a pair.
+    pub(super) gap: Ask<'a, f64>,
+    /// Gaps up to this are closed even so; zero for none.
+    pub(super) close: f64,
+    /// Whether a pair is demanded open.
+    pub(super) parted: Ask<'a, bool>,
+}
+
 /// A corner of one edge that falls on the other.
 #[derive(Debug, Clone, Copy)]
 struct Meeting {
@@ -56,13 +69,8 @@ pub(super) fn is_end(t: f64) -> bool {
     t <= 0.0 || t >= 1.0
 }
 
-/// All contacts, in the order of their edges' ranks. `joinable` tells whether
-/// a pair of edges may be joined at all.
-pub(super) fn contacts(
-    edges: &[EdgeCurve],
-    reach: Reach,
-    joinable: impl Fn(&EdgeCurve, &EdgeCurve) -> bool + Sync,
-) -> Vec<Contact> {
+/// All contacts, in the order of their edges' ranks.
+pub(super) fn contacts(edges: &[EdgeCurve], reach: Reach, limits: &Limits<'_>) -> Vec<Contact> {
     let entries: Vec<usize> = (0..edges.len()).filter(|&i| !edges[i].collapsed).collect();
     let tree = BoxTree::new(edges.iter().map(|e| e.cuboid).collect(), entries.clone());
     let mut found: Vec<((u64, u64), Contact)> = entries
@@ -74,7 +82,7 @@ pub(super) fn contacts(
             tree.meeting(&a.cuboid.grown(reach.search.max(reach.gap)), |j| {
                 let b = &edges[j];
                 if a.rank < b.rank {
-                    pair(a, b, reach, &joinable, |contact| {
+                    pair(a, b, reach, limits, |contact| {
                         list.push(((a.rank, b.rank), contact));
                     });
                 }
@@ -91,10 +99,15 @@ fn pair(
     a: &EdgeCurve,
     b: &EdgeCurve,
     reach: Reach,
-    joinable: &impl Fn(&EdgeCurve, &EdgeCurve) -> bool,
+    limits: &Limits<'_>,
     mut found: impl FnMut(Contact),
 ) {
-    let mut reach = reach.of(a, b);
+    let limit = (limits.gap)(a, b);
+    let wide = Reach {
+        gap: limit.max(limits.close),
+        ..reach
+    };
+    let mut reach = wide.of(a, b);
     if a.id.piece() == b.id.piece() {
         if a.id.side().index() / 2 != b.id.side().index() / 2 {
             // Neighbours round a corner of their own piece.
@@ -136,8 +149,8 @@ fn pair(
             second: second.range,
             gap: gap.bracket,
             gap_at: gap.at,
-            joined: joined && joinable(a, b),
-            bridged: false,
+            joined: joined && !(limits.parted)(a, b),
+            bridged: joined && gap.bracket.proved > limit && !(limits.parted)(a, b),
         });
     }
 }

@@ -22,6 +22,18 @@ pub fn patch_side(set: &PatchSet, edge: EdgeId) -> Option<(PatchId, Side)> {
     outer.then_some((id, edge.side()))
 }
 
+/// The gap two piece edges are held to, in the set's unit.
+pub(super) fn gap_between(set: &PatchSet, a: EdgeId, b: EdgeId) -> f64 {
+    if !set.has_classes() {
+        return set.tolerances().gap.get();
+    }
+    let end = |edge: EdgeId| {
+        let patch = set.pieces()[edge.piece().index()].patch;
+        (patch, patch_side(set, edge).map(|(_, side)| side))
+    };
+    set.seam_limits(end(a), end(b)).gap.value
+}
+
 /// Patch name, side and position of the piece in its patch, for messages.
 pub(super) fn place(set: &PatchSet, edge: EdgeId) -> (String, String, usize) {
     let patch = set.patch_of(edge.piece());
