@@ -8,8 +8,8 @@ use clap::builder::{PossibleValuesParser, TypedValueParser};
 
 use super::Outcome;
 use super::budget::BudgetArguments;
-use super::message::report;
 use super::joining::{close_gaps, orient};
+use super::message::report;
 use super::output::Output;
 use super::panels::panels;
 use super::progress::Progress;

@@ -144,3 +144,152 @@ fn what_lies_beyond_a_sliver_is_no_near_miss() {
     assert_eq!(found.seams.len(), 2);
     assert_eq!(found.findings(), 0);
 }
+
+/// A gap that grows from the corner is a near miss as long as it is within the
+/// search distance: sin(angle) = 0.1 / 0.1 mm of search at 1 / 100.
+#[test]
+fn a_slit_is_a_near_miss_with_its_length() {
+    let mut set = empty();
+    add(&mut set, "a", &rectangle([0.0, 50.0], [0.0, 100.0]));
+    // Opens from (50, 0) at one in a hundred: 0.1 mm after ten.
+    let opened = net((1, 1), |u, v| (50.0 + v + u * (50.0 - v), 100.0 * v, 0.0));
+    add(&mut set, "b", &opened);
+    let found = survey(&set);
+    let [slit] = found.slits.as_slice() else {
+        panic!("{:?}", found.slits)
+    };
+    assert!((slit.length - 10.0).abs() < 0.01, "{slit:?}");
+    assert!((slit.gap.bracket.attained - 0.1).abs() < 1e-6);
+    assert!(slit.gap.bracket.proved <= slit.gap.bracket.attained * 1.02);
+    assert_eq!(found.findings(), 1);
+    // Demanded open, it is none.
+    let set = {
+        let (a, b) = (
+            crate::patch_set::PatchId::new(0),
+            crate::patch_set::PatchId::new(1),
+        );
+        demand(&mut set, (a, Side::U1), (b, Side::U0), Demand::Open);
+        set
+    };
+    assert!(survey(&set).slits.is_empty());
+    // Two sides of a pointed part run together, and are no slit.
+    let mut set = empty();
+    let half = |side: f64| {
+        net((1, 1), move |u, v| {
+            (100.0 * u, side * v * (2.0 - 1.98 * u), 0.0)
+        })
+    };
+    add(&mut set, "a", &half(1.0));
+    add(&mut set, "b", &half(-1.0));
+    assert!(survey(&set).slits.is_empty());
+}
+
+/// Duplicates, overlaps and slivers.
+#[test]
+fn what_lies_on_another_is_told() {
+    let mut set = empty();
+    let wave = net((3, 3), |u, v| {
+        (60.0 * u, 40.0 * v, 5.0 * (3.0 * u).sin() * v)
+    });
+    add(&mut set, "a", &wave);
+    add(&mut set, "b", &wave.transposed());
+    add(
+        &mut set,
+        "c",
+        &wave.restrict([0.4, 0.9], [0.3, 0.8]).map(|p| p),
+    );
+    add(&mut set, "d", &rectangle([200.0, 300.0], [0.0, 0.03]));
+    let found = survey(&set);
+    let pairs: Vec<([usize; 2], bool)> = found
+        .overlaps
+        .iter()
+        .map(|o| (o.patches.map(|p| p.index()), o.duplicate))
+        .collect();
+    assert_eq!(pairs, [([0, 1], true), ([0, 2], false), ([1, 2], false)]);
+    let [sliver] = found.slivers.as_slice() else {
+        panic!("{:?}", found.slivers)
+    };
+    assert_eq!(sliver.patch.index(), 3);
+    assert!((sliver.width - 0.03).abs() < 1e-9);
+    // Neighbours are not on one another.
+    let mut set = empty();
+    add(&mut set, "a", &wave.restrict([0.0, 0.5], [0.0, 1.0]));
+    add(&mut set, "b", &wave.restrict([0.5, 1.0], [0.0, 1.0]));
+    assert!(survey(&set).overlaps.is_empty());
+}
+
+/// A break on one hundredth of the seam, off every uniform place: found, and
+/// placed to the hundredth. The lifted row of a spline of degree 3 cut at the
+/// bump's ends.
+#[test]
+fn a_break_on_a_hundredth_is_found_and_placed() {
+    let mut set = empty();
+    add(&mut set, "a", &rectangle([0.0, 10.0], [0.0, 100.0]));
+    let breaks = [0.0, 0.617, 0.627, 1.0];
+    let flat = rectangle([10.0, 20.0], [0.0, 100.0]);
+    let id = add_grid(&mut set, "b", &flat, [&[0.0, 1.0], &breaks]);
+    // The middle piece: degree 4 along, its middle point of row 1 lifted.
+    let at = set.patches[id.index()].pieces.start + 1;
+    let lifted = net((2, 4), |u, v| {
+        let lift = if (u - 0.5).abs() < 0.1 && (v - 0.5).abs() < 0.1 {
+            0.05
+        } else {
+            0.0
+        };
+        (10.0 + 10.0 * u, 61.7 + v, lift)
+    });
+    set.pieces[at].surface = lifted;
+    let found = survey(&set);
+    let fault: Vec<_> = found
+        .seams
+        .iter()
+        .filter(|s| s.finding == Finding::Break)
+        .collect();
+    let [seam] = fault.as_slice() else {
+        panic!("{:?}", found.seams)
+    };
+    // Slope across is 2 * 0.05 * B / 10, B = 6 t^2 (1 - t)^2, at most 3 / 8.
+    let expected = (0.01_f64 * 0.375).atan().to_degrees();
+    let angle = seam.angle_deg.unwrap().bracket;
+    assert!((angle.attained - expected).abs() < 1e-6, "{angle:?}");
+    assert!(angle.proved <= angle.attained * 1.02);
+    let [stretch] = seam.failing.as_slice() else {
+        panic!("{:?}", seam.failing)
+    };
+    assert!(
+        stretch.from.point.y > 61.7 && stretch.to.point.y < 62.7,
+        "{stretch:?}"
+    );
+    // 0.01 B = tan(0.1 degrees) has its roots symmetrically about the middle.
+    let root = |target: f64| {
+        let x = (target / 0.06_f64).sqrt();
+        (1.0 - (1.0 - 4.0 * x).sqrt()) / 2.0
+    };
+    let from = root(0.1_f64.to_radians().tan());
+    assert!(
+        (stretch.from.point.y - 61.7 - from).abs() < 1e-6,
+        "{stretch:?}"
+    );
+    assert!(
+        (stretch.length - (1.0 - 2.0 * from)).abs() < 1e-6,
+        "{stretch:?}"
+    );
+}
+
+/// Gaps between the tolerance and the length asked for are closed in the mesh,
+/// and stay faults.
+#[test]
+fn closed_gaps_stay_faults() {
+    let mut set = two(10.05, 0.0, None);
+    assert_eq!(Topology::build(&set).unwrap().open_loops().len(), 2);
+    set.tolerances.close_gaps = Some(Tolerance::new(0.06).unwrap());
+    assert_eq!(Topology::build(&set).unwrap().open_loops().len(), 1);
+    let found = survey(&set);
+    let [seam] = found.seams.as_slice() else {
+        panic!("one seam")
+    };
+    assert!(seam.joined && seam.bridged);
+    assert_eq!(seam.finding, Finding::Gap);
+    assert_eq!(seam.verdict, Verdict::Fault);
+    assert!((seam.severity - 5.0).abs() < 1e-6);
+}
