@@ -1,5 +1,5 @@
-//! What does a seam cost? Pairing, and the survey with its brackets, at 1,000
-//! and at 100,000 bicubic patches: the time per seam must not grow with the
+//! What does a seam cost? Pairing, and the survey with its brackets, at 1,000,
+//! 10,000 and 100,000 bicubic patches: the time per seam must not grow with the
 //! set. Run with one thread (`RAYON_NUM_THREADS=1`) for figures per core.
 
 use std::hint::black_box;
@@ -21,7 +21,7 @@ fn panels(count: u32) -> PatchSet {
 fn seams(criterion: &mut Criterion) {
     let mut group = criterion.benchmark_group("seams");
     group.sample_size(10);
-    for count in [1_000, 100_000] {
+    for count in [1_000, 10_000, 100_000] {
         let set = panels(count);
         let topology = Topology::build(&set).expect("the demo's edges meet");
         group.throughput(Throughput::Elements(topology.contacts().len() as u64));

@@ -13,6 +13,8 @@ mod figure;
 mod follow;
 mod matched;
 mod place;
+#[cfg(test)]
+mod property_tests;
 mod rows;
 mod seam;
 mod slit;
