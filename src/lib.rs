@@ -33,6 +33,8 @@ pub mod report;
 
 pub mod picture;
 
+pub mod page;
+
 pub mod demo;
 
 pub mod cli;

@@ -11,7 +11,7 @@ use super::panels::panels;
 use super::progress::Progress;
 use super::source;
 use crate::continuity::Survey;
-use crate::mesh::{Audit, Evidence, Meshed};
+use crate::mesh::{Audit, Evidence, Mesh, Meshed};
 use crate::patch_set::PatchSet;
 use crate::picture::{
     Focus, Picture, PictureOptions, Scene, SeamCurve, Shading, View, borders, seam_curves,
@@ -221,7 +221,7 @@ impl DrawArguments {
         let made = Meshed::with_evidence(set, &limits, wanted, |name| progress.stage(name))?;
         let deviations = if self.shading == Shading::Deviation {
             progress.stage("proving each triangle");
-            deviations(set, &made, options.chord)?
+            deviations(set, &made.mesh, options.chord)?
         } else {
             Vec::new()
         };
@@ -311,12 +311,12 @@ impl DrawArguments {
 }
 
 /// The proved deviation of every triangle.
-fn deviations(
+pub(super) fn deviations(
     set: &PatchSet,
-    made: &Meshed,
+    mesh: &Mesh,
     chord: f64,
 ) -> Result<Vec<f64>, Box<dyn std::error::Error>> {
-    match Evidence::of(&made.mesh) {
+    match Evidence::of(mesh) {
         Some(evidence) => Ok(Audit::by_triangle(set, &evidence, Tolerance::new(chord)?)?),
         None => Ok(Vec::new()),
     }

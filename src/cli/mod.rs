@@ -20,6 +20,7 @@ mod outcome;
 mod output;
 mod panels;
 mod progress;
+mod report;
 mod seams;
 mod source;
 mod style;
@@ -33,7 +34,8 @@ Examples:
   chordwise check front.ron                        what is wrong with it
   chordwise tessellate front.ron -o front.glb      a proved mesh
   chordwise seams front.ron                        how its patches meet
-  chordwise draw front.ron -o front.png            a picture of it";
+  chordwise draw front.ron -o front.png            a picture of it
+  chordwise report front.ron -o front.html         a page to sign off";
 
 const ENDINGS: &str = "\
 Every command has examples of its own: chordwise tessellate --help
@@ -65,6 +67,7 @@ enum Command {
     Audit(audit::AuditArguments),
     Seams(seams::SeamsArguments),
     Draw(draw::DrawArguments),
+    Report(report::ReportArguments),
     Check(check::CheckArguments),
     Demo(demo::DemoArguments),
     Completions(completions::CompletionsArguments),
@@ -81,6 +84,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
             Command::Demo(arguments) => arguments.run(),
             Command::Draw(arguments) => arguments.run(),
             Command::Man(arguments) => arguments.run(),
+            Command::Report(arguments) => arguments.run(),
             Command::Seams(arguments) => arguments.run(),
             Command::Tessellate(arguments) => arguments.run(),
         }

@@ -23,6 +23,29 @@ pub(super) fn read(path: &Path) -> Result<Reading, Faults> {
     }
 }
 
+/// The bytes of a set, from a file or from standard input for `-`.
+pub(super) fn bytes(path: &Path) -> Result<Vec<u8>, Faults> {
+    let mut bytes = Vec::new();
+    let done = if path.as_os_str() == "-" {
+        std::io::stdin().lock().read_to_end(&mut bytes).map(|_| ())
+    } else {
+        std::fs::read(path).map(|found| bytes = found)
+    };
+    match done {
+        Ok(()) => Ok(bytes),
+        Err(error) => Err(Faults::unreadable(&name(path), &error)),
+    }
+}
+
+/// What messages call a source.
+pub(super) fn name(path: &Path) -> String {
+    if path.as_os_str() == "-" {
+        "standard input".to_owned()
+    } else {
+        path.display().to_string()
+    }
+}
+
 /// Shows all faults on standard error, in colour on a terminal.
 pub(super) fn show_faults(faults: &Faults) {
     if faults.list.iter().all(|fault| fault.position.is_none()) {

@@ -84,6 +84,13 @@ impl Length {
     }
 }
 
+impl fmt::Display for Length {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let unit = self.unit.map_or("", LengthUnit::symbol);
+        write!(f, "{}{unit}", self.value)
+    }
+}
+
 impl FromStr for Length {
     type Err = LengthError;
 
