@@ -1,5 +1,6 @@
 //! `chordwise draw`: pictures of a set.
 
+use std::io::Write;
 use std::path::PathBuf;
 
 use clap::Args;
@@ -11,10 +12,12 @@ use super::panels::panels;
 use super::progress::Progress;
 use super::source;
 use crate::continuity::Survey;
+use crate::format::FormatError;
 use crate::mesh::{Audit, Evidence, Mesh, Meshed};
 use crate::patch_set::PatchSet;
 use crate::picture::{
-    Focus, Picture, PictureOptions, Scene, SeamCurve, Shading, View, borders, seam_curves,
+    Canvas, Drawing, Focus, Picture, PictureOptions, Plane, Scene, SeamCurve, SectionHead, Shading,
+    View, borders, draw_section, seam_curves, section,
 };
 use crate::sampling::Limits;
 use crate::scalar::{Length, LengthUnit, Tolerance, Vector};
@@ -27,6 +30,7 @@ Examples:
   chordwise draw front.ron -o mesh.png --edges --zoom-panel wing
   chordwise draw front.ron -o seams.png --seams
   chordwise draw front.ron -o worst.png --zoom-seam 1 --shading reflection
+  chordwise draw front.ron -o cut.svg --section x=300
   chordwise draw front.ron -o below.png --direction -1,-1,-0.5 --size 1280x720
 
 Pictures are PNG, in parallel projection, and the same for any number of threads.
@@ -106,6 +110,16 @@ pub(super) struct DrawArguments {
     #[arg(long)]
     upright: bool,
 
+    /// Cut the set by a plane and draw the curves with their curvature as a comb,
+    /// as PNG or SVG: x=LENGTH, y=LENGTH, z=LENGTH, or NX,NY,NZ=LENGTH
+    #[arg(long, value_name = "PLANE", allow_hyphen_values = true, value_parser = plane)]
+    section: Option<Plane>,
+
+    /// The curvature that the tooth in the legend stands for [default: a round
+    /// figure that nine tenths of the places keep to]
+    #[arg(long, value_name = "CURVATURE", requires = "section", value_parser = curvature)]
+    comb: Option<f64>,
+
     /// Pixels across and down, from 64 to 8192
     #[arg(long, value_name = "WIDTHxHEIGHT", default_value = "1920x1080", value_parser = size)]
     size: (usize, usize),
@@ -135,7 +149,11 @@ enum UsageError {
     Size(String),
     #[error("--zoom-seam {0}: the set has {1} seams; `chordwise seams` lists them, worst first")]
     NoSeam(u32, usize),
-    #[error("--output {0}: pictures are PNG; end the name in .png")]
+    #[error("`{0}` is no plane; write x=100, y=0, z=-20 or a normal and an offset, as 1,1,0=250")]
+    Plane(String),
+    #[error("`{0}` is no curvature; write a positive figure")]
+    Curvature(String),
+    #[error("--output {0}: pictures are PNG, sections also SVG; end the name in .png or .svg")]
     Extension(String),
 }
 
@@ -160,6 +178,32 @@ fn range(text: &str) -> Result<[f64; 2], UsageError> {
         .ok_or_else(|| UsageError::Range(text.to_owned()))
 }
 
+fn plane(text: &str) -> Result<Plane, UsageError> {
+    let fault = || UsageError::Plane(text.to_owned());
+    let (normal, offset) = text.split_once('=').ok_or_else(fault)?;
+    let normal = match normal.trim() {
+        "x" => Vector::x(),
+        "y" => Vector::y(),
+        "z" => Vector::z(),
+        numbers_text => Vector::from(numbers::<3>(numbers_text, ',').ok_or_else(fault)?),
+    };
+    let [offset] = numbers::<1>(offset, '\0').ok_or_else(fault)?;
+    let length = normal.norm();
+    let unit = normal.try_normalize(0.0).ok_or_else(fault)?;
+    Ok(Plane {
+        normal: unit,
+        offset: offset / length,
+    })
+}
+
+fn curvature(text: &str) -> Result<f64, UsageError> {
+    let found = text
+        .parse()
+        .ok()
+        .filter(|k: &f64| k.is_finite() && *k > 0.0);
+    found.ok_or_else(|| UsageError::Curvature(text.to_owned()))
+}
+
 fn size(text: &str) -> Result<(usize, usize), UsageError> {
     let fault = || UsageError::Size(text.to_owned());
     let (width, height) = text.split_once('x').ok_or_else(fault)?;
@@ -180,11 +224,12 @@ impl DrawArguments {
     }
 
     fn try_run(&self) -> Result<Outcome, Box<dyn std::error::Error>> {
-        let is_png = self
-            .output
-            .extension()
-            .is_some_and(|e| e.eq_ignore_ascii_case("png"));
-        if self.output.as_os_str() != "-" && !is_png {
+        let ends_in = |name: &str| {
+            let end = self.output.extension();
+            end.is_some_and(|e| e.eq_ignore_ascii_case(name))
+        };
+        let is_svg = self.section.is_some() && ends_in("svg");
+        if self.output.as_os_str() != "-" && !ends_in("png") && !is_svg {
             return Err(UsageError::Extension(self.output.display().to_string()).into());
         }
         let output = Output::open(&self.output, &[&self.set])?;
@@ -226,6 +271,21 @@ impl DrawArguments {
             Vec::new()
         };
         let scene = Scene::new(set, &made.mesh)?;
+        if let Some(plane) = &self.section {
+            progress.stage("cutting");
+            let drawing = self.cut(&scene, plane);
+            progress.stage("writing");
+            output.write(|out| {
+                if is_svg {
+                    out.write_all(drawing.svg().as_bytes())?;
+                    return Ok(());
+                }
+                write_png(&drawing.canvas(), out)
+            })?;
+            drop(progress);
+            source::show_warnings(&reading);
+            return Ok(Outcome::Done);
+        }
         let mut options = PictureOptions {
             proved: made.deviation.proved(),
             ..options
@@ -248,15 +308,21 @@ impl DrawArguments {
         picture.seams(&seams);
         picture.caption(&scene, &options, &seams);
         progress.stage("writing");
-        output.write(|out| {
-            picture
-                .canvas
-                .write_png(out)
-                .map_err(|error| std::io::Error::other(error).into())
-        })?;
+        output.write(|out| write_png(&picture.canvas, out))?;
         drop(progress);
         source::show_warnings(&reading);
         Ok(Outcome::Done)
+    }
+
+    /// The drawing of a section.
+    fn cut(&self, scene: &Scene<'_>, plane: &Plane) -> Drawing {
+        let head = SectionHead {
+            name: scene.set.name().to_owned(),
+            unit: scene.set.unit().symbol(),
+            panels: scene.mesh.panels.clone(),
+            comb: self.comb,
+        };
+        draw_section(&section(scene, plane), plane, self.size, &head)
     }
 
     /// Turns the picture to the worst place of a seam.
@@ -308,6 +374,11 @@ impl DrawArguments {
             proved: 0.0,
         })
     }
+}
+
+fn write_png(canvas: &Canvas, out: &mut dyn Write) -> Result<(), FormatError> {
+    let failed = |error| FormatError::Io(std::io::Error::other(error));
+    canvas.write_png(out).map_err(failed)
 }
 
 /// The proved deviation of every triangle.

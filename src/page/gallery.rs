@@ -106,6 +106,7 @@ impl Gallery {
                         across: 1.5 * seam.length.max(10.0 * options.chord),
                     },
                     shading: Shading::Reflection,
+                    lights: 4.0 * options.lights,
                     ..options.clone()
                 };
                 let id = format!("close-up-{}", seam.number);

@@ -3,6 +3,7 @@
 use std::fmt::Write;
 
 use super::markup::{escape, figure};
+use crate::picture::round_up;
 
 /// Bars across.
 const BARS: usize = 24;
@@ -10,7 +11,7 @@ const BARS: usize = 24;
 /// Size of the drawing and its margins: left, top, right, bottom.
 const WIDTH: f64 = 420.0;
 const HEIGHT: f64 = 220.0;
-const MARGIN: [f64; 4] = [54.0, 14.0, 14.0, 44.0];
+const MARGIN: [f64; 4] = [56.0, 14.0, 28.0, 44.0];
 
 /// How often figures fall into which range.
 #[derive(Debug, Clone)]
@@ -60,7 +61,8 @@ impl Histogram {
     pub(super) fn svg(&self, number: usize) -> String {
         let [left, top, right, bottom] =
             [MARGIN[0], MARGIN[1], WIDTH - MARGIN[2], HEIGHT - MARGIN[3]];
-        let most = self.counts.iter().copied().max().unwrap_or(0).max(1);
+        let fullest = self.counts.iter().copied().max().unwrap_or(0).max(1);
+        let most = round_up(fullest as f64);
         let mut out = format!(
             "<svg viewBox=\"0 0 {WIDTH} {HEIGHT}\" role=\"img\" aria-labelledby=\"h{number}\">\n\
              <title id=\"h{number}\">{}</title>\n",
@@ -73,7 +75,7 @@ impl Histogram {
         };
         for k in 0..=4 {
             let y = bottom - (bottom - top) * f64::from(k) / 4.0;
-            let count = most as f64 * f64::from(k) / 4.0;
+            let count = most * f64::from(k) / 4.0;
             line(format_args!(
                 "<line class=\"grid\" x1=\"{left}\" y1=\"{y:.1}\" x2=\"{right}\" y2=\"{y:.1}\"></line>"
             ));
@@ -81,13 +83,13 @@ impl Histogram {
                 "<text x=\"{:.1}\" y=\"{:.1}\" text-anchor=\"end\">{}</text>",
                 left - 6.0,
                 y + 4.0,
-                count.round()
+                figure(count)
             ));
         }
         let step = (right - left) / BARS as f64;
         for (k, count) in self.counts.iter().enumerate() {
             if *count > 0 {
-                let tall = ((bottom - top) * *count as f64 / most as f64).max(1.0);
+                let tall = ((bottom - top) * *count as f64 / most).max(1.0);
                 line(format_args!(
                     "<rect class=\"bar\" x=\"{:.2}\" y=\"{:.2}\" width=\"{:.2}\" height=\"{tall:.2}\"></rect>",
                     left + step * k as f64 + 0.5,

@@ -54,7 +54,12 @@ pub(super) fn figure(value: f64) -> String {
         s if s >= 0.1 => 4,
         _ => 5,
     };
-    format!("{value:.decimals$}")
+    let text = format!("{value:.decimals$}");
+    if text.contains('.') {
+        text.trim_end_matches('0').trim_end_matches('.').to_owned()
+    } else {
+        text
+    }
 }
 
 /// A count with its noun.

@@ -11,7 +11,7 @@ use crate::report::{FigureLine, SeamLine, SeamReport};
 /// Opens a table whose columns can be sorted; `numbers` says which hold figures.
 fn open(id: &str, caption: &str, columns: &[(&str, bool)]) -> String {
     let mut out = format!(
-        "<div class=\"wide\" tabindex=\"0\" role=\"region\" aria-label=\"{0}\">\n\
+        "<section class=\"wide\" tabindex=\"0\" aria-label=\"{0}\">\n\
          <table id=\"{id}\" class=\"sortable\">\n<caption>{0}</caption>\n<thead>\n<tr>\n",
         escape(caption)
     );
@@ -27,7 +27,7 @@ fn open(id: &str, caption: &str, columns: &[(&str, bool)]) -> String {
     out + "</tr>\n</thead>\n<tbody>\n"
 }
 
-const CLOSE: &str = "</tbody>\n</table>\n</div>\n";
+const CLOSE: &str = "</tbody>\n</table>\n</section>\n";
 
 /// A cell with a figure and the value it is sorted by.
 fn number(value: f64, text: &str) -> String {
@@ -122,7 +122,7 @@ pub(super) fn panels(set: &PatchSet, mesh: &Mesh, deviations: &[f64]) -> String 
     let deviation = format!("largest proved deviation, {unit}");
     let mut out = open(
         "panels-table",
-        "Panels",
+        "What each panel holds, and how far its mesh deviates",
         &[
             ("panel", false),
             ("patches", true),

@@ -173,7 +173,7 @@ impl Layout {
 }
 
 /// The largest of 1, 2, 5 times a power of ten that is not above `value`.
-fn round_down(value: f64) -> f64 {
+pub(super) fn round_down(value: f64) -> f64 {
     if !(value.is_finite() && value > 0.0) {
         return 1.0;
     }

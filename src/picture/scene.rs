@@ -133,6 +133,15 @@ impl<'a> Scene<'a> {
         self.places[triangle][k]
     }
 
+    /// The parameters of corner `k` of a triangle on its piece's unit square.
+    #[must_use]
+    pub fn local_corner(&self, triangle: usize, k: usize) -> [f64; 2] {
+        let mut weights = [0.0; 3];
+        weights[k] = 1.0;
+        let piece = &self.set.pieces()[self.piece(triangle)];
+        local(piece, &self.places[triangle], weights)
+    }
+
     /// Gaussian and mean curvature at corner `k` of a triangle.
     #[must_use]
     pub fn corner_curvatures(&self, triangle: usize, k: usize) -> Option<(f64, f64)> {

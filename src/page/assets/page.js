@@ -37,7 +37,6 @@ for (const table of document.querySelectorAll("table.sortable")) {
   };
   const form = document.querySelector("#filter");
   form.hidden = false;
-  form.addEventListener("submit", (event) => event.preventDefault());
   form.addEventListener("input", filter);
   filter();
 }

@@ -437,7 +437,6 @@ function start(data, canvas, gl) {
     event.preventDefault();
     redraw();
   });
-  find("controls").addEventListener("submit", (event) => event.preventDefault());
   find("controls").addEventListener("input", redraw);
   find("from").addEventListener("input", (event) => { lookFrom(event.target.value.split(",").map(Number)); showAll(); });
   find("whole").addEventListener("click", () => { showAll(); redraw(); });
