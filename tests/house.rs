@@ -215,6 +215,7 @@ fn the_readme_names_only_what_can_be_typed_and_all_of_it() {
             "audit",
             "seams",
             "draw",
+            "report",
             "check",
             "demo",
             "completions",

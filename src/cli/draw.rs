@@ -258,12 +258,15 @@ impl DrawArguments {
             own.max_edge.map(Tolerance::get),
         );
         let chosen = panels(set, &self.panels)?;
+        let count = set.pieces().len();
         let wanted = |piece: crate::patch_set::PieceId| {
+            progress.step();
             chosen
                 .as_ref()
                 .is_none_or(|c| c.contains(&set.patch_of(piece).panel))
         };
-        let made = Meshed::with_evidence(set, &limits, wanted, |name| progress.stage(name))?;
+        let made =
+            Meshed::with_evidence(set, &limits, wanted, |name| progress.meshing(name, count))?;
         let deviations = if self.shading == Shading::Deviation {
             progress.stage("proving each triangle");
             deviations(set, &made.mesh, options.chord)?

@@ -104,7 +104,14 @@ impl ReportArguments {
                 own.max_edge.map(Tolerance::get),
             )
         };
-        let made = Meshed::with_evidence(set, &limits(chord), |_| true, |n| progress.stage(n))?;
+        let count = set.pieces().len();
+        let all = |_| {
+            progress.step();
+            true
+        };
+        let made = Meshed::with_evidence(set, &limits(chord), all, |name| {
+            progress.meshing(name, count);
+        })?;
         progress.stage("proving each triangle");
         let proved = deviations(set, &made.mesh, chord)?;
         progress.stage("examining seams");

@@ -8,6 +8,7 @@ use super::Outcome;
 use super::joining::close_gaps;
 use super::output::Output;
 use super::panels::panels;
+use super::progress::Progress;
 use super::source;
 use crate::continuity::Survey;
 use crate::report::SeamReport;
@@ -73,13 +74,17 @@ impl SeamsArguments {
             Ok(output) => output,
             Err(error) => return Outcome::refuse(error),
         };
+        let progress = Progress::new();
+        progress.stage("reading");
         let mut reading = match source::read(&self.set) {
             Ok(reading) => reading,
             Err(faults) => {
+                drop(progress);
                 source::show_faults(&faults);
                 return Outcome::Refused;
             }
         };
+        drop(progress);
         source::show_warnings(&reading);
         if let Err(error) = close_gaps(&mut reading.set, self.close_gaps) {
             return Outcome::refuse(error);
@@ -88,6 +93,8 @@ impl SeamsArguments {
             Ok(panels) => panels,
             Err(error) => return Outcome::refuse(error),
         };
+        let progress = Progress::new();
+        progress.stage("pairing edges");
         let topology = match Topology::build(&reading.set) {
             Ok(topology) => topology,
             Err(error) => return Outcome::refuse(error),
@@ -99,10 +106,12 @@ impl SeamsArguments {
         };
         reading.set.turn_over(&turned_over);
         let set = &reading.set;
+        progress.stage("examining seams");
         let survey = Survey {
             turned_over,
             ..Survey::of(set, &topology)
         };
+        drop(progress);
         let report = SeamReport::new(set, &survey, panels.as_deref());
         let text = match self.format {
             SeamStyle::Text => report.text(),

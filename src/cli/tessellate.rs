@@ -12,7 +12,7 @@ use super::joining::{close_gaps, orient};
 use super::message::report;
 use super::output::Output;
 use super::panels::panels;
-use super::progress::Progress;
+use super::progress::{Counted, Progress};
 use super::source;
 use super::style::OutputStyle;
 use crate::format::{self, Format, FormatError, Layout, WriteOptions};
@@ -211,7 +211,11 @@ impl TessellateArguments {
             limits.max_edge,
         );
         let wanted = self.wanted(set)?;
-        let of = |piece: PieceId| wanted[piece.index()];
+        let count = set.pieces().len();
+        let of = |piece: PieceId| {
+            progress.step();
+            wanted[piece.index()]
+        };
         let budget = self.budget.budget();
         if self.dry_run {
             let stage = |name| progress.stage(name);
@@ -233,13 +237,17 @@ impl TessellateArguments {
             report(&text, false)?;
             return Ok(refused.map_or(Outcome::Done, Outcome::refuse));
         }
-        let stage = |name| progress.stage(name);
+        let stage = |name| progress.meshing(name, count);
         let made = Meshed::within(set, &held, &budget, of, self.evidence, stage)?;
         progress.stage("finding strips");
         let clock = Instant::now();
         let strips = Strips::of(&made.mesh);
         seconds.strips = clock.elapsed().as_secs_f64();
-        progress.stage("writing");
+        let known = match format {
+            Format::Stl => 84 + 50 * made.mesh.triangles.len() as u64,
+            _ => 0,
+        };
+        progress.counted("writing", known, "bytes");
         let clock = Instant::now();
         let options = WriteOptions {
             layout,
@@ -248,7 +256,13 @@ impl TessellateArguments {
             ..WriteOptions::new(chord)
         };
         let standard = output.is_standard();
-        let written = output.write(|out| format::write(&made.mesh, format, &options, out))?;
+        let written = output.write(|out| {
+            let mut out = Counted {
+                out,
+                progress: &progress,
+            };
+            format::write(&made.mesh, format, &options, &mut out)
+        })?;
         seconds.writing = clock.elapsed().as_secs_f64();
         drop(progress);
         source::show_warnings(&reading);
