@@ -15,9 +15,11 @@ use super::panels::panels;
 use super::progress::{Counted, Progress};
 use super::source;
 use super::style::OutputStyle;
-use crate::format::{self, Format, FormatError, Layout, WriteOptions};
+use crate::continuity::Survey;
+use crate::format::{self, Format, FormatError, Layout, Overlay, WriteOptions};
 use crate::mesh::{Meshed, Prediction, Strips};
 use crate::patch_set::{PanelId, PatchSet, PieceId};
+use crate::picture::{Extra, seam_curves};
 use crate::report::{Forecast, SecondsLine, Summary};
 use crate::sampling::Limits;
 use crate::scalar::{Length, Point, Tolerance, Vector};
@@ -93,6 +95,11 @@ pub(super) struct TessellateArguments {
     #[arg(long)]
     evidence: bool,
 
+    /// Give a GLB file lines and points besides the mesh: seams by finding, worst
+    /// places, normals, curvature combs, curves of constant u and v; may be repeated
+    #[arg(long = "extra", value_name = "KIND", value_parser = names(&Extra::ALL.map(Extra::name)))]
+    extras: Vec<String>,
+
     #[command(flatten)]
     budget: BudgetArguments,
 
@@ -148,6 +155,8 @@ enum UsageError {
         "--normals: stl has no vertex normals, only those of its facets; write ply, obj or glb"
     )]
     Normals,
+    #[error("--extra {0}: only glb has room for lines and points besides the mesh")]
+    Extra(String),
 }
 
 impl TessellateArguments {
@@ -170,6 +179,11 @@ impl TessellateArguments {
         format.layout(layout)?;
         if self.normals && format == Format::Stl {
             return Err(UsageError::Normals.into());
+        }
+        if let Some(extra) = self.extras.first()
+            && format != Format::Glb
+        {
+            return Err(UsageError::Extra(extra.clone()).into());
         }
         if self.evidence && !format.holds_evidence() {
             return Err(FormatError::Evidence(format).into());
@@ -248,8 +262,10 @@ impl TessellateArguments {
             _ => 0,
         };
         progress.counted("writing", known, "bytes");
+        let overlays = self.overlays(set, &made, &limits, of);
         let clock = Instant::now();
         let options = WriteOptions {
+            overlays: &overlays,
             layout,
             strips: Some(&strips),
             normals: self.normals,
@@ -277,6 +293,26 @@ impl TessellateArguments {
         };
         report(&text, standard)?;
         Ok(Outcome::Done)
+    }
+
+    /// The extras asked for.
+    fn overlays(
+        &self,
+        set: &PatchSet,
+        made: &Meshed,
+        limits: &Limits,
+        wanted: impl Fn(PieceId) -> bool,
+    ) -> Vec<Overlay> {
+        if self.extras.is_empty() {
+            return Vec::new();
+        }
+        let survey = Survey::of(set, &made.topology);
+        let seams = seam_curves(set, &made.topology, &survey, limits.chord);
+        Extra::ALL
+            .into_iter()
+            .filter(|extra| self.extras.iter().any(|name| name == extra.name()))
+            .flat_map(|extra| extra.make(set, &made.mesh, &seams, &wanted))
+            .collect()
     }
 
     fn file_format(&self) -> Result<Format, Box<dyn std::error::Error>> {

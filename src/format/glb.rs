@@ -20,6 +20,7 @@
 //! indices lie between them.
 
 mod document;
+mod overlays;
 mod panel;
 
 use std::io::Write;
@@ -56,8 +57,18 @@ pub(super) fn write(
         return Err(FormatError::Empty);
     }
     let vertices = streams.vertices.len() as u64;
-    let binary = 2 * TRIPLE * vertices + INDEX * streams.indices.len() as u64;
-    let json = Document::of(mesh, layout, &streams, &rounding, binary).padded();
+    let meshed = 2 * TRIPLE * vertices + INDEX * streams.indices.len() as u64;
+    let extra = overlays::points(options.overlays).count() as u64;
+    let binary = meshed + TRIPLE * extra;
+    let json = Document::of(
+        mesh,
+        layout,
+        &streams,
+        &rounding,
+        [meshed, binary],
+        options.overlays,
+    )
+    .padded();
     let total = 12 + 8 + json.len() as u64 + 8 + binary;
     let too_large = |_| FormatError::TooLarge {
         format: Format::Glb,
@@ -87,6 +98,9 @@ pub(super) fn write(
     }
     for index in &streams.indices {
         sink.put(&index.to_le_bytes())?;
+    }
+    for point in overlays::points(options.overlays) {
+        sink.singles(rounding.singles(point))?;
     }
     Ok(Written {
         bytes: sink.finish()?,

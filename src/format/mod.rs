@@ -22,6 +22,7 @@ mod kind;
 mod names;
 mod normals;
 mod obj;
+mod overlay;
 mod ply;
 mod ply_reading;
 mod rounding;
@@ -33,6 +34,7 @@ use std::io::Write;
 
 pub use error::FormatError;
 pub use kind::{Format, FormatNameError, Layout, LayoutNameError};
+pub use overlay::{Overlay, Stroke};
 pub use ply_reading::{EvidenceError, read_evidence};
 pub use size::{Counts, bytes_of, predict};
 
@@ -53,6 +55,9 @@ pub struct WriteOptions<'a> {
     /// Whether a PLY file gets vertex normals, which repeats points where
     /// normals differ. The other formats are not concerned.
     pub normals: bool,
+    /// Lines and points that a GLB file has besides the mesh. The other formats
+    /// have no room for them and are not concerned.
+    pub overlays: &'a [Overlay],
 }
 
 impl WriteOptions<'_> {
@@ -64,6 +69,7 @@ impl WriteOptions<'_> {
             layout: None,
             strips: None,
             normals: false,
+            overlays: &[],
         }
     }
 }

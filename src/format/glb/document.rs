@@ -4,18 +4,19 @@ use std::ops::Range;
 
 use serde_json::{Value, json};
 
+use super::overlays;
 use super::panel::{Panel, Streams};
 use super::{INDEX, TRIPLE};
-use crate::format::Layout;
 use crate::format::rounding::{Rounding, single};
+use crate::format::{Layout, Overlay};
 use crate::mesh::Mesh;
 
 // Numbers that the standard gives a meaning.
 const TRIANGLES: u32 = 4;
 const TRIANGLE_STRIP: u32 = 5;
 const UNSIGNED_INT: u32 = 5125;
-const FLOAT: u32 = 5126;
-const ARRAY_BUFFER: u32 = 34962;
+pub(super) const FLOAT: u32 = 5126;
+pub(super) const ARRAY_BUFFER: u32 = 34962;
 const ELEMENT_ARRAY_BUFFER: u32 = 34963;
 
 /// The JSON chunk under construction.
@@ -27,7 +28,8 @@ impl Document {
         layout: Layout,
         streams: &Streams<'_>,
         rounding: &Rounding,
-        binary: u64,
+        [meshed, binary]: [u64; 2],
+        overlays: &[Overlay],
     ) -> Self {
         let indexed = layout != Layout::Triangles;
         let triples = TRIPLE * streams.vertices.len() as u64;
@@ -36,7 +38,7 @@ impl Document {
             json!({"buffer": 0, "byteOffset": triples, "byteLength": triples, "byteStride": TRIPLE, "target": ARRAY_BUFFER}),
         ];
         if indexed {
-            views.push(json!({"buffer": 0, "byteOffset": 2 * triples, "byteLength": binary - 2 * triples, "target": ELEMENT_ARRAY_BUFFER}));
+            views.push(json!({"buffer": 0, "byteOffset": 2 * triples, "byteLength": meshed - 2 * triples, "target": ELEMENT_ARRAY_BUFFER}));
         }
         let mut accessors = Vec::new();
         let mut meshes = Vec::new();
@@ -65,7 +67,29 @@ impl Document {
                 "extras": {"patches": patches},
             }));
         }
-        let root = place(mesh, &mut nodes, rounding);
+        let mut materials = vec![json!({
+            "name": "body",
+            "doubleSided": true,
+            "pbrMetallicRoughness": {
+                "baseColorFactor": [0.6, 0.6, 0.6, 1.0],
+                "metallicFactor": 0.0,
+                "roughnessFactor": 0.5,
+            },
+        })];
+        let mut children: Vec<usize> = (0..nodes.len()).collect();
+        children.extend(overlays::add(
+            overlays,
+            rounding,
+            meshed,
+            &mut overlays::Lists {
+                nodes: &mut nodes,
+                meshes: &mut meshes,
+                materials: &mut materials,
+                accessors: &mut accessors,
+                views: &mut views,
+            },
+        ));
+        let root = place(mesh, &mut nodes, children, rounding);
         Self(json!({
             "asset": {
                 "version": "2.0",
@@ -75,15 +99,7 @@ impl Document {
             "scenes": [{"name": mesh.name, "nodes": [root]}],
             "nodes": nodes,
             "meshes": meshes,
-            "materials": [{
-                "name": "body",
-                "doubleSided": true,
-                "pbrMetallicRoughness": {
-                    "baseColorFactor": [0.6, 0.6, 0.6, 1.0],
-                    "metallicFactor": 0.0,
-                    "roughnessFactor": 0.5,
-                },
-            }],
+            "materials": materials,
             "accessors": accessors,
             "bufferViews": views,
             "buffers": [{"byteLength": binary}],
@@ -99,8 +115,12 @@ impl Document {
 }
 
 /// Adds the nodes above the panels and returns the root.
-fn place(mesh: &Mesh, nodes: &mut Vec<Value>, rounding: &Rounding) -> usize {
-    let mut children: Vec<usize> = (0..nodes.len()).collect();
+fn place(
+    mesh: &Mesh,
+    nodes: &mut Vec<Value>,
+    mut children: Vec<usize>,
+    rounding: &Rounding,
+) -> usize {
     let origin = rounding.origin;
     if origin.iter().any(|c| c.abs() > 0.0) {
         let node = json!({
@@ -129,7 +149,13 @@ fn place(mesh: &Mesh, nodes: &mut Vec<Value>, rounding: &Rounding) -> usize {
 }
 
 /// A stretch of a buffer view.
-fn accessor(view: usize, size: u64, range: &Range<usize>, component: u32, kind: &str) -> Value {
+pub(super) fn accessor(
+    view: usize,
+    size: u64,
+    range: &Range<usize>,
+    component: u32,
+    kind: &str,
+) -> Value {
     json!({
         "bufferView": view,
         "byteOffset": size * range.start as u64,
