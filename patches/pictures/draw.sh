@@ -9,9 +9,9 @@ draw() { "$chordwise" draw "patches/$1.ron" -o "patches/pictures/$2.png" "${@:3}
 
 for set in patches/*.ron; do
     name=$(basename "$set" .ron)
-    draw "$name" "$name" --shading panels --edges --size 480x320
+    draw "$name" "$name" --shading panels --edges --size 360x260
 done
-draw front_quarter front_quarter_seams --seams --size 960x560
-draw front_quarter front_quarter_lines --shading reflection --size 960x560
-draw front_quarter front_quarter_mean --shading mean --size 960x560
-draw front_quarter front_quarter_section --section x=300 --size 960x560
+draw front_quarter front_quarter_seams --seams --size 840x500
+draw front_quarter front_quarter_lines --shading reflection --size 840x500
+draw front_quarter front_quarter_mean --shading mean --size 840x500
+draw front_quarter front_quarter_section --section x=300 --size 840x500

@@ -117,7 +117,7 @@ pub(super) struct DrawArguments {
 
     /// The curvature that the tooth in the legend stands for [default: a round
     /// figure that nine tenths of the places keep to]
-    #[arg(long, value_name = "CURVATURE", requires = "section", value_parser = curvature)]
+    #[arg(long, value_name = "CURVATURE", requires = "section", allow_hyphen_values = true, value_parser = curvature)]
     comb: Option<f64>,
 
     /// Pixels across and down, from 64 to 8192

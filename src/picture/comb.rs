@@ -15,6 +15,9 @@ const INK: [u8; 3] = [32, 36, 42];
 /// curvature.
 const TOOTH: f64 = 0.08;
 
+/// Teeth are cut off at this many of those.
+const LONGEST: f64 = 1.5;
+
 /// What stands round a section.
 #[derive(Debug, Clone)]
 pub struct SectionHead {
@@ -44,11 +47,12 @@ pub fn draw_section(
     // Room for the teeth.
     #[allow(clippy::cast_precision_loss, reason = "at most 2^15 pixels")]
     let tooth = TOOTH * size.0 as f64;
+    let room = LONGEST * tooth;
     let window = [
-        left + tooth,
-        top + tooth / 2.0,
-        right - tooth,
-        bottom - tooth / 2.0,
+        left + room,
+        top + room / 2.0,
+        right - room,
+        bottom - room / 2.0,
     ];
     let points: Vec<Point> = runs
         .iter()
@@ -79,8 +83,8 @@ pub fn draw_section(
             .iter()
             .map(|cut| {
                 let bend = cut.bend?;
-                // Beyond three teeth a comb says only that it is large.
-                let long = (bend.norm() / comb).min(3.0) * tooth * camera.pixel;
+                // A longer one says only that curvature is large.
+                let long = (bend.norm() / comb).min(LONGEST) * tooth * camera.pixel;
                 let tip = cut.point - bend.try_normalize(1e-300)? * long;
                 Some(flat(&tip))
             })

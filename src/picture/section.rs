@@ -158,13 +158,17 @@ fn chains(links: &mut BTreeMap<Crossing, Vec<Crossing>>) -> Vec<Vec<Crossing>> {
 fn run(scene: &Scene<'_>, piece: usize, plane: &Plane, chain: &[[f64; 2]]) -> SectionRun {
     let of = &scene.set.pieces()[piece];
     let patch = &scene.set.patches()[of.patch.index()];
-    let mut cuts = Vec::new();
+    let mut cuts: Vec<Cut> = Vec::new();
     for (k, pair) in chain.windows(2).enumerate() {
         let first = u32::from(k > 0);
         for step in first..=BETWEEN {
             let t = f64::from(step) / f64::from(BETWEEN);
             let place = [0, 1].map(|i| pair[0][i] * (1.0 - t) + pair[1][i] * t);
-            cuts.push(cut(&of.surface, plane, place));
+            let next = cut(&of.surface, plane, place);
+            let again = |last: &Cut| last.point == next.point;
+            if !cuts.last().is_some_and(again) {
+                cuts.push(next);
+            }
         }
     }
     SectionRun {

@@ -284,6 +284,15 @@ fn usage() -> Vec<Case> {
             "draw ball.ron -o ball.png --shading mean --range 2:1",
         ),
         ball("no size", "draw ball.ron -o ball.png --size 1x1"),
+        ball("no plane", "draw ball.ron -o ball.png --section w=3"),
+        ball(
+            "no curvature of a comb",
+            "draw ball.ron -o ball.png --section x=3 --comb -1",
+        ),
+        ball(
+            "extras in STL",
+            "tessellate ball.ron -o a.stl --extra seams",
+        ),
         ball("no manual", "man tesselate"),
         ball("no shell", "completions ed"),
         ball("too many panels", "demo --panels 0 -o a.ron"),
