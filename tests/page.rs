@@ -44,7 +44,10 @@ fn a_page_tells_where_it_comes_from_and_nothing_of_the_machine() {
     let folder = set.parent().unwrap().to_str().unwrap();
     assert!(!text.contains(folder));
     // Nothing is loaded: no address but the name of a standard.
-    assert_eq!(text.matches("http").count(), text.matches("http-equiv").count());
+    assert_eq!(
+        text.matches("http").count(),
+        text.matches("http-equiv").count()
+    );
     assert_eq!((1, text), page(&set, "3"), "it depends on the threads");
 }
 
