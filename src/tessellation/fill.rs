@@ -3,6 +3,7 @@
 use super::certificate::Prover;
 use super::correction::Correction;
 use super::field::Field;
+use super::interpolation::SecondDerivatives;
 use super::lattice::Ground;
 use super::layout::layout;
 use super::planar;
@@ -36,6 +37,13 @@ pub struct Proved {
     pub to_mesh: f64,
     /// Largest distance of the mesh from the surface.
     pub to_surface: f64,
+}
+
+impl Proved {
+    /// The larger of the two.
+    pub(super) fn largest(&self) -> f64 {
+        self.to_mesh.max(self.to_surface)
+    }
 }
 
 /// A point of the surface and its distance from the triangle over it.
@@ -73,6 +81,7 @@ pub(crate) fn fill(
         return Ok(Filled::empty());
     }
     let field = Field::new(surface);
+    let seconds = SecondDerivatives::new(surface);
     let planar = planar::proof(surface, outline, limits);
     let mut ground = Ground {
         field: &field,
@@ -91,7 +100,7 @@ pub(crate) fn fill(
     }
     let mut best: Option<Trial> = None;
     for _ in 0..LAYOUTS {
-        let mut work = Work::new(surface, &field, limits, layout(surface, &ground, outline));
+        let mut work = Work::new(surface, &field, &seconds, limits, layout(surface, &ground, outline));
         let failed = work.round(&mut prover, planar);
         let inner = work.inner_failing(&failed);
         let cost = work.figures.len() + 2 * failed.len();

@@ -14,6 +14,7 @@ mod correction;
 mod field;
 mod fill;
 mod floor;
+mod interpolation;
 mod lattice;
 mod layout;
 mod planar;

@@ -34,7 +34,7 @@ impl Work<'_> {
                 }
                 let figure = self.figures[t as usize];
                 if self.refine(t) || self.layout.triangulation.triangles.len() > most {
-                    return Err(self.stuck(t, figure.to_mesh.max(figure.to_surface)));
+                    return Err(self.stuck(t, figure.largest()));
                 }
             }
             failed = self.round(prover, planar);

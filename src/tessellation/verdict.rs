@@ -69,7 +69,7 @@ pub(super) fn judge(work: &Work, prover: &mut Prover, t: u32, ring: &mut Vec<u32
         to_mesh: cell.direct,
         to_surface: cell.height.max(edges),
     };
-    if alone.to_mesh.max(alone.to_surface) <= GOOD * work.limits.chord {
+    if alone.largest() <= GOOD * work.limits.chord {
         return alone;
     }
     let border = work.layout.triangulation.ring(t, ring);

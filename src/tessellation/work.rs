@@ -5,12 +5,16 @@ use std::collections::HashSet;
 use super::certificate::{Cell, Flat, Prover};
 use super::field::Field;
 use super::fill::{Attained, Filled, Proved, Stuck};
+use super::interpolation::SecondDerivatives;
 use super::layout::{INNER, Layout};
 use super::triangulation::{Pole, TriangleEdge, is_proper};
 use super::verdict;
 use crate::bezier::BezierPatch;
 use crate::sampling::{Limits, ratio};
 use crate::scalar::{Point, Vector};
+
+/// Triangles of a piece whose true deviation is looked at.
+const LOOKED_AT: usize = 48;
 
 /// An exchange of diagonals must lower the larger error by this factor, so
 /// that rounding cannot make it go round in circles.
@@ -24,6 +28,11 @@ pub(super) struct Work<'a> {
     pub(super) normals: Vec<Option<Vector>>,
     pub(super) flats: Vec<Flat>,
     pub(super) cells: Vec<Cell>,
+    /// Whether a cell was bounded by its net.
+    by_net: Vec<bool>,
+    seconds: &'a SecondDerivatives,
+    /// Weight of the piece at every vertex, and how far the vertex is off it.
+    vertex_facts: Vec<[f64; 2]>,
     pub(super) stale: Vec<bool>,
     pub(super) figures: Vec<Proved>,
     pub(super) ring: Vec<u32>,
@@ -37,6 +46,7 @@ impl<'a> Work<'a> {
     pub(super) fn new(
         surface: &'a BezierPatch,
         field: &'a Field<'a>,
+        seconds: &'a SecondDerivatives,
         limits: &'a Limits,
         layout: Layout,
     ) -> Self {
@@ -49,6 +59,9 @@ impl<'a> Work<'a> {
             layout,
             flats: Vec::new(),
             cells: Vec::new(),
+            by_net: Vec::new(),
+            seconds,
+            vertex_facts: Vec::new(),
             stale: vec![true; count],
             figures: Vec::new(),
             ring: Vec::new(),
@@ -114,7 +127,7 @@ impl<'a> Work<'a> {
                 let figure = self.figures[t as usize];
                 (
                     self.centre(t),
-                    figure.to_mesh.max(figure.to_surface) / self.limits.chord,
+                    figure.largest() / self.limits.chord,
                 )
             })
             .collect()
@@ -153,11 +166,10 @@ impl<'a> Work<'a> {
                     to_mesh: bound,
                     to_surface: bound,
                 },
-                None => verdict::judge(self, prover, t, &mut ring),
+                None => self.judge(prover, t, &mut ring),
             };
             self.figures[t as usize] = figure;
-            let within = figure.to_mesh.max(figure.to_surface) <= self.limits.chord;
-            if !within || !self.keeps_shape(t) {
+            if figure.largest() > self.limits.chord || !self.keeps_shape(t) {
                 failed.push(t);
             }
         }
@@ -165,20 +177,83 @@ impl<'a> Work<'a> {
         failed
     }
 
-    /// Brings flats and cells up to date.
+    /// The figures of a triangle: from the bounds at hand, from its own net
+    /// where these do not do, and from the nets of its ring where that does not.
+    fn judge(&mut self, prover: &mut Prover, t: u32, ring: &mut Vec<u32>) -> Proved {
+        let mut figure = verdict::judge(self, prover, t, ring);
+        if figure.largest() > self.limits.chord && self.bound_by_net(prover, t) {
+            figure = verdict::judge(self, prover, t, ring);
+        }
+        if figure.largest() > self.limits.chord {
+            self.layout.triangulation.ring(t, ring);
+            let mut any = false;
+            for k in 0..ring.len() {
+                any |= self.bound_by_net(prover, ring[k]);
+            }
+            if any {
+                figure = verdict::judge(self, prover, t, ring);
+            }
+        }
+        figure
+    }
+
+    /// Brings flats and cells up to date, cells by interpolation where that
+    /// gives a bound.
     fn measure(&mut self, prover: &mut Prover, stale: &[u32]) {
         let count = self.layout.triangulation.triangles.len();
         self.flats.resize(count, Flat::new([Point::origin(); 3]));
         self.cells.resize(count, Cell::default());
+        self.by_net.resize(count, false);
+        for v in self.vertex_facts.len()..self.layout.points.len() {
+            self.vertex_facts.push(self.facts(v));
+        }
         for &t in stale {
             let corners = self.layout.triangulation.triangles[t as usize];
             let flat = Flat::new(corners.map(|v| self.layout.points[v as usize]));
             self.flats[t as usize] = flat;
-            self.cells[t as usize] = match self.layout.triangulation.pole_corner(corners) {
-                None => prover.cell(self.layout.triangulation.corners(t), &flat, true),
-                Some((k, pole)) => self.pole_cell(prover, corners, k, pole, &flat),
+            self.by_net[t as usize] = false;
+            let quick = if self.layout.triangulation.pole_corner(corners).is_none() {
+                let places = self.layout.triangulation.corners(t);
+                let facts = corners.map(|v| self.vertex_facts[v as usize]);
+                let off = facts[0][1].max(facts[1][1]).max(facts[2][1]);
+                let weights = facts.map(|fact| fact[0]);
+                self.seconds
+                    .cell(places, weights, &flat, off, prover.slack())
+            } else {
+                None
             };
+            match quick {
+                Some(cell) => self.cells[t as usize] = cell,
+                None => {
+                    self.bound_by_net(prover, t);
+                }
+            }
         }
+    }
+
+    /// Weight of the piece at a vertex, and the vertex's distance from it.
+    fn facts(&self, v: usize) -> [f64; 2] {
+        let place = self.layout.triangulation.places[v];
+        let off = if self.layout.vertices[v] == INNER {
+            0.0
+        } else {
+            (self.surface.eval(place[0], place[1]) - self.layout.points[v]).norm()
+        };
+        [self.seconds.weight(place), off]
+    }
+
+    /// Bounds a cell by its net; false if it is already.
+    fn bound_by_net(&mut self, prover: &mut Prover, t: u32) -> bool {
+        if std::mem::replace(&mut self.by_net[t as usize], true) {
+            return false;
+        }
+        let corners = self.layout.triangulation.triangles[t as usize];
+        let flat = self.flats[t as usize];
+        self.cells[t as usize] = match self.layout.triangulation.pole_corner(corners) {
+            None => prover.cell(self.layout.triangulation.corners(t), &flat, true),
+            Some((k, pole)) => self.pole_cell(prover, corners, k, pole, &flat),
+        };
+        true
     }
 
     /// The cell of a triangle at the pole is a trapezoid: the two parameter
@@ -220,11 +295,7 @@ impl<'a> Work<'a> {
 
     /// Drops triangles without area and finds the largest true deviation.
     pub(super) fn finish(mut self, proved: Proved) -> Result<Filled, Stuck> {
-        let mut attained = Attained {
-            distance: 0.0,
-            place: [0.5, 0.5],
-            point: self.surface.eval(0.5, 0.5),
-        };
+        let attained = self.attained();
         let mesh = &self.layout.triangulation;
         let mut places = mesh.places.clone();
         let mut triangles = Vec::with_capacity(mesh.triangles.len());
@@ -249,21 +320,6 @@ impl<'a> Work<'a> {
                     .push(self.layout.vertices[corners[k] as usize]);
             }
             triangles.push(written);
-            let Some(normal) = self.flats[t].normal else {
-                continue;
-            };
-            let around = mesh.corners(index(t));
-            let peak = self.cells[t].peak;
-            let at = |axis: usize| (0..3).map(|k| peak[k] * around[k][axis]).sum::<f64>();
-            let point = self.surface.eval(at(0), at(1));
-            let distance = (point - self.flats[t].corners[0]).dot(&normal).abs();
-            if distance > attained.distance {
-                attained = Attained {
-                    distance,
-                    place: [at(0), at(1)],
-                    point,
-                };
-            }
         }
         if let Some(t) = self.uncovered(&dropped) {
             return Err(self.stuck(t, f64::INFINITY));
@@ -276,6 +332,43 @@ impl<'a> Work<'a> {
             proved,
             attained,
         })
+    }
+
+    /// The largest deviation found at the places where the heights of the
+    /// worst triangles are largest.
+    fn attained(&self) -> Attained {
+        let mut worst: Vec<u32> = (0..index(self.cells.len())).collect();
+        let height = |t: &u32| self.cells[*t as usize].height;
+        if worst.len() > LOOKED_AT {
+            let order = |a: &u32, b: &u32| height(b).total_cmp(&height(a)).then(a.cmp(b));
+            worst.select_nth_unstable_by(LOOKED_AT, order);
+            worst.truncate(LOOKED_AT);
+            worst.sort_unstable();
+        }
+        let mut attained = Attained {
+            distance: 0.0,
+            place: [0.5, 0.5],
+            point: self.surface.eval(0.5, 0.5),
+        };
+        for t in worst {
+            let flat = &self.flats[t as usize];
+            let Some(normal) = flat.normal else {
+                continue;
+            };
+            let around = self.layout.triangulation.corners(t);
+            let peak = self.cells[t as usize].peak;
+            let at = |axis: usize| (0..3).map(|k| peak[k] * around[k][axis]).sum::<f64>();
+            let point = self.surface.eval(at(0), at(1));
+            let distance = (point - flat.corners[0]).dot(&normal).abs();
+            if distance > attained.distance {
+                attained = Attained {
+                    distance,
+                    place: [at(0), at(1)],
+                    point,
+                };
+            }
+        }
+        attained
     }
 
     /// A dropped triangle whose remaining edge is in no triangle that is
