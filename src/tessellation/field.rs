@@ -50,11 +50,6 @@ impl Bend {
             form: [form(0), form(1), form(2)],
         }
     }
-
-    /// S'' applied twice to a parameter step.
-    fn bend(&self, [du, dv]: [f64; 2]) -> Vector {
-        self.second[0] * (du * du) + self.second[1] * (2.0 * du * dv) + self.second[2] * (dv * dv)
-    }
 }
 
 /// The table.
@@ -94,11 +89,17 @@ impl<'a> Field<'a> {
 
     /// The bend at (u, v), bilinear between grid places.
     pub(super) fn at(&self, [u, v]: [f64; 2]) -> Bend {
+        let (corners, weights) = self.around([u, v]);
+        Bend::blend(corners, weights)
+    }
+
+    /// The nodes round a place, and their weights.
+    fn around(&self, [u, v]: [f64; 2]) -> ([&Bend; 4], [f64; 4]) {
         let (i, s) = self.cell(u);
         let (j, t) = self.cell(v);
         let stride = self.cells + 1;
         let at = |i: usize, j: usize| &self.bends[i * stride + j];
-        Bend::blend(
+        (
             [at(i, j), at(i + 1, j), at(i, j + 1), at(i + 1, j + 1)],
             [(1.0 - s) * (1.0 - t), s * (1.0 - t), (1.0 - s) * t, s * t],
         )
@@ -127,10 +128,21 @@ impl<'a> Field<'a> {
         limits: &Limits,
     ) -> f64 {
         let third = |axis: usize| (places[0][axis] + places[1][axis] + places[2][axis]) / 3.0;
-        let bend = self.at([third(0), third(1)]);
+        let middle = [third(0), third(1)];
+        let (corners, weights) = self.around(middle);
+        let mix = |get: &dyn Fn(&Bend) -> &Vector| {
+            let [a, b, c, d] = corners.map(get);
+            a * weights[0] + b * weights[1] + c * weights[2] + d * weights[3]
+        };
+        let normal = mix(&|b| &b.normal);
+        let second = [
+            mix(&|b| &b.second[0]),
+            mix(&|b| &b.second[1]),
+            mix(&|b| &b.second[2]),
+        ];
         let facet = (points[1] - points[0]).cross(&(points[2] - points[0]));
         let mut inward = 0.0;
-        if facet.dot(&bend.normal) <= 0.0 && self.faces_inwards(facet, [third(0), third(1)]) {
+        if facet.dot(&normal) <= 0.0 && self.faces_inwards(facet, middle) {
             inward = INWARD * limits.chord;
         }
         let mut square = [0.0; 3];
@@ -142,19 +154,21 @@ impl<'a> Field<'a> {
                 places[next][0] - places[k][0],
                 places[next][1] - places[k][1],
             ];
-            let q = bend.bend(step);
-            square[k] = bend.form[0] * step[0] * step[0]
-                + bend.form[1] * 2.0 * step[0] * step[1]
-                + bend.form[2] * step[1] * step[1];
+            let q = second[0] * (step[0] * step[0])
+                + second[1] * (2.0 * step[0] * step[1])
+                + second[2] * (step[1] * step[1]);
+            square[k] = q.dot(&normal);
             let along = points[next] - points[k];
             let length = along.norm();
             longest = longest.max(length);
             if length > 0.0 {
-                let sideways = q.dot(&bend.normal.cross(&along)) / length;
+                let sideways = q.dot(&normal.cross(&along)) / length;
                 worst_edge = worst_edge.max(square[k].hypot(TILT * sideways) / 8.0);
             }
         }
-        let (height, _) = super::quadratic::Quadratic::interpolation_error(square).largest();
+        let height = super::quadratic::Quadratic::interpolation_error(square)
+            .largest()
+            .0;
         height
             .max(worst_edge)
             .max(limits.length_error(longest))

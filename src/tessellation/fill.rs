@@ -100,7 +100,13 @@ pub(crate) fn fill(
     }
     let mut best: Option<Trial> = None;
     for _ in 0..LAYOUTS {
-        let mut work = Work::new(surface, &field, &seconds, limits, layout(surface, &ground, outline));
+        let mut work = Work::new(
+            surface,
+            &field,
+            &seconds,
+            limits,
+            layout(surface, &ground, outline),
+        );
         let failed = work.round(&mut prover, planar);
         let inner = work.inner_failing(&failed);
         let cost = work.figures.len() + 2 * failed.len();

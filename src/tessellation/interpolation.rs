@@ -162,20 +162,22 @@ impl SecondDerivatives {
         let cells = if fine { CELLS_FINE } else { CELLS };
         let width = ratio(1, cells);
         let off = [0, 1, 2].map(|k| {
-            let bend = seconds[k].second([0, 0]).largest(reach)
-                + seconds[k].second([1, 1]).largest(reach);
+            let bend =
+                seconds[k].second([0, 0]).largest(reach) + seconds[k].second([1, 1]).largest(reach);
             bend * width * width / 8.0
         });
         let rows = |degree: usize| -> Vec<Vec<f64>> {
-            (0..=cells).map(|k| bernstein(degree, ratio(k, cells))).collect()
+            (0..=cells)
+                .map(|k| bernstein(degree, ratio(k, cells)))
+                .collect()
         };
         let tables = [0, 1, 2].map(|k| seconds[k].degree.map(rows));
         let mut nodes = Vec::with_capacity((cells + 1) * (cells + 1));
         for i in 0..=cells {
             for j in 0..=cells {
-                nodes.push([0, 1, 2].map(|k| {
-                    seconds[k].value([&tables[k][0][i], &tables[k][1][j]])
-                }));
+                nodes.push(
+                    [0, 1, 2].map(|k| seconds[k].value([&tables[k][0][i], &tables[k][1][j]])),
+                );
             }
         }
         let growth = growth(&nodes, cells, reach);
@@ -218,9 +220,7 @@ impl SecondDerivatives {
         let high = [0, 1].map(|x| places[0][x].max(places[1][x]).max(places[2][x]));
         let [l1, l2] = [high[0] - low[0], high[1] - low[1]];
         let (second, growth) = self.at([low[0] + l1 / 2.0, low[1] + l2 / 2.0], l1.max(l2));
-        let spread = [0, 1, 2].map(|k| {
-            (growth[k][0] * l1 + growth[k][1] * l2) / 2.0 + self.off[k]
-        });
+        let spread = [0, 1, 2].map(|k| (growth[k][0] * l1 + growth[k][1] * l2) / 2.0 + self.off[k]);
         let boxed = |[a, b, c]: [f64; 3]| (a * l1 * l1 + 2.0 * b * l1 * l2 + c * l2 * l2) / 8.0;
         let rest = boxed(spread);
         let vectors: [Vector; 3] = [0, 1, 2].map(|k| second[k].xyz() - s * second[k].w);
@@ -245,7 +245,8 @@ impl SecondDerivatives {
                 places[next][0] - places[k][0],
                 places[next][1] - places[k][1],
             );
-            let bend = vectors[0] * (du * du) + vectors[1] * (2.0 * du * dv) + vectors[2] * (dv * dv);
+            let bend =
+                vectors[0] * (du * du) + vectors[1] * (2.0 * du * dv) + vectors[2] * (dv * dv);
             let along = target.corners[next] - target.corners[k];
             let length = along.norm();
             longest = longest.max(length);
@@ -291,16 +292,13 @@ impl SecondDerivatives {
         let stride = self.cells + 1;
         let corner = i * stride + j;
         let [a, b] = [&self.nodes[corner], &self.nodes[corner + 1]];
-        let [c, d] = [&self.nodes[corner + stride], &self.nodes[corner + stride + 1]];
-        let weights = [
-            (1.0 - x) * (1.0 - y),
-            (1.0 - x) * y,
-            x * (1.0 - y),
-            x * y,
+        let [c, d] = [
+            &self.nodes[corner + stride],
+            &self.nodes[corner + stride + 1],
         ];
-        let second = [0, 1, 2].map(|k| {
-            a[k] * weights[0] + b[k] * weights[1] + c[k] * weights[2] + d[k] * weights[3]
-        });
+        let weights = [(1.0 - x) * (1.0 - y), (1.0 - x) * y, x * (1.0 - y), x * y];
+        let second = [0, 1, 2]
+            .map(|k| a[k] * weights[0] + b[k] * weights[1] + c[k] * weights[2] + d[k] * weights[3]);
         // The middle is in the cell, the triangle half its extent round it.
         let near = extent * cells <= 2.0;
         let growth = if near {

@@ -81,9 +81,9 @@ impl Work<'_> {
 
     fn exchange(&mut self, (t, i): TriangleEdge) {
         let other = self.layout.triangulation.neighbours[t as usize][i];
-        self.stale[t as usize] = true;
-        self.stale[other as usize] = true;
         self.layout.triangulation.flip((t, i));
+        self.touch(t);
+        self.touch(other);
     }
 
     fn faces_inwards(&self, corners: [u32; 3]) -> bool {
@@ -178,17 +178,15 @@ impl Work<'_> {
         let place = [(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0];
         self.add_vertex(place);
         let other = self.layout.triangulation.neighbours[t as usize][i];
-        self.stale[other as usize] = true;
         outer = self.layout.triangulation.insert_on_edge((t, i), place);
+        self.touch(other);
         self.settle(t, &mut outer);
         false
     }
 
     /// Marks what a new vertex has changed, and improves round it.
     fn settle(&mut self, t: u32, outer: &mut Vec<TriangleEdge>) {
-        self.stale[t as usize] = true;
-        let count = self.layout.triangulation.triangles.len();
-        self.stale.resize(count, true);
+        self.touch(t);
         self.improve(outer);
     }
 

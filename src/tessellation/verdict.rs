@@ -55,9 +55,6 @@ use crate::scalar::{Point, Vector};
 /// Rings that tilt more than this (45 degrees) prove nothing.
 const LARGEST_TAN: f64 = 1.0;
 
-/// Below this part of the chord the triangle's own figures are good enough.
-const GOOD: f64 = 0.9;
-
 /// Least half angle between border edges at a vertex, as a sine.
 const SHARPEST: f64 = 0.38;
 
@@ -69,7 +66,8 @@ pub(super) fn judge(work: &Work, prover: &mut Prover, t: u32, ring: &mut Vec<u32
         to_mesh: cell.direct,
         to_surface: cell.height.max(edges),
     };
-    if alone.largest() <= GOOD * work.limits.chord {
+    // A height above the chord is above it with any ring.
+    if alone.largest() <= work.limits.chord || cell.height > work.limits.chord {
         return alone;
     }
     let border = work.layout.triangulation.ring(t, ring);

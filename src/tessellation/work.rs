@@ -7,7 +7,7 @@ use super::field::Field;
 use super::fill::{Attained, Filled, Proved, Stuck};
 use super::interpolation::SecondDerivatives;
 use super::layout::{INNER, Layout};
-use super::triangulation::{Pole, TriangleEdge, is_proper};
+use super::triangulation::{BORDER, Pole, TriangleEdge, is_proper};
 use super::verdict;
 use crate::bezier::BezierPatch;
 use crate::sampling::{Limits, ratio};
@@ -15,6 +15,10 @@ use crate::scalar::{Point, Vector};
 
 /// Triangles of a piece whose true deviation is looked at.
 const LOOKED_AT: usize = 48;
+
+/// A height above this part of the chord by interpolation is above the chord
+/// by any bound.
+const HOPELESS: f64 = 1.25;
 
 /// An exchange of diagonals must lower the larger error by this factor, so
 /// that rounding cannot make it go round in circles.
@@ -34,6 +38,8 @@ pub(super) struct Work<'a> {
     /// Weight of the piece at every vertex, and how far the vertex is off it.
     vertex_facts: Vec<[f64; 2]>,
     pub(super) stale: Vec<bool>,
+    /// Estimated errors; NaN where not known.
+    errors: Vec<f64>,
     pub(super) figures: Vec<Proved>,
     pub(super) ring: Vec<u32>,
 }
@@ -63,11 +69,16 @@ impl<'a> Work<'a> {
             seconds,
             vertex_facts: Vec::new(),
             stale: vec![true; count],
+            errors: vec![f64::NAN; count],
             figures: Vec::new(),
             ring: Vec::new(),
         };
-        let all = (0..count).flat_map(|t| (0..3).map(move |i| (index(t), i)));
-        let mut edges: Vec<TriangleEdge> = all.collect();
+        let neighbours = &work.layout.triangulation.neighbours;
+        let all = (0..index(count)).flat_map(|t| (0..3).map(move |i| (t, i)));
+        let mut edges: Vec<TriangleEdge> = all
+            .filter(|&(t, i)| t < neighbours[t as usize][i])
+            .filter(|&(t, i)| neighbours[t as usize][i] != BORDER)
+            .collect();
         work.improve(&mut edges);
         work
     }
@@ -90,16 +101,40 @@ impl<'a> Work<'a> {
             if !proper([d, a, b]) || !proper([b, c, d]) {
                 continue;
             }
-            let now = self.error([a, c, d]).max(self.error([c, a, b]));
-            let then = self.error([d, a, b]).max(self.error([b, c, d]));
-            if then < now * FLIP_GAIN && budget > 0 {
+            let other = self.layout.triangulation.neighbours[edge.0 as usize][edge.1];
+            let limit = self.known_error(edge.0).max(self.known_error(other)) * FLIP_GAIN;
+            let first = self.error([d, a, b]);
+            if first >= limit || budget == 0 {
+                continue;
+            }
+            let second = self.error([b, c, d]);
+            if second < limit {
                 budget -= 1;
-                let other = self.layout.triangulation.neighbours[edge.0 as usize][edge.1];
-                self.stale[edge.0 as usize] = true;
-                self.stale[other as usize] = true;
+                self.touch(edge.0);
+                self.touch(other);
                 edges.extend(self.layout.triangulation.flip(edge));
+                self.errors[edge.0 as usize] = first;
+                self.errors[other as usize] = second;
             }
         }
+    }
+
+    /// The estimated error of a triangle, kept until it changes.
+    fn known_error(&mut self, t: u32) -> f64 {
+        if self.errors[t as usize].is_nan() {
+            let corners = self.layout.triangulation.triangles[t as usize];
+            self.errors[t as usize] = self.error(corners);
+        }
+        self.errors[t as usize]
+    }
+
+    /// Notes that a triangle has changed, or that new ones have come.
+    pub(super) fn touch(&mut self, t: u32) {
+        let count = self.layout.triangulation.triangles.len();
+        self.stale.resize(count, true);
+        self.errors.resize(count, f64::NAN);
+        self.stale[t as usize] = true;
+        self.errors[t as usize] = f64::NAN;
     }
 
     fn is_inner(&self, t: u32) -> bool {
@@ -125,10 +160,7 @@ impl<'a> Work<'a> {
             .filter(|&t| self.is_inner(t))
             .map(|t| {
                 let figure = self.figures[t as usize];
-                (
-                    self.centre(t),
-                    figure.largest() / self.limits.chord,
-                )
+                (self.centre(t), figure.largest() / self.limits.chord)
             })
             .collect()
     }
@@ -180,15 +212,19 @@ impl<'a> Work<'a> {
     /// The figures of a triangle: from the bounds at hand, from its own net
     /// where these do not do, and from the nets of its ring where that does not.
     fn judge(&mut self, prover: &mut Prover, t: u32, ring: &mut Vec<u32>) -> Proved {
+        let chord = self.limits.chord;
         let mut figure = verdict::judge(self, prover, t, ring);
-        if figure.largest() > self.limits.chord && self.bound_by_net(prover, t) {
+        if figure.largest() <= chord || self.cells[t as usize].height > HOPELESS * chord {
+            return figure;
+        }
+        if self.bound_by_net(prover, t) {
             figure = verdict::judge(self, prover, t, ring);
         }
-        if figure.largest() > self.limits.chord {
+        if figure.largest() > chord && self.cells[t as usize].height <= chord {
             self.layout.triangulation.ring(t, ring);
             let mut any = false;
-            for k in 0..ring.len() {
-                any |= self.bound_by_net(prover, ring[k]);
+            for member in ring.clone() {
+                any |= self.bound_by_net(prover, member);
             }
             if any {
                 figure = verdict::judge(self, prover, t, ring);
