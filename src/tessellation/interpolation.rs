@@ -16,19 +16,22 @@
 //! With S = N / w and a corner s of the triangle, f runs over
 //! n . (N - w s) for the heights and over the vector N - w s for the rest: the
 //! first vanishes at the corners as S does in the triangle's plane. For the
-//! rest let L be the linear interpolant of S and l its distances from s; then
+//! rest let P = I(w S) / I w, I the linear interpolant: a weighted mean of the
+//! corners, which covers the flat triangle once, and
 //!
 //! ```text
-//! w (S - L) = (g - I g) + (I g - I w l) - (w - I w) l,   g = N - w s,
+//! w (S - P) = (g - I g) - (w - I w) (P - s),   g = N - w s.
 //! ```
 //!
-//! I the linear interpolant; the middle part is the sum over pairs of corners
-//! of l_i l_j (w_i - w_j) (S_i - S_j), at most a third of the largest. Everything is divided by the least weight in the triangle.
+//! Everything is divided by the least weight in the triangle.
 //!
 //! H is read from a grid, bilinear between its nodes: off by at most
 //! (g_u^2 max |f_uu| + g_v^2 max |f_vv|) / 8 of the second derivative's own
 //! second derivatives (from their nets), and it changes within a triangle by no
-//! more than the differences of neighbouring nodes say.
+//! more than the differences of neighbouring nodes say. These are kept as their
+//! parts along and across the normal m of their cell: for a triangle's normal n
+//! they count |n . m| and |n x m|, since most of a third derivative lies in the
+//! surface.
 //!
 //! A vertex that does not lie on the piece (a seam joined over a gap) adds its
 //! distance to every figure.
@@ -58,13 +61,47 @@ pub(super) struct SecondDerivatives {
     cells: usize,
     /// uu, uv, vv at the nodes, v fastest.
     nodes: Vec<[Homogeneous; 3]>,
-    /// How fast each of the three changes along u and along v: the largest in
-    /// a cell and its neighbours; the last entry is for the whole piece.
-    growth: Vec<[[f64; 2]; 3]>,
+    /// How fast they change: the largest in a cell and its neighbours; the last
+    /// entry is for the whole piece.
+    growth: Vec<Growth>,
     /// How far each may be from bilinear.
     off: [f64; 3],
     /// The net of weights, where there are any.
     weights: Option<Net>,
+}
+
+/// How fast the second derivatives change along u and along v, near a cell.
+#[derive(Debug, Clone)]
+struct Growth {
+    /// Normal and middle of the cell, the middle from the origin.
+    normal: Vector,
+    middle: Vector,
+    /// For uu, uv, vv, along u and along v: the part along the normal, the
+    /// part across it, and that of the weight.
+    rates: [[[f64; 3]; 2]; 3],
+}
+
+impl Growth {
+    /// The parts of a difference of nodes.
+    fn parts(&self, x: &Homogeneous) -> [f64; 3] {
+        let vector = x.xyz() - self.middle * x.w;
+        let along = vector.dot(&self.normal);
+        let across = (vector.norm_squared() - along * along).max(0.0).sqrt();
+        // The root loses half the digits where next to nothing is across.
+        [along.abs(), across + 1e-7 * along.abs(), x.w.abs()]
+    }
+
+    /// The most by which the three change within l1 / 2 and l2 / 2: of
+    /// n . (N - w s), and of the length of N - w s.
+    fn spread(&self, normal: &Vector, s: &Vector, [l1, l2]: [f64; 2]) -> [[f64; 2]; 3] {
+        let cosine = normal.dot(&self.normal).abs();
+        let sine = normal.cross(&self.normal).norm();
+        let aside = (s - self.middle).norm();
+        self.rates.map(|rate| {
+            let [n, t, w] = [0, 1, 2].map(|k| (rate[0][k] * l1 + rate[1][k] * l2) / 2.0);
+            [n * cosine + t * sine + w * aside, n + t + w * aside]
+        })
+    }
 }
 
 /// A net of homogeneous control values, v fastest.
@@ -180,7 +217,7 @@ impl SecondDerivatives {
                 );
             }
         }
-        let growth = growth(&nodes, cells, reach);
+        let growth = growth(surface, &origin, &nodes, cells);
         Self {
             origin,
             reach,
@@ -220,18 +257,21 @@ impl SecondDerivatives {
         let high = [0, 1].map(|x| places[0][x].max(places[1][x]).max(places[2][x]));
         let [l1, l2] = [high[0] - low[0], high[1] - low[1]];
         let (second, growth) = self.at([low[0] + l1 / 2.0, low[1] + l2 / 2.0], l1.max(l2));
-        let spread = [0, 1, 2].map(|k| (growth[k][0] * l1 + growth[k][1] * l2) / 2.0 + self.off[k]);
+        let spread = growth.spread(&normal, &s, [l1, l2]);
         let boxed = |[a, b, c]: [f64; 3]| (a * l1 * l1 + 2.0 * b * l1 * l2 + c * l2 * l2) / 8.0;
-        let rest = boxed(spread);
+        let [rest, rest_any] =
+            [0, 1].map(|part| boxed([0, 1, 2].map(|k| spread[k][part] + self.off[k])));
         let vectors: [Vector; 3] = [0, 1, 2].map(|k| second[k].xyz() - s * second[k].w);
         let mut least = 1.0;
-        let mut skew = 0.0;
         let mut bent = 0.0;
         if self.weights.is_some() {
             let [a, b, c] = weights;
-            bent = boxed([0, 1, 2].map(|k| second[k].w.abs() + spread[k] / self.reach));
+            let rate = |k: usize| {
+                let [u, v] = growth.rates[k];
+                second[k].w.abs() + (u[2] * l1 + v[2] * l2) / 2.0 + self.off[k] / self.reach
+            };
+            bent = boxed([rate(0), rate(1), rate(2)]);
             least = a.min(b).min(c) - bent;
-            skew = (a - b).abs().max((b - c).abs()).max((c - a).abs()) / 3.0;
             if least <= 0.0 {
                 return None;
             }
@@ -255,23 +295,23 @@ impl SecondDerivatives {
             // Without weights and with an even enough parameter the curve runs
             // past neither end of its chord: only its distance across counts.
             let onward = bend.dot(&along) / length;
-            let even = onward.abs() + 8.0 * rest <= 2.0 * length;
+            let even = onward.abs() + 8.0 * rest_any <= 2.0 * length;
             edges[k] = if self.weights.is_none() && even {
                 (bend - along * (onward / length)).norm() / 8.0
             } else {
-                bend.norm() / 8.0 + (weights[next] - weights[k]).abs() * length / 4.0
+                bend.norm() / 8.0
             };
         }
         let (height, peak) = Quadratic::interpolation_error(square).largest();
         let most = weights[0].max(weights[1]).max(weights[2]).max(least);
         let grow = off * most / least + slack;
         let height = (height + rest) / least + grow;
-        let sideways = (sideways.sqrt() / 6.0 + rest + (skew + bent) * longest) / least + grow;
+        let sideways = (sideways.sqrt() / 6.0 + rest_any + bent * longest) / least + grow;
         Some(Cell {
             height,
             sideways,
             direct: height.hypot(sideways),
-            edges: edges.map(|edge| (edge + rest + bent * longest) / least + grow),
+            edges: edges.map(|edge| (edge + rest_any + bent * longest) / least + grow),
             peak,
         })
     }
@@ -283,7 +323,7 @@ impl SecondDerivatives {
         clippy::cast_sign_loss,
         reason = "a parameter in 0..1 times a cell count of at most a dozen"
     )]
-    fn at(&self, [u, v]: [f64; 2], extent: f64) -> ([Homogeneous; 3], &[[f64; 2]; 3]) {
+    fn at(&self, [u, v]: [f64; 2], extent: f64) -> ([Homogeneous; 3], &Growth) {
         let cells = ratio(self.cells, 1);
         let (x, y) = (u * cells, v * cells);
         let cell = |t: f64| (t.max(0.0) as usize).min(self.cells - 1);
@@ -312,37 +352,61 @@ impl SecondDerivatives {
 
 /// Differences of neighbouring nodes over their distance, the largest in each
 /// cell and its neighbours, and over all.
-fn growth(nodes: &[[Homogeneous; 3]], cells: usize, reach: f64) -> Vec<[[f64; 2]; 3]> {
+fn growth(
+    surface: &BezierPatch,
+    origin: &Point,
+    nodes: &[[Homogeneous; 3]],
+    cells: usize,
+) -> Vec<Growth> {
     let stride = cells + 1;
     let scale = ratio(cells, 1);
-    let steep = |a: usize, b: usize, k: usize| size(&(nodes[b][k] - nodes[a][k]), reach) * scale;
-    let mut own = Vec::with_capacity(cells * cells);
-    for i in 0..cells {
-        for j in 0..cells {
-            let at = i * stride + j;
-            own.push([0, 1, 2].map(|k| {
-                [
-                    steep(at, at + stride, k).max(steep(at + 1, at + stride + 1, k)),
-                    steep(at, at + 1, k).max(steep(at + stride, at + stride + 1, k)),
-                ]
-            }));
-        }
-    }
-    let join = |a: [[f64; 2]; 3], b: &[[f64; 2]; 3]| {
-        [0, 1, 2].map(|k| [a[k][0].max(b[k][0]), a[k][1].max(b[k][1])])
-    };
-    let mut wide = Vec::with_capacity(cells * cells + 1);
-    for i in 0..cells {
-        for j in 0..cells {
-            let mut most = [[0.0; 2]; 3];
-            for x in i.saturating_sub(1)..(i + 2).min(cells) {
-                for y in j.saturating_sub(1)..(j + 2).min(cells) {
-                    most = join(most, &own[x * cells + y]);
+    // Differences at a node: [k][towards u, towards v].
+    let rates = |growth: &Growth, [low_i, high_i]: [usize; 2], [low_j, high_j]: [usize; 2]| {
+        let mut most = [[[0.0_f64; 3]; 2]; 3];
+        for i in low_i..=high_i {
+            for j in low_j..=high_j {
+                let at = i * stride + j;
+                let steps = [(i < high_i, stride), (j < high_j, 1)];
+                for (axis, (inside, step)) in steps.into_iter().enumerate() {
+                    if !inside {
+                        continue;
+                    }
+                    for k in 0..3 {
+                        let parts = growth.parts(&((nodes[at + step][k] - nodes[at][k]) * scale));
+                        for (old, new) in most[k][axis].iter_mut().zip(parts) {
+                            *old = old.max(new);
+                        }
+                    }
                 }
             }
-            wide.push(most);
+        }
+        most
+    };
+    let mut all = Vec::with_capacity(cells * cells + 1);
+    for i in 0..cells {
+        for j in 0..cells {
+            let jet = surface.jet((ratio(i, 1) + 0.5) / scale, (ratio(j, 1) + 0.5) / scale);
+            let mut growth = Growth {
+                normal: jet.normal().unwrap_or_else(Vector::z),
+                middle: jet.point - origin,
+                rates: Default::default(),
+            };
+            growth.rates = rates(
+                &growth,
+                [i.saturating_sub(1), (i + 2).min(cells)],
+                [j.saturating_sub(1), (j + 2).min(cells)],
+            );
+            all.push(growth);
         }
     }
-    wide.push(own.iter().fold([[0.0; 2]; 3], join));
-    wide
+    // Large triangles may tilt against any normal.
+    let mut whole = Growth {
+        normal: Vector::z(),
+        middle: Vector::zeros(),
+        rates: Default::default(),
+    };
+    whole.rates =
+        rates(&whole, [0, cells], [0, cells]).map(|axes| axes.map(|[n, t, w]| [n + t, n + t, w]));
+    all.push(whole);
+    all
 }
