@@ -2,16 +2,21 @@
 //! a proof for one triangle that needs no net.
 //!
 //! Let f be a polynomial on a parameter triangle with edges d_k inside a box
-//! l1 x l2, and its second derivatives stay within dA, dB, dC of H. Then f
-//! differs from the linear interpolant of its corner values by at most
+//! l1 x l2. Take its Taylor polynomial of degree 3 at the middle of the box; its
+//! second derivatives then stay within dA, dB, dC of that cubic's. So f differs
+//! from the linear interpolant of its corner values by at most
 //!
 //! ```text
-//! max |q_H(d_0, d_1, d_2)| + (dA l1^2 + 2 dB l1 l2 + dC l2^2) / 8,
+//! max |q(d_0, d_1, d_2)| + max |c_I| + (dA l1^2 + 2 dB l1 l2 + dC l2^2) / 8.
 //! ```
 //!
-//! q_H the error for the constant H, whose largest value has a closed form
-//! (`Quadratic`). The second part is the bound of Filip, Magedson and Markot
-//! (1986); keeping the sign of H in the first is what makes it tight.
+//! q is the error for the constant second derivatives of the middle; its
+//! largest value has a closed form (`Quadratic`), and keeping their signs is
+//! what makes the bound tight. c_I are the Bernstein coefficients of the error
+//! for the third derivatives alone: with a and b what these make of f_dd at the
+//! ends of an edge, -(2 a + b) / 18 and -(a + 2 b) / 18 on it, and in the middle
+//! the sum of the two beside a corner plus f_de / 6 there, d and e the edges
+//! from it. The last part is the bound of Filip, Magedson and Markot (1986).
 //!
 //! With S = N / w and a corner s of the triangle, f runs over
 //! n . (N - w s) for the heights and over the vector N - w s for the rest: the
@@ -25,13 +30,10 @@
 //!
 //! Everything is divided by the least weight in the triangle.
 //!
-//! H is read from a grid, bilinear between its nodes: off by at most
-//! (g_u^2 max |f_uu| + g_v^2 max |f_vv|) / 8 of the second derivative's own
-//! second derivatives (from their nets), and it changes within a triangle by no
-//! more than the differences of neighbouring nodes say. These are kept as their
-//! parts along and across the normal m of their cell: for a triangle's normal n
-//! they count |n . m| and |n x m|, since most of a third derivative lies in the
-//! surface.
+//! The derivatives are read from a grid, bilinear between its nodes: off by at
+//! most (g_u^2 max |f_uu| + g_v^2 max |f_vv|) / 8 of a derivative's own second
+//! derivatives, which their nets bound, as they bound the fourth derivatives in
+//! the remainder.
 //!
 //! A vertex that does not lie on the piece (a seam joined over a gap) adds its
 //! distance to every figure.
@@ -51,7 +53,10 @@ type Homogeneous = Vector4<f64>;
 const CELLS: usize = 6;
 const CELLS_FINE: usize = 12;
 
-/// Second derivatives of a piece as homogeneous vectors (N, w), N taken from
+/// Orders along u and v of the derivatives in the grid.
+const ORDERS: [[usize; 2]; 7] = [[2, 0], [1, 1], [0, 2], [3, 0], [2, 1], [1, 2], [0, 3]];
+
+/// Second and third derivatives of a piece as homogeneous vectors (N, w), N taken from
 /// `origin`.
 #[derive(Debug)]
 pub(super) struct SecondDerivatives {
@@ -59,49 +64,14 @@ pub(super) struct SecondDerivatives {
     /// No corner of a triangle may be farther from the origin.
     reach: f64,
     cells: usize,
-    /// uu, uv, vv at the nodes, v fastest.
-    nodes: Vec<[Homogeneous; 3]>,
-    /// How fast they change: the largest in a cell and its neighbours; the last
-    /// entry is for the whole piece.
-    growth: Vec<Growth>,
+    /// uu, uv, vv, uuu, uuv, uvv, vvv at the nodes, v fastest.
+    nodes: Vec<[Homogeneous; 7]>,
     /// How far each may be from bilinear.
-    off: [f64; 3],
+    off: [f64; 7],
+    /// Bounds of the fourth derivatives uuuu, uuuv, uuvv, uvvv, vvvv.
+    fourth: [f64; 5],
     /// The net of weights, where there are any.
     weights: Option<Net>,
-}
-
-/// How fast the second derivatives change along u and along v, near a cell.
-#[derive(Debug, Clone)]
-struct Growth {
-    /// Normal and middle of the cell, the middle from the origin.
-    normal: Vector,
-    middle: Vector,
-    /// For uu, uv, vv, along u and along v: the part along the normal, the
-    /// part across it, and that of the weight.
-    rates: [[[f64; 3]; 2]; 3],
-}
-
-impl Growth {
-    /// The parts of a difference of nodes.
-    fn parts(&self, x: &Homogeneous) -> [f64; 3] {
-        let vector = x.xyz() - self.middle * x.w;
-        let along = vector.dot(&self.normal);
-        let across = (vector.norm_squared() - along * along).max(0.0).sqrt();
-        // The root loses half the digits where next to nothing is across.
-        [along.abs(), across + 1e-7 * along.abs(), x.w.abs()]
-    }
-
-    /// The most by which the three change within l1 / 2 and l2 / 2: of
-    /// n . (N - w s), and of the length of N - w s.
-    fn spread(&self, normal: &Vector, s: &Vector, [l1, l2]: [f64; 2]) -> [[f64; 2]; 3] {
-        let cosine = normal.dot(&self.normal).abs();
-        let sine = normal.cross(&self.normal).norm();
-        let aside = (s - self.middle).norm();
-        self.rates.map(|rate| {
-            let [n, t, w] = [0, 1, 2].map(|k| (rate[0][k] * l1 + rate[1][k] * l2) / 2.0);
-            [n * cosine + t * sine + w * aside, n + t + w * aside]
-        })
-    }
 }
 
 /// A net of homogeneous control values, v fastest.
@@ -134,8 +104,10 @@ impl Net {
         Self { degree, values }
     }
 
-    fn second(&self, axes: [usize; 2]) -> Self {
-        self.derivative(axes[0]).derivative(axes[1])
+    /// The derivative `along_u` times along u and `along_v` times along v.
+    fn derived(&self, along_u: usize, along_v: usize) -> Self {
+        let axes = [0].repeat(along_u).into_iter().chain([1].repeat(along_v));
+        axes.fold(self.clone(), |net, axis| net.derivative(axis))
     }
 
     /// Value by the two rows of Bernstein polynomials.
@@ -194,37 +166,37 @@ impl SecondDerivatives {
             degree: [m, n],
             values,
         };
-        let seconds = [net.second([0, 0]), net.second([0, 1]), net.second([1, 1])];
         let fine = surface.is_rational() || m.max(n) > 3;
         let cells = if fine { CELLS_FINE } else { CELLS };
         let width = ratio(1, cells);
-        let off = [0, 1, 2].map(|k| {
-            let bend =
-                seconds[k].second([0, 0]).largest(reach) + seconds[k].second([1, 1]).largest(reach);
-            bend * width * width / 8.0
+        let nets = ORDERS.map(|[i, j]| net.derived(i, j));
+        let off = [0, 1, 2, 3, 4, 5, 6].map(|k| {
+            let bend = |i, j| nets[k].derived(i, j).largest(reach);
+            (bend(2, 0) + bend(0, 2)) * width * width / 8.0
         });
+        let fourth = [0, 1, 2, 3, 4].map(|k| net.derived(4 - k, k).largest(reach));
         let rows = |degree: usize| -> Vec<Vec<f64>> {
             (0..=cells)
                 .map(|k| bernstein(degree, ratio(k, cells)))
                 .collect()
         };
-        let tables = [0, 1, 2].map(|k| seconds[k].degree.map(rows));
+        let tables = [0, 1, 2, 3, 4, 5, 6].map(|k| nets[k].degree.map(rows));
         let mut nodes = Vec::with_capacity((cells + 1) * (cells + 1));
         for i in 0..=cells {
             for j in 0..=cells {
                 nodes.push(
-                    [0, 1, 2].map(|k| seconds[k].value([&tables[k][0][i], &tables[k][1][j]])),
+                    [0, 1, 2, 3, 4, 5, 6]
+                        .map(|k| nets[k].value([&tables[k][0][i], &tables[k][1][j]])),
                 );
             }
         }
-        let growth = growth(surface, &origin, &nodes, cells);
         Self {
             origin,
             reach,
             cells,
             nodes,
-            growth,
             off,
+            fourth,
             weights: surface.is_rational().then_some(net),
         }
     }
@@ -256,20 +228,29 @@ impl SecondDerivatives {
         let low = [0, 1].map(|x| places[0][x].min(places[1][x]).min(places[2][x]));
         let high = [0, 1].map(|x| places[0][x].max(places[1][x]).max(places[2][x]));
         let [l1, l2] = [high[0] - low[0], high[1] - low[1]];
-        let (second, growth) = self.at([low[0] + l1 / 2.0, low[1] + l2 / 2.0], l1.max(l2));
-        let spread = growth.spread(&normal, &s, [l1, l2]);
+        let middle = [low[0] + l1 / 2.0, low[1] + l2 / 2.0];
+        let derivatives = self.at(middle);
+        let vectors = derivatives.map(|x| x.xyz() - s * x.w);
         let boxed = |[a, b, c]: [f64; 3]| (a * l1 * l1 + 2.0 * b * l1 * l2 + c * l2 * l2) / 8.0;
-        let [rest, rest_any] =
-            [0, 1].map(|part| boxed([0, 1, 2].map(|k| spread[k][part] + self.off[k])));
-        let vectors: [Vector; 3] = [0, 1, 2].map(|k| second[k].xyz() - s * second[k].w);
+        let beyond = [0, 1, 2].map(|k| {
+            let [f, g, h] = [self.fourth[k], self.fourth[k + 1], self.fourth[k + 2]];
+            self.off[k]
+                + (self.off[k + 3] * l1 + self.off[k + 4] * l2) / 2.0
+                + (f * l1 * l1 + 2.0 * g * l1 * l2 + h * l2 * l2) / 8.0
+        });
+        let turn = |k: usize, size: &dyn Fn(usize) -> f64| {
+            (size(k + 3) * l1 + size(k + 4) * l2) / 2.0 + beyond[k]
+        };
+        let third = [3, 4, 5, 6].map(|k| vectors[k].dot(&normal));
+        let rest = boxed(beyond) + third_part(third, places, middle);
+        let length = |k: usize| vectors[k].norm();
+        let rest_any = boxed([turn(0, &length), turn(1, &length), turn(2, &length)]);
         let mut least = 1.0;
         let mut bent = 0.0;
         if self.weights.is_some() {
             let [a, b, c] = weights;
-            let rate = |k: usize| {
-                let [u, v] = growth.rates[k];
-                second[k].w.abs() + (u[2] * l1 + v[2] * l2) / 2.0 + self.off[k] / self.reach
-            };
+            let weight = |k: usize| derivatives[k].w.abs();
+            let rate = |k: usize| weight(k) + turn(k, &weight);
             bent = boxed([rate(0), rate(1), rate(2)]);
             least = a.min(b).min(c) - bent;
             if least <= 0.0 {
@@ -316,14 +297,13 @@ impl SecondDerivatives {
         })
     }
 
-    /// The second derivatives at a place by the grid, and how fast they change
-    /// near it.
+    /// The derivatives at a place by the grid.
     #[allow(
         clippy::cast_possible_truncation,
         clippy::cast_sign_loss,
         reason = "a parameter in 0..1 times a cell count of at most a dozen"
     )]
-    fn at(&self, [u, v]: [f64; 2], extent: f64) -> ([Homogeneous; 3], &Growth) {
+    fn at(&self, [u, v]: [f64; 2]) -> [Homogeneous; 7] {
         let cells = ratio(self.cells, 1);
         let (x, y) = (u * cells, v * cells);
         let cell = |t: f64| (t.max(0.0) as usize).min(self.cells - 1);
@@ -336,77 +316,44 @@ impl SecondDerivatives {
             &self.nodes[corner + stride],
             &self.nodes[corner + stride + 1],
         ];
-        let weights = [(1.0 - x) * (1.0 - y), (1.0 - x) * y, x * (1.0 - y), x * y];
-        let second = [0, 1, 2]
-            .map(|k| a[k] * weights[0] + b[k] * weights[1] + c[k] * weights[2] + d[k] * weights[3]);
-        // The middle is in the cell, the triangle half its extent round it.
-        let near = extent * cells <= 2.0;
-        let growth = if near {
-            &self.growth[i * self.cells + j]
-        } else {
-            &self.growth[self.cells * self.cells]
-        };
-        (second, growth)
+        let (x0, y0) = (1.0 - x, 1.0 - y);
+        let weights = [x0 * y0, x0 * y, x * y0, x * y];
+        [0, 1, 2, 3, 4, 5, 6]
+            .map(|k| a[k] * weights[0] + b[k] * weights[1] + c[k] * weights[2] + d[k] * weights[3])
     }
 }
 
-/// Differences of neighbouring nodes over their distance, the largest in each
-/// cell and its neighbours, and over all.
-fn growth(
-    surface: &BezierPatch,
-    origin: &Point,
-    nodes: &[[Homogeneous; 3]],
-    cells: usize,
-) -> Vec<Growth> {
-    let stride = cells + 1;
-    let scale = ratio(cells, 1);
-    // Differences at a node: [k][towards u, towards v].
-    let rates = |growth: &Growth, [low_i, high_i]: [usize; 2], [low_j, high_j]: [usize; 2]| {
-        let mut most = [[[0.0_f64; 3]; 2]; 3];
-        for i in low_i..=high_i {
-            for j in low_j..=high_j {
-                let at = i * stride + j;
-                let steps = [(i < high_i, stride), (j < high_j, 1)];
-                for (axis, (inside, step)) in steps.into_iter().enumerate() {
-                    if !inside {
-                        continue;
-                    }
-                    for k in 0..3 {
-                        let parts = growth.parts(&((nodes[at + step][k] - nodes[at][k]) * scale));
-                        for (old, new) in most[k][axis].iter_mut().zip(parts) {
-                            *old = old.max(new);
-                        }
-                    }
-                }
-            }
-        }
-        most
+/// The largest Bernstein coefficient of the error of linear interpolation for
+/// the third derivatives `t` alone, the second ones vanishing at `middle`.
+fn third_part(t: [f64; 4], places: [[f64; 2]; 3], middle: [f64; 2]) -> f64 {
+    let apply = |[xu, xv]: [f64; 2], [yu, yv]: [f64; 2], [zu, zv]: [f64; 2]| {
+        let [uu, uv, vv] = [
+            t[0] * xu + t[1] * xv,
+            t[1] * xu + t[2] * xv,
+            t[2] * xu + t[3] * xv,
+        ];
+        uu * yu * zu + uv * (yu * zv + yv * zu) + vv * yv * zv
     };
-    let mut all = Vec::with_capacity(cells * cells + 1);
-    for i in 0..cells {
-        for j in 0..cells {
-            let jet = surface.jet((ratio(i, 1) + 0.5) / scale, (ratio(j, 1) + 0.5) / scale);
-            let mut growth = Growth {
-                normal: jet.normal().unwrap_or_else(Vector::z),
-                middle: jet.point - origin,
-                rates: Default::default(),
-            };
-            growth.rates = rates(
-                &growth,
-                [i.saturating_sub(1), (i + 2).min(cells)],
-                [j.saturating_sub(1), (j + 2).min(cells)],
-            );
-            all.push(growth);
+    let between = |a: [f64; 2], b: [f64; 2]| [b[0] - a[0], b[1] - a[1]];
+    let from = places.map(|p| between(middle, p));
+    let mut largest = 0.0_f64;
+    let mut beside = [0.0; 2];
+    for k in 0..3 {
+        let next = (k + 1) % 3;
+        let edge = between(places[k], places[next]);
+        let (a, b) = (apply(from[k], edge, edge), apply(from[next], edge, edge));
+        let (start, end) = (-(2.0 * a + b) / 18.0, -(a + 2.0 * b) / 18.0);
+        largest = largest.max(start.abs()).max(end.abs());
+        match k {
+            0 => beside[0] = start,
+            2 => beside[1] = end,
+            _ => {}
         }
     }
-    // Large triangles may tilt against any normal.
-    let mut whole = Growth {
-        normal: Vector::z(),
-        middle: Vector::zeros(),
-        rates: Default::default(),
-    };
-    whole.rates =
-        rates(&whole, [0, cells], [0, cells]).map(|axes| axes.map(|[n, t, w]| [n + t, n + t, w]));
-    all.push(whole);
-    all
+    let mixed = apply(
+        from[0],
+        between(places[0], places[1]),
+        between(places[0], places[2]),
+    );
+    largest.max((mixed / 6.0 + beside[0] + beside[1]).abs())
 }
