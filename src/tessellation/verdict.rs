@@ -66,11 +66,14 @@ pub(super) fn judge(work: &Work, prover: &mut Prover, t: u32, ring: &mut Vec<u32
         to_mesh: cell.direct,
         to_surface: cell.height.max(edges),
     };
-    // A height above the chord is above it with any ring.
-    if alone.largest() <= work.limits.chord || cell.height > work.limits.chord {
+    if alone.largest() <= work.limits.chord {
         return alone;
     }
     let border = work.layout.triangulation.ring(t, ring);
+    if border && cell.height > work.limits.chord {
+        // It fails with any ring, and here that would cost another net.
+        return alone;
+    }
     with_ring(work, prover, t, ring, border).map_or(alone, |ringed| Proved {
         to_mesh: alone.to_mesh.min(ringed.to_mesh),
         to_surface: alone.to_surface.min(ringed.to_surface),
