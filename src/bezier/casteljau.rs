@@ -2,11 +2,13 @@
 
 use nalgebra::SVector;
 
-/// Room for one row of control points of the largest degree.
-pub(super) type Row<const N: usize> = [SVector<f64, N>; super::MAX_DEGREE + 1];
+/// Control points in a row of the largest degree, and of the usual ones.
+pub(super) const LONG: usize = super::MAX_DEGREE + 1;
+pub(super) const SHORT: usize = 4;
 
-pub(super) fn row<const N: usize>() -> Row<N> {
-    [SVector::zeros(); super::MAX_DEGREE + 1]
+/// Room for one row of control points.
+pub(super) fn row<const N: usize, const LEN: usize>() -> [SVector<f64, N>; LEN] {
+    [SVector::zeros(); LEN]
 }
 
 #[inline]

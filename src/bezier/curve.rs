@@ -96,7 +96,7 @@ impl BezierCurve {
     /// ```
     #[must_use]
     pub fn eval(&self, t: f64) -> Point {
-        let mut work3 = casteljau::row::<3>();
+        let mut work3 = casteljau::row::<3, { casteljau::LONG }>();
         match &self.net {
             Net::Polynomial(points) => {
                 let work = &mut work3[..points.len()];
@@ -104,7 +104,7 @@ impl BezierCurve {
                 Point::from(casteljau::value(work, t))
             }
             Net::Rational(points) => {
-                let mut work4 = casteljau::row::<4>();
+                let mut work4 = casteljau::row::<4, { casteljau::LONG }>();
                 let work = &mut work4[..points.len()];
                 work.copy_from_slice(points);
                 super::net::project(&casteljau::value(work, t))
@@ -117,13 +117,13 @@ impl BezierCurve {
     pub fn jet(&self, t: f64) -> CurveJet {
         let [value, dt, dtt] = match &self.net {
             Net::Polynomial(points) => {
-                let mut work = casteljau::row::<3>();
+                let mut work = casteljau::row::<3, { casteljau::LONG }>();
                 let work = &mut work[..points.len()];
                 work.copy_from_slice(points);
                 casteljau::value_and_derivatives(work, t)
             }
             Net::Rational(points) => {
-                let mut work = casteljau::row::<4>();
+                let mut work = casteljau::row::<4, { casteljau::LONG }>();
                 let work = &mut work[..points.len()];
                 work.copy_from_slice(points);
                 quotient(&casteljau::value_and_derivatives(work, t))

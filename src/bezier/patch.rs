@@ -90,8 +90,26 @@ impl BezierPatch {
         }
     }
 
+    /// Whether rows and columns of the net are short.
+    fn is_short(&self) -> bool {
+        self.degree.0.max(self.degree.1) < casteljau::SHORT
+    }
+
     fn value<const N: usize>(&self, net: &[SVector<f64, N>], u: f64, v: f64) -> SVector<f64, N> {
-        let (mut column, mut row) = (casteljau::row::<N>(), casteljau::row::<N>());
+        if self.is_short() {
+            self.value_within::<N, { casteljau::SHORT }>(net, u, v)
+        } else {
+            self.value_within::<N, { casteljau::LONG }>(net, u, v)
+        }
+    }
+
+    fn value_within<const N: usize, const LEN: usize>(
+        &self,
+        net: &[SVector<f64, N>],
+        u: f64,
+        v: f64,
+    ) -> SVector<f64, N> {
+        let (mut column, mut row) = (casteljau::row::<N, LEN>(), casteljau::row::<N, LEN>());
         let stride = self.degree.1 + 1;
         for (target, source) in column.iter_mut().zip(net.chunks_exact(stride)) {
             row[..stride].copy_from_slice(source);
@@ -143,12 +161,21 @@ impl BezierPatch {
         u: f64,
         v: f64,
     ) -> [SVector<f64, N>; 6] {
-        let mut columns = [
-            casteljau::row::<N>(),
-            casteljau::row::<N>(),
-            casteljau::row::<N>(),
-        ];
-        let mut row = casteljau::row::<N>();
+        if self.is_short() {
+            self.derivatives_within::<N, { casteljau::SHORT }>(net, u, v)
+        } else {
+            self.derivatives_within::<N, { casteljau::LONG }>(net, u, v)
+        }
+    }
+
+    fn derivatives_within<const N: usize, const LEN: usize>(
+        &self,
+        net: &[SVector<f64, N>],
+        u: f64,
+        v: f64,
+    ) -> [SVector<f64, N>; 6] {
+        let mut columns = [casteljau::row::<N, LEN>(); 3];
+        let mut row = casteljau::row::<N, LEN>();
         let stride = self.degree.1 + 1;
         for (i, source) in net.chunks_exact(stride).enumerate() {
             row[..stride].copy_from_slice(source);

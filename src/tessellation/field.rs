@@ -163,12 +163,11 @@ impl<'a> Field<'a> {
             longest = longest.max(length);
             if length > 0.0 {
                 let sideways = q.dot(&normal.cross(&along)) / length;
-                worst_edge = worst_edge.max(square[k].hypot(TILT * sideways) / 8.0);
+                let shift = TILT * sideways;
+                worst_edge = worst_edge.max((square[k] * square[k] + shift * shift).sqrt() / 8.0);
             }
         }
-        let height = super::quadratic::Quadratic::interpolation_error(square)
-            .largest()
-            .0;
+        let height = super::quadratic::Quadratic::largest_error(square).0;
         height
             .max(worst_edge)
             .max(limits.length_error(longest))

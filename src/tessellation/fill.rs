@@ -1,7 +1,6 @@
 //! One piece: laid out, proved, laid out better, refined until all is proved.
 
 use super::certificate::Prover;
-use super::correction::Correction;
 use super::field::Field;
 use super::interpolation::SecondDerivatives;
 use super::lattice::Ground;
@@ -83,12 +82,7 @@ pub(crate) fn fill(
     let field = Field::new(surface);
     let seconds = SecondDerivatives::new(surface);
     let planar = planar::proof(surface, outline, limits);
-    let mut ground = Ground {
-        field: &field,
-        limits,
-        correction: Correction::none(),
-        flat: planar.is_some(),
-    };
+    let mut ground = Ground::new(&field, limits, planar.is_some());
     let mut prover = Prover::new(surface);
     if prover.slack() > limits.chord {
         // Rounding alone exceeds the chord: no refinement can help.

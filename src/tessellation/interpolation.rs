@@ -48,6 +48,9 @@ use crate::scalar::{Point, Vector};
 
 type Homogeneous = Vector4<f64>;
 
+/// Covers the roundings of a root and what goes before it.
+const ROUNDED_UP: f64 = 1.0 + 4.0 * f64::EPSILON;
+
 /// Grid cells in each direction; more where degrees or weights let second
 /// derivatives vary.
 const CELLS: usize = 6;
@@ -283,7 +286,7 @@ impl SecondDerivatives {
                 bend.norm() / 8.0
             };
         }
-        let (height, peak) = Quadratic::interpolation_error(square).largest();
+        let (height, peak) = Quadratic::largest_error(square);
         let most = weights[0].max(weights[1]).max(weights[2]).max(least);
         let grow = off * most / least + slack;
         let height = (height + rest) / least + grow;
@@ -291,7 +294,7 @@ impl SecondDerivatives {
         Some(Cell {
             height,
             sideways,
-            direct: height.hypot(sideways),
+            direct: (height * height + sideways * sideways).sqrt() * ROUNDED_UP,
             edges: edges.map(|edge| (edge + rest_any + bent * longest) / least + grow),
             peak,
         })

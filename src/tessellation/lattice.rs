@@ -229,6 +229,8 @@ pub(super) fn rows(ground: &Ground, along: Along, before: &[f64]) -> Vec<(f64, V
 #[derive(Debug)]
 pub(super) struct Ground<'a> {
     pub(super) field: &'a Field<'a>,
+    /// The bend on a grid of samples, u-major.
+    bends: Vec<Bend>,
     pub(super) limits: &'a Limits,
     pub(super) correction: Correction,
     /// Whether the piece is proved as a plane, where steps need not follow how
@@ -236,17 +238,24 @@ pub(super) struct Ground<'a> {
     pub(super) flat: bool,
 }
 
-impl Ground<'_> {
-    fn step(&self, along: Along, p: f64, q: f64) -> Step {
-        let place = along.place(p, q);
+impl<'a> Ground<'a> {
+    /// Ground no layout has been made on yet.
+    pub(super) fn new(field: &'a Field<'a>, limits: &'a Limits, flat: bool) -> Self {
+        let samples = || 0..=SAMPLES;
+        let places =
+            samples().flat_map(|i| samples().map(move |j| [ratio(i, SAMPLES), ratio(j, SAMPLES)]));
+        Self {
+            field,
+            bends: places.map(|place| field.at(place)).collect(),
+            limits,
+            correction: Correction::none(),
+            flat,
+        }
+    }
+
+    fn step(&self, bend: &Bend, along: Along, place: [f64; 2]) -> Step {
         let correction = self.correction.at(place);
-        Step::new(
-            &self.field.at(place),
-            along,
-            self.limits,
-            correction,
-            self.flat,
-        )
+        Step::new(bend, along, self.limits, correction, self.flat)
     }
 }
 
@@ -262,7 +271,13 @@ impl<'a> Plan<'a> {
         let mut steps = Vec::with_capacity((SAMPLES + 1) * (SAMPLES + 1));
         for j in 0..=SAMPLES {
             for i in 0..=SAMPLES {
-                steps.push(ground.step(along, ratio(i, SAMPLES), ratio(j, SAMPLES)));
+                let [row, column] = match along {
+                    Along::U => [i, j],
+                    Along::V => [j, i],
+                };
+                let bend = &ground.bends[row * (SAMPLES + 1) + column];
+                let place = [ratio(row, SAMPLES), ratio(column, SAMPLES)];
+                steps.push(ground.step(bend, along, place));
             }
         }
         Self {
@@ -308,7 +323,11 @@ impl<'a> Plan<'a> {
 
     fn row(&self, q: f64, gap: f64, before: &[f64]) -> Vec<f64> {
         let steps: Vec<Step> = (0..=SAMPLES)
-            .map(|i| self.ground.step(self.along, ratio(i, SAMPLES), q))
+            .map(|i| {
+                let place = self.along.place(ratio(i, SAMPLES), q);
+                let bend = self.ground.field.at(place);
+                self.ground.step(&bend, self.along, place)
+            })
             .collect();
         let sums = Cumulative::new(steps.iter().map(|s| s.rows_step));
         let total = sums.total();

@@ -20,11 +20,42 @@ impl Quadratic {
     /// The error of linear interpolation for a constant Hessian: zero at the
     /// corners, Q(d) / 8 in the middle of an edge d, where `square` holds
     /// Q(d) of the edges 0-1, 1-2 and 2-0.
-    pub(super) fn interpolation_error(square: [f64; 3]) -> Self {
+    #[cfg(test)]
+    fn interpolation_error(square: [f64; 3]) -> Self {
         Self {
             corner: [0.0; 3],
             between: square.map(|q| q / 4.0),
         }
+    }
+
+    /// The largest error of linear interpolation for a constant Hessian, whose
+    /// Q(d) on the edges 0-1, 1-2 and 2-0 is `square`, and where it is taken:
+    /// in the middle of an edge, Q / 8, or inside, where for squares a, b, c
+    ///
+    /// ```text
+    /// l ~ (b (a + c - b), c (a + b - c), a (b + c - a)),   a b c / (2 D),   D the sum of these
+    /// ```
+    ///
+    /// (half the squared circumradius of a triangle with these squared edges).
+    pub(super) fn largest_error(square: [f64; 3]) -> (f64, [f64; 3]) {
+        let [a, b, c] = square;
+        let mut best = (a.abs() / 8.0, [0.5, 0.5, 0.0]);
+        if b.abs() / 8.0 > best.0 {
+            best = (b.abs() / 8.0, [0.0, 0.5, 0.5]);
+        }
+        if c.abs() / 8.0 > best.0 {
+            best = (c.abs() / 8.0, [0.5, 0.0, 0.5]);
+        }
+        let l = [b * (a + c - b), c * (a + b - c), a * (b + c - a)];
+        let sum = l[0] + l[1] + l[2];
+        if l.iter().all(|x| *x > 0.0) {
+            // All of one sign, which makes the sum positive.
+            let inside = (a * b * c).abs() / (2.0 * sum);
+            if inside > best.0 {
+                best = (inside, l.map(|x| x / sum));
+            }
+        }
+        best
     }
 
     fn value(&self, l: [f64; 3]) -> f64 {
@@ -96,6 +127,19 @@ mod tests {
         let (largest, place) = Quadratic::interpolation_error([1.0; 3]).largest();
         assert_relative_eq!(largest, 1.0 / 6.0, epsilon = 1e-15);
         assert_relative_eq!(place[0], 1.0 / 3.0, epsilon = 1e-15);
+    }
+
+    #[test]
+    fn the_short_form_for_a_constant_hessian_is_the_same() {
+        let wave = |k: u32, f: f64| (f64::from(k) * f).sin();
+        for k in 0..2000 {
+            let square = [wave(k, 1.1), wave(k, 2.3) + 0.3, wave(k, 0.9) + 0.2];
+            let (expected, _) = Quadratic::interpolation_error(square).largest();
+            let (largest, place) = Quadratic::largest_error(square);
+            assert_relative_eq!(largest, expected, max_relative = 1e-12);
+            let there = Quadratic::interpolation_error(square).value(place).abs();
+            assert_relative_eq!(there, largest, max_relative = 1e-12);
+        }
     }
 
     #[test]
