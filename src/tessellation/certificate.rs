@@ -75,6 +75,8 @@ pub(super) struct Cell {
     pub(super) direct: f64,
     /// Largest distance of the three edge curves from their chords, both ways.
     pub(super) edges: [f64; 3],
+    /// About what the height is: a bound without the remainder. Not proved.
+    pub(super) likely: f64,
     /// Barycentric place where the height is about largest.
     pub(super) peak: [f64; 3],
 }
@@ -172,6 +174,7 @@ impl<'a> Prover<'a> {
             sideways: sideways + self.slack,
             direct: hull.min(height.hypot(sideways)) + self.slack,
             edges,
+            likely: height,
             peak,
         }
     }
@@ -185,6 +188,7 @@ impl<'a> Prover<'a> {
             sideways: 0.0,
             direct,
             edges,
+            likely: direct,
             peak: [1.0 / 3.0; 3],
         }
     }

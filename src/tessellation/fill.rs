@@ -80,7 +80,7 @@ pub(crate) fn fill(
         return Ok(Filled::empty());
     }
     let field = Field::new(surface);
-    let seconds = SecondDerivatives::new(surface);
+    let derivatives = SecondDerivatives::new(surface);
     let planar = planar::proof(surface, outline, limits);
     let mut ground = Ground::new(&field, limits, planar.is_some());
     let mut prover = Prover::new(surface);
@@ -97,14 +97,14 @@ pub(crate) fn fill(
         let mut work = Work::new(
             surface,
             &field,
-            &seconds,
+            &derivatives,
             limits,
             layout(surface, &ground, outline),
         );
         let failed = work.round(&mut prover, planar);
         let inner = work.inner_failing(&failed);
         let cost = work.figures.len() + 2 * failed.len();
-        let lesson = (inner > FEW).then(|| work.lesson());
+        let lesson = (inner > FEW).then(|| work.lesson(&mut prover));
         if best.as_ref().is_none_or(|b| cost < b.cost) {
             best = Some(Trial { work, failed, cost });
         }

@@ -44,7 +44,7 @@ use super::certificate::{Cell, Flat};
 use super::quadratic::Quadratic;
 use crate::bezier::BezierPatch;
 use crate::sampling::ratio;
-use crate::scalar::{Point, Vector};
+use crate::scalar::Point;
 
 type Homogeneous = Vector4<f64>;
 
@@ -286,16 +286,17 @@ impl SecondDerivatives {
                 bend.norm() / 8.0
             };
         }
-        let (height, peak) = Quadratic::largest_error(square);
+        let (likely, peak) = Quadratic::largest_error(square);
         let most = weights[0].max(weights[1]).max(weights[2]).max(least);
         let grow = off * most / least + slack;
-        let height = (height + rest) / least + grow;
+        let height = (likely + rest) / least + grow;
         let sideways = (sideways.sqrt() / 6.0 + rest_any + bent * longest) / least + grow;
         Some(Cell {
             height,
             sideways,
             direct: (height * height + sideways * sideways).sqrt() * ROUNDED_UP,
             edges: edges.map(|edge| (edge + rest_any + bent * longest) / least + grow),
+            likely: likely / least,
             peak,
         })
     }
@@ -359,4 +360,106 @@ fn third_part(t: [f64; 4], places: [[f64; 2]; 3], middle: [f64; 2]) -> f64 {
         between(places[0], places[2]),
     );
     largest.max((mixed / 6.0 + beside[0] + beside[1]).abs())
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::certificate::Prover;
+    use super::*;
+
+    fn random(seed: &mut u64) -> f64 {
+        *seed = seed
+            .wrapping_mul(6_364_136_223_846_793_005)
+            .wrapping_add(1_442_695_040_888_963_407);
+        #[allow(clippy::cast_precision_loss, reason = "a random number")]
+        let value = (*seed >> 11) as f64 / (1_u64 << 53) as f64;
+        value
+    }
+
+    fn patch(round: usize, seed: &mut u64) -> BezierPatch {
+        let (m, n) = (1 + round % 5, 1 + round / 5 % 4);
+        let height = [0.3, 1e-3, 3.0][round % 3];
+        let points = (0..(m + 1) * (n + 1)).map(|k| {
+            let (x, y) = (ratio(k / (n + 1), m), ratio(k % (n + 1), n));
+            Point::new(
+                x + 0.2 * random(seed),
+                y + 0.2 * random(seed),
+                height * random(seed),
+            )
+        });
+        let points = points.collect();
+        let weights = round
+            .is_multiple_of(2)
+            .then(|| (0..(m + 1) * (n + 1)).map(|_| 0.3 + random(seed)).collect());
+        BezierPatch::new((m, n), points, weights).unwrap()
+    }
+
+    /// No sample of the surface may lie outside what was proved, for triangles
+    /// of all sizes and places; and for small ones the height agrees with the
+    /// bound by nets, which shares nothing with this one.
+    #[test]
+    fn samples_never_exceed_the_bounds() {
+        let mut seed = 3_u64;
+        let (mut bounded, mut tight) = (0, 0);
+        for round in 0..600 {
+            let surface = patch(round, &mut seed);
+            let derivatives = SecondDerivatives::new(&surface);
+            let size = [0.02, 0.1, 0.4, 0.8][round / 7 % 4];
+            let start = [0, 1].map(|_| random(&mut seed) * (1.0 - size));
+            let places = [0, 1, 2].map(|_| start.map(|x| x + size * random(&mut seed)));
+            let flat = Flat::new(places.map(|[u, v]| surface.eval(u, v)));
+            let weights = places.map(|place| derivatives.weight(place));
+            let Some(cell) = derivatives.cell(places, weights, &flat, 0.0, 1e-14) else {
+                continue;
+            };
+            bounded += 1;
+            let normal = flat.normal.unwrap();
+            let by_net = Prover::new(&surface).cell(places, &flat, true);
+            assert!(by_net.height <= 1.5 * cell.height + 1e-12 || size > 0.3);
+            tight += usize::from(cell.height <= 1.1 * by_net.height);
+            for _ in 0..300 {
+                let (mut a, mut b) = (random(&mut seed), random(&mut seed));
+                if a + b > 1.0 {
+                    (a, b) = (1.0 - a, 1.0 - b);
+                }
+                let l = [1.0 - a - b, a, b];
+                let at = |axis: usize| (0..3).map(|c| l[c] * places[c][axis]).sum::<f64>();
+                let from = surface.eval(at(0), at(1)) - flat.corners[0];
+                assert!(from.dot(&normal).abs() <= cell.height, "{round}: {cell:?}");
+                let edge = [0, 1].map(|x| places[0][x] * (1.0 - a) + places[1][x] * a);
+                let on_edge = surface.eval(edge[0], edge[1]) - flat.corners[0];
+                let chord = flat.corners[1] - flat.corners[0];
+                let along = (on_edge.dot(&chord) / chord.norm_squared()).clamp(0.0, 1.0);
+                assert!((on_edge - chord * along).norm() <= cell.edges[0], "{round}");
+                let beyond = (0..3).map(|k| {
+                    let [p, q] = [flat.corners[k], flat.corners[(k + 1) % 3]];
+                    let outward = (q - p).cross(&normal).normalize();
+                    (from - (p - flat.corners[0])).dot(&outward)
+                });
+                assert!(beyond.fold(0.0, f64::max) <= cell.sideways, "{round}");
+            }
+        }
+        assert!(bounded > 300 && tight > bounded / 3, "{bounded}, {tight}");
+    }
+
+    /// A cubic cylinder z = x^3 on a triangle: the error of the chord from 0 to
+    /// 1 is the largest x - x^3, 2 / (3 sqrt 3), by hand.
+    #[test]
+    fn a_cubic_is_bounded_closely() {
+        let points = [0, 1, 2, 3].into_iter().flat_map(|i| {
+            let z = if i == 3 { 1.0 } else { 0.0 };
+            [0.0, 1.0].map(|y| Point::new(f64::from(i) / 3.0, y, z))
+        });
+        let surface = BezierPatch::new((3, 1), points.collect(), None).unwrap();
+        let derivatives = SecondDerivatives::new(&surface);
+        let places = [[0.0, 0.0], [1.0, 0.0], [1.0, 1.0]];
+        let flat = Flat::new(places.map(|[u, v]| surface.eval(u, v)));
+        let cell = derivatives.cell(places, [1.0; 3], &flat, 0.0, 0.0).unwrap();
+        let exact = 2.0 / 27.0_f64.sqrt() / 2.0_f64.sqrt();
+        assert!(
+            cell.height >= exact && cell.height <= 1.4 * exact,
+            "{}",
+            cell.height / exact
+        );
+    }
 }

@@ -18,6 +18,7 @@ mod interpolation;
 mod lattice;
 mod layout;
 mod planar;
+mod proving;
 mod quadratic;
 mod refine;
 mod remainder;

@@ -33,7 +33,7 @@ impl Work<'_> {
                     continue;
                 }
                 let figure = self.figures[t as usize];
-                if self.refine(t) || self.layout.triangulation.triangles.len() > most {
+                if self.refine(prover, t) || self.layout.triangulation.triangles.len() > most {
                     return Err(self.stuck(t, figure.largest()));
                 }
             }
@@ -143,7 +143,9 @@ impl Work<'_> {
     }
 
     /// Puts a vertex where the triangle is worst; true if that cannot be done.
-    fn refine(&mut self, t: u32) -> bool {
+    fn refine(&mut self, prover: &mut Prover, t: u32) -> bool {
+        // Which edge is worst needs the close figures.
+        self.bound_by_net(prover, t);
         let mut best: Option<(f64, usize)> = None;
         for i in 0..3 {
             let [a, b] = self.layout.triangulation.ends((t, i));

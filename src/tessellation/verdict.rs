@@ -58,26 +58,37 @@ const LARGEST_TAN: f64 = 1.0;
 /// Least half angle between border edges at a vertex, as a sine.
 const SHARPEST: f64 = 0.38;
 
-/// The figures of one triangle, from its cell and its ring.
+/// The figures of one triangle, from its cell and if need be from its ring.
 pub(super) fn judge(work: &Work, prover: &mut Prover, t: u32, ring: &mut Vec<u32>) -> Proved {
+    let alone = alone(work, t);
     let cell = &work.cells[t as usize];
-    let edges = cell.edges.iter().copied().fold(0.0, f64::max);
-    let alone = Proved {
-        to_mesh: cell.direct,
-        to_surface: cell.height.max(edges),
-    };
     if alone.largest() <= work.limits.chord {
         return alone;
     }
-    let border = work.layout.triangulation.ring(t, ring);
-    if border && cell.height > work.limits.chord {
-        // It fails with any ring, and here that would cost another net.
+    if cell.height > work.limits.chord && work.layout.triangulation.ring(t, ring) {
+        // It fails with any ring, and at the border that would cost a net.
         return alone;
     }
+    closest(work, prover, t, ring)
+}
+
+/// The best figures to be had.
+pub(super) fn closest(work: &Work, prover: &mut Prover, t: u32, ring: &mut Vec<u32>) -> Proved {
+    let alone = alone(work, t);
+    let border = work.layout.triangulation.ring(t, ring);
     with_ring(work, prover, t, ring, border).map_or(alone, |ringed| Proved {
         to_mesh: alone.to_mesh.min(ringed.to_mesh),
         to_surface: alone.to_surface.min(ringed.to_surface),
     })
+}
+
+fn alone(work: &Work, t: u32) -> Proved {
+    let cell = &work.cells[t as usize];
+    let edges = cell.edges.iter().copied().fold(0.0, f64::max);
+    Proved {
+        to_mesh: cell.direct,
+        to_surface: cell.height.max(edges),
+    }
 }
 
 fn with_ring(

@@ -7,18 +7,14 @@ use super::field::Field;
 use super::fill::{Attained, Filled, Proved, Stuck};
 use super::interpolation::SecondDerivatives;
 use super::layout::{INNER, Layout};
-use super::triangulation::{BORDER, Pole, TriangleEdge, is_proper};
+use super::triangulation::{BORDER, TriangleEdge, is_proper};
 use super::verdict;
 use crate::bezier::BezierPatch;
 use crate::sampling::{Limits, ratio};
-use crate::scalar::{Point, Vector};
+use crate::scalar::Vector;
 
 /// Triangles of a piece whose true deviation is looked at.
 const LOOKED_AT: usize = 48;
-
-/// A height above this part of the chord by interpolation is above the chord
-/// by any bound.
-const HOPELESS: f64 = 1.25;
 
 /// An exchange of diagonals must lower the larger error by this factor, so
 /// that rounding cannot make it go round in circles.
@@ -33,10 +29,10 @@ pub(super) struct Work<'a> {
     pub(super) flats: Vec<Flat>,
     pub(super) cells: Vec<Cell>,
     /// Whether a cell was bounded by its net.
-    by_net: Vec<bool>,
-    seconds: &'a SecondDerivatives,
+    pub(super) by_net: Vec<bool>,
+    pub(super) derivatives: &'a SecondDerivatives,
     /// Weight of the piece at every vertex, and how far the vertex is off it.
-    vertex_facts: Vec<[f64; 2]>,
+    pub(super) vertex_facts: Vec<[f64; 2]>,
     pub(super) stale: Vec<bool>,
     /// Estimated errors; NaN where not known.
     errors: Vec<f64>,
@@ -52,7 +48,7 @@ impl<'a> Work<'a> {
     pub(super) fn new(
         surface: &'a BezierPatch,
         field: &'a Field<'a>,
-        seconds: &'a SecondDerivatives,
+        derivatives: &'a SecondDerivatives,
         limits: &'a Limits,
         layout: Layout,
     ) -> Self {
@@ -66,7 +62,7 @@ impl<'a> Work<'a> {
             flats: Vec::new(),
             cells: Vec::new(),
             by_net: Vec::new(),
-            seconds,
+            derivatives,
             vertex_facts: Vec::new(),
             stale: vec![true; count],
             errors: vec![f64::NAN; count],
@@ -154,13 +150,17 @@ impl<'a> Work<'a> {
         ratio(bad, all.max(1))
     }
 
-    /// Where the inner triangles are, and how much of the chord they use.
-    pub(super) fn lesson(&self) -> Vec<([f64; 2], f64)> {
+    /// Where the inner triangles are, and how much of the chord they use: by
+    /// their rings, and without what interpolation adds for safety.
+    pub(super) fn lesson(&self, prover: &mut Prover) -> Vec<([f64; 2], f64)> {
+        let mut ring = Vec::new();
         (0..index(self.figures.len()))
             .filter(|&t| self.is_inner(t))
             .map(|t| {
-                let figure = self.figures[t as usize];
-                (self.centre(t), figure.largest() / self.limits.chord)
+                let cell = &self.cells[t as usize];
+                let figure = verdict::closest(self, prover, t, &mut ring).largest();
+                let used = (figure - (cell.height - cell.likely)) / self.limits.chord;
+                (self.centre(t), used)
             })
             .collect()
     }
@@ -168,165 +168,6 @@ impl<'a> Work<'a> {
     pub(super) fn centre(&self, t: u32) -> [f64; 2] {
         let [a, b, c] = self.layout.triangulation.corners(t);
         [(a[0] + b[0] + c[0]) / 3.0, (a[1] + b[1] + c[1]) / 3.0]
-    }
-
-    /// Brings all figures up to date; returns the triangles that fail.
-    pub(super) fn round(&mut self, prover: &mut Prover, planar: Option<f64>) -> Vec<u32> {
-        let count = self.layout.triangulation.triangles.len();
-        let stale: Vec<u32> = (0..index(count))
-            .filter(|&t| self.stale[t as usize])
-            .collect();
-        self.measure(prover, &stale);
-        self.figures.resize(count, Proved::default());
-        let mut ring = std::mem::take(&mut self.ring);
-        let mut affected = stale.clone();
-        if stale.len() < count {
-            for &t in &stale {
-                self.layout.triangulation.ring(t, &mut ring);
-                affected.extend_from_slice(&ring);
-            }
-            affected.sort_unstable();
-            affected.dedup();
-        }
-        for &t in &stale {
-            self.stale[t as usize] = false;
-        }
-        let mut failed = Vec::new();
-        for &t in &affected {
-            let figure = match planar {
-                Some(bound) => Proved {
-                    to_mesh: bound,
-                    to_surface: bound,
-                },
-                None => self.judge(prover, t, &mut ring),
-            };
-            self.figures[t as usize] = figure;
-            if figure.largest() > self.limits.chord || !self.keeps_shape(t) {
-                failed.push(t);
-            }
-        }
-        self.ring = ring;
-        failed
-    }
-
-    /// The figures of a triangle: from the bounds at hand, from its own net
-    /// where these do not do, and from the nets of its ring where that does not.
-    fn judge(&mut self, prover: &mut Prover, t: u32, ring: &mut Vec<u32>) -> Proved {
-        let chord = self.limits.chord;
-        let mut figure = verdict::judge(self, prover, t, ring);
-        if figure.largest() <= chord || self.cells[t as usize].height > HOPELESS * chord {
-            return figure;
-        }
-        if self.bound_by_net(prover, t) {
-            figure = verdict::judge(self, prover, t, ring);
-        }
-        if figure.largest() > chord && self.cells[t as usize].height <= chord {
-            self.layout.triangulation.ring(t, ring);
-            let mut any = false;
-            for member in ring.clone() {
-                any |= self.bound_by_net(prover, member);
-            }
-            if any {
-                figure = verdict::judge(self, prover, t, ring);
-            }
-        }
-        figure
-    }
-
-    /// Brings flats and cells up to date, cells by interpolation where that
-    /// gives a bound.
-    fn measure(&mut self, prover: &mut Prover, stale: &[u32]) {
-        let count = self.layout.triangulation.triangles.len();
-        self.flats.resize(count, Flat::new([Point::origin(); 3]));
-        self.cells.resize(count, Cell::default());
-        self.by_net.resize(count, false);
-        for v in self.vertex_facts.len()..self.layout.points.len() {
-            self.vertex_facts.push(self.facts(v));
-        }
-        for &t in stale {
-            let corners = self.layout.triangulation.triangles[t as usize];
-            let flat = Flat::new(corners.map(|v| self.layout.points[v as usize]));
-            self.flats[t as usize] = flat;
-            self.by_net[t as usize] = false;
-            let quick = if self.layout.triangulation.pole_corner(corners).is_none() {
-                let places = self.layout.triangulation.corners(t);
-                let facts = corners.map(|v| self.vertex_facts[v as usize]);
-                let off = facts[0][1].max(facts[1][1]).max(facts[2][1]);
-                let weights = facts.map(|fact| fact[0]);
-                self.seconds
-                    .cell(places, weights, &flat, off, prover.slack())
-            } else {
-                None
-            };
-            match quick {
-                Some(cell) => self.cells[t as usize] = cell,
-                None => {
-                    self.bound_by_net(prover, t);
-                }
-            }
-        }
-    }
-
-    /// Weight of the piece at a vertex, and the vertex's distance from it.
-    fn facts(&self, v: usize) -> [f64; 2] {
-        let place = self.layout.triangulation.places[v];
-        let off = if self.layout.vertices[v] == INNER {
-            0.0
-        } else {
-            (self.surface.eval(place[0], place[1]) - self.layout.points[v]).norm()
-        };
-        [self.seconds.weight(place), off]
-    }
-
-    /// Bounds a cell by its net; false if it is already.
-    fn bound_by_net(&mut self, prover: &mut Prover, t: u32) -> bool {
-        if std::mem::replace(&mut self.by_net[t as usize], true) {
-            return false;
-        }
-        let corners = self.layout.triangulation.triangles[t as usize];
-        let flat = self.flats[t as usize];
-        self.cells[t as usize] = match self.layout.triangulation.pole_corner(corners) {
-            None => prover.cell(self.layout.triangulation.corners(t), &flat, true),
-            Some((k, pole)) => self.pole_cell(prover, corners, k, pole, &flat),
-        };
-        true
-    }
-
-    /// The cell of a triangle at the pole is a trapezoid: the two parameter
-    /// triangles it falls into, by one diagonal for what lies over the flat
-    /// triangle, and by the other for the edge that diagonal does not end in.
-    fn pole_cell(
-        &self,
-        prover: &mut Prover,
-        corners: [u32; 3],
-        k: usize,
-        pole: Pole,
-        flat: &Flat,
-    ) -> Cell {
-        let at = corners.map(|v| self.layout.triangulation.places[v as usize]);
-        let (x, y) = (at[(k + 1) % 3], at[(k + 2) % 3]);
-        let (below_x, below_y) = (pole.beside(x), pole.beside(y));
-        let with_pole_at = |place: [f64; 2]| {
-            let mut places = at;
-            places[k] = place;
-            places
-        };
-        let first = prover.cell(with_pole_at(below_x), flat, true);
-        let other = prover.cell(with_pole_at(below_y), flat, true);
-        let mut second = [[0.0; 2]; 3];
-        second[k] = below_x;
-        second[(k + 1) % 3] = y;
-        second[(k + 2) % 3] = below_y;
-        let second = prover.cell(second, flat, false);
-        let mut edges = first.edges;
-        edges[(k + 2) % 3] = other.edges[(k + 2) % 3];
-        Cell {
-            height: first.height.max(second.height),
-            sideways: first.sideways.max(second.sideways),
-            direct: first.direct.max(second.direct),
-            edges,
-            peak: first.peak,
-        }
     }
 
     /// Drops triangles without area and finds the largest true deviation.
