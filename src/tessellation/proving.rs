@@ -91,7 +91,9 @@ impl Work<'_> {
             let flat = Flat::new(corners.map(|v| self.layout.points[v as usize]));
             self.flats[t as usize] = flat;
             self.by_net[t as usize] = false;
-            let quick = if self.layout.triangulation.pole_corner(corners).is_none() {
+            // Towards a pole parameter lines wander sideways so far that
+            // interpolation would be too wide a bound.
+            let quick = if self.layout.triangulation.pole.is_none() {
                 let places = self.layout.triangulation.corners(t);
                 let facts = corners.map(|v| self.vertex_facts[v as usize]);
                 let off = facts[0][1].max(facts[1][1]).max(facts[2][1]);
