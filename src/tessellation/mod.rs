@@ -4,10 +4,12 @@
 //! inside as rows of the optimal lattice (`lattice`, steps from a coarse
 //! `field` of second derivatives), stitched into triangles (`stitch`) and
 //! improved by exchanging diagonals. None of that is trusted: every triangle is
-//! then proved (`certificate`, `verdict`, `planar`). A layout that fails in many
-//! places is made again with what the proof taught (`correction`); what still
-//! fails is refined until it is proved (`refine`), or the run fails and says
-//! where.
+//! then proved (`proving`): from the ranges of second derivatives where that does
+//! (`interpolation`), from its net where it does not (`certificate`), with its
+//! neighbours where parameters wander (`verdict`), or at once where the piece is
+//! flat (`planar`). A layout that fails in many places is made again with what
+//! the proof taught (`correction`); what still fails is refined until it is
+//! proved (`refine`), or the run fails and says where.
 
 mod certificate;
 mod correction;

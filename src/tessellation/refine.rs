@@ -27,19 +27,26 @@ impl Work<'_> {
         planar: Option<f64>,
     ) -> Result<Proved, Stuck> {
         let most = self.layout.triangulation.triangles.len() * GROWTH + GROWTH_BASE;
-        while !failed.is_empty() {
-            for t in failed {
-                if self.stale[t as usize] {
-                    continue;
+        let mut turned = false;
+        loop {
+            while !failed.is_empty() {
+                for t in failed {
+                    if self.stale[t as usize] {
+                        continue;
+                    }
+                    let figure = self.figures[t as usize];
+                    if self.refine(prover, t) || self.layout.triangulation.triangles.len() > most {
+                        return Err(self.stuck(t, figure.largest()));
+                    }
                 }
-                let figure = self.figures[t as usize];
-                if self.refine(prover, t) || self.layout.triangulation.triangles.len() > most {
-                    return Err(self.stuck(t, figure.largest()));
-                }
+                failed = self.round(prover, planar);
             }
-            failed = self.round(prover, planar);
+            if turned {
+                break;
+            }
+            turned = true;
+            failed = self.face_outwards(prover, planar);
         }
-        self.face_outwards(prover, planar);
         Ok(self
             .figures
             .iter()
@@ -51,7 +58,9 @@ impl Work<'_> {
 
     /// Exchanges diagonals of triangles that face inwards where what results
     /// is proved as well. Such triangles are slivers; the bounds hold for them.
-    pub(super) fn face_outwards(&mut self, prover: &mut Prover, planar: Option<f64>) {
+    /// Returns what fails after all, where an exchange had to be taken back.
+    fn face_outwards(&mut self, prover: &mut Prover, planar: Option<f64>) -> Vec<u32> {
+        let mut failed = Vec::new();
         for t in 0..index(self.figures.len()) {
             let corners = self.layout.triangulation.triangles[t as usize];
             if !self.faces_inwards(corners) {
@@ -74,9 +83,14 @@ impl Work<'_> {
                 }
                 // Flipping the new diagonal restores the old one.
                 self.exchange((t, 2));
-                self.round(prover, planar);
+                failed.extend(self.round(prover, planar));
             }
         }
+        let chord = self.limits.chord;
+        failed.retain(|&t| self.figures[t as usize].largest() > chord);
+        failed.sort_unstable();
+        failed.dedup();
+        failed
     }
 
     fn exchange(&mut self, (t, i): TriangleEdge) {
