@@ -110,7 +110,8 @@ fn a_pattern_that_fits_nothing_is_refused() {
 /// Every field and column is explained.
 #[test]
 fn the_description_names_every_field() {
-    let guide = std::fs::read_to_string(concat!(env!("CARGO_MANIFEST_DIR"), "/SEAMS.md")).unwrap();
+    let guide =
+        std::fs::read_to_string(concat!(env!("CARGO_MANIFEST_DIR"), "/patches/SEAMS.md")).unwrap();
     let path = concat!(env!("CARGO_MANIFEST_DIR"), "/patches/front_quarter.ron");
     let set = PatchSet::read(path).unwrap().set;
     let topology = Topology::build(&set).unwrap();
