@@ -8,7 +8,7 @@ use std::path::Path;
 use std::process::Command;
 
 fn main() {
-    println!("cargo::rerun-if-changed=src/build.rs");
+    println!("cargo::rerun-if-changed=.ci/commit.rs");
     let version = std::env::var("CARGO_PKG_VERSION").unwrap_or_default();
     let release = std::env::var("PROFILE").is_ok_and(|profile| profile == "release");
     let commit = if release { commit() } else { None };
