@@ -9,6 +9,11 @@
 //!
 //! A room imports only from the rooms listed before it here.
 
+#![cfg_attr(
+    test,
+    allow(clippy::unwrap_used, reason = "a panic is how a test fails")
+)]
+
 pub mod scalar;
 
 pub mod bezier;

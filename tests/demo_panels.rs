@@ -1,4 +1,5 @@
 //! Sets of any size, and the `demo` command.
+#![allow(clippy::unwrap_used, reason = "a panic is how a test fails")]
 
 use std::collections::BTreeMap;
 

@@ -1,4 +1,5 @@
 //! Seams of the shipped sets, by the public interface.
+#![allow(clippy::unwrap_used, reason = "a panic is how a test fails")]
 
 use chordwise::continuity::{Finding, Survey, Verdict};
 use chordwise::patch_set::PatchSet;

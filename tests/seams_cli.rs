@@ -1,4 +1,5 @@
 //! The `seams` command: exit codes, streams, wording.
+#![allow(clippy::unwrap_used, reason = "a panic is how a test fails")]
 
 use assert_cmd::Command;
 

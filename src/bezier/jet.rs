@@ -59,21 +59,26 @@ impl SurfaceJet {
     /// where the tangent plane is not defined or `direction` is zero.
     #[must_use]
     pub fn normal_curvature(&self, normal: &Vector, direction: &Vector) -> Option<f64> {
-        // direction = a S_u + b S_v by least squares in the tangent plane.
+        let [a, b] = self.steps_along(direction, 1e-18)?;
+        let first = (self.du * a + self.dv * b).norm_squared();
+        let [l, m, n] = self.second_form(normal);
+        (first > 0.0).then(|| (l * a * a + 2.0 * m * a * b + n * b * b) / first)
+    }
+
+    /// (a, b) of the step a S_u + b S_v nearest to `direction` (least squares);
+    /// `None` where the squared sine between S_u and S_v is at most `flat`.
+    pub(crate) fn steps_along(&self, direction: &Vector, flat: f64) -> Option<[f64; 2]> {
         let (e, f, g) = (
             self.du.norm_squared(),
             self.du.dot(&self.dv),
             self.dv.norm_squared(),
         );
         let determinant = e * g - f * f;
-        if determinant <= e * g * 1e-18 {
+        if determinant <= e * g * flat {
             return None;
         }
         let (p, q) = (direction.dot(&self.du), direction.dot(&self.dv));
-        let (a, b) = ((p * g - q * f) / determinant, (q * e - p * f) / determinant);
-        let first = e * a * a + 2.0 * f * a * b + g * b * b;
-        let [l, m, n] = self.second_form(normal);
-        (first > 0.0).then(|| (l * a * a + 2.0 * m * a * b + n * b * b) / first)
+        Some([(p * g - q * f) / determinant, (q * e - p * f) / determinant])
     }
 
     /// Gaussian and mean curvature, in 1/length^2 and 1/length; `None` where

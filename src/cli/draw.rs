@@ -233,12 +233,7 @@ impl DrawArguments {
             return Err(UsageError::Extension(self.output.display().to_string()).into());
         }
         let output = Output::open(&self.output, &[&self.set])?;
-        if let Some(jobs) = self.jobs {
-            // Fails only if the pool exists already, which then has its size.
-            let _ = rayon::ThreadPoolBuilder::new()
-                .num_threads(jobs.into())
-                .build_global();
-        }
+        super::work_with(self.jobs);
         let progress = Progress::new();
         progress.stage("reading");
         let reading = match source::read(&self.set) {

@@ -101,3 +101,14 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
         }
     }
 }
+
+/// Has everything after it done by so many threads; by all cores without a
+/// number.
+fn work_with(jobs: Option<u16>) {
+    if let Some(jobs) = jobs {
+        // Fails only if the pool exists already, which then has its size.
+        let _ = rayon::ThreadPoolBuilder::new()
+            .num_threads(jobs.into())
+            .build_global();
+    }
+}

@@ -66,12 +66,7 @@ impl ReportArguments {
 
     fn try_run(&self) -> Result<Outcome, Box<dyn std::error::Error>> {
         let output = Output::open(&self.output, &[&self.set])?;
-        if let Some(jobs) = self.jobs {
-            // Fails only if the pool exists already, which then has its size.
-            let _ = rayon::ThreadPoolBuilder::new()
-                .num_threads(jobs.into())
-                .build_global();
-        }
+        super::work_with(self.jobs);
         let progress = Progress::new();
         progress.stage("reading");
         let bytes = match source::bytes(&self.set) {

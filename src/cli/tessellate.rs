@@ -188,12 +188,7 @@ impl TessellateArguments {
         if self.evidence && !format.holds_evidence() {
             return Err(FormatError::Evidence(format).into());
         }
-        if let Some(jobs) = self.jobs {
-            // Fails only if the pool exists already, which then has its size.
-            let _ = rayon::ThreadPoolBuilder::new()
-                .num_threads(jobs.into())
-                .build_global();
-        }
+        super::work_with(self.jobs);
         let progress = Progress::new();
         progress.stage("reading");
         let clock = Instant::now();

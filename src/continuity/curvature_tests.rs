@@ -170,18 +170,18 @@ fn beside(case: usize, side: f64, n: usize, weighted: bool) -> BezierPatch {
     BezierPatch::new((m, n), points, weights).unwrap()
 }
 
-/// The rows along v raised by two degrees.
-fn raised(patch: &BezierPatch) -> BezierPatch {
+/// The rows along v raised by so many degrees.
+pub(super) fn raised(patch: &BezierPatch, by: usize) -> BezierPatch {
     let (m, n) = patch.degree();
     let rows = (0..=m).flat_map(|i| {
         let row = (0..=n).map(|j| patch.control_point(i, j)).collect();
         let row = BezierCurve::new(row, None)
             .unwrap()
-            .elevated(n + 2)
+            .elevated(n + by)
             .unwrap();
         row.control_points().collect::<Vec<_>>()
     });
-    BezierPatch::new((m, n + 2), rows.collect(), None).unwrap()
+    BezierPatch::new((m, n + by), rows.collect(), None).unwrap()
 }
 
 /// 10,000 places never exceed the proved bound, and the bracket is narrow:
@@ -195,7 +195,7 @@ fn sampling_does_not_refute_the_step() {
         let a = beside(case, -1.0, n, weighted);
         let mut b = beside(case, 1.0, n, weighted);
         match case % 5 {
-            1 if !weighted => b = raised(&b),
+            1 if !weighted => b = raised(&b, 2),
             2 => b = b.restrict([0.0, 1.0], [1.0, 0.0]),
             3 => b = b.map(|p| p + crate::scalar::Vector::new(0.03, 0.0, 0.02)),
             4 => b = b.restrict([0.0, 1.0], [-0.2, 1.1]),

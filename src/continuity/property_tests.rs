@@ -2,8 +2,9 @@
 
 use proptest::prelude::*;
 
+use super::curvature_tests::raised;
 use super::{Figure, Survey, SurveyedSeam};
-use crate::bezier::{BezierCurve, BezierPatch};
+use crate::bezier::BezierPatch;
 use crate::patch_set::PatchSet;
 use crate::scalar::{Bracket, Point, Tolerance};
 use crate::topology::Topology;
@@ -20,26 +21,12 @@ fn sheets(tilt: f64, bend: f64) -> [BezierPatch; 2] {
     [left, right]
 }
 
-/// Rows along v raised by one degree.
-fn raised(patch: &BezierPatch) -> BezierPatch {
-    let (m, n) = patch.degree();
-    let rows = (0..=m).flat_map(|i| {
-        let row = (0..=n).map(|j| patch.control_point(i, j)).collect();
-        let row = BezierCurve::new(row, None)
-            .unwrap()
-            .elevated(n + 1)
-            .unwrap();
-        row.control_points().collect::<Vec<_>>()
-    });
-    BezierPatch::new((m, n + 1), rows.collect(), None).unwrap()
-}
-
 /// Raised, reversed, transposed, as the bits say.
 fn dressed(patch: &BezierPatch, how: u8) -> BezierPatch {
     let mut patch = if how & 1 == 0 {
         patch.clone()
     } else {
-        raised(patch)
+        raised(patch, 1)
     };
     let range = |bit: u8| {
         if how & bit == 0 {

@@ -202,20 +202,10 @@ pub fn largest_principal(gaussian: f64, mean: f64) -> f64 {
     if mean < 0.0 { mean - root } else { mean + root }
 }
 
-/// (a, b) of the step a S_u + b S_v nearest to `off`; `None` where the tangent
-/// plane is not defined.
+/// Steps of the parameters towards `off`; `None` where the tangent plane is not
+/// defined.
 fn tangent_step(jet: &crate::bezier::SurfaceJet, off: &Vector) -> Option<[f64; 2]> {
-    let (e, f, g) = (
-        jet.du.norm_squared(),
-        jet.du.dot(&jet.dv),
-        jet.dv.norm_squared(),
-    );
-    let determinant = e * g - f * f;
-    if determinant <= e * g * 1e-12 {
-        return None;
-    }
-    let (p, q) = (off.dot(&jet.du), off.dot(&jet.dv));
-    let step = [(p * g - q * f) / determinant, (q * e - p * f) / determinant];
+    let step = jet.steps_along(off, 1e-12)?;
     step.iter().all(|s| s.is_finite()).then_some(step)
 }
 

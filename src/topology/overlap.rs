@@ -84,18 +84,9 @@ fn lies_on(surface: &BezierPatch, point: &Point, gap: f64) -> bool {
     let [mut u, mut v] = best.0;
     for _ in 0..16 {
         let jet = surface.jet(u, v);
-        let away = point - jet.point;
-        let (e, f, g) = (
-            jet.du.norm_squared(),
-            jet.du.dot(&jet.dv),
-            jet.dv.norm_squared(),
-        );
-        let determinant = e * g - f * f;
-        if determinant <= e * g * 1e-12 {
+        let Some(step) = jet.steps_along(&(point - jet.point), 1e-12) else {
             return false;
-        }
-        let (p, q) = (away.dot(&jet.du), away.dot(&jet.dv));
-        let step = [(p * g - q * f) / determinant, (q * e - p * f) / determinant];
+        };
         u = (u + step[0]).clamp(0.0, 1.0);
         v = (v + step[1]).clamp(0.0, 1.0);
     }
