@@ -8,7 +8,7 @@ use super::viewer::ViewerMesh;
 use crate::mesh::{Measures, Meshed, Storage, Strips};
 use crate::patch_set::PatchSet;
 use crate::picture::{Scene, SeamCurve, round_up};
-use crate::report::{CAUTION, SeamReport};
+use crate::report::{CAUTION, SeamReport, upward};
 
 const STYLE: &str = include_str!("assets/page.css");
 const SCRIPT: &str = include_str!("assets/page.js");
@@ -118,7 +118,7 @@ impl Sheet<'_> {
         let s = &self.report.summary;
         let mesh = format!(
             "every triangle is proved within {} {unit} of the surface, both ways (tolerance {} {unit})",
-            figure(self.made.deviation.proved()),
+            upward(self.made.deviation.proved(), figure),
             figure(self.chord)
         );
         let (class, head) = if self.report.has_findings() {
@@ -177,7 +177,10 @@ impl Sheet<'_> {
             ("triangles", mesh.triangles.len().to_string()),
             ("over the floor", format!("{economy:.2} times")),
             ("vertices", mesh.points.len().to_string()),
-            ("proved deviation", format!("{} {unit}", figure(d.proved()))),
+            (
+                "proved deviation",
+                format!("{} {unit}", upward(d.proved(), figure)),
+            ),
             (
                 "attained deviation",
                 format!(

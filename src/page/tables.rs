@@ -6,7 +6,7 @@ use super::gallery::Gallery;
 use super::markup::{escape, figure, many};
 use crate::mesh::{Mesh, Storage};
 use crate::patch_set::{Demand, PatchSet};
-use crate::report::{FigureLine, SeamLine, SeamReport};
+use crate::report::{FigureLine, SeamLine, SeamReport, upward};
 
 /// Opens a table whose columns can be sorted; `numbers` says which hold figures.
 fn open(id: &str, caption: &str, columns: &[(&str, bool)]) -> String {
@@ -40,7 +40,7 @@ fn bracket(line: Option<&FigureLine>) -> String {
         return "<td class=\"number\" data-value=\"-1\">none</td>".to_owned();
     };
     let text = match line.proved {
-        Some(proved) => format!("{} ({})", figure(line.attained), figure(proved)),
+        Some(proved) => format!("{} ({})", figure(line.attained), upward(proved, figure)),
         None => figure(line.attained),
     };
     number(line.attained, &text)
@@ -155,7 +155,7 @@ pub(super) fn panels(set: &PatchSet, mesh: &Mesh, deviations: &[f64]) -> String 
             count(parts.len()),
             count(triangles),
             number(area, &figure(area)),
-            number(proved, &figure(proved)),
+            number(proved, &upward(proved, figure)),
         );
     }
     out + CLOSE

@@ -4,7 +4,7 @@ use std::fmt::Write;
 
 use serde::Serialize;
 
-use super::CAUTION;
+use super::{CAUTION, upward};
 use crate::mesh::{Audit, Finding};
 use crate::patch_set::PatchSet;
 use crate::scalar::Tolerance;
@@ -169,10 +169,12 @@ impl AuditReport {
             self.triangles, self.patches
         )?;
         let d = &self.deviation;
+        let long = |value: f64| format!("{value:.6e}");
         write!(
             out,
-            "deviation   {:.6e} {unit} proved, {:.6e} {unit} attained",
-            d.proved, d.attained
+            "deviation   {} {unit} proved, {:.6e} {unit} attained",
+            upward(d.proved, long),
+            d.attained
         )?;
         if let (Some(patch), Some([u, v])) = (&d.patch, d.place) {
             write!(out, " at {patch} (u {u:.4}, v {v:.4})")?;
@@ -185,8 +187,9 @@ impl AuditReport {
         };
         writeln!(
             out,
-            "            surface to mesh {:.6e} {unit}, mesh to surface {:.6e} {unit}, {of}",
-            d.proved_to_mesh, d.proved_to_surface
+            "            surface to mesh {} {unit}, mesh to surface {} {unit}, {of}",
+            upward(d.proved_to_mesh, long),
+            upward(d.proved_to_surface, long)
         )?;
         if self.findings.is_empty() {
             writeln!(out, "verdict     proved within the chord tolerance")?;

@@ -1,6 +1,7 @@
 //! What is told to people and programs: summaries and seam lists.
 
 mod audit;
+mod bound;
 mod caution;
 mod forecast;
 mod panel_pairs;
@@ -13,6 +14,7 @@ mod summary;
 mod summary_text;
 
 pub use audit::{AuditDeviation, AuditReport, FindingLine};
+pub(crate) use bound::upward;
 pub use caution::CAUTION;
 pub use forecast::Forecast;
 pub use panel_pairs::PanelPairLine;

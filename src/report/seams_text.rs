@@ -267,20 +267,13 @@ pub(super) fn upward(value: f64) -> String {
     if value <= 0.0 {
         return "0".to_owned();
     }
-    let mut shown = value;
-    // The next printed figure is at most 5e-2 away relatively.
-    for _ in 0..64 {
-        let text = if shown < 1e-3 {
+    super::upward(value, |shown| {
+        if shown < 1e-3 {
             format!("{shown:.1e}")
         } else {
             figure(shown)
-        };
-        if text.parse::<f64>().is_ok_and(|printed| printed >= value) {
-            return text;
         }
-        shown += value * 2e-3;
-    }
-    format!("{value:e}")
+    })
 }
 
 pub(super) fn length(value: f64) -> String {

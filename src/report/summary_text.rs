@@ -2,7 +2,7 @@
 
 use std::fmt::Write;
 
-use super::Summary;
+use super::{Summary, upward};
 
 impl Summary {
     /// The outcome as text, one subject a line.
@@ -40,7 +40,7 @@ impl Summary {
         writeln!(
             out,
             "deviation   {} {unit} proved, {} {unit} attained at {} (u {:.4}, v {:.4}); chord tolerance {} {unit}",
-            figure(d.proved),
+            upward(d.proved, figure),
             figure(d.attained),
             d.patch,
             d.u,
@@ -50,12 +50,12 @@ impl Summary {
         writeln!(
             out,
             "            surface to mesh {} {unit}, mesh to surface {} {unit}, both proved for every triangle{}",
-            figure(d.proved_to_mesh),
-            figure(d.proved_to_surface),
+            upward(d.proved_to_mesh, figure),
+            upward(d.proved_to_surface, figure),
             if d.rounding > 0.0 {
                 format!(
                     "; {} {unit} of it is rounding in the file",
-                    figure(d.rounding)
+                    upward(d.rounding, figure)
                 )
             } else {
                 String::new()
@@ -91,7 +91,7 @@ impl Summary {
                 line.between.1,
                 line.and.0,
                 line.and.1,
-                figure(line.gap)
+                upward(line.gap, figure)
             )?;
         }
         if !self.turned_over.is_empty() {
