@@ -14,6 +14,8 @@
     allow(clippy::unwrap_used, reason = "a panic is how a test fails")
 )]
 
+pub mod pace;
+
 pub mod scalar;
 
 pub mod bezier;

@@ -97,3 +97,37 @@ fn wrong_usage_is_refused_in_plain_words() {
     }
     assert!(!Path::new(env!("CARGO_MANIFEST_DIR")).join("x.png").exists());
 }
+
+/// The options by which a set is meshed hold here too.
+#[test]
+fn limits_gaps_and_orientation_are_heeded() {
+    let text = std::fs::read_to_string("patches/box.ron").unwrap();
+    let top = "surface: Bezier(indexed: [[4, 7], [5, 6]])";
+    let turned = Path::new(env!("CARGO_TARGET_TMPDIR")).join("turned_box.ron");
+    std::fs::write(&turned, text.replace(top, &format!("flip: true, {top}"))).unwrap();
+    let turned = turned.to_str().unwrap();
+    let size = ["--size", "320x200", "--direction", "-1,-2,1.5"];
+    let of = |set: &str, more: &[&str]| drawn("turned.png", &[&[set], &size[..], more].concat());
+    let whole = of("patches/box.ron", &[]);
+    assert_ne!(of(turned, &[]), whole, "the top shows its inner side");
+    assert_eq!(of(turned, &["--orient"]), whole, "--orient turns it back");
+    for (arguments, words) in [
+        (
+            "patches/sphere.ron --max-triangles 100",
+            "at most 1.0e2 are to be made",
+        ),
+        (
+            "patches/sphere.ron --max-memory 1MB",
+            "at most 1 MB are to be taken",
+        ),
+        (
+            "patches/nearly_closed.ron --close-gaps 0.08 --chord 0.05",
+            "joined edges must lie closer than the chord tolerance",
+        ),
+    ] {
+        let all: Vec<&str> = arguments.split(' ').chain(["-o", "x.png"]).collect();
+        let (code, _, err) = run(&all);
+        assert_eq!(code, 2, "{arguments}: {err}");
+        assert!(err.contains(words), "{arguments}: {err}");
+    }
+}

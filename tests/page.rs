@@ -8,6 +8,10 @@ use assert_cmd::Command;
 use sha2::{Digest, Sha256};
 
 fn page(set: &Path, jobs: &str) -> (i32, String) {
+    page_with(set, &["--jobs", jobs])
+}
+
+fn page_with(set: &Path, more: &[&str]) -> (i32, String) {
     let folder = tempfile::tempdir().unwrap();
     let file = folder.path().join("page.html");
     let output = Command::cargo_bin("chordwise")
@@ -17,11 +21,12 @@ fn page(set: &Path, jobs: &str) -> (i32, String) {
         .arg(set)
         .arg("-o")
         .arg(&file)
-        .args(["--jobs", jobs])
+        .args(more)
         .output()
         .unwrap();
     assert_eq!(String::from_utf8_lossy(&output.stdout), "");
-    assert_eq!(String::from_utf8_lossy(&output.stderr), "");
+    let said = String::from_utf8_lossy(&output.stderr);
+    assert!(said.is_empty() || said.starts_with("warning: "), "{said}");
     (
         output.status.code().unwrap(),
         fs::read_to_string(file).unwrap(),
@@ -71,4 +76,64 @@ fn names_are_no_markup() {
     assert!(!text.contains("<b>") && !text.contains("<i>"));
     assert_eq!(text.matches("</script>").count(), 2);
     assert!(text.contains("&lt;/script&gt;&lt;b&gt;{title}"));
+}
+
+/// Above 100,000 triangles the viewer has a coarser mesh of the whole set; figures
+/// and pictures stay those of the mesh itself.
+#[test]
+fn a_large_mesh_is_coarser_in_the_viewer_and_the_page_says_so() {
+    let set = Path::new(env!("CARGO_MANIFEST_DIR")).join("patches/sphere.ron");
+    let (code, text) = page_with(&set, &["--chord", "0.025"]);
+    assert_eq!(code, 0);
+    let numbers = |from: &str| -> Vec<usize> {
+        let at = text.find(from).unwrap() + from.len();
+        let words = text[at..].split(|c: char| !c.is_ascii_digit() && c != '.');
+        words.filter_map(|word| word.parse().ok()).take(2).collect()
+    };
+    let [whole, shown] = numbers("The mesh has ")[..] else {
+        panic!("the page does not say so");
+    };
+    assert!(whole > 100_000, "{whole}");
+    assert!((10_000..=100_000).contains(&shown), "{shown}");
+    assert!(text.contains(&format!("<dd>{whole}</dd>")), "the summary");
+    let data = text.split("id=\"data\">").nth(1).unwrap();
+    let data: serde_json::Value =
+        serde_json::from_str(data.split("</script>").next().unwrap()).unwrap();
+    // Four characters of base 64 are three bytes; three corners of four bytes.
+    let corners = data["corners"].as_str().unwrap();
+    let bytes = corners.trim_end_matches('=').len() * 3 / 4;
+    assert_eq!(bytes, 12 * shown);
+    assert!(data["chord"].as_f64().unwrap() > 0.025);
+}
+
+/// The options by which a set is meshed hold here too.
+#[test]
+fn limits_gaps_and_orientation_are_heeded() {
+    let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("patches");
+    let (code, text) = page_with(&folder.join("nearly_closed.ron"), &["--close-gaps", "0.08"]);
+    assert_eq!(code, 1, "a closed gap stays a fault");
+    assert!(text.contains("report nearly_closed.ron -o page.html --close-gaps 0.08"));
+    let (_, open) = page_with(&folder.join("nearly_closed.ron"), &[]);
+    let border = |text: &str| {
+        let at = text.find("<dt>border</dt>").unwrap();
+        text[at..].lines().next().unwrap().to_owned()
+    };
+    assert_ne!(border(&text), border(&open), "the gap is not closed");
+    for (more, words) in [
+        (["--max-triangles", "100"], "at most 1.0e2 are to be made"),
+        (["--max-memory", "1MB"], "at most 1 MB are to be taken"),
+    ] {
+        let output = Command::cargo_bin("chordwise")
+            .unwrap()
+            .arg("report")
+            .arg(folder.join("sphere.ron"))
+            .args(["-o", "never.html"])
+            .args(more)
+            .output()
+            .unwrap();
+        let said = String::from_utf8_lossy(&output.stderr);
+        assert_eq!(output.status.code(), Some(2), "{said}");
+        assert!(said.contains(words), "{said}");
+    }
+    assert!(!Path::new("never.html").exists());
 }

@@ -92,7 +92,7 @@ impl AuditArguments {
         drop(bytes);
         let own = set.tolerances().chord.get();
         let chord = Tolerance::new(self.chord.map_or(own, |c| c.in_unit(set.unit())))?;
-        progress.stage("proving");
+        progress.stage("proving each triangle");
         let audit = Audit::of(set, &evidence, chord).map_err(|e| fault(&self.mesh, &e))?;
         drop(progress);
         let report = AuditReport::new(set, chord, &audit);

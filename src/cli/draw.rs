@@ -7,19 +7,19 @@ use clap::Args;
 use clap::builder::{PossibleValuesParser, TypedValueParser};
 
 use super::Outcome;
+use super::meshing::MeshingArguments;
 use super::output::Output;
 use super::panels::panels;
-use super::progress::Progress;
 use super::source;
 use crate::continuity::Survey;
 use crate::format::FormatError;
 use crate::mesh::{Audit, Evidence, Mesh, Meshed};
+use crate::pace;
 use crate::patch_set::PatchSet;
 use crate::picture::{
     Canvas, Drawing, Focus, Picture, PictureOptions, Plane, Scene, SeamCurve, SectionHead, Shading,
     View, borders, draw_section, seam_curves, section,
 };
-use crate::sampling::Limits;
 use crate::scalar::{Length, LengthUnit, Tolerance, Vector};
 
 const EXAMPLES: &str = "\
@@ -101,10 +101,10 @@ pub(super) struct DrawArguments {
     #[arg(long, value_name = "LOW:HIGH", allow_hyphen_values = true, value_parser = range)]
     range: Option<[f64; 2]>,
 
-    /// Parallel lights to the full turn, for reflection lines
-    #[arg(long, value_name = "N", default_value_t = 48,
-        value_parser = clap::value_parser!(u16).range(2..=2000))]
-    lights: u16,
+    /// Parallel lights to the full turn, for reflection lines [default: 48, and
+    /// 192 with --zoom-seam]
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(2..=2000))]
+    lights: Option<u16>,
 
     /// Stand the lights upright in the picture
     #[arg(long)]
@@ -124,18 +124,12 @@ pub(super) struct DrawArguments {
     #[arg(long, value_name = "WIDTHxHEIGHT", default_value = "1920x1080", value_parser = size)]
     size: (usize, usize),
 
-    /// Largest distance between mesh and surface [default: the set's, else 0.1 mm]
-    #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
-    chord: Option<Length>,
-
     /// Only this panel; may be repeated
     #[arg(long = "panel", value_name = "NAME")]
     panels: Vec<String>,
 
-    /// Threads to work with; the picture is the same for any number
-    /// [default: all cores]
-    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..))]
-    jobs: Option<u16>,
+    #[command(flatten)]
+    meshing: MeshingArguments,
 }
 
 /// Why a picture was refused before it was begun.
@@ -233,10 +227,8 @@ impl DrawArguments {
             return Err(UsageError::Extension(self.output.display().to_string()).into());
         }
         let output = Output::open(&self.output, &[&self.set])?;
-        super::work_with(self.jobs);
-        let progress = Progress::new();
-        progress.stage("reading");
-        let reading = match source::read(&self.set) {
+        let progress = self.meshing.begin();
+        let mut reading = match source::read(&self.set) {
             Ok(reading) => reading,
             Err(faults) => {
                 drop(progress);
@@ -244,24 +236,19 @@ impl DrawArguments {
                 return Ok(Outcome::Refused);
             }
         };
+        self.meshing.prepare(&mut reading, &progress)?;
         let set = &reading.set;
         let options = self.options(set)?;
-        let own = set.tolerances();
-        let limits = Limits::new(
-            options.chord,
-            own.normal_deg.map(|a| a.get().to_radians()),
-            own.max_edge.map(Tolerance::get),
-        );
+        let limits = self.meshing.limits(set);
         let chosen = panels(set, &self.panels)?;
-        let count = set.pieces().len();
         let wanted = |piece: crate::patch_set::PieceId| {
-            progress.step();
             chosen
                 .as_ref()
                 .is_none_or(|c| c.contains(&set.patch_of(piece).panel))
         };
-        let made =
-            Meshed::with_evidence(set, &limits, wanted, |name| progress.meshing(name, count))?;
+        let stage = |name| progress.stage(name);
+        let budget = self.meshing.budget();
+        let made = Meshed::within(set, &limits, &budget, wanted, true, stage)?;
         let deviations = if self.shading == Shading::Deviation {
             progress.stage("proving each triangle");
             deviations(set, &made.mesh, options.chord)?
@@ -280,8 +267,6 @@ impl DrawArguments {
                 }
                 write_png(&drawing.canvas(), out)
             })?;
-            drop(progress);
-            source::show_warnings(&reading);
             return Ok(Outcome::Done);
         }
         let mut options = PictureOptions {
@@ -298,6 +283,7 @@ impl DrawArguments {
             self.zoom(&seams, number, set.unit(), &mut options)?;
         }
         progress.stage("drawing");
+        pace::expect((self.size.0 * self.size.1) as u64, "pixels");
         let mut picture = Picture::draw(&scene, &options, &deviations);
         if self.shading.has_scale() || !seams.is_empty() {
             let curves = borders(set, &made.topology, wanted, options.chord);
@@ -307,8 +293,6 @@ impl DrawArguments {
         picture.caption(&scene, &options, &seams);
         progress.stage("writing");
         output.write(|out| write_png(&picture.canvas, out))?;
-        drop(progress);
-        source::show_warnings(&reading);
         Ok(Outcome::Done)
     }
 
@@ -352,9 +336,8 @@ impl DrawArguments {
                 .map_or(Focus::All, |panel| Focus::Panel(panel.index())),
             None => Focus::All,
         };
-        let chord = self
-            .chord
-            .map_or(set.tolerances().chord.get(), |c| c.in_unit(set.unit()));
+        let chord = self.meshing.limits(set).chord;
+        let usual = if self.zoom_seam.is_some() { 192 } else { 48 };
         Ok(PictureOptions {
             size: self.size,
             view: self
@@ -366,7 +349,7 @@ impl DrawArguments {
             shading: self.shading,
             mesh_edges: self.edges,
             range: self.range,
-            lights: f64::from(self.lights),
+            lights: f64::from(self.lights.unwrap_or(usual)),
             upright: self.upright,
             chord: Tolerance::new(chord)?.get(),
             proved: 0.0,

@@ -15,6 +15,7 @@ mod draw;
 mod interrupt;
 mod joining;
 mod man;
+mod meshing;
 mod message;
 mod outcome;
 mod output;

@@ -1,15 +1,17 @@
 //! What is shown while a command works: on a terminal, on standard error.
 //!
 //! Nothing is shown for the first second, and nothing at all where standard error
-//! is no terminal. A stage that can count what it does shows its rate and how
-//! long the rest will take; the others show how long they have been at it.
+//! is no terminal. The line has the stage at work, how much of it is done, how fast
+//! that goes, and how long the rest takes at that rate, as far as the stage counts
+//! (see [`pace`]); else how long it has been at it.
 
 use std::io::Write;
-use std::sync::atomic::{AtomicU64, Ordering};
-use std::sync::{Arc, Mutex};
+use std::sync::{Arc, Mutex, PoisonError};
 use std::time::{Duration, Instant};
 
 use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
+
+use crate::pace::{self, Pace};
 
 /// Work shorter than this shows nothing.
 const PATIENCE: Duration = Duration::from_secs(1);
@@ -17,29 +19,47 @@ const PATIENCE: Duration = Duration::from_secs(1);
 /// How often the line is written anew.
 const TICK: Duration = Duration::from_millis(120);
 
-/// What a stage has done so far.
-#[derive(Debug, Default)]
+/// The stage at work, and when it and its count began.
+#[derive(Debug)]
 struct Stage {
     name: &'static str,
-    done: AtomicU64,
-    /// What it has to do in all; 0 where that is not known.
-    whole: u64,
-    unit: &'static str,
+    began: Instant,
+    count: (u64, Instant),
 }
 
 /// The line with the stage at work.
 #[derive(Debug)]
 pub(super) struct Progress {
     bar: ProgressBar,
-    stage: Mutex<Arc<Stage>>,
+    stage: Arc<Mutex<Stage>>,
 }
 
 impl Progress {
     /// Starts the clock; the line appears after a second.
     pub(super) fn new() -> Self {
         let bar = ProgressBar::with_draw_target(None, ProgressDrawTarget::hidden());
-        let shown = bar.clone();
+        let now = Instant::now();
+        let stage = Arc::new(Mutex::new(Stage {
+            name: "",
+            began: now,
+            count: (0, now),
+        }));
+        let told = Arc::clone(&stage);
+        let line = move |_: &indicatif::ProgressState, out: &mut dyn std::fmt::Write| {
+            let mut stage = told.lock().unwrap_or_else(PoisonError::into_inner);
+            let (pace, now) = (pace::look(), Instant::now());
+            if stage.count.0 != pace.number {
+                stage.count = (pace.number, now);
+            }
+            let passed = [stage.began, stage.count.1].map(|from| now - from);
+            // A terminal that is gone is nobody's loss.
+            let _ = out.write_str(&describe(stage.name, &pace, passed));
+        };
+        if let Ok(style) = ProgressStyle::with_template("{spinner} {line}") {
+            bar.set_style(style.with_key("line", line));
+        }
         if console_is_there() {
+            let shown = bar.clone();
             std::thread::spawn(move || {
                 std::thread::sleep(PATIENCE);
                 if !shown.is_finished() {
@@ -48,74 +68,36 @@ impl Progress {
                 }
             });
         }
-        Self {
-            bar,
-            stage: Mutex::default(),
-        }
+        Self { bar, stage }
     }
 
-    /// Says which stage has begun.
+    /// Says which stage has begun; it may count what it does.
     pub(super) fn stage(&self, name: &'static str) {
-        self.counted(name, 0, "");
-    }
-
-    /// As [`Progress::stage`], for the stages of meshing `pieces` pieces.
-    pub(super) fn meshing(&self, name: &'static str, pieces: usize) {
-        if name.starts_with("tessellating") {
-            self.counted(name, pieces as u64, "pieces");
-        } else {
-            self.stage(name);
-        }
-    }
-
-    /// One more thing is done by a stage that counts; from any thread.
-    pub(super) fn step(&self) {
-        self.add(1);
-    }
-
-    /// So much more is done by a stage that counts; from any thread.
-    pub(super) fn add(&self, count: u64) {
-        if let Ok(stage) = self.stage.lock()
-            && !stage.unit.is_empty()
-        {
-            stage.done.fetch_add(count, Ordering::Relaxed);
-        }
-    }
-
-    /// Says which stage has begun, and that it will do `whole` things of a kind.
-    pub(super) fn counted(&self, name: &'static str, whole: u64, unit: &'static str) {
-        let stage = Arc::new(Stage {
+        pace::expect(0, "");
+        let now = Instant::now();
+        let mut stage = self.stage.lock().unwrap_or_else(PoisonError::into_inner);
+        *stage = Stage {
             name,
-            done: AtomicU64::new(0),
-            whole,
-            unit,
-        });
-        let began = Instant::now();
-        let told = Arc::clone(&stage);
-        if let Ok(mut held) = self.stage.lock() {
-            *held = stage;
-        }
-        let line = move |_: &indicatif::ProgressState, out: &mut dyn std::fmt::Write| {
-            // A terminal that is gone is nobody's loss.
-            let _ = out.write_str(&describe(&told, began.elapsed()));
+            began: now,
+            count: (pace::look().number, now),
         };
-        let style = ProgressStyle::with_template("{spinner} {line}");
-        if let Ok(style) = style {
-            self.bar.set_style(style.with_key("line", line));
-        }
+    }
+
+    /// Clears the line for something else to be written on the terminal.
+    pub(super) fn aside(&self, say: impl FnOnce()) {
+        self.bar.suspend(say);
     }
 }
 
 /// Passes bytes on and counts them for the stage at work.
 pub(super) struct Counted<'a> {
     pub(super) out: &'a mut dyn Write,
-    pub(super) progress: &'a Progress,
 }
 
 impl Write for Counted<'_> {
     fn write(&mut self, bytes: &[u8]) -> std::io::Result<usize> {
         let done = self.out.write(bytes)?;
-        self.progress.add(done as u64);
+        pace::step(done as u64);
         Ok(done)
     }
 
@@ -130,33 +112,30 @@ fn console_is_there() -> bool {
 }
 
 /// The line: what is done, how fast, and how long the rest takes at that rate.
-fn describe(stage: &Stage, passed: Duration) -> String {
-    let seconds = passed.as_secs_f64();
-    let done = stage.done.load(Ordering::Relaxed);
-    if done == 0 || seconds < 0.2 {
-        return format!("{}, {seconds:.0} s", stage.name);
+/// `passed` are the times since the stage began, and since its count did.
+#[allow(
+    clippy::cast_precision_loss,
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    reason = "shown in whole seconds and few digits"
+)]
+fn describe(name: &str, pace: &Pace, [stage, count]: [Duration; 2]) -> String {
+    let seconds = count.as_secs_f64();
+    if pace.share == 0 || pace.unit.is_empty() || seconds < 0.2 {
+        return format!("{name}, {:.0} s", stage.as_secs_f64());
     }
-    #[allow(clippy::cast_precision_loss, reason = "shown in three digits")]
-    let rate = done as f64 / seconds;
-    let rest = if stage.whole >= done && stage.whole > 0 {
-        #[allow(clippy::cast_precision_loss, reason = "shown in whole seconds")]
-        let left = (stage.whole - done) as f64 / rate;
-        format!(" of {}, {left:.0} s left", short(stage.whole))
-    } else {
-        String::new()
+    let whole = pace.whole.max(pace.share);
+    let left = (whole - pace.share) as f64 * seconds / pace.share as f64;
+    let done = match (pace.whole, pace.share == pace.done) {
+        (0, _) => short(pace.done),
+        (_, true) => format!("{} of {}, {left:.0} s left", short(pace.done), short(whole)),
+        (_, false) => {
+            let percent = (100.0 * pace.share as f64 / whole as f64).floor();
+            format!("{percent} %, {left:.0} s left")
+        }
     };
-    #[allow(
-        clippy::cast_possible_truncation,
-        clippy::cast_sign_loss,
-        reason = "a rate is positive, and far below 2^64"
-    )]
-    let rate = short(rate as u64);
-    format!(
-        "{}, {}{rest} ({rate} {} a second)",
-        stage.name,
-        short(done),
-        stage.unit
-    )
+    let rate = short((pace.done as f64 / seconds) as u64);
+    format!("{name}, {done} ({rate} {} a second)", pace.unit)
 }
 
 /// A count in few digits.
@@ -180,20 +159,39 @@ mod tests {
 
     #[test]
     fn a_line_has_rate_and_time_left() {
-        let stage = Stage {
-            name: "writing",
-            done: AtomicU64::new(30_000_000),
+        let pace = Pace {
             whole: 90_000_000,
+            share: 30_000_000,
+            done: 30_000_000,
             unit: "bytes",
+            number: 7,
         };
+        let passed = [4, 3].map(Duration::from_secs);
         assert_eq!(
-            describe(&stage, Duration::from_secs(3)),
+            describe("writing", &pace, passed),
             "writing, 30 million of 90 million, 6 s left (10 million bytes a second)"
         );
-        let silent = Stage {
-            name: "reading",
-            ..Stage::default()
+        let pace = Pace {
+            whole: 400,
+            share: 100,
+            done: 60_000,
+            unit: "triangles",
+            ..pace
         };
-        assert_eq!(describe(&silent, Duration::from_secs(4)), "reading, 4 s");
+        assert_eq!(
+            describe("tessellating", &pace, passed),
+            "tessellating, 25 %, 9 s left (20 thousand triangles a second)"
+        );
+        let pace = Pace { whole: 0, ..pace };
+        assert_eq!(
+            describe("reading", &pace, passed),
+            "reading, 60 thousand (20 thousand triangles a second)"
+        );
+        let silent = Pace {
+            share: 0,
+            unit: "",
+            ..pace
+        };
+        assert_eq!(describe("reading", &silent, passed), "reading, 4 s");
     }
 }

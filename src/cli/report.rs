@@ -7,17 +7,19 @@ use sha2::{Digest, Sha256};
 
 use super::Outcome;
 use super::draw::deviations;
+use super::meshing::MeshingArguments;
 use super::output::Output;
-use super::progress::Progress;
 use super::source;
 use crate::continuity::Survey;
 use crate::mesh::{Mesh, Meshed};
 use crate::page::{Gallery, Provenance, Sheet};
 use crate::patch_set::PatchSet;
-use crate::picture::{Focus, PictureOptions, Scene, Shading, View, borders, seam_curves};
+use crate::picture::{
+    Curvature, Focus, PictureOptions, Scene, Shading, View, borders, seam_curves, usual_curvature,
+};
 use crate::report::SeamReport;
 use crate::sampling::Limits;
-use crate::scalar::{Length, Tolerance};
+use crate::scalar::Tolerance;
 
 const EXAMPLES: &str = "\
 Examples:
@@ -45,14 +47,8 @@ pub(super) struct ReportArguments {
     #[arg(short, long, value_name = "FILE")]
     output: PathBuf,
 
-    /// Largest distance between mesh and surface [default: the set's, else 0.1 mm]
-    #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
-    chord: Option<Length>,
-
-    /// Threads to work with; the page is the same for any number
-    /// [default: all cores]
-    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..))]
-    jobs: Option<u16>,
+    #[command(flatten)]
+    meshing: MeshingArguments,
 }
 
 impl ReportArguments {
@@ -66,9 +62,7 @@ impl ReportArguments {
 
     fn try_run(&self) -> Result<Outcome, Box<dyn std::error::Error>> {
         let output = Output::open(&self.output, &[&self.set])?;
-        super::work_with(self.jobs);
-        let progress = Progress::new();
-        progress.stage("reading");
+        let progress = self.meshing.begin();
         let bytes = match source::bytes(&self.set) {
             Ok(bytes) => bytes,
             Err(faults) => {
@@ -78,7 +72,7 @@ impl ReportArguments {
             }
         };
         let (length, hash) = (bytes.len(), Sha256::digest(&bytes));
-        let reading = match PatchSet::from_bytes(bytes, &source::name(&self.set)) {
+        let mut reading = match PatchSet::from_bytes(bytes, &source::name(&self.set)) {
             Ok(reading) => reading,
             Err(faults) => {
                 drop(progress);
@@ -86,31 +80,20 @@ impl ReportArguments {
                 return Ok(Outcome::Refused);
             }
         };
+        let turned_over = self.meshing.prepare(&mut reading, &progress)?;
         let set = &reading.set;
-        let own = set.tolerances();
-        let chord = self
-            .chord
-            .map_or(own.chord.get(), |c| c.in_unit(set.unit()));
-        let chord = Tolerance::new(chord)?.get();
-        let limits = |chord: f64| {
-            Limits::new(
-                chord,
-                own.normal_deg.map(|a| a.get().to_radians()),
-                own.max_edge.map(Tolerance::get),
-            )
-        };
-        let count = set.pieces().len();
-        let all = |_| {
-            progress.step();
-            true
-        };
-        let made = Meshed::with_evidence(set, &limits(chord), all, |name| {
-            progress.meshing(name, count);
-        })?;
+        let limits = self.meshing.limits(set);
+        let chord = Tolerance::new(limits.chord)?.get();
+        let stage = |name| progress.stage(name);
+        let budget = self.meshing.budget();
+        let made = Meshed::within(set, &limits, &budget, |_| true, true, stage)?;
         progress.stage("proving each triangle");
         let proved = deviations(set, &made.mesh, chord)?;
         progress.stage("examining seams");
-        let survey = Survey::of(set, &made.topology);
+        let survey = Survey {
+            turned_over,
+            ..Survey::of(set, &made.topology)
+        };
         let report = SeamReport::new(set, &survey, None);
         let curves = seam_curves(set, &made.topology, &survey, chord);
         progress.stage("drawing");
@@ -127,10 +110,12 @@ impl ReportArguments {
             chord,
             proved: made.deviation.proved(),
         };
+        let ranges = [Curvature::Gaussian, Curvature::Mean, Curvature::Principal]
+            .map(|curvature| usual_curvature(&scene, curvature));
         let lines = borders(set, &made.topology, |_| true, chord);
         let gallery = Gallery::draw(&scene, &options, &proved, &curves, &lines)?;
         progress.stage("packing the viewer's mesh");
-        let coarse = coarser(set, &made.mesh, chord, limits)?;
+        let coarse = coarser(set, &made.mesh, &limits)?;
         let coarse_scene = match &coarse {
             Some((mesh, _, _)) => Some(Scene::new(set, mesh)?),
             None => None,
@@ -148,13 +133,12 @@ impl ReportArguments {
             curves: &curves,
             gallery: &gallery,
             shown,
+            ranges,
             provenance: self.provenance(length, &hash),
         };
         let html = sheet.html();
         progress.stage("writing");
         output.write(|out| Ok(out.write_all(html.as_bytes())?))?;
-        drop(progress);
-        source::show_warnings(&reading);
         Ok(if report.has_findings() {
             Outcome::Findings
         } else {
@@ -164,10 +148,11 @@ impl ReportArguments {
 
     fn provenance(&self, bytes: usize, hash: &[u8]) -> Provenance {
         let file = base_name(&self.set);
-        let mut command = format!("chordwise report {file} -o {}", base_name(&self.output));
-        if let Some(chord) = &self.chord {
-            command += &format!(" --chord {chord}");
-        }
+        let output = base_name(&self.output);
+        let command = format!(
+            "chordwise report {file} -o {output}{}",
+            self.meshing.typed()
+        );
         Provenance {
             file,
             bytes,
@@ -192,10 +177,9 @@ type Coarser = (Mesh, Vec<f64>, f64);
 fn coarser(
     set: &PatchSet,
     mesh: &Mesh,
-    chord: f64,
-    limits: impl Fn(f64) -> Limits,
+    limits: &Limits,
 ) -> Result<Option<Coarser>, Box<dyn std::error::Error>> {
-    let mut chord = chord;
+    let mut chord = limits.chord;
     let mut count = mesh.triangles.len();
     let mut best = None;
     // Triangles go with one over the chord; a few rounds are enough, unless other
@@ -207,7 +191,8 @@ fn coarser(
         #[allow(clippy::cast_precision_loss, reason = "counts stay below 2^52")]
         let factor = (1.2 * count as f64 / MOST_SHOWN as f64).max(1.5);
         chord *= factor;
-        let made = Meshed::with_evidence(set, &limits(chord), |_| true, |_| ())?;
+        let limits = Limits::new(chord, limits.normal_rad, limits.max_edge);
+        let made = Meshed::with_evidence(set, &limits, |_| true, |_| ())?;
         count = made.mesh.triangles.len();
         best = Some((made.mesh, chord));
     }

@@ -7,8 +7,7 @@ use clap::Args;
 use clap::builder::{PossibleValuesParser, TypedValueParser};
 
 use super::Outcome;
-use super::budget::BudgetArguments;
-use super::joining::{close_gaps, orient};
+use super::meshing::MeshingArguments;
 use super::message::report;
 use super::output::Output;
 use super::panels::panels;
@@ -18,6 +17,7 @@ use super::style::OutputStyle;
 use crate::continuity::Survey;
 use crate::format::{self, Format, FormatError, Layout, Overlay, WriteOptions};
 use crate::mesh::{Meshed, Prediction, Strips};
+use crate::pace;
 use crate::patch_set::{PanelId, PatchSet, PieceId};
 use crate::picture::{Extra, seam_curves};
 use crate::report::{Forecast, SecondsLine, Summary};
@@ -52,10 +52,8 @@ pub(super) struct TessellateArguments {
     #[arg(short, long, value_name = "FILE")]
     output: PathBuf,
 
-    /// Largest distance between mesh and surface, in the set's unit or with
-    /// m, cm, mm or in behind it [default: the set's, else 0.1 mm]
-    #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
-    chord: Option<Length>,
+    #[command(flatten)]
+    meshing: MeshingArguments,
 
     /// Largest turn of the surface normal between corners of a triangle, in
     /// degrees [default: the set's, else none]
@@ -85,11 +83,6 @@ pub(super) struct TessellateArguments {
     #[arg(long = "panel", value_name = "NAME")]
     panels: Vec<String>,
 
-    /// Threads to work with; the result is the same for any number
-    /// [default: all cores]
-    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..))]
-    jobs: Option<u16>,
-
     /// Keep the patch, u and v of every corner in the file (PLY and OBJ), so
     /// that `chordwise audit` can prove a PLY file anew
     #[arg(long)]
@@ -100,22 +93,10 @@ pub(super) struct TessellateArguments {
     #[arg(long = "extra", value_name = "KIND", value_parser = names(&Extra::ALL.map(Extra::name)))]
     extras: Vec<String>,
 
-    #[command(flatten)]
-    budget: BudgetArguments,
-
     /// Say how many triangles, bytes and seconds it would take, and write
     /// nothing. The file is named all the same: its extension says the format
     #[arg(long)]
     dry_run: bool,
-
-    /// Turn patches over so that each part faces one way, closed parts outwards
-    #[arg(long)]
-    orient: bool,
-
-    /// Close gaps up to this in the mesh, in the set's unit or with m, cm, mm
-    /// or in behind it; must be below the chord tolerance
-    #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
-    close_gaps: Option<Length>,
 
     /// How the summary is printed
     #[arg(long, value_enum, default_value_t)]
@@ -188,9 +169,7 @@ impl TessellateArguments {
         if self.evidence && !format.holds_evidence() {
             return Err(FormatError::Evidence(format).into());
         }
-        super::work_with(self.jobs);
-        let progress = Progress::new();
-        progress.stage("reading");
+        let progress = self.meshing.begin();
         let clock = Instant::now();
         let mut reading = match source::read(&self.set) {
             Ok(reading) => reading,
@@ -204,12 +183,7 @@ impl TessellateArguments {
             reading: clock.elapsed().as_secs_f64(),
             ..SecondsLine::default()
         };
-        close_gaps(&mut reading.set, self.close_gaps)?;
-        let turned_over = if self.orient {
-            orient(&mut reading.set)?
-        } else {
-            Vec::new()
-        };
+        let turned_over = self.meshing.prepare(&mut reading, &progress)?;
         let set = &reading.set;
         let limits = self.limits(set)?;
         let chord = Tolerance::new(limits.chord)?;
@@ -220,14 +194,10 @@ impl TessellateArguments {
             limits.max_edge,
         );
         let wanted = self.wanted(set)?;
-        let count = set.pieces().len();
-        let of = |piece: PieceId| {
-            progress.step();
-            wanted[piece.index()]
-        };
-        let budget = self.budget.budget();
+        let of = |piece: PieceId| wanted[piece.index()];
+        let budget = self.meshing.budget();
+        let stage = |name| progress.stage(name);
         if self.dry_run {
-            let stage = |name| progress.stage(name);
             let prediction = Prediction::new(set, &held, of, self.evidence, stage)?;
             let options = WriteOptions {
                 layout,
@@ -246,18 +216,13 @@ impl TessellateArguments {
             report(&text, false)?;
             return Ok(refused.map_or(Outcome::Done, Outcome::refuse));
         }
-        let stage = |name| progress.meshing(name, count);
         let made = Meshed::within(set, &held, &budget, of, self.evidence, stage)?;
         progress.stage("finding strips");
         let clock = Instant::now();
         let strips = Strips::of(&made.mesh);
         seconds.strips = clock.elapsed().as_secs_f64();
-        let known = match format {
-            Format::Stl => 84 + 50 * made.mesh.triangles.len() as u64,
-            _ => 0,
-        };
-        progress.counted("writing", known, "bytes");
-        let overlays = self.overlays(set, &made, &limits, of);
+        let overlays = self.overlays(set, &made, &limits, of, &progress);
+        progress.stage("writing");
         let clock = Instant::now();
         let options = WriteOptions {
             overlays: &overlays,
@@ -268,15 +233,13 @@ impl TessellateArguments {
         };
         let standard = output.is_standard();
         let written = output.write(|out| {
-            let mut out = Counted {
-                out,
-                progress: &progress,
-            };
-            format::write(&made.mesh, format, &options, &mut out)
+            pace::expect(format::about_bytes(&made.mesh, format, &options), "bytes");
+            let written = format::write(&made.mesh, format, &options, &mut Counted { out })?;
+            progress.stage("syncing");
+            Ok(written)
         })?;
         seconds.writing = clock.elapsed().as_secs_f64();
         drop(progress);
-        source::show_warnings(&reading);
         let Some(written) = written else {
             return Ok(Outcome::Done);
         };
@@ -297,10 +260,12 @@ impl TessellateArguments {
         made: &Meshed,
         limits: &Limits,
         wanted: impl Fn(PieceId) -> bool,
+        progress: &Progress,
     ) -> Vec<Overlay> {
         if self.extras.is_empty() {
             return Vec::new();
         }
+        progress.stage("examining seams");
         let survey = Survey::of(set, &made.topology);
         let seams = seam_curves(set, &made.topology, &survey, limits.chord);
         Extra::ALL
@@ -323,17 +288,16 @@ impl TessellateArguments {
 
     fn limits(&self, set: &PatchSet) -> Result<Limits, UsageError> {
         let own = set.tolerances();
-        let unit = set.unit();
-        let chord = self.chord.map_or(own.chord.get(), |c| c.in_unit(unit));
+        let limits = self.meshing.limits(set);
         let angle = self.normal_angle.or(own.normal_deg.map(Tolerance::get));
         if let Some(angle) = angle.filter(|a| !(LEAST_ANGLE..=180.0).contains(a)) {
             return Err(UsageError::Angle(angle.to_string()));
         }
         let edge = self
             .max_edge
-            .map(|e| e.in_unit(unit))
-            .or(own.max_edge.map(Tolerance::get));
-        Ok(Limits::new(chord, angle.map(f64::to_radians), edge))
+            .map(|e| e.in_unit(set.unit()))
+            .or(limits.max_edge);
+        Ok(Limits::new(limits.chord, angle.map(f64::to_radians), edge))
     }
 
     /// Which pieces belong to the panels asked for.

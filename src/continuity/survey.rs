@@ -10,6 +10,7 @@ use super::figure::{End, Finding, Verdict};
 use super::place::patch_edge;
 use super::seam::{CURVATURE_FLOOR, SurveyedSeam, survey};
 use super::slit::{Slit, slits};
+use crate::pace;
 use crate::patch_set::{Demand, PatchId, PatchSet};
 use crate::topology::{Contact, EdgeId, Orientation, Overlap, Sliver, Topology};
 
@@ -52,9 +53,14 @@ impl Survey {
         let groups: Vec<&[(End, End, &Contact)]> =
             contacts.chunk_by(|p, q| (p.0, p.1) == (q.0, q.1)).collect();
         let floor = CURVATURE_FLOOR / topology.size();
+        pace::expect(groups.len() as u64, "seams");
         let mut seams: Vec<SurveyedSeam> = groups
             .par_iter()
-            .map(|group| survey(set, group, floor))
+            .map(|group| {
+                let seam = survey(set, group, floor);
+                pace::step(1);
+                seam
+            })
             .filter(|seam| {
                 // Pieces of one patch need no mention where they go on smoothly.
                 !(seam.between.0 == seam.and.0

@@ -36,7 +36,7 @@ pub use error::FormatError;
 pub use kind::{Format, FormatNameError, Layout, LayoutNameError};
 pub use overlay::{Overlay, Stroke};
 pub use ply_reading::{EvidenceError, read_evidence};
-pub use size::{Counts, bytes_of, predict};
+pub use size::{Counts, about_bytes, bytes_of, predict};
 
 use crate::mesh::{Mesh, Part, Strips};
 use crate::scalar::Tolerance;

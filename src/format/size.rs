@@ -53,6 +53,27 @@ pub fn bytes_of(counts: &Counts<'_>, format: Format, options: &WriteOptions<'_>)
     }
 }
 
+/// About how many bytes the file of a mesh has, without writing it; exact where
+/// [`bytes_of`] is.
+#[must_use]
+pub fn about_bytes(mesh: &Mesh, format: Format, options: &WriteOptions<'_>) -> u64 {
+    let counts = Counts {
+        outline: mesh,
+        points: mesh.points.len() as u64,
+        vertices: mesh.vertices.len() as u64,
+    };
+    let layout = format.layout(options.layout).unwrap_or(Layout::Indexed);
+    let file_vertices = match layout {
+        Layout::Triangles => 3.0 * float(counts.triangles()),
+        _ => float(counts.vertices),
+    };
+    match bytes_of(&counts, format, options) {
+        Some(bytes) => bytes,
+        None if format == Format::Obj => whole(obj(&counts, mesh, layout)),
+        None => whole(glb(&counts, mesh, layout, file_vertices, options.strips)),
+    }
+}
+
 /// The file that a predicted mesh would make.
 ///
 /// # Errors
@@ -85,7 +106,7 @@ pub fn predict(
     let bytes = match bytes_of(&counts, format, options) {
         Some(bytes) => bytes,
         None if format == Format::Obj => whole(obj(&counts, sample, layout)),
-        None => whole(glb(&counts, sample, layout, file_vertices)),
+        None => whole(glb(&counts, sample, layout, file_vertices, None)),
     };
     Ok(Written {
         bytes,
@@ -170,13 +191,20 @@ fn obj(counts: &Counts<'_>, sample: &Mesh, layout: Layout) -> f64 {
     points * point + vertices * normal + triangles * face + float(names as u64)
 }
 
-fn glb(counts: &Counts<'_>, sample: &Mesh, layout: Layout, vertices: f64) -> f64 {
+fn glb(
+    counts: &Counts<'_>,
+    sample: &Mesh,
+    layout: Layout,
+    vertices: f64,
+    known: Option<&Strips>,
+) -> f64 {
     let triangles = float(counts.triangles());
     let indices = match layout {
         Layout::Triangles => 0.0,
         Layout::Indexed => 3.0 * triangles,
         Layout::Strips => {
-            let strips = Strips::of(sample);
+            let mut found = None;
+            let strips = known.unwrap_or_else(|| found.insert(Strips::of(sample)));
             // Two or three indices join strips, where a restart is one.
             let joins = 1.5 * float(strips.len() as u64);
             let found = float(strips.indices().len() as u64) + joins;

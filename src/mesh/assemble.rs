@@ -3,6 +3,7 @@
 use rayon::prelude::*;
 
 use super::{Mesh, Part, Vertex};
+use crate::pace;
 use crate::patch_set::{PatchSet, Piece, PieceId};
 use crate::sampling::Samples;
 use crate::scalar::Vector;
@@ -46,6 +47,8 @@ impl Mesh {
             parts: Vec::new(),
             evidence: evidence.then(Vec::new),
         };
+        let filled = tessellation.pieces.iter().flatten();
+        pace::expect(filled.map(|f| f.triangles.len() as u64).sum(), "triangles");
         for patch in set.patches() {
             let start = mesh.triangles.len();
             let mut any = false;
@@ -60,6 +63,7 @@ impl Mesh {
                     any = true;
                 }
             }
+            pace::step((mesh.triangles.len() - start) as u64);
             if any {
                 mesh.parts.push(Part {
                     name: patch.name.clone(),

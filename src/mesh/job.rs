@@ -10,9 +10,10 @@ use super::budget::as_float;
 use super::prediction::{Prediction, sizes};
 use super::rough::Size;
 use super::{Budget, Deviation, Mesh};
+use crate::pace;
 use crate::patch_set::{PatchSet, PieceId};
 use crate::sampling::{Limits, Samples, SamplingError};
-use crate::tessellation::{Tessellation, TessellationError, floor, tessellate};
+use crate::tessellation::{Filled, Tessellation, TessellationError, floor, tessellate_telling};
 use crate::topology::{EdgeId, Topology, TopologyError};
 
 /// A mesh has at most this many triangles for the size of its pieces, as far as
@@ -209,11 +210,17 @@ impl Meshed {
         let samples = Samples::new(set, &topology, limits)?;
         seconds.sampling = lap();
         stage("tessellating and proving");
+        // Time left goes by the sizes of pieces; what is counted is triangles.
+        let share = |size: &Size| whole_number(size.whole());
+        pace::expect(sizes.iter().map(share).sum(), "triangles");
+        let done = |piece: PieceId, filled: &Filled| {
+            pace::advance(share(&sizes[piece.index()]), filled.triangles.len() as u64);
+        };
         let filled = batches(
             &sizes,
             |batch| {
                 let within = |piece: PieceId| batch.contains(&piece.index()) && wanted(piece);
-                tessellate(set, &topology, &samples, limits, within)
+                tessellate_telling(set, &topology, &samples, limits, within, done)
             },
             budget,
         )?;
@@ -231,6 +238,16 @@ impl Meshed {
             seconds,
         })
     }
+}
+
+/// A size in whole triangles, for telling how far the work has come.
+#[allow(
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    reason = "sizes are positive, and the cast saturates"
+)]
+fn whole_number(size: f64) -> u64 {
+    size as u64
 }
 
 /// Fills all pieces, batch by batch, and counts.

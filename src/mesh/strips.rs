@@ -19,6 +19,7 @@ use std::ops::Range;
 
 use super::Mesh;
 use super::edges::{EdgeTable, NO_SIDE, is_degenerate, next_side, origin, previous_side};
+use crate::pace;
 
 /// Ends a strip among the indices. No vertex has this index.
 pub const RESTART: u32 = u32::MAX;
@@ -47,6 +48,7 @@ impl Strips {
             local: vec![u32::MAX; mesh.vertices.len()],
             global: Vec::new(),
         };
+        pace::expect(mesh.triangles.len() as u64, "triangles");
         for part in &mesh.parts {
             let triangles = numbering.localise(&mesh.triangles[part.triangles.clone()]);
             if !found.indices.is_empty() && !triangles.is_empty() {
@@ -70,6 +72,7 @@ impl Strips {
                 }
             }
             found.parts.push(start..found.indices.len());
+            pace::step(triangles.len() as u64);
         }
         found
     }

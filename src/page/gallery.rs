@@ -4,6 +4,7 @@ use rayon::prelude::*;
 
 use super::markup::{base64, escape};
 use crate::continuity::Verdict;
+use crate::pace;
 use crate::picture::{Curvature, Focus, Picture, PictureOptions, Scene, SeamCurve, Shading, View};
 use crate::scalar::Point;
 
@@ -77,6 +78,14 @@ impl Gallery {
                 "Deviation, proved for each triangle.",
             ),
         ];
+        let bad: Vec<&SeamCurve> = seams
+            .iter()
+            .filter(|s| s.verdict != Verdict::Met)
+            .take(CLOSE_UPS)
+            .collect();
+        let pixels = |size: (usize, usize)| (size.0 * size.1) as u64;
+        let all = pixels(WHOLE) * views.len() as u64 + pixels(CLOSE) * bad.len() as u64;
+        pace::expect(all, "pixels");
         let plates = views
             .par_iter()
             .map(|(id, shading, view, caption)| {
@@ -90,31 +99,36 @@ impl Gallery {
                 Plate::draw(scene, &options, deviations, own, borders, id, caption)
             })
             .collect::<Result<_, _>>()?;
-        let bad: Vec<&SeamCurve> = seams
-            .iter()
-            .filter(|s| s.verdict != Verdict::Met)
-            .take(CLOSE_UPS)
-            .collect();
         let close_ups = bad
             .par_iter()
             .map(|seam| {
+                let gap = seam.is_parted() && seam.gap > 0.0;
+                let (across, shading, shown) = if gap {
+                    // So near that the gap can be seen.
+                    (40.0 * seam.gap, Shading::Panels, "panels")
+                } else {
+                    let across = 1.5 * seam.length.max(10.0 * options.chord);
+                    (across, Shading::Reflection, "reflection lines")
+                };
                 let options = PictureOptions {
                     size: CLOSE,
                     view: seam.normal.map_or(View::FrontQuarter, View::From),
                     focus: Focus::Place {
                         point: seam.worst,
-                        across: 1.5 * seam.length.max(10.0 * options.chord),
+                        across,
                     },
-                    shading: Shading::Reflection,
+                    shading,
                     lights: 4.0 * options.lights,
                     ..options.clone()
                 };
                 let id = format!("close-up-{}", seam.number);
                 let caption = format!(
-                    "Seam {}: {}, {}; reflection lines, seen straight on at its worst place.",
+                    "Seam {}: {}, {}; {shown}, seen straight on at its worst place.",
                     seam.number, seam.finding, seam.verdict
                 );
-                Plate::draw(scene, &options, deviations, seams, borders, &id, &caption)
+                // A line along a gap would hide it.
+                let lines: &[SeamCurve] = if gap { &[] } else { seams };
+                Plate::draw(scene, &options, deviations, lines, borders, &id, &caption)
                     .map(|plate| (seam.number, plate))
             })
             .collect::<Result<_, image::ImageError>>()?;
@@ -156,7 +170,7 @@ impl Plate {
         caption: &str,
     ) -> Result<Self, image::ImageError> {
         let mut picture = Picture::draw(scene, options, deviations);
-        if options.shading.has_scale() || !seams.is_empty() {
+        if options.shading.has_scale() || options.shading == Shading::Panels || !seams.is_empty() {
             picture.borders(borders);
         }
         picture.seams(seams);

@@ -47,6 +47,8 @@ pub struct Sheet<'a> {
     /// The mesh of the viewer, its deviations and its chord tolerance: the mesh
     /// itself, or a coarser one.
     pub shown: (&'a Scene<'a>, &'a [f64], f64),
+    /// The ends of the pictures' scales: Gaussian, mean and principal curvature.
+    pub ranges: [f64; 3],
     /// Where it comes from.
     pub provenance: Provenance,
 }
@@ -63,7 +65,7 @@ impl Sheet<'_> {
         };
         let strips = Strips::of(&self.made.mesh);
         let storage = Storage::of(&self.made.mesh, &strips);
-        let viewer = ViewerMesh::new(self.shown.0, self.shown.1, self.curves);
+        let viewer = ViewerMesh::new(self.shown, self.ranges, self.curves);
         // In a script element only this could end it or open a comment.
         let data = viewer.data.to_string().replace('<', "\\u003c");
         let template = include_str!("assets/page.html");

@@ -74,8 +74,14 @@ fn octahedral(n: &Vector) -> [u16; 2] {
 }
 
 impl ViewerMesh {
-    /// Packs a scene. `deviations` are the proved figures of its triangles.
-    pub(super) fn new(scene: &Scene<'_>, deviations: &[f64], seams: &[SeamCurve]) -> Self {
+    /// Packs a scene with the proved deviations of its triangles and its chord
+    /// tolerance. `ranges` are the ends of the scales of Gaussian, mean and
+    /// principal curvature.
+    pub(super) fn new(
+        (scene, deviations, chord): (&Scene<'_>, &[f64], f64),
+        ranges: [f64; 3],
+        seams: &[SeamCurve],
+    ) -> Self {
         let (set, mesh) = (scene.set, scene.mesh);
         let (low, high) = bounds(&mesh.points);
         let side = [0, 1, 2].map(|i| [low[i], high[i]]);
@@ -131,7 +137,7 @@ impl ViewerMesh {
         let most = (0..3).map(|i| high[i] - low[i]).fold(0.0, f64::max);
         Self {
             data: json!({
-                "unit": set.unit().symbol(),
+                "unit": set.unit().symbol(), "chord": chord, "ranges": ranges,
                 "low": low.as_slice(), "high": high.as_slice(),
                 "places": base64(&places.0), "normals": base64(&normals.0),
                 "uv": base64(&uv.0), "bends": base64(&bends.0),

@@ -10,6 +10,7 @@ use super::motion::{Motion, check_place};
 use super::name::{Names, panel_of};
 use super::warning::{self, Warning};
 use super::{Panel, PanelId, Patch, PatchId, Piece};
+use crate::pace;
 use crate::scalar::Point;
 use crate::surface::{PieceGrid, Place, PlacedFault, Step};
 
@@ -49,6 +50,7 @@ impl Build {
             let good = check_place(entry.place.as_ref(), faults, &place, &path);
             motions.push(good.then(|| Motion::new(entry.mirror, entry.place.as_ref())));
         }
+        pace::expect(entries.len() as u64, "patches");
         let built: Vec<(PatchEntryRest, Built)> = entries
             .into_par_iter()
             .zip(&motions)
@@ -62,6 +64,7 @@ impl Build {
                     let warnings = warning::judge(&grid, gap);
                     (grid, warnings)
                 });
+                pace::step(1);
                 (PatchEntryRest::from(entry), grid)
             })
             .collect();

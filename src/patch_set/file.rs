@@ -8,6 +8,7 @@ use serde::{Deserialize, Deserializer, Serialize, Serializer, de, ser::Serialize
 
 use super::{Class, Demand};
 use crate::bezier::Side;
+use crate::pace;
 use crate::scalar::LengthUnit;
 use crate::surface::Surface;
 
@@ -41,6 +42,7 @@ pub struct SetFile {
     #[serde(default)]
     pub points: Vec<[f64; 3]>,
     /// The patches.
+    #[serde(deserialize_with = "entries")]
     pub patches: Vec<PatchEntry>,
     /// Repetitions of panels or patches.
     #[serde(default)]
@@ -121,6 +123,28 @@ pub struct ToleranceEntry {
     /// Largest difference of normal curvature, in 1/mm. No default.
     #[serde(default)]
     pub curvature_per_mm: Option<f64>,
+}
+
+/// The list of patches, counted as they are read.
+fn entries<'de, D: Deserializer<'de>>(source: D) -> Result<Vec<PatchEntry>, D::Error> {
+    struct Entries;
+    impl<'de> de::Visitor<'de> for Entries {
+        type Value = Vec<PatchEntry>;
+
+        fn expecting(&self, out: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+            out.write_str("a sequence")
+        }
+
+        fn visit_seq<A: de::SeqAccess<'de>>(self, mut list: A) -> Result<Self::Value, A::Error> {
+            let mut found = Vec::new();
+            while let Some(entry) = list.next_element()? {
+                found.push(entry);
+                pace::step(1);
+            }
+            Ok(found)
+        }
+    }
+    source.deserialize_seq(Entries)
 }
 
 /// A patch as written.

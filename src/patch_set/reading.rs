@@ -12,6 +12,7 @@ use super::file::SetFile;
 use super::locate::Locator;
 use super::name::nearest;
 use super::resolve;
+use crate::pace;
 use crate::surface::Place;
 
 /// How the text may be written: `Some(...)` is never needed, nor a second pair
@@ -29,6 +30,8 @@ impl SetFile {
     /// The parser's fault, with its place.
     pub fn from_ron(text: &str, source_name: &str) -> Result<Self, Faults> {
         let text = text.strip_prefix('\u{feff}').unwrap_or(text);
+        // About right; it is for whoever waits.
+        pace::expect(text.matches("surface").count() as u64, "patches");
         options().from_str(text).map_err(|error| Faults {
             list: vec![syntax(&error, text)],
             source_name: source_name.to_owned(),

@@ -6,7 +6,7 @@ use super::colour::{Colour, mix, panel_colour, round_up, srgb};
 use super::drawing::{Drawing, Label, Line};
 use super::legend::{Layout, plain, round_down};
 use super::section::{Plane, SectionRun};
-use crate::scalar::Point;
+use crate::scalar::{Point, Vector};
 
 const PAPER: [u8; 3] = [255, 255, 255];
 const INK: [u8; 3] = [32, 36, 42];
@@ -164,14 +164,23 @@ fn caption(
     } else {
         String::new()
     };
-    let line = format!(
-        "section by the plane ({:.4}, {:.4}, {:.4}) . p = {} {}{place}",
-        n.x,
-        n.y,
-        n.z,
-        plain(plane.offset),
-        head.unit
-    );
+    let cut = match axis(&n) {
+        Some((name, sign)) => format!("{name} = {}", plain(sign * plane.offset)),
+        None => format!(
+            "({:.4}, {:.4}, {:.4}) . p = {}",
+            n.x,
+            n.y,
+            n.z,
+            plain(plane.offset)
+        ),
+    };
+    let ways = [(camera.right, "to the right"), (camera.up, "up")].map(|(way, word)| {
+        axis(&way).map_or_else(String::new, |(name, sign)| {
+            let minus = if sign < 0.0 { "-" } else { "" };
+            format!("; {minus}{name} {word}")
+        })
+    });
+    let line = format!("section {cut} {}{}{}{place}", head.unit, ways[0], ways[1]);
     text(
         line,
         [left, head_row + 2.1 * letter],
@@ -183,20 +192,18 @@ fn caption(
     panels.sort_unstable();
     panels.dedup();
     let mut x = left;
+    let mut swatches = Vec::new();
     for panel in panels.into_iter().take(10) {
         let label = head.panels[panel].clone();
         let colour = mix(panel_colour(panel), [0.0; 3], 0.25);
-        let wide = super::canvas::Canvas::text_width(&label, letter) + 2.0 * letter;
+        let swatch = 1.6 * letter;
+        let wide = swatch + super::canvas::Canvas::text_width(&label, letter) + 2.0 * letter;
         if x + wide > right {
             break;
         }
-        text(
-            label,
-            [x, foot - 2.4 * letter],
-            letter,
-            Anchor::Left,
-            colour,
-        );
+        let row = foot - 2.4 * letter;
+        swatches.push(([x, row - 0.5 * letter], colour));
+        text(label, [x + swatch, row], letter, Anchor::Left, ink);
         x += wide;
     }
     let label = format!(
@@ -221,6 +228,10 @@ fn caption(
         Anchor::Middle,
         ink,
     );
+    for ([x, y], colour) in swatches {
+        let points = vec![[x + 0.55 * letter, y], [x + 0.65 * letter, y]];
+        push(drawing, points, 1.1 * letter, colour);
+    }
     let y = foot - letter / 2.0;
     push(
         drawing,
@@ -242,6 +253,15 @@ fn caption(
             ink,
         );
     }
+}
+
+/// The axis a direction runs along, and whether the same way; `None` where it is
+/// no axis.
+fn axis(way: &Vector) -> Option<(char, f64)> {
+    let names = ['x', 'y', 'z'];
+    (0..3)
+        .find(|&k| way[k].abs() > 1.0 - 1e-12)
+        .map(|k| (names[k], way[k].signum()))
 }
 
 /// A round curvature that nine tenths of the places keep to.

@@ -229,10 +229,16 @@ impl Picture {
 fn scale_label(shading: Shading, unit: &str) -> String {
     match shading {
         Shading::Curvature(Curvature::Gaussian) => {
-            format!("{}, 1/{unit}^2", shading.label())
+            format!(
+                "{}, 1/{unit}^2; positive: dome or bowl, negative: saddle",
+                shading.label()
+            )
         }
         Shading::Curvature(_) => {
-            format!("{}, 1/{unit}; positive bends outwards", shading.label())
+            format!(
+                "{}, 1/{unit}; seen from outside negative: crowned, positive: hollow",
+                shading.label()
+            )
         }
         _ => format!("{}, {unit}", shading.label()),
     }
@@ -274,7 +280,7 @@ fn scale(scene: &Scene<'_>, options: &PictureOptions, deviations: &[f64]) -> Opt
         Shading::Curvature(curvature) => {
             let most = match options.range {
                 Some(_) => 1.0,
-                None => usual(scene, curvature),
+                None => usual_curvature(scene, curvature),
             };
             (Ramp::Signed, [-most, most])
         }
@@ -285,8 +291,9 @@ fn scale(scene: &Scene<'_>, options: &PictureOptions, deviations: &[f64]) -> Opt
 }
 
 /// A round figure that nineteen twentieths of the area keep to in size, from the
-/// middles of all triangles.
-fn usual(scene: &Scene<'_>, curvature: Curvature) -> f64 {
+/// middles of all triangles: the end of a scale where none is asked for.
+#[must_use]
+pub fn usual_curvature(scene: &Scene<'_>, curvature: Curvature) -> f64 {
     let mut sizes: Vec<(f64, f64)> = (0..scene.mesh.triangles.len())
         .into_par_iter()
         .filter_map(|t| {
@@ -301,7 +308,7 @@ fn usual(scene: &Scene<'_>, curvature: Curvature) -> f64 {
             value.is_finite().then_some((value.abs(), area))
         })
         .collect();
-    sizes.sort_by(|a, b| a.0.total_cmp(&b.0));
+    sizes.par_sort_by(|a, b| a.0.total_cmp(&b.0));
     let whole: f64 = sizes.iter().map(|s| s.1).sum();
     let mut sum = 0.0;
     let enough = sizes.iter().find(|s| {

@@ -31,6 +31,16 @@ pub struct SeamCurve {
     pub normal: Option<Vector>,
     /// The seam's length.
     pub length: f64,
+    /// The attained gap.
+    pub gap: f64,
+}
+
+impl SeamCurve {
+    /// Whether its edges are not joined, so that the gap is what is to be seen.
+    #[must_use]
+    pub fn is_parted(&self) -> bool {
+        matches!(self.finding, Finding::Gap | Finding::Apart | Finding::Open)
+    }
 }
 
 /// The colour of a finding, after Okabe and Ito.
@@ -102,6 +112,7 @@ pub fn seam_curves(
                 worst: place.point,
                 normal: normal(set, seam.between, place.between),
                 length: seam.length,
+                gap: seam.gap.bracket.attained,
             }
         })
         .collect()

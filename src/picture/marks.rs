@@ -114,7 +114,7 @@ impl Picture {
         if let Some(last) = entries.last_mut()
             && bad > 0
         {
-            last.label += &format!("; {bad} numbered, worst first");
+            last.label += &format!("   ({bad} numbered, worst first)");
         }
         entries
     }

@@ -23,7 +23,7 @@ pub use camera::{Camera, View, Window};
 pub use canvas::{Anchor, Canvas};
 pub use colour::{Colour, Ramp, Scale, mix, panel_colour, round_up, srgb, to_srgb};
 pub use comb::{SectionHead, draw_section};
-pub use composition::{Focus, Picture, PictureOptions};
+pub use composition::{Focus, Picture, PictureOptions, usual_curvature};
 pub use curves::{SeamCurve, borders, deciding, finding_bytes, finding_colour, seam_curves};
 pub use drawing::Drawing;
 pub use extras::Extra;

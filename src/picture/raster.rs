@@ -19,6 +19,7 @@ use rayon::prelude::*;
 
 use super::colour::Colour;
 use super::setup::{Corner, STEPS, Setup};
+use crate::pace;
 
 /// Pixels along a tile's side.
 const TILE: usize = 64;
@@ -108,7 +109,9 @@ pub(super) fn draw(
         .enumerate()
         .map(|(index, list)| {
             let origin = [(index % columns) * TILE, (index / columns) * TILE];
-            Tile::draw(origin, list, size, &corners, &colour, &key, near)
+            let tile = Tile::draw(origin, list, size, &corners, &colour, &key, near);
+            pace::step((TILE * TILE) as u64);
+            tile
         })
         .collect();
     let mut raster = Raster {
@@ -152,9 +155,11 @@ struct Group {
     key: Option<u64>,
     depth: f32,
     samples: u32,
-    /// Samples of the first triangle, and the sum of their places in sixteenths.
-    own: i64,
+    /// The sum of their places in sixteenths.
     at: [i64; 2],
+    /// The same of the first triangle's alone.
+    own: i64,
+    own_at: [i64; 2],
 }
 
 impl Tile {
@@ -196,10 +201,18 @@ impl Tile {
                         .map(|s| (group.triangle, s));
                 }
                 let Some((_, setup)) = &known else { continue };
-                let place = [0, 1].map(|i| {
-                    (corner[i] as f64 + group.at[i] as f64 / (16 * group.own) as f64) * STEPS as f64
-                });
-                let weights = setup.weights(place[0], place[1]);
+                let weigh = |at: [i64; 2], count: i64| {
+                    let place = [0, 1].map(|i| {
+                        (corner[i] as f64 + at[i] as f64 / (16 * count) as f64) * STEPS as f64
+                    });
+                    setup.weights(place[0], place[1])
+                };
+                // The middle of all that gets this colour, or narrow stripes would
+                // be ragged; but a needle is not drawn out far.
+                let mut weights = weigh(group.at, i64::from(group.samples));
+                if weights.iter().any(|w| *w < -1.0) {
+                    weights = weigh(group.own_at, group.own);
+                }
                 let edge = (0..3)
                     .map(|k| weights[k] * setup.area / setup.lengths[k].max(1e-9))
                     .fold(f64::INFINITY, f64::min)
@@ -296,6 +309,7 @@ fn gather(
             group.samples += 1;
             group.own += 1;
             group.at = [0, 1].map(|i| group.at[i] + PATTERN[s][i]);
+            group.own_at = [0, 1].map(|i| group.own_at[i] + PATTERN[s][i]);
             continue;
         }
         let key = key(triangle as usize);
@@ -303,6 +317,7 @@ fn gather(
             |g: &&mut Group| key.is_some() && g.key == key && (g.depth - deep[s]).abs() <= near;
         if let Some(group) = groups.iter_mut().find(same) {
             group.samples += 1;
+            group.at = [0, 1].map(|i| group.at[i] + PATTERN[s][i]);
             continue;
         }
         groups.push(Group {
@@ -310,8 +325,9 @@ fn gather(
             key,
             depth: deep[s],
             samples: 1,
-            own: 1,
             at: PATTERN[s],
+            own: 1,
+            own_at: PATTERN[s],
         });
     }
 }

@@ -7,6 +7,7 @@ use super::Limits;
 use super::cumulative::{Cumulative, ratio};
 use super::density::{Use, density};
 use crate::bezier::BezierCurve;
+use crate::pace;
 use crate::patch_set::PatchSet;
 use crate::scalar::{Point, angle_rad};
 use crate::topology::{EdgeId, Seam, Span, Topology};
@@ -56,10 +57,11 @@ pub(super) fn runs(
     topology: &Topology,
     limits: &Limits,
 ) -> Result<Vec<Run>, SamplingError> {
+    pace::expect(topology.seams().len() as u64, "seams");
     topology
         .seams()
         .par_iter()
-        .map(|seam| run(set, topology, seam, limits))
+        .map(|seam| run(set, topology, seam, limits).inspect(|_| pace::step(1)))
         .collect()
 }
 

@@ -100,6 +100,21 @@ pub fn tessellate(
     limits: &Limits,
     wanted: impl Fn(PieceId) -> bool + Sync,
 ) -> Result<Tessellation, TessellationError> {
+    tessellate_telling(set, topology, samples, limits, wanted, |_, _| ())
+}
+
+/// As [`tessellate`]; `done` is told each piece as it is filled, in any order.
+///
+/// # Errors
+/// As [`tessellate`].
+pub(crate) fn tessellate_telling(
+    set: &PatchSet,
+    topology: &Topology,
+    samples: &Samples,
+    limits: &Limits,
+    wanted: impl Fn(PieceId) -> bool + Sync,
+    done: impl Fn(PieceId, &Filled) + Sync,
+) -> Result<Tessellation, TessellationError> {
     let filled: Vec<Result<Option<Filled>, TessellationError>> = (0..set.pieces().len())
         .into_par_iter()
         .map(|index| {
@@ -110,6 +125,7 @@ pub fn tessellate(
             let outline = samples.outline(set, topology, id);
             let piece = &set.pieces()[index];
             fill::fill(&piece.surface, &outline, limits)
+                .inspect(|filled| done(id, filled))
                 .map(Some)
                 .map_err(|stuck| {
                     let [u, v] = piece.patch_parameters(stuck.place);

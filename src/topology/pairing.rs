@@ -12,6 +12,7 @@ use super::edge_curve::EdgeCurve;
 use super::gap::{Stretch, gap};
 use super::model::Contact;
 use super::nearest::nearest;
+use crate::pace;
 
 /// The distances pairing works with, in length units.
 #[derive(Debug, Clone, Copy)]
@@ -73,6 +74,7 @@ pub(super) fn is_end(t: f64) -> bool {
 pub(super) fn contacts(edges: &[EdgeCurve], reach: Reach, limits: &Limits<'_>) -> Vec<Contact> {
     let entries: Vec<usize> = (0..edges.len()).filter(|&i| !edges[i].collapsed).collect();
     let tree = BoxTree::new(edges.iter().map(|e| e.cuboid).collect(), entries.clone());
+    pace::expect(entries.len() as u64, "edges");
     let mut found: Vec<((u64, u64), Contact)> = entries
         .par_iter()
         .with_min_len(64)
@@ -87,6 +89,7 @@ pub(super) fn contacts(edges: &[EdgeCurve], reach: Reach, limits: &Limits<'_>) -
                     });
                 }
             });
+            pace::step(1);
             list
         })
         .collect();

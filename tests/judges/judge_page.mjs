@@ -2,7 +2,8 @@
 // requests, tables that sort and filter, a viewer that draws and picks, a picture
 // where there is no WebGL, and no finding of axe-core or html-validate.
 // usage: node judge_page.mjs FRONT.html BALL.html
-// FRONT is the page of patches/front_quarter.ron, BALL that of patches/sphere.ron.
+// FRONT is the page of patches/front_quarter.ron, BALL that of patches/sphere.ron at
+// a chord of 0.02 mm, which makes more triangles than the viewer is given.
 // Packages stand in JUDGES_MODULES, the browser is CHROMIUM or /usr/bin/chromium,
 // screenshots go to the folder SCREENSHOTS, if one is named.
 import assert from "node:assert/strict";
@@ -94,6 +95,22 @@ const seen = (page) => page.evaluate(() => {
   said("every shading draws");
   await page.selectOption("#shading", "plain");
 
+  // The numbers of seams whose worst places are hidden are grey: the bumper's is
+  // seen from the front, and behind the wing from the rear.
+  const grey = async (from) => {
+    await page.selectOption("#from", from);
+    await page.waitForTimeout(600);
+    return page.locator("#labels span").evaluateAll((all) => all.filter((l) => l.classList.contains("behind")).map((l) => l.textContent));
+  };
+  assert.ok((await grey("0.62,-0.68,0.39")).includes("1"));
+  const seenFromFront = await grey("-0.62,-0.68,0.39");
+  assert.ok(!seenFromFront.includes("1") && !seenFromFront.includes("3"), seenFromFront.join());
+  await page.uncheck("#with-seams");
+  await page.waitForTimeout(150);
+  assert.equal(await page.locator("#labels span:visible").count(), 0);
+  await page.check("#with-seams");
+  said("numbers that are hidden are grey");
+
   // A seam's button takes the viewer there: its worst place is in the middle.
   await page.locator("button.show[data-seam='1']").click();
   await page.waitForTimeout(200);
@@ -145,6 +162,11 @@ const seen = (page) => page.evaluate(() => {
   // A ball: its disc has the area of the formula, and what is picked in the
   // middle has the curvature of the formula.
   const { page, faults } = await open(ball);
+  const text = await page.locator("#viewer").innerText();
+  const [whole, few] = /The mesh has (\d+) triangles; the viewer has a coarser one of (\d+)/.exec(text).slice(1).map(Number);
+  const packed = await page.evaluate(() => atob(JSON.parse(document.querySelector("#data").textContent).proved).length / 4);
+  assert.ok(whole > 100000 && few <= 100000 && packed === few, `${whole} ${few} ${packed}`);
+  said("above 100,000 triangles the viewer has a coarser mesh, and says so");
   await page.uncheck("#with-seams");
   await page.waitForTimeout(200);
   const now = await seen(page);

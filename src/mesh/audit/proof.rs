@@ -36,6 +36,7 @@ use super::facet::{Facet, Facets, to_triangle};
 use super::part::{apart, centre, height_over, is_tiny, middle, quarters};
 use super::rounding::slack;
 use crate::bezier::{BezierPatch, TriangleNet, TriangleRestriction, chord_bound};
+use crate::pace;
 use crate::patch_set::PatchSet;
 use crate::scalar::{Point, Vector};
 
@@ -117,10 +118,15 @@ impl<'a> Prover<'a> {
 
     /// The figures of every cell.
     pub(super) fn prove(&self) -> Vec<Figures> {
+        // Each is looked at twice.
+        pace::expect(2 * self.cells.len() as u64, "triangles");
         let first: Vec<First> = self
             .cells
             .par_iter()
-            .map_init(Scratch::default, |scratch, cell| self.first(cell, scratch))
+            .map_init(Scratch::default, |scratch, cell| {
+                pace::advance(1, 0);
+                self.first(cell, scratch)
+            })
             .collect();
         let attained = first
             .iter()
@@ -130,6 +136,7 @@ impl<'a> Prover<'a> {
         (0..self.cells.len())
             .into_par_iter()
             .map_init(Scratch::default, |scratch, index| {
+                pace::step(1);
                 self.figures(index, &first, attained, scratch)
             })
             .collect()

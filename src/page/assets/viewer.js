@@ -56,22 +56,17 @@ function start(data, canvas, gl) {
     panel.count = at - panel.first;
   });
 
-  // Scales of figures: round, and holding nineteen twentieths of all corners.
+  // Scales of figures: those of the pictures.
   const roundUp = (x) => {
     if (!(x > 0)) return 1;
     const power = 10 ** Math.floor(Math.log10(x));
     return power * [1, 2, 4, 5, 10].find((m) => m * power >= x * (1 - 1e-9));
   };
-  const largest = (k, h) => { const r = Math.sqrt(Math.max(h * h - k, 0)); return h < 0 ? h - r : h + r; };
-  const usual = (figure) => {
-    const sizes = new Float64Array(bend.length / 2).map((_, i) => Math.abs(figure(bend[2 * i], bend[2 * i + 1]))).sort();
-    return roundUp(sizes[Math.floor(0.95 * (sizes.length - 1))] || sizes[sizes.length - 1]);
-  };
   const symmetric = (x) => [-x, x];
   const scales = {
-    gaussian: [...symmetric(usual((k) => k)), `1/${data.unit}\u00b2`],
-    mean: [...symmetric(usual((k, h) => h)), `1/${data.unit}`],
-    principal: [...symmetric(usual(largest)), `1/${data.unit}`],
+    gaussian: [...symmetric(data.ranges[0]), `1/${data.unit}\u00b2`],
+    mean: [...symmetric(data.ranges[1]), `1/${data.unit}`],
+    principal: [...symmetric(data.ranges[2]), `1/${data.unit}`],
     deviation: [0, roundUp(proved.reduce((a, b) => Math.max(a, b), 0)), data.unit],
   };
 
@@ -230,6 +225,33 @@ function start(data, canvas, gl) {
     find("labels").append(label);
     return { label, place: add(seam.worst, middle, -1) };
   });
+  // The numbers whose places lie behind the surface turn grey; found when the view
+  // has come to rest, since all triangles are looked at.
+  let resting = 0;
+  const judge = () => {
+    const { right, up, toward } = axes(), slack = 3 * eye.pixel + 2 * data.chord;
+    const open = labels.filter(({ label }) => !label.hidden)
+      .map(({ label, place }) => ({ label, x: dot(place, right), y: dot(place, up), z: dot(place, toward) + slack }));
+    for (const spot of open) spot.label.classList.remove("behind");
+    for (const panel of panels) {
+      if (!panel.visible || open.length === 0) continue;
+      for (let t = panel.first; t < panel.first + panel.count; t++) {
+        const x = [], y = [], z = [];
+        for (let o = 9 * t; o < 9 * t + 9; o += 3) {
+          x.push(position[o] * right[0] + position[o + 1] * right[1] + position[o + 2] * right[2]);
+          y.push(position[o] * up[0] + position[o + 1] * up[1] + position[o + 2] * up[2]);
+          z.push(position[o] * toward[0] + position[o + 1] * toward[1] + position[o + 2] * toward[2]);
+        }
+        for (const spot of open) {
+          if (Math.max(...z) <= spot.z) continue;
+          const w = [0, 1, 2].map((k) => (x[(k + 1) % 3] - spot.x) * (y[(k + 2) % 3] - spot.y) - (x[(k + 2) % 3] - spot.x) * (y[(k + 1) % 3] - spot.y));
+          const sum = w[0] + w[1] + w[2];
+          if (sum === 0 || w.some((a) => a * sum < 0)) continue;
+          if (dot(w, z) / sum > spot.z) spot.label.classList.add("behind");
+        }
+      }
+    }
+  };
 
   const modes = ["plain", "panels", "reflection", "gaussian", "mean", "principal", "deviation"];
   let waiting = false;
@@ -284,10 +306,13 @@ function start(data, canvas, gl) {
       label.style.left = `${x}px`;
       label.style.top = `${y}px`;
     }
+    clearTimeout(resting);
+    resting = setTimeout(judge, 120);
     find("legend").hidden = !scale;
     if (scale) {
       const figure = (x) => (x === 0 ? "0" : Math.abs(x) < 1e-3 ? x.toExponential() : String(Number(x.toPrecision(4))));
       find("low").textContent = figure(scale[0]);
+      find("mid").textContent = figure((scale[0] + scale[1]) / 2);
       find("high").textContent = `${figure(scale[1])} ${scale[2]}`;
       const bar = find("bar").getContext("2d"), colours = rampBytes[shading === "deviation" ? 0 : 1];
       for (let i = 0; i < 256; i++) {
