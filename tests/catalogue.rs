@@ -255,8 +255,8 @@ fn messages_are_in_the_house_style() {
             continue;
         };
         seen += 1;
-        if message.contains("(os error") || message.contains(": Open is demanded") {
-            // The system has its own words, the schema its own spelling.
+        if message.contains("(os error") {
+            // The system has its own words.
             continue;
         }
         assert!(!message.ends_with('.'), "{message}: a full stop");

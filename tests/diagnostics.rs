@@ -344,7 +344,7 @@ fn faults_of_the_set_are_named() {
                 "(patches: [{good}], seams: [(between: \"wing\", and: \"wing\", demand: G1), (between: \"wing\", and: \"wing\", demand: open)])"
             ),
             "open",
-            "Open is demanded here and G1 before",
+            "open is demanded here and G1 before",
         ),
     ] {
         expect(&text, at, expected);

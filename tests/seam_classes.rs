@@ -143,7 +143,7 @@ fn the_description_names_every_field() {
     let csv = report.csv();
     let mut lines = csv.split("\r\n");
     let columns = lines.next().unwrap().split(',').count();
-    assert_eq!(columns, 34);
+    assert_eq!(columns, 37);
     assert_eq!(csv.matches("\r\n").count(), report.seams.len() + 1);
     for line in lines.filter(|line| !line.is_empty()) {
         assert!(line.split(',').count() >= columns, "{line}");

@@ -50,6 +50,10 @@ pub(super) struct AuditArguments {
     #[arg(long)]
     orient: bool,
 
+    /// The mesh was made with --close-gaps of this length
+    #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
+    close_gaps: Option<Length>,
+
     /// How the report is printed
     #[arg(long, value_enum, default_value_t)]
     format: OutputStyle,
@@ -83,6 +87,7 @@ impl AuditArguments {
                 return Ok(Outcome::Refused);
             }
         };
+        super::joining::close_gaps(&mut reading.set, self.close_gaps)?;
         if self.orient {
             super::joining::orient(&mut reading.set)?;
         }

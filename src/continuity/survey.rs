@@ -12,7 +12,9 @@ use super::seam::{CURVATURE_FLOOR, SurveyedSeam, survey};
 use super::slit::{Slit, slits};
 use crate::pace;
 use crate::patch_set::{Demand, PatchId, PatchSet};
-use crate::topology::{Contact, EdgeId, Orientation, Overlap, Sliver, Topology};
+use crate::topology::{
+    Contact, EdgeId, Orientation, Overlap, Sliver, Topology, demand_between,
+};
 
 /// All seams of a set, worst first, and its open boundary.
 #[derive(Debug, Clone)]
@@ -103,20 +105,26 @@ fn worst_first(set: &PatchSet, a: &SurveyedSeam, b: &SurveyedSeam) -> Ordering {
 
 /// Whether edges that are not joined deserve a line: unless demanded open, one
 /// of them must be open there. Two sides of a narrow patch between are none of
-/// each other's business.
+/// each other's business, nor are a sliver's far side and the sliver's
+/// neighbour.
 fn counts(set: &PatchSet, topology: &Topology, contact: &Contact) -> bool {
-    if crate::topology::demand_between(set, contact.edges[0], contact.edges[1])
-        == Some(Demand::Open)
-    {
+    if demand_between(set, contact.edges[0], contact.edges[1]) == Some(Demand::Open) {
         return true;
     }
-    let free = |edge: EdgeId, range: [f64; 2]| {
+    let seams = |edge: EdgeId, range: [f64; 2]| {
         let (low, high) = (range[0].min(range[1]), range[0].max(range[1]));
         topology.spans()[topology.edges()[edge.index()].spans.clone()]
             .iter()
-            .filter(|span| span.t[0].midpoint(span.t[1]) > low)
-            .filter(|span| span.t[0].midpoint(span.t[1]) < high)
-            .any(|span| topology.seams()[span.seam.index()].spans.len() == 1)
+            .filter(move |span| span.t[0].midpoint(span.t[1]) > low)
+            .filter(move |span| span.t[0].midpoint(span.t[1]) < high)
+            .map(|span| &topology.seams()[span.seam.index()].spans)
     };
-    free(contact.edges[0], contact.first) || free(contact.edges[1], contact.second)
+    let [a, b] = contact.edges;
+    let free = |edge, range| seams(edge, range).any(|spans| spans.len() == 1);
+    let beside = |edge, range, other: EdgeId| {
+        let mut spans = seams(edge, range).flatten();
+        spans.any(|s| topology.spans()[s.index()].edge.piece() == other.piece())
+    };
+    (free(a, contact.first) && !beside(b, contact.second, a))
+        || (free(b, contact.second) && !beside(a, contact.first, b))
 }

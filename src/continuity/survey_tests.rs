@@ -143,6 +143,25 @@ fn what_lies_beyond_a_sliver_is_no_near_miss() {
     let found = survey(&set);
     assert_eq!(found.seams.len(), 2);
     assert_eq!(found.findings(), 0);
+    // A sliver at the rim: its far side is open, and near the edge within.
+    let mut set = empty();
+    add(&mut set, "a", &rectangle([0.0, 10.0], [0.0, 5.0]));
+    add(&mut set, "b", &rectangle([10.0, 10.05], [0.0, 5.0]));
+    let found = survey(&set);
+    assert_eq!(found.seams.len(), 1);
+    assert_eq!(found.findings(), 0);
+    // A fin that stops short of a seam is a near miss of both its edges.
+    let mut set = empty();
+    add(&mut set, "a", &rectangle([0.0, 10.0], [0.0, 5.0]));
+    add(&mut set, "b", &rectangle([10.0, 20.0], [0.0, 5.0]));
+    add(
+        &mut set,
+        "fin",
+        &net((1, 1), |u, v| (10.0, 5.0 * v, 0.05 + 8.0 * u)),
+    );
+    let found = survey(&set);
+    let gaps = found.seams.iter().filter(|s| s.finding == Finding::Gap);
+    assert_eq!(gaps.count(), 2);
 }
 
 /// A gap that grows from the corner is a near miss as long as it is within the

@@ -9,7 +9,7 @@ use super::edges::{EdgeTable, NO_SIDE, is_degenerate, next_side};
 use crate::scalar::{Point, Vector};
 
 /// Figures of a whole mesh, in its own unit.
-#[derive(Debug, Clone, Copy, PartialEq)]
+#[derive(Debug, Clone, PartialEq)]
 pub struct Measures {
     /// Area of all triangles.
     pub area: f64,
@@ -24,6 +24,8 @@ pub struct Measures {
     /// Closed chains of open edges. Where several meet in one point they are
     /// told apart by the triangles between them.
     pub open_loops: usize,
+    /// Their lengths along the mesh, the longest first.
+    pub open_lengths: Vec<f64>,
     /// Edges with more than two triangles, or with two that run them the same
     /// way.
     pub non_manifold_edges: usize,
@@ -73,13 +75,21 @@ impl Measures {
         for &p in triangles.iter().filter(|t| !is_degenerate(**t)).flatten() {
             seen[p as usize] = true;
         }
+        let length = |side: u32| {
+            let corners = triangles[side as usize / 3];
+            let from = side as usize % 3;
+            let ends = [from, (from + 1) % 3].map(|k| &mesh.points[corners[k] as usize]);
+            (ends[1] - ends[0]).norm()
+        };
+        let open_lengths = loops(&open, &table.twins(&triangles), length);
         let count = |n: usize| i64::try_from(n).expect("counts of things in memory fit");
         Self {
             area: area(mesh),
             volume: closed.then(|| volume(mesh)),
             closed,
             open_edges,
-            open_loops: loops(&open, &table.twins(&triangles)),
+            open_loops: open_lengths.len(),
+            open_lengths,
             non_manifold_edges,
             euler: count(seen.iter().filter(|seen| **seen).count()) - edges
                 + count(triangles.len() - degenerate),
@@ -142,9 +152,10 @@ fn sum(terms: impl Iterator<Item = f64>) -> f64 {
     total + lost
 }
 
-/// Counts the chains of open sides. The side that follows another one is found
-/// by turning about their common point, from triangle to triangle.
-fn loops(open: &[bool], twins: &[u32]) -> usize {
+/// The lengths of the chains of open sides, the longest first. The side that
+/// follows another one is found by turning about their common point, from
+/// triangle to triangle.
+fn loops(open: &[bool], twins: &[u32], length: impl Fn(u32) -> f64) -> Vec<f64> {
     let sides = || (0_u32..).zip(open).filter(|(_, open)| **open);
     let follower = |side: u32| {
         let mut next = next_side(side);
@@ -163,7 +174,7 @@ fn loops(open: &[bool], twins: &[u32]) -> usize {
         }
     }
     let mut counted = vec![false; open.len()];
-    let mut chains = 0;
+    let mut lengths = Vec::new();
     // Chains with a beginning first; what is left then is closed.
     let starts = sides()
         .filter(|(side, _)| begins[*side as usize])
@@ -172,14 +183,17 @@ fn loops(open: &[bool], twins: &[u32]) -> usize {
         if counted[start as usize] {
             continue;
         }
-        chains += 1;
+        let mut sides = Vec::new();
         let mut side = start;
         while side != NO_SIDE && !counted[side as usize] {
             counted[side as usize] = true;
+            sides.push(side);
             side = following[side as usize];
         }
+        lengths.push(sum(sides.into_iter().map(&length)));
     }
-    chains
+    lengths.sort_by(|a, b| b.total_cmp(a));
+    lengths
 }
 
 /// Disjoint sets of triangles, by path halving.

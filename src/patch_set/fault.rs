@@ -70,7 +70,7 @@ pub enum SetFault {
     #[error("both ends are the same edge; a seam is between two edges")]
     SelfSeam,
     /// Two demands for the same pair.
-    #[error("{now:?} is demanded here and {before:?} before; a seam has one demand")]
+    #[error("{now} is demanded here and {before} before; a seam has one demand")]
     Contradiction {
         /// The earlier demand.
         before: Demand,

@@ -1,6 +1,7 @@
 //! The resolved model: what a file means, once it has been found valid.
 
 use std::collections::BTreeMap;
+use std::fmt;
 use std::ops::Range;
 
 use serde::{Deserialize, Serialize};
@@ -102,6 +103,19 @@ pub enum Demand {
     /// The edges are not to be joined.
     #[serde(rename = "open")]
     Open,
+}
+
+/// As a file says it.
+impl fmt::Display for Demand {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.pad(match self {
+            Self::G0 => "G0",
+            Self::G1 => "G1",
+            Self::G2 => "G2",
+            Self::Crease => "crease",
+            Self::Open => "open",
+        })
+    }
 }
 
 /// What one end of a stated demand speaks of, the narrowest first.

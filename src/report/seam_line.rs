@@ -3,7 +3,7 @@
 use serde::Serialize;
 
 use crate::continuity::{End, Figure, Place, SurveyedSeam};
-use crate::patch_set::{Demand, DemandSource, Limit, PatchSet};
+use crate::patch_set::{Demand, DemandSource, Limit, PatchSet, Source};
 
 /// A patch edge: the patch's name, and the side (`U0`, `U1`, `V0`, `V1`) or
 /// the line inside the patch (`u=0.5`).
@@ -12,6 +12,9 @@ pub type EdgeName = (String, String);
 /// One seam.
 #[derive(Debug, Clone, Serialize)]
 pub struct SeamLine {
+    /// Its place in the list of the whole set, worst first, from 1: what marks
+    /// it in pictures.
+    pub number: usize,
     /// The edge of lesser name.
     pub between: EdgeName,
     /// The other edge.
@@ -42,6 +45,9 @@ pub struct SeamLine {
     pub gap_limit: LimitLine,
     /// What the angle is held against, if the demand is G1 or G2.
     pub angle_limit: LimitLine,
+    /// What the step of curvature is held against, 1/mm, if the demand is G2;
+    /// null where no limit is set.
+    pub curvature_limit: Option<LimitLine>,
     /// `G0`, `G1`, `G2`, `crease` or `open`.
     pub demand: Demand,
     /// `stated` in the file by name, by `pattern`, or `inferred` from the angle.
@@ -59,7 +65,7 @@ pub struct SeamLine {
 /// A tolerance and where it comes from.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct LimitLine {
-    /// Length in the set's unit, or degrees.
+    /// Length in the set's unit, degrees, or 1/mm.
     pub value: f64,
     /// `default`, `set`, or a class and what it was stated of.
     pub source: String,
@@ -105,7 +111,7 @@ pub(super) fn name(set: &PatchSet, end: &End) -> EdgeName {
 }
 
 impl SeamLine {
-    pub(super) fn new(set: &PatchSet, seam: &SurveyedSeam) -> Self {
+    pub(super) fn new(set: &PatchSet, number: usize, seam: &SurveyedSeam) -> Self {
         let limit = |limit: &Limit| LimitLine {
             value: limit.value,
             source: limit.source.label(set),
@@ -115,7 +121,9 @@ impl SeamLine {
             to: PlaceLine::new(&stretch.to),
             length: stretch.length,
         });
+        let curvature = set.tolerances().curvature_per_mm;
         Self {
+            number,
             between: name(set, &seam.between),
             and: name(set, &seam.and),
             length: seam.length,
@@ -130,6 +138,10 @@ impl SeamLine {
             by_determinant: seam.by_determinant,
             gap_limit: limit(&seam.limits.gap),
             angle_limit: limit(&seam.limits.tangent_deg),
+            curvature_limit: curvature.map(|value| LimitLine {
+                value: value.get(),
+                source: Source::Set.label(set),
+            }),
             demand: seam.demand,
             demand_source: match seam.demand_source {
                 DemandSource::Stated => "stated",

@@ -82,6 +82,8 @@ pub struct SeamSummary {
     pub normals_opposed: usize,
     /// Seams of three edges or more.
     pub non_manifold: usize,
+    /// Near misses, slits among them.
+    pub near_misses: usize,
     /// Near misses that widen beyond the search distance.
     pub slits: usize,
     /// Pairs of patches that lie on one another.
@@ -110,6 +112,8 @@ pub struct NearMissLine {
     pub and: EdgeName,
     /// The gap attained.
     pub gap: f64,
+    /// What it is held against.
+    pub gap_limit: f64,
     /// Over this length.
     pub length: f64,
     /// Whether the edges part further than the search distance beyond it.
@@ -173,11 +177,11 @@ impl SeamReport {
         };
         let name = |end: &End| super::seam_line::name(set, end);
         let names = |ends: &[End]| ends.iter().map(name).collect::<Vec<_>>();
-        let seams: Vec<&SurveyedSeam> = survey
-            .seams
-            .iter()
-            .filter(|s| counts(&s.between) || counts(&s.and))
+        let numbered: Vec<(usize, &SurveyedSeam)> = (1..)
+            .zip(&survey.seams)
+            .filter(|(_, s)| counts(&s.between) || counts(&s.and))
             .collect();
+        let seams: Vec<&SurveyedSeam> = numbered.iter().map(|(_, seam)| *seam).collect();
         let non_manifold: Vec<CrowdLine> = survey
             .crowds
             .iter()
@@ -206,6 +210,13 @@ impl SeamReport {
                 between: name(&s.between),
                 and: name(&s.and),
                 gap: s.gap.bracket.attained,
+                gap_limit: set
+                    .seam_limits(
+                        (s.between.0, s.between.1.side()),
+                        (s.and.0, s.and.1.side()),
+                    )
+                    .gap
+                    .value,
                 length: s.length,
                 widens: true,
                 at: PlaceLine::new(&s.gap.at),
@@ -233,6 +244,12 @@ impl SeamReport {
                 width: s.width,
             })
             .collect();
+        let near_misses: Vec<NearMissLine> = seams
+            .iter()
+            .filter(|s| s.finding == Finding::Gap && !s.joined)
+            .map(|s| NearMissLine::of(set, s))
+            .chain(slits)
+            .collect();
         let components = || survey.orientation.components.iter();
         let tolerances = set.tolerances();
         Self {
@@ -256,17 +273,13 @@ impl SeamReport {
                 inferred: having(&|s| s.demand_source == DemandSource::Inferred),
                 normals_opposed: having(&|s| !s.normals_agree),
                 non_manifold: non_manifold.len(),
-                slits: slits.len(),
+                near_misses: near_misses.len(),
+                slits: near_misses.iter().filter(|n| n.widens).count(),
                 overlaps: overlaps.len(),
                 open_loops: open_loops.len(),
                 open_length: open_loops.iter().map(|l| l.length).sum(),
             },
-            near_misses: seams
-                .iter()
-                .filter(|s| s.finding == Finding::Gap && !s.joined)
-                .map(|s| NearMissLine::of(set, s))
-                .chain(slits)
-                .collect(),
+            near_misses,
             bridged: seams
                 .iter()
                 .filter(|s| s.bridged)
@@ -285,7 +298,10 @@ impl SeamReport {
                 turned_over: survey.turned_over.iter().copied().map(patch).collect(),
             },
             panel_pairs: pairs(set, &seams),
-            seams: seams.iter().map(|s| SeamLine::new(set, s)).collect(),
+            seams: numbered
+                .iter()
+                .map(|(number, seam)| SeamLine::new(set, *number, seam))
+                .collect(),
             non_manifold,
             open_loops,
             caution: CAUTION,
@@ -306,6 +322,7 @@ impl NearMissLine {
             between: super::seam_line::name(set, &seam.between),
             and: super::seam_line::name(set, &seam.and),
             gap: seam.gap.bracket.attained,
+            gap_limit: seam.limits.gap.value,
             length: seam.length,
             widens: false,
             at: PlaceLine::new(&seam.gap.at),

@@ -6,11 +6,11 @@ use super::seam_line::{FigureLine, SeamLine};
 use super::seams::SeamReport;
 
 /// The columns; lengths and coordinates are in the set's unit.
-const HEAD: &str = "between_patch,between_edge,and_patch,and_edge,verdict,finding,demand,\
+const HEAD: &str = "number,between_patch,between_edge,and_patch,and_edge,verdict,finding,demand,\
 demand_source,severity,length,failing_length,joined,bridged,normals_agree,gap_attained,gap_proved,\
 gap_limit,gap_limit_source,angle_attained_deg,angle_proved_deg,angle_limit_deg,angle_limit_source,\
-curvature_attained_per_mm,curvature_proved_per_mm,between_curvature_per_mm,and_curvature_per_mm,\
-curvature_ratio,x,y,z,between_u,between_v,and_u,and_v\r\n";
+curvature_attained_per_mm,curvature_proved_per_mm,curvature_limit_per_mm,\
+curvature_limit_source,between_curvature_per_mm,and_curvature_per_mm,curvature_ratio,x,y,z,between_u,between_v,and_u,and_v\r\n";
 
 impl SeamReport {
     /// One line a seam, with a head; what is not known is left empty. The place
@@ -34,7 +34,9 @@ fn cells(seam: &SeamLine) -> Vec<String> {
     let demand = serde_json::to_value(seam.demand).unwrap_or_default();
     let at = seam.deciding().at;
     let both = seam.curvatures_per_mm;
+    let limit = seam.curvature_limit.as_ref();
     let mut cells: Vec<String> = vec![
+        seam.number.to_string(),
         quoted(&seam.between.0),
         quoted(&seam.between.1),
         quoted(&seam.and.0),
@@ -63,6 +65,8 @@ fn cells(seam: &SeamLine) -> Vec<String> {
         quoted(&seam.angle_limit.source),
         attained(seam.curvature_per_mm.as_ref()),
         proved(seam.curvature_per_mm.as_ref()),
+        number(limit.map(|l| l.value)),
+        limit.map_or(String::new(), |l| quoted(&l.source)),
         number(both.map(|k| k[0])),
         number(both.map(|k| k[1])),
         number(seam.curvature_ratio),

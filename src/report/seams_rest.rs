@@ -33,7 +33,7 @@ impl SeamReport {
                     out,
                     "{}{more}, no seam at the gap tolerance {}",
                     apart(miss),
-                    self.tolerances.gap
+                    miss.gap_limit
                 )?;
             }
         }

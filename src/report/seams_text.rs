@@ -29,11 +29,13 @@ impl SeamReport {
         };
         writeln!(
             out,
-            "{name}{}, {}{}{}",
+            "{name}{}, {}{}{}{}{}",
             many(sum.seams, "seam", "seams"),
             many(sum.faults, "fault", "faults"),
             some(sum.undecided, ", ", " undecided"),
             some(sum.non_manifold, ", ", " of three edges or more"),
+            several(sum.near_misses, "near miss", "near misses"),
+            several(sum.overlaps, "overlap", "overlaps"),
         )?;
         let t = &self.tolerances;
         write!(
@@ -47,7 +49,7 @@ impl SeamReport {
         }
         writeln!(
             out,
-            "figures: attained value, then the proved upper bound in brackets; a demand in brackets follows from the angle"
+            "figures: attained value, then the proved upper bound in brackets; a demand in brackets follows from the angle; pictures mark seams by number"
         )?;
         if !self.seams.is_empty() {
             writeln!(out)?;
@@ -91,12 +93,10 @@ impl SeamReport {
         writeln!(out, "\n{}", self.caution)
     }
 
-    fn cells(&self, seam: &SeamLine) -> [String; 9] {
-        let demand = serde_json::to_value(seam.demand)
-            .ok()
-            .and_then(|v| v.as_str().map(str::to_owned))
-            .unwrap_or_default();
+    fn cells(&self, seam: &SeamLine) -> [String; 10] {
+        let demand = seam.demand.to_string();
         [
+            seam.number.to_string(),
             seam.verdict.clone(),
             seam.finding.clone(),
             // What the file does not state stands in brackets.
@@ -108,8 +108,12 @@ impl SeamReport {
             bracket(&seam.gap),
             seam.angle_deg.as_ref().map_or_else(dash, bracket),
             seam.curvature_per_mm.as_ref().map_or_else(dash, bracket),
-            length(seam.length),
-            held(seam, self.unit, self.tolerances.curvature_per_mm),
+            if seam.finding == "apart" {
+                dash()
+            } else {
+                length(seam.length)
+            },
+            held(seam, self.unit),
             format!("{} | {}", edge(&seam.between), edge(&seam.and)),
         ]
     }
@@ -145,6 +149,7 @@ impl SeamReport {
 
     fn write_table(&self, out: &mut String) -> std::fmt::Result {
         let head = [
+            "no".to_owned(),
             "verdict".to_owned(),
             "finding".to_owned(),
             "demand".to_owned(),
@@ -155,19 +160,19 @@ impl SeamReport {
             "held against".to_owned(),
             "seam".to_owned(),
         ];
-        let rows: Vec<[String; 9]> = self.seams.iter().map(|s| self.cells(s)).collect();
+        let rows: Vec<[String; 10]> = self.seams.iter().map(|s| self.cells(s)).collect();
         let mut widths = head.each_ref().map(|h| h.chars().count());
         for row in &rows {
             for (width, cell) in widths.iter_mut().zip(row) {
                 *width = (*width).max(cell.chars().count());
             }
         }
-        let mut line = |cells: &[String; 9]| -> std::fmt::Result {
+        let line = |out: &mut String, cells: &[String; 10]| -> std::fmt::Result {
             let mut text = String::new();
             for (k, (cell, width)) in cells.iter().zip(widths).enumerate() {
                 // Figures end in one column, words begin in one.
-                let width = if k == 8 { 0 } else { width };
-                if (3..7).contains(&k) {
+                let width = if k == 9 { 0 } else { width };
+                if k == 0 || (4..8).contains(&k) {
                     write!(text, "{cell:>width$}  ")?;
                 } else {
                     write!(text, "{cell:<width$}  ")?;
@@ -175,24 +180,23 @@ impl SeamReport {
             }
             writeln!(out, "{}", text.trim_end())
         };
-        line(&head)?;
+        line(out, &head)?;
+        let indent = " ".repeat(widths[0] + 2);
         for (seam, row) in self.seams.iter().zip(&rows) {
-            line(row)?;
+            line(out, row)?;
             if seam.verdict != "met" {
                 let place = seam.deciding();
                 let [x, y, z] = place.at.point.map(length);
-                let mut cells = [const { String::new() }; 9];
-                cells[8] = format!(
-                    "  at ({x}, {y}, {z}): {} {}, {} {}",
+                writeln!(
+                    out,
+                    "{indent}at ({x}, {y}, {z}): {} {}, {} {}",
                     seam.between.0,
                     parameters(place.at.between),
                     seam.and.0,
                     parameters(place.at.and)
-                );
-                line(&cells)?;
+                )?;
                 for stretch in &seam.failing {
-                    cells[8] = failing(stretch, self.unit);
-                    line(&cells)?;
+                    writeln!(out, "{indent}{}", failing(stretch, self.unit))?;
                 }
             }
         }
@@ -201,7 +205,7 @@ impl SeamReport {
 }
 
 /// What the figures are held against, and where that comes from.
-fn held(seam: &SeamLine, unit: &str, curvature: Option<f64>) -> String {
+fn held(seam: &SeamLine, unit: &str) -> String {
     let (gap, angle) = (&seam.gap_limit, &seam.angle_limit);
     let mut text = match seam.demand {
         Demand::Open => return dash(),
@@ -214,8 +218,8 @@ fn held(seam: &SeamLine, unit: &str, curvature: Option<f64>) -> String {
             gap.value, gap.source, angle.value, angle.source
         ),
     };
-    if let (Demand::G2, Some(limit)) = (seam.demand, curvature) {
-        text += &format!(", {limit} 1/mm (set)");
+    if let (Demand::G2, Some(limit)) = (seam.demand, &seam.curvature_limit) {
+        text += &format!(", {} 1/mm ({})", limit.value, limit.source);
     }
     text
 }
@@ -226,7 +230,7 @@ fn failing(stretch: &FailingLine, unit: &str) -> String {
         format!("({x}, {y}, {z})")
     };
     format!(
-        "  fails from {} to {}, {} {unit}",
+        "fails from {} to {}, {} {unit}",
         place(stretch.from.point),
         place(stretch.to.point),
         length(stretch.length)
@@ -249,7 +253,7 @@ pub(super) fn figure(value: f64) -> String {
     if value.abs() < 5e-13 {
         "0".to_owned()
     } else if value.abs() < 1e-3 {
-        format!("{value:.1e}")
+        format!("{value:.2e}")
     } else {
         let digits = if value.abs() < 1.0 {
             4
@@ -269,7 +273,7 @@ pub(super) fn upward(value: f64) -> String {
     }
     super::upward(value, |shown| {
         if shown < 1e-3 {
-            format!("{shown:.1e}")
+            format!("{shown:.2e}")
         } else {
             figure(shown)
         }
@@ -305,6 +309,10 @@ fn trail(chain: &LoopLine) -> String {
 
 pub(super) fn many(count: usize, one: &str, more: &str) -> String {
     format!("{count} {}", if count == 1 { one } else { more })
+}
+
+fn several(count: usize, one: &str, more: &str) -> String {
+    some(count, ", ", &format!(" {}", if count == 1 { one } else { more }))
 }
 
 fn some(count: usize, before: &str, after: &str) -> String {

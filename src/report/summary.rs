@@ -7,9 +7,9 @@ use serde::Serialize;
 use super::CAUTION;
 use crate::format::Written;
 use crate::mesh::{Measures, Meshed, Storage, Strips};
-use crate::patch_set::{PatchId, PatchSet};
+use crate::patch_set::{Demand, PatchId, PatchSet};
 use crate::sampling::Limits;
-use crate::topology::{Contact, EdgeId, SpanId, Topology};
+use crate::topology::{Contact, EdgeId, Topology, demand_between};
 
 /// Version of the JSON fields of [`Summary`]; raised when one changes meaning
 /// or goes away.
@@ -69,8 +69,7 @@ pub struct Summary {
     pub closed: bool,
     /// Whether the mesh is watertight, and why or why not, in words.
     pub watertight: String,
-    /// Open chains of edges on the surfaces of the whole set, lengths in the
-    /// set's unit (quadrature), the longest first.
+    /// Lengths of the open chains along the mesh, the longest first.
     pub open_loop_lengths: Vec<f64>,
     /// Seams whose gap is beyond the tolerance and closed even so, because that
     /// was asked for: patches, sides and the proved gap.
@@ -241,7 +240,7 @@ impl Summary {
             touching: measures.touching,
             closed: measures.closed,
             watertight: watertight(&measures, made, set),
-            open_loop_lengths: loop_lengths(set, &made.topology),
+            open_loop_lengths: measures.open_lengths.clone(),
             bridged: bridged(set, &made.topology),
             turned_over: Vec::new(),
             area: measures.area,
@@ -273,19 +272,6 @@ impl Summary {
     }
 }
 
-fn loop_lengths(set: &PatchSet, topology: &Topology) -> Vec<f64> {
-    let length = |span: &SpanId| {
-        let span = &topology.spans()[span.index()];
-        let surface = &set.pieces()[span.edge.piece().index()].surface;
-        let edge = surface.edge(span.edge.side());
-        edge.restrict(span.t[0], span.t[1]).length()
-    };
-    let chains = topology.open_loops().iter();
-    let mut lengths: Vec<f64> = chains.map(|chain| chain.iter().map(length).sum()).collect();
-    lengths.sort_by(|a, b| b.total_cmp(a));
-    lengths
-}
-
 fn bridged(set: &PatchSet, topology: &Topology) -> Vec<BridgedLine> {
     let name = |edge: EdgeId| {
         let patch = set.patch_of(edge.piece());
@@ -304,10 +290,17 @@ fn watertight(measures: &Measures, made: &Meshed, set: &PatchSet) -> String {
     if measures.closed {
         return "yes: every edge is run once in each direction".to_owned();
     }
+    let loops = measures.open_loops;
+    let all: f64 = measures.open_lengths.iter().sum();
+    let plural = if loops == 1 { "loop" } else { "loops" };
+    let along = format!(
+        "{loops} open {plural}, {all:.1} {} in all",
+        set.unit().symbol()
+    );
     if measures.non_manifold_edges > 0 {
         let count = measures.non_manifold_edges;
         return format!(
-            "no: {count} mesh edges have more than two triangles or two that run the same way (panels may face different ways)"
+            "no: {count} mesh edges have more than two triangles or two that run the same way (panels may face different ways); {along}"
         );
     }
     // Several pieces of one patch edge are one edge to the reader.
@@ -317,22 +310,13 @@ fn watertight(measures: &Measures, made: &Meshed, set: &PatchSet) -> String {
             edge.side().index(),
         )
     };
-    let contacts = made.topology.contacts().iter().filter(|c| !c.joined);
+    let meshed: BTreeSet<&str> = made.mesh.parts.iter().map(|p| p.name.as_str()).collect();
+    let contacts = made.topology.contacts().iter().filter(|c| {
+        let meant = demand_between(set, c.edges[0], c.edges[1]) == Some(Demand::Open);
+        !c.joined && !meant && c.edges.iter().any(|e| meshed.contains(name(*e).0))
+    });
     let pairs: BTreeSet<_> = contacts.map(|c| c.edges.map(name)).collect();
     let apart = pairs.len();
-    let loops = measures.open_loops;
-    let lengths = loop_lengths(set, &made.topology);
-    let all: f64 = lengths.iter().sum();
-    let plural = if loops == 1 { "loop" } else { "loops" };
-    // Lengths are of the whole set: of a part of it only the number is told.
-    let along = &if lengths.len() == loops {
-        format!(
-            "{loops} open {plural}, {all:.1} {} in all",
-            set.unit().symbol()
-        )
-    } else {
-        format!("{loops} open {plural}")
-    };
     match apart {
         0 => format!("no: {along}, where edges have no neighbour; all joined seams are crack-free"),
         1 => format!(

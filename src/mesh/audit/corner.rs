@@ -4,7 +4,9 @@
 //! may part them: that of evaluation, `2 (m + n + 2)` ulp of the largest
 //! coordinate, and that of (u, v), a few ulp of their range times the speed of
 //! the surface. On the border of a piece a vertex is shared with its
-//! neighbours, which may lie apart by the gap tolerance.
+//! neighbours, which may lie apart by the gap tolerance, or by more where a
+//! tolerance class or a length up to which gaps are closed allows for it: never
+//! by more than the widest gap the set's edges are joined over.
 
 use rayon::prelude::*;
 
@@ -13,6 +15,7 @@ use super::evidence::Evidence;
 use super::finding::{Fault, Finding};
 use super::rounding::scale;
 use crate::patch_set::{PatchSet, PieceId};
+use crate::topology::Topology;
 
 /// Whether a place is on the border of the unit square.
 pub(super) fn on_border([u, v]: [f64; 2]) -> bool {
@@ -22,11 +25,15 @@ pub(super) fn on_border([u, v]: [f64; 2]) -> bool {
 /// Finds the vertices that are off their patches, each once a patch.
 pub(super) fn check(
     set: &PatchSet,
+    topology: &Topology,
     evidence: &Evidence,
     cells: &[Cell],
     findings: &mut Vec<Finding>,
 ) {
-    let gap = set.tolerances().gap.get();
+    let joined = topology.contacts().iter().filter(|c| c.joined);
+    let gap = joined
+        .map(|contact| contact.gap.proved)
+        .fold(set.tolerances().gap.get(), f64::max);
     let scales: Vec<f64> = set
         .pieces()
         .par_iter()

@@ -6,7 +6,7 @@
 //! shared. The bounds are other ones, too. What is checked:
 //!
 //! - every corner lies on its patch at its (u, v): within rounding, on borders
-//!   within the gap tolerance (`corner`);
+//!   within the gap over which edges are joined (`corner`);
 //! - the triangles of each patch cover its parameters exactly once (`cover`);
 //! - surface and mesh are within the chord tolerance of each other, both ways
 //!   (`proof`, over the flat triangles of `facet`);
@@ -131,7 +131,7 @@ impl Audit {
         for cell in &cells {
             present[cell.piece] = true;
         }
-        corner::check(set, evidence, &cells, &mut findings);
+        corner::check(set, &topology, evidence, &cells, &mut findings);
         closed::check(set, &topology, evidence, &cells, &present, &mut findings);
         let fills = covered(set, &topology, &cells, &present, &mut findings);
         let faces = cells.len();
