@@ -28,6 +28,8 @@ pub mod topology;
 
 pub mod continuity;
 
+pub mod revision;
+
 pub mod sampling;
 
 pub mod tessellation;

@@ -113,7 +113,10 @@ fn gaps_are_closed_when_asked_for_and_told_of() {
     };
     let near = |found: &[f64], expected: &[f64]| {
         found.len() == expected.len()
-            && found.iter().zip(expected).all(|(a, b)| (a - b).abs() < 1e-9)
+            && found
+                .iter()
+                .zip(expected)
+                .all(|(a, b)| (a - b).abs() < 1e-9)
     };
     // Round a plate of 100 x 50 and one of 80 x 50.
     assert!(near(&lengths(&open), &[300.0, 260.0]), "{open}");

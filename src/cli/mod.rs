@@ -8,6 +8,7 @@ use clap::{Parser, Subcommand};
 mod audit;
 mod budget;
 mod check;
+mod compare;
 mod completions;
 mod demo;
 mod disk;
@@ -35,6 +36,7 @@ Examples:
   chordwise check front.ron                        what is wrong with it
   chordwise tessellate front.ron -o front.glb      a proved mesh
   chordwise seams front.ron                        how its patches meet
+  chordwise compare old.ron new.ron                what changed
   chordwise draw front.ron -o front.png            a picture of it
   chordwise report front.ron -o front.html         a page to sign off";
 
@@ -70,6 +72,7 @@ enum Command {
     Draw(draw::DrawArguments),
     Report(report::ReportArguments),
     Check(check::CheckArguments),
+    Compare(compare::CompareArguments),
     Demo(demo::DemoArguments),
     Completions(completions::CompletionsArguments),
     Man(man::ManArguments),
@@ -81,6 +84,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
         Ok(arguments) => match arguments.command {
             Command::Audit(arguments) => arguments.run(),
             Command::Check(arguments) => arguments.run(),
+            Command::Compare(arguments) => arguments.run(),
             Command::Completions(arguments) => arguments.run(),
             Command::Demo(arguments) => arguments.run(),
             Command::Draw(arguments) => arguments.run(),

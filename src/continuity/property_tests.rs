@@ -6,17 +6,18 @@ use super::curvature_tests::raised;
 use super::{Figure, Survey, SurveyedSeam};
 use crate::bezier::BezierPatch;
 use crate::patch_set::PatchSet;
-use crate::scalar::{Bracket, Point, Tolerance};
+use crate::scalar::{Bracket, Point, Tolerance, Vector};
 use crate::topology::Topology;
 use crate::topology::test_sets::{add_grid, empty, net};
 
-/// Two sheets beside x = 0, broken by an angle and a step along their seam.
-fn sheets(tilt: f64, bend: f64) -> [BezierPatch; 2] {
+/// Two sheets beside x = 0, broken by an angle and a step along their seam, and
+/// moved apart.
+fn sheets(tilt: f64, bend: f64, apart: f64) -> [BezierPatch; 2] {
     let edge = |v: f64| 6.0 * (2.5 * v).sin();
     let left = net((3, 3), |u, v| (-40.0 * (1.0 - u), 60.0 * v, edge(v)));
     let right = net((3, 3), |u, v| {
         let lift = tilt * u * v + if u > 0.5 { bend * (1.0 + v) * u } else { 0.0 };
-        (40.0 * u, 60.0 * v, edge(v) + lift)
+        (apart + 40.0 * u, 60.0 * v, edge(v) + lift)
     });
     [left, right]
 }
@@ -88,18 +89,21 @@ proptest! {
         bend in prop_oneof![Just(0.0), 0.01..4.0_f64],
         dress in (0_u8..16, 0_u8..16),
         cuts in (0.2..0.8_f64, 0.2..0.8_f64),
-        turn in -3.0..3.0_f64,
+        apart in prop_oneof![Just(0.0), 0.015..0.09_f64],
+        turns in (-3.0..3.0_f64, -3.0..3.0_f64, -3.0..3.0_f64),
         shift in -500.0..500.0_f64,
         scale in 0.2..5.0_f64,
         swapped in any::<bool>(),
     ) {
-        let plain = sheets(tilt, bend);
-        let (sin, cos) = turn.sin_cos();
-        let moved = |p: Point| Point::new(
-            scale * (cos * p.x - sin * p.z) + shift,
-            scale * p.y - shift,
-            scale * (sin * p.x + cos * p.z),
-        );
+        // Corners within the gap of one another are one place, and how far they
+        // stand apart along the edge counts as gap; stretches shorter than the
+        // search distance are none.
+        prop_assume!((cuts.0 - cuts.1).abs() > 3e-3 && (cuts.0 + cuts.1 - 1.0).abs() > 3e-3);
+        let plain = sheets(tilt, bend, apart);
+        let turned = nalgebra::Rotation3::from_euler_angles(turns.0, turns.1, turns.2);
+        let moved = |p: Point| {
+            turned * Point::from(p.coords * scale) + Vector::new(shift, -shift, 0.3 * shift)
+        };
         let other = [dressed(&plain[0], dress.0), dressed(&plain[1], dress.1)]
             .map(|p| p.map(moved));
         let p = seam(&plain, [0.5, 0.5], 1.0, false);
@@ -110,8 +114,12 @@ proptest! {
         prop_assert_eq!(p.finding, q.finding);
         prop_assert_eq!(p.verdict, q.verdict);
         prop_assert_eq!(p.demand, q.demand);
-        prop_assert!((p.length * scale - q.length).abs() <= 1e-5 * q.length);
-        prop_assert!(p.gap.bracket.proved <= 1e-7 && q.gap.bracket.proved <= 1e-7 * scale);
+        prop_assert!((p.length * scale - q.length).abs() <= 1e-5 * q.length, "{} {}", p.length * scale, q.length);
+        prop_assert!(
+            one_value(Some(p.gap), Some(q.gap), 1.0 / scale, 1e-7),
+            "{:?} {:?}", p.gap, q.gap
+        );
+        prop_assert_eq!(p.gap.bracket.proved <= 1e-7, apart <= 0.0);
         prop_assert!(one_value(p.angle_deg, q.angle_deg, 1.0, 1e-6), "{:?} {:?}", p.angle_deg, q.angle_deg);
         prop_assert!(
             one_value(p.curvature_per_mm, q.curvature_per_mm, scale, 1e-6),

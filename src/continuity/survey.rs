@@ -12,9 +12,10 @@ use super::seam::{CURVATURE_FLOOR, SurveyedSeam, survey};
 use super::slit::{Slit, slits};
 use crate::pace;
 use crate::patch_set::{Demand, PatchId, PatchSet};
-use crate::topology::{
-    Contact, EdgeId, Orientation, Overlap, Sliver, Topology, demand_between,
-};
+use crate::topology::{Contact, EdgeId, Orientation, Overlap, Sliver, Topology, demand_between};
+
+/// Spans that share less than this of an edge's parameter only touch.
+const MEETING: f64 = 1e-6;
 
 /// All seams of a set, worst first, and its open boundary.
 #[derive(Debug, Clone)]
@@ -115,8 +116,7 @@ fn counts(set: &PatchSet, topology: &Topology, contact: &Contact) -> bool {
         let (low, high) = (range[0].min(range[1]), range[0].max(range[1]));
         topology.spans()[topology.edges()[edge.index()].spans.clone()]
             .iter()
-            .filter(move |span| span.t[0].midpoint(span.t[1]) > low)
-            .filter(move |span| span.t[0].midpoint(span.t[1]) < high)
+            .filter(move |span| span.t[1].min(high) - span.t[0].max(low) > MEETING)
             .map(|span| &topology.seams()[span.seam.index()].spans)
     };
     let [a, b] = contact.edges;

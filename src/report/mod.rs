@@ -3,6 +3,7 @@
 mod audit;
 mod bound;
 mod caution;
+mod comparison;
 mod forecast;
 mod panel_pairs;
 mod seam_line;
@@ -16,6 +17,10 @@ mod summary_text;
 pub use audit::{AuditDeviation, AuditReport, FindingLine};
 pub(crate) use bound::upward;
 pub use caution::CAUTION;
+pub use comparison::{
+    ComparisonReport, ComparisonSummary, DescriptionLine, PatchChangeLine, SeamChangeLine,
+    StandingLine,
+};
 pub use forecast::Forecast;
 pub use panel_pairs::PanelPairLine;
 pub use seam_line::{EdgeName, FailingLine, FigureLine, LimitLine, PlaceLine, SeamLine};

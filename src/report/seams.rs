@@ -211,10 +211,7 @@ impl SeamReport {
                 and: name(&s.and),
                 gap: s.gap.bracket.attained,
                 gap_limit: set
-                    .seam_limits(
-                        (s.between.0, s.between.1.side()),
-                        (s.and.0, s.and.1.side()),
-                    )
+                    .seam_limits((s.between.0, s.between.1.side()), (s.and.0, s.and.1.side()))
                     .gap
                     .value,
                 length: s.length,

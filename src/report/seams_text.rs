@@ -312,7 +312,11 @@ pub(super) fn many(count: usize, one: &str, more: &str) -> String {
 }
 
 fn several(count: usize, one: &str, more: &str) -> String {
-    some(count, ", ", &format!(" {}", if count == 1 { one } else { more }))
+    some(
+        count,
+        ", ",
+        &format!(" {}", if count == 1 { one } else { more }),
+    )
 }
 
 fn some(count: usize, before: &str, after: &str) -> String {

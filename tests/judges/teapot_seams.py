@@ -3,7 +3,7 @@ SciPy's Bernstein polynomials, for tests/seams.rs.
 
 Run with NumPy and SciPy installed:  python teapot_seams.py > teapot_seams.json
 The net is read from patches/teapot.ron; edges are shared where their control
-points are the same. Each edge is looked at in 201 places, the largest figure
+points are the same. Each edge is looked at in 101 places, the largest figure
 sharpened by Brent's method. Curvatures come from the two fundamental forms,
 across the edge, counted towards the outward normal of the first patch.
 """
@@ -115,7 +115,7 @@ for i, p in enumerate(patches):
                     return abs(k[0] - k[1])
 
                 # A pole has no normal of its own.
-                t = np.linspace(0, 1, 201)
+                t = np.linspace(0, 1, 101)
                 t[0], t[-1] = 1e-5, 1 - 1e-5
                 gap = max(
                     float(np.linalg.norm(x.derivative(0, 0)(*SIDES[sx](s)) - y.derivative(0, 0)(*SIDES[sy](there(s)))))
