@@ -11,6 +11,7 @@ use std::process::Command;
 
 use chordwise::format::{Format, FormatError};
 use chordwise::patch_set::SetFault;
+use chordwise::revision::RevisionError;
 use chordwise::surface::SurfaceFault;
 use chordwise::topology::TopologyError;
 
@@ -119,6 +120,16 @@ fn unprovoked() -> String {
             piece: 0,
             length: 0.012,
             gap: 0.01,
+        }
+        .to_string(),
+        RevisionError::Topology {
+            which: "old",
+            error: TopologyError::Unsettled {
+                patch: "wing/1".to_owned(),
+                edge: "U0".to_owned(),
+                piece: 0,
+                gap: 0.01,
+            },
         }
         .to_string(),
     ];

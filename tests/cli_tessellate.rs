@@ -52,7 +52,15 @@ fn the_bare_program_shows_help_and_ends_with_2() {
 
 #[test]
 fn help_begins_with_examples_and_ends_with_0() {
-    for command in ["tessellate", "seams", "check", "demo", "completions", "man"] {
+    for command in [
+        "tessellate",
+        "seams",
+        "check",
+        "compare",
+        "demo",
+        "completions",
+        "man",
+    ] {
         let (code, out, err) = run(&[command, "--help"]);
         assert_eq!((code, err.as_str()), (0, ""), "{command}");
         assert!(out.starts_with("Examples:\n  "), "{command}: {out}");
@@ -182,7 +190,7 @@ fn a_mistyped_command_gets_a_hint() {
     let (code, _, err) = run(&["man", "tesselate"]);
     assert_eq!(code, 2);
     assert!(
-        err.ends_with("the commands are tessellate, audit, seams, draw, report, check, demo, completions, man\n"),
+        err.ends_with("the commands are tessellate, audit, seams, draw, report, check, compare, demo, completions, man\n"),
         "{err}"
     );
 }

@@ -217,6 +217,7 @@ fn the_readme_names_only_what_can_be_typed_and_all_of_it() {
             "draw",
             "report",
             "check",
+            "compare",
             "demo",
             "completions",
             "man"

@@ -47,7 +47,10 @@ fn excerpt(command: &str, text: &str) -> String {
     if !command.contains(" seams ") {
         return lines[..last].join("\n");
     }
-    let met = lines.iter().position(|l| l.starts_with("met ")).unwrap();
+    let met = lines
+        .iter()
+        .position(|l| l.split_whitespace().nth(1) == Some("met"))
+        .unwrap();
     let misses = lines
         .iter()
         .position(|l| l.starts_with("near misses"))

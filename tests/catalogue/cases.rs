@@ -441,6 +441,18 @@ fn runs() -> Vec<Case> {
             "tessellate metres.ron -o a.stl --chord 5e-324mm",
         ),
         ball("audit of no file", "audit mesh.ply ball.ron"),
+        ball("comparing standard input with itself", "compare - -"),
+        case(
+            "comparing sets in two units",
+            &[
+                BALL,
+                (
+                    "metres.ron",
+                    "(units: m, patches: [(name: \"ball\", surface: Sphere(radius: 20))])",
+                ),
+            ],
+            "compare ball.ron metres.ron",
+        ),
     ]
 }
 
