@@ -4,16 +4,14 @@
 #![allow(clippy::unwrap_used, reason = "a panic is how a test fails")]
 
 use std::collections::BTreeSet;
-use std::fmt::Write;
+use std::fmt::Write as _;
 use std::fs;
 use std::path::{Path, PathBuf};
 use std::process::Command;
 
-use chordwise::format::{Format, FormatError};
-use chordwise::patch_set::SetFault;
-use chordwise::revision::RevisionError;
-use chordwise::surface::SurfaceFault;
-use chordwise::topology::TopologyError;
+use chordwise::format::{Format, WriteOptions, write};
+use chordwise::mesh::Mesh;
+use chordwise::scalar::{LengthUnit, Tolerance};
 
 #[path = "catalogue/cases.rs"]
 mod cases;
@@ -51,8 +49,12 @@ fn played(case: &cases::Case) -> String {
     let said: Vec<&str> = said.trim_end().lines().collect();
     let from = if case.name.ends_with("the last five lines") {
         said.len() - 5
-    } else {
+    } else if case.name.starts_with("warned") {
         0
+    } else {
+        // Warnings of the set stand before what it is refused for.
+        let error = said.iter().position(|line| line.starts_with("error: "));
+        error.unwrap_or(0)
     };
     let mut text = format!(
         "-- {}\n$ chordwise {}\n",
@@ -93,51 +95,21 @@ fn without_places(line: &str) -> String {
     out.trim_end().to_owned()
 }
 
-/// What no test of decent size can provoke, as it would be said.
-fn unprovoked() -> String {
-    let errors: Vec<String> = vec![
-        SetFault::TooMany(2_000_000_000).to_string(),
-        SurfaceFault::Overflow.to_string(),
-        SurfaceFault::TooManyPieces(4_000_000).to_string(),
-        FormatError::Empty.to_string(),
-        FormatError::TooLarge {
-            format: Format::Glb,
-            what: "bytes",
-            count: 5_000_000_000,
-            limit: u32::MAX.into(),
-        }
-        .to_string(),
-        TopologyError::Unsettled {
-            patch: "wing/1".to_owned(),
-            edge: "U0".to_owned(),
-            piece: 0,
-            gap: 0.01,
-        }
-        .to_string(),
-        TopologyError::ShortEdge {
-            patch: "wing/1".to_owned(),
-            edge: "U0".to_owned(),
-            piece: 0,
-            length: 0.012,
-            gap: 0.01,
-        }
-        .to_string(),
-        RevisionError::Topology {
-            which: "old",
-            error: TopologyError::Unsettled {
-                patch: "wing/1".to_owned(),
-                edge: "U0".to_owned(),
-                piece: 0,
-                gap: 0.01,
-            },
-        }
-        .to_string(),
-    ];
-    let mut text = "==== not provoked: as they would be said ====\n\n".to_owned();
-    for error in errors {
-        writeln!(text, "{error}").unwrap();
-    }
-    text
+/// What the program finds out before it comes to it: provoked from the library.
+fn of_the_library() -> String {
+    let empty = Mesh {
+        name: String::new(),
+        unit: LengthUnit::Millimetre,
+        panels: Vec::new(),
+        points: Vec::new(),
+        vertices: Vec::new(),
+        triangles: Vec::new(),
+        parts: Vec::new(),
+        evidence: None,
+    };
+    let options = WriteOptions::new(Tolerance::new(0.1).unwrap());
+    let error = write(&empty, Format::Stl, &options, &mut std::io::sink()).unwrap_err();
+    format!("==== of the library ====\n\n{error}\n")
 }
 
 fn catalogue() -> String {
@@ -154,7 +126,7 @@ fn catalogue() -> String {
             text += &played(case);
         }
     }
-    text + &unprovoked()
+    text + &of_the_library()
 }
 
 #[test]

@@ -41,7 +41,7 @@ fn run(folder: &Path, arguments: &[&str]) -> (Vec<u8>, Option<Vec<u8>>) {
 
 fn folder() -> tempfile::TempDir {
     let folder = tempfile::tempdir().unwrap();
-    for set in ["teapot", "front_quarter"] {
+    for set in ["teapot", "front_quarter", "nearly_closed"] {
         let from = format!("{}/patches/{set}.ron", env!("CARGO_MANIFEST_DIR"));
         fs::copy(from, folder.path().join(format!("{set}.ron"))).unwrap();
     }
@@ -77,24 +77,33 @@ fn every_format_at_one_two_and_eight_jobs() {
     }
 }
 
+/// Twenty runs for each of 1, 2 and 8 jobs: every format, a seam report, a picture,
+/// a section and a page.
 #[test]
 fn twenty_runs_are_one() {
     let folder = folder();
-    let once = || {
-        let arguments = [
-            "tessellate",
-            "teapot.ron",
-            "-o",
-            "a.glb",
-            "--jobs",
-            "8",
-            "--chord",
-            "0.02",
-        ];
-        run(folder.path(), &arguments)
-    };
-    let first = once();
-    assert!((1..20).all(|_| once() == first));
+    for line in [
+        "tessellate teapot.ron -o a.stl --chord 0.02",
+        "tessellate teapot.ron -o b.stl --chord 0.02 --stream",
+        "tessellate teapot.ron -o a.obj --chord 0.02",
+        "tessellate teapot.ron -o a.ply --chord 0.02 --evidence",
+        "tessellate teapot.ron -o a.glb --chord 0.02 --extra seams --extra combs",
+        "seams teapot.ron --format json -o a.json",
+        "draw teapot.ron -o a.png --chord 0.05 --seams --shading reflection --size 320x200",
+        "draw teapot.ron -o a.svg --chord 0.05 --section y=0",
+        "report nearly_closed.ron -o a.html",
+    ] {
+        let mut first = None;
+        for jobs in ["1", "2", "8"] {
+            for again in 0..20 {
+                let arguments: Vec<&str> = line.split(' ').chain(["--jobs", jobs]).collect();
+                let got = run(folder.path(), &arguments);
+                let first = first.get_or_insert_with(|| got.clone());
+                assert!(first.1.as_ref().unwrap().len() > 1000);
+                assert!(got == *first, "{line}: run {again} with {jobs} jobs");
+            }
+        }
+    }
 }
 
 #[test]

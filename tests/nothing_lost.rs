@@ -58,8 +58,12 @@ fn said(output: &Output) -> String {
 /// Ends with 2 and a message that has `words`.
 #[track_caller]
 fn refused(output: &Output, words: &[&str]) {
-    let said = said(output);
-    assert_eq!(output.status.code(), Some(2), "{said}");
+    let all = said(output);
+    assert_eq!(output.status.code(), Some(2), "{all}");
+    // Warnings of the set stand before it.
+    let said = all
+        .rsplit_once("\n\n")
+        .map_or(all.as_str(), |(_, last)| last);
     assert!(said.starts_with("error: "), "{said}");
     assert_eq!(said.lines().count(), 1, "{said}");
     for word in words {

@@ -4,7 +4,7 @@
 //! outside tests nothing of that is compiled.
 
 use std::fs::{self, File};
-use std::io::{self, ErrorKind, Write};
+use std::io::{self, ErrorKind, Seek, SeekFrom, Write};
 use std::path::Path;
 
 use super::interrupt::Pending;
@@ -50,6 +50,14 @@ pub(super) fn permit(pending: &Pending, old: &Path) -> io::Result<()> {
         Ok(old) => fs::set_permissions(pending.path(), old.permissions()),
         Err(_) => Ok(()),
     }
+}
+
+/// Writes over bytes of what is written already.
+pub(super) fn patch(pending: &mut Pending, place: u64, bytes: &[u8]) -> io::Result<()> {
+    at(Step::Write)?;
+    let file = pending.file();
+    file.seek(SeekFrom::Start(place))?;
+    file.write_all(bytes)
 }
 
 /// Has the bytes on the disk before they get their name.

@@ -25,6 +25,7 @@ mod progress;
 mod report;
 mod seams;
 mod source;
+mod stream;
 mod style;
 mod tessellate;
 

@@ -106,6 +106,27 @@ impl Output {
         matches!(self, Self::Standard)
     }
 
+    /// Whether it is a plain file, in which one can go back.
+    pub(crate) fn is_file(&self) -> bool {
+        matches!(self, Self::File { .. })
+    }
+
+    /// As [`Output::write`] to a plain file; at the end some bytes are written over
+    /// at a place, which is known only then. `None` where it is no plain file.
+    ///
+    /// # Errors
+    /// As [`Output::write`].
+    pub(crate) fn write_patched<T>(
+        self,
+        job: impl FnOnce(&mut dyn Write) -> Result<(T, (u64, [u8; 4])), FormatError>,
+    ) -> Result<Option<T>, OutputError> {
+        let Self::File { name, target } = self else {
+            return Ok(None);
+        };
+        let done = |(_, patch): &(T, _)| Some(*patch);
+        replace(&name, &target, job, done).map(|(done, _)| Some(done))
+    }
+
     /// Writes a result. `None` means that the reader of standard output has
     /// gone, which is no fault.
     ///
@@ -140,7 +161,7 @@ impl Output {
                     .map(Some)
                     .map_err(|error| failed(&path, error))
             }
-            Self::File { name, target } => replace(&name, &target, job).map(Some),
+            Self::File { name, target } => replace(&name, &target, job, |_| None).map(Some),
         }
     }
 }
@@ -149,11 +170,16 @@ fn replace<T>(
     name: &Path,
     target: &Path,
     job: impl FnOnce(&mut dyn Write) -> Result<T, FormatError>,
+    patch: impl FnOnce(&T) -> Option<(u64, [u8; 4])>,
 ) -> Result<T, OutputError> {
     let folder = folder_of(target);
     let mut pending =
         disk::create(folder).map_err(|error| system(name, "make a file beside it", error))?;
     let done = job(&mut disk::Written(pending.file())).map_err(|error| failed(name, error))?;
+    if let Some((place, bytes)) = patch(&done) {
+        disk::patch(&mut pending, place, &bytes)
+            .map_err(|error| system(name, "write it", error))?;
+    }
     disk::permit(&pending, target).map_err(|error| system(name, "keep its permissions", error))?;
     disk::sync(&mut pending).map_err(|error| system(name, "sync it", error))?;
     disk::rename(pending, target).map_err(|error| system(name, "put it in place", error))?;
@@ -325,6 +351,32 @@ mod tests {
         assert_eq!(tried, 4 * 12);
         save().unwrap();
         assert_eq!(fs::metadata(&name).unwrap().len(), 7000);
+    }
+
+    /// Bytes put in at the end are there, or the old file is.
+    #[test]
+    fn what_is_put_in_at_the_end_can_fail_too() {
+        use super::disk::Step;
+        let folder = tempfile::tempdir().unwrap();
+        let name = folder.path().join("mesh.stl");
+        let save = || {
+            Output::open(&name, &[])?.write_patched(|out| {
+                out.write_all(b"count: ???? end")?;
+                Ok(((), (7, *b"1234")))
+            })
+        };
+        fs::write(&name, "old").unwrap();
+        for after in [0, 1] {
+            let error = disk::broken::with(Step::Write, after, 28, save).unwrap_err();
+            assert!(error.to_string().contains("mesh.stl: cannot write it; "));
+            assert_eq!(fs::read(&name).unwrap(), b"old");
+        }
+        save().unwrap().unwrap();
+        assert_eq!(fs::read(&name).unwrap(), b"count: 1234 end");
+        assert_eq!(names(folder.path()), ["mesh.stl"]);
+        let standard = Output::open(Path::new("-"), &[]).unwrap();
+        let none = standard.write_patched(|_| Ok(((), (0, [0; 4])))).unwrap();
+        assert!(none.is_none());
     }
 
     #[test]

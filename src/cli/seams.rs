@@ -65,6 +65,11 @@ pub(super) struct SeamsArguments {
     /// The file to write; `-` is standard output
     #[arg(short, long, value_name = "FILE", default_value = "-")]
     output: PathBuf,
+
+    /// Threads to work with; the result is the same for any number
+    /// [default: all cores]
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..))]
+    jobs: Option<u16>,
 }
 
 impl SeamsArguments {
@@ -74,6 +79,7 @@ impl SeamsArguments {
             Ok(output) => output,
             Err(error) => return Outcome::refuse(error),
         };
+        super::work_with(self.jobs);
         let progress = Progress::new();
         progress.stage("reading");
         let mut reading = match source::read(&self.set) {

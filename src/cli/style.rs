@@ -11,3 +11,20 @@ pub(super) enum OutputStyle {
     /// JSON for programs.
     Json,
 }
+
+impl OutputStyle {
+    /// A report in this style.
+    ///
+    /// # Errors
+    /// Where it cannot be put into JSON.
+    pub(super) fn print<T: serde::Serialize>(
+        self,
+        report: &T,
+        text: impl FnOnce(&T) -> String,
+    ) -> serde_json::Result<String> {
+        Ok(match self {
+            Self::Text => text(report),
+            Self::Json => serde_json::to_string_pretty(report)? + "\n",
+        })
+    }
+}

@@ -13,14 +13,15 @@ use super::output::Output;
 use super::panels::panels;
 use super::progress::{Counted, Progress};
 use super::source;
+use super::stream::stream;
 use super::style::OutputStyle;
 use crate::continuity::Survey;
 use crate::format::{self, Format, FormatError, Layout, Overlay, WriteOptions};
 use crate::mesh::{Meshed, Prediction, Strips};
 use crate::pace;
-use crate::patch_set::{PanelId, PatchSet, PieceId};
+use crate::patch_set::{PanelId, PatchId, PatchSet, PieceId};
 use crate::picture::{Extra, seam_curves};
-use crate::report::{Forecast, SecondsLine, Summary};
+use crate::report::{Forecast, SecondsLine, StreamSummary, Summary};
 use crate::sampling::Limits;
 use crate::scalar::{Length, Point, Tolerance, Vector};
 
@@ -98,6 +99,11 @@ pub(super) struct TessellateArguments {
     #[arg(long)]
     dry_run: bool,
 
+    /// Write triangles as they are proved and hold few of them (STL only). What
+    /// needs the whole mesh (strips, its area, loops of its edges) is not told
+    #[arg(long, conflicts_with_all = ["dry_run", "evidence", "normals", "extras"])]
+    stream: bool,
+
     /// How the summary is printed
     #[arg(long, value_enum, default_value_t)]
     format: OutputStyle,
@@ -136,6 +142,8 @@ enum UsageError {
         "--normals: stl has no vertex normals, only those of its facets; write ply, obj or glb"
     )]
     Normals,
+    #[error("--stream: {0} needs the whole mesh before its first byte; write stl")]
+    Stream(Format),
     #[error("--extra {0}: only glb has room for lines and points besides the mesh")]
     Extra(String),
 }
@@ -168,6 +176,9 @@ impl TessellateArguments {
         }
         if self.evidence && !format.holds_evidence() {
             return Err(FormatError::Evidence(format).into());
+        }
+        if self.stream && format != Format::Stl {
+            return Err(UsageError::Stream(format).into());
         }
         let progress = self.meshing.begin();
         let clock = Instant::now();
@@ -209,12 +220,18 @@ impl TessellateArguments {
             drop(progress);
             let why = refused.as_ref().map(ToString::to_string);
             let forecast = Forecast::new(set, &limits, &prediction, format, &written, why);
-            let text = match self.format {
-                OutputStyle::Text => forecast.text(),
-                OutputStyle::Json => serde_json::to_string_pretty(&forecast)? + "\n",
-            };
-            report(&text, false)?;
+            report(&self.format.print(&forecast, Forecast::text)?, false)?;
             return Ok(refused.map_or(Outcome::Done, Outcome::refuse));
+        }
+        if self.stream {
+            let limits_held = (&held, chord);
+            let (made, written) = stream(output, set, limits_held, &budget, of, &progress)?;
+            drop(progress);
+            let name = |patch: &PatchId| set.patches()[patch.index()].name.clone();
+            let turned_over = turned_over.iter().map(name).collect();
+            let summary = StreamSummary::new(set, &limits, &made, &written, seconds, turned_over);
+            report(&self.format.print(&summary, StreamSummary::text)?, false)?;
+            return Ok(Outcome::Done);
         }
         let made = Meshed::within(set, &held, &budget, of, self.evidence, stage)?;
         progress.stage("finding strips");
@@ -245,11 +262,7 @@ impl TessellateArguments {
         };
         let summary = Summary::new(set, &limits, &made, &strips, format, &written, seconds)
             .with_turned_over(set, &turned_over);
-        let text = match self.format {
-            OutputStyle::Text => summary.text(),
-            OutputStyle::Json => serde_json::to_string_pretty(&summary)? + "\n",
-        };
-        report(&text, standard)?;
+        report(&self.format.print(&summary, Summary::text)?, standard)?;
         Ok(Outcome::Done)
     }
 

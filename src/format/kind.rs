@@ -79,6 +79,23 @@ impl Format {
         rounding::reserve(self, low, high, chord)
     }
 
+    /// The most triangles the format can count: STL in 32 bits, PLY in 31.
+    pub(super) fn most_triangles(self) -> u64 {
+        match self {
+            Self::Stl => u32::MAX.into(),
+            Self::Ply => i32::MAX.unsigned_abs().into(),
+            Self::Obj | Self::Glb => u64::MAX,
+        }
+    }
+
+    /// The most bytes the format can count.
+    pub(super) fn most_bytes(self) -> u64 {
+        match self {
+            Self::Glb => u32::MAX.into(),
+            _ => u64::MAX,
+        }
+    }
+
     /// Whether the format has room for the patch, u and v of every corner.
     #[must_use]
     pub fn holds_evidence(self) -> bool {

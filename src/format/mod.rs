@@ -37,6 +37,7 @@ pub use kind::{Format, FormatNameError, Layout, LayoutNameError};
 pub use overlay::{Overlay, Stroke};
 pub use ply_reading::{EvidenceError, read_evidence};
 pub use size::{Counts, about_bytes, bytes_of, predict};
+pub use stl::StlStream;
 
 use crate::mesh::{Mesh, Part, Strips};
 use crate::scalar::Tolerance;

@@ -108,6 +108,20 @@ pub fn predict(
         None if format == Format::Obj => whole(obj(&counts, sample, layout)),
         None => whole(glb(&counts, sample, layout, file_vertices, None)),
     };
+    let numbers = [
+        ("triangles", counts.triangles(), format.most_triangles()),
+        ("bytes", bytes, format.most_bytes()),
+    ];
+    for (what, count, limit) in numbers {
+        if count > limit {
+            return Err(FormatError::TooLarge {
+                format,
+                what,
+                count: two_digits(count),
+                limit,
+            });
+        }
+    }
     Ok(Written {
         bytes,
         file_vertices: whole(file_vertices),
@@ -220,6 +234,12 @@ fn glb(
         + JSON[2] * float(parts.len() as u64)
         + float(names as u64);
     24.0 * vertices + 4.0 * indices + json
+}
+
+/// A predicted count in as many digits as it is good for.
+fn two_digits(count: u64) -> u64 {
+    let unit = 10_u64.pow(count.checked_ilog10().unwrap_or(0).saturating_sub(1));
+    count / unit * unit
 }
 
 /// Mean number of decimal digits of the numbers up to `most`.

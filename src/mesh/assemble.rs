@@ -25,6 +25,19 @@ impl Mesh {
         tessellation: &Tessellation,
         evidence: bool,
     ) -> Self {
+        let filled = tessellation.pieces.iter().flatten();
+        pace::expect(filled.map(|f| f.triangles.len() as u64).sum(), "triangles");
+        Self::assemble_telling(set, samples, tessellation, evidence, pace::step)
+    }
+
+    /// As [`Mesh::assemble`]; `done` is told how many triangles more are joined.
+    pub(super) fn assemble_telling(
+        set: &PatchSet,
+        samples: &Samples,
+        tessellation: &Tessellation,
+        evidence: bool,
+        done: impl Fn(u64),
+    ) -> Self {
         let smooth = set.tolerances().tangent_deg.get().to_radians().cos();
         let normals: Vec<Option<Vec<Vector>>> = tessellation
             .pieces
@@ -47,8 +60,6 @@ impl Mesh {
             parts: Vec::new(),
             evidence: evidence.then(Vec::new),
         };
-        let filled = tessellation.pieces.iter().flatten();
-        pace::expect(filled.map(|f| f.triangles.len() as u64).sum(), "triangles");
         for patch in set.patches() {
             let start = mesh.triangles.len();
             let mut any = false;
@@ -63,7 +74,7 @@ impl Mesh {
                     any = true;
                 }
             }
-            pace::step((mesh.triangles.len() - start) as u64);
+            done((mesh.triangles.len() - start) as u64);
             if any {
                 mesh.parts.push(Part {
                     name: patch.name.clone(),

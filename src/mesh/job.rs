@@ -3,17 +3,17 @@
 use std::ops::Range;
 use std::time::Instant;
 
-use rayon::prelude::*;
 use thiserror::Error;
 
 use super::budget::as_float;
+use super::least::{least, whole_floor};
 use super::prediction::{Prediction, sizes};
 use super::rough::Size;
 use super::{Budget, Deviation, Mesh};
 use crate::pace;
 use crate::patch_set::{PatchSet, PieceId};
 use crate::sampling::{Limits, Samples, SamplingError};
-use crate::tessellation::{Filled, Tessellation, TessellationError, floor, tessellate_telling};
+use crate::tessellation::{Filled, Tessellation, TessellationError, tessellate_telling};
 use crate::topology::{EdgeId, Topology, TopologyError};
 
 /// A mesh has at most this many triangles for the size of its pieces, as far as
@@ -23,7 +23,7 @@ const BEYOND_DOUBT: f64 = 8.0;
 /// Pieces are filled in batches of about this size together, and the triangles
 /// counted in between: so a run that takes many more than was predicted ends
 /// soon after its limit.
-const BATCH: f64 = 1e6;
+pub(super) const BATCH: f64 = 1e6;
 
 /// Why no mesh was made.
 #[derive(Debug, Error)]
@@ -179,19 +179,71 @@ impl Meshed {
         evidence: bool,
         mut stage: impl FnMut(&'static str),
     ) -> Result<Self, MeshError> {
+        let held = |triangles: f64, _: &[Size]| triangles;
+        let ready = Ready::new(set, limits, budget, &wanted, (evidence, held), &mut stage)?;
+        let mut seconds = ready.seconds;
+        stage("tessellating and proving");
+        let mut clock = Instant::now();
+        let mut filled = Tessellation {
+            pieces: Vec::with_capacity(ready.sizes.len()),
+        };
+        ready.fill((set, limits, budget), &wanted, BATCH, |batch, made| {
+            let made = made.pieces.into_iter().skip(batch.start).take(batch.len());
+            filled.pieces.extend(made);
+            Ok::<(), MeshError>(())
+        })?;
+        seconds.tessellation = lap(&mut clock);
+        stage("assembling");
+        let mesh = Mesh::assemble(set, &ready.samples, &filled, evidence);
+        let deviation = Deviation::of(set, &filled, &mesh).filter(|_| !mesh.triangles.is_empty());
+        let deviation = deviation.ok_or(MeshError::Empty)?;
+        seconds.assembly = lap(&mut clock);
+        Ok(Self {
+            topology: ready.topology,
+            mesh,
+            deviation,
+            floor: ready.floor,
+            seconds,
+        })
+    }
+}
+
+/// Seconds since the clock was looked at last.
+fn lap(clock: &mut Instant) -> f64 {
+    let passed = clock.elapsed().as_secs_f64();
+    *clock = Instant::now();
+    passed
+}
+
+/// All that stands before the first triangle: edges paired, the budget looked at,
+/// seams sampled.
+pub(super) struct Ready {
+    pub(super) topology: Topology,
+    pub(super) samples: Samples,
+    pub(super) floor: f64,
+    pub(super) sizes: Vec<Size>,
+    pub(super) seconds: Stages,
+}
+
+impl Ready {
+    /// Gets ready. `held` says how many of so many triangles are in memory at a
+    /// time, for pieces of these sizes.
+    pub(super) fn new(
+        set: &PatchSet,
+        limits: &Limits,
+        budget: &Budget,
+        wanted: &(impl Fn(PieceId) -> bool + Sync),
+        (evidence, held): (bool, impl Fn(f64, &[Size]) -> f64),
+        stage: &mut impl FnMut(&'static str),
+    ) -> Result<Self, MeshError> {
         let mut seconds = Stages::default();
         let mut clock = Instant::now();
-        let mut lap = || {
-            let passed = clock.elapsed().as_secs_f64();
-            clock = Instant::now();
-            passed
-        };
         stage("pairing edges");
         let topology = Topology::build(set)?;
         bridgeable(set, &topology, limits)?;
-        seconds.pairing = lap();
-        let floor = whole_floor(set, &topology, limits, &wanted);
-        let least = floor.max(least(set, limits, &wanted));
+        seconds.pairing = lap(&mut clock);
+        let floor = whole_floor(set, &topology, limits, wanted);
+        let least = floor.max(least(set, limits, wanted));
         if least.is_nan() || least > budget.triangles() {
             return Err(MeshError::TooMany {
                 predicted: least,
@@ -199,44 +251,63 @@ impl Meshed {
                 most: budget.triangles(),
             });
         }
-        let sizes = sizes(set, &topology, limits, &wanted);
+        let sizes = sizes(set, &topology, limits, wanted);
         let total: f64 = BEYOND_DOUBT * sizes.iter().map(|size| size.whole()).sum::<f64>();
-        let taken = Budget::predicted_bytes(total, set.pieces().len(), evidence);
-        if total > budget.triangles() || taken > budget.bytes() {
+        let bytes = |triangles: f64| {
+            Budget::predicted_bytes(held(triangles, &sizes), set.pieces().len(), evidence)
+        };
+        if total > budget.triangles() || bytes(total) > budget.bytes() {
             stage("predicting");
-            Prediction::of(set, &topology, limits, &wanted, evidence)?.affordable(budget)?;
+            let mut prediction = Prediction::of(set, &topology, limits, wanted, evidence)?;
+            prediction.memory = bytes(prediction.triangles());
+            prediction.affordable(budget)?;
         }
         stage("sampling seams");
         let samples = Samples::new(set, &topology, limits)?;
-        seconds.sampling = lap();
-        stage("tessellating and proving");
-        // Time left goes by the sizes of pieces; what is counted is triangles.
-        let share = |size: &Size| whole_number(size.whole());
-        pace::expect(sizes.iter().map(share).sum(), "triangles");
-        let done = |piece: PieceId, filled: &Filled| {
-            pace::advance(share(&sizes[piece.index()]), filled.triangles.len() as u64);
-        };
-        let filled = batches(
-            &sizes,
-            |batch| {
-                let within = |piece: PieceId| batch.contains(&piece.index()) && wanted(piece);
-                tessellate_telling(set, &topology, &samples, limits, within, done)
-            },
-            budget,
-        )?;
-        seconds.tessellation = lap();
-        stage("assembling");
-        let mesh = Mesh::assemble(set, &samples, &filled, evidence);
-        let deviation = Deviation::of(set, &filled, &mesh).filter(|_| !mesh.triangles.is_empty());
-        let deviation = deviation.ok_or(MeshError::Empty)?;
-        seconds.assembly = lap();
+        seconds.sampling = lap(&mut clock);
         Ok(Self {
             topology,
-            mesh,
-            deviation,
+            samples,
             floor,
+            sizes,
             seconds,
         })
+    }
+
+    /// Fills all pieces for which `wanted` holds, in batches of about so much size,
+    /// and counts; `take` is given each batch, in order.
+    pub(super) fn fill<E: From<MeshError>>(
+        &self,
+        (set, limits, budget): (&PatchSet, &Limits, &Budget),
+        wanted: &(impl Fn(PieceId) -> bool + Sync),
+        batch: f64,
+        mut take: impl FnMut(Range<usize>, Tessellation) -> Result<(), E>,
+    ) -> Result<(), E> {
+        // Time left goes by the sizes of pieces; what is counted is triangles.
+        let share = |size: &Size| whole_number(size.whole());
+        pace::expect(self.sizes.iter().map(share).sum(), "triangles");
+        let done = |piece: PieceId, filled: &Filled| {
+            let size = &self.sizes[piece.index()];
+            pace::advance(share(size), filled.triangles.len() as u64);
+        };
+        let mut made = 0;
+        for batch in batches(&self.sizes, batch) {
+            let within = |piece: PieceId| batch.contains(&piece.index()) && wanted(piece);
+            let (topology, samples) = (&self.topology, &self.samples);
+            let filled = tessellate_telling(set, topology, samples, limits, within, done)
+                .map_err(MeshError::from)?;
+            let pieces = filled.pieces[batch.clone()].iter().flatten();
+            made += pieces.map(|p| p.triangles.len() as u64).sum::<u64>();
+            if made > budget.triangles {
+                return Err(E::from(MeshError::TooMany {
+                    predicted: as_float(made),
+                    least: true,
+                    most: budget.triangles(),
+                }));
+            }
+            take(batch, filled)?;
+        }
+        Ok(())
     }
 }
 
@@ -250,83 +321,21 @@ fn whole_number(size: f64) -> u64 {
     size as u64
 }
 
-/// Fills all pieces, batch by batch, and counts.
-fn batches(
-    sizes: &[Size],
-    fill: impl Fn(Range<usize>) -> Result<Tessellation, TessellationError>,
-    budget: &Budget,
-) -> Result<Tessellation, MeshError> {
-    let mut pieces = Vec::with_capacity(sizes.len());
-    let mut made = 0;
-    while pieces.len() < sizes.len() {
-        let start = pieces.len();
+/// Pieces in batches of about this size together, in order.
+pub(super) fn batches(sizes: &[Size], most: f64) -> Vec<Range<usize>> {
+    let mut found = Vec::new();
+    let mut start = 0;
+    while start < sizes.len() {
         let mut size = 0.0;
         let count = sizes[start..].iter().take_while(|own| {
             size += own.whole();
-            size <= BATCH
+            size <= most
         });
-        let batch = start..start + count.count().max(1);
-        let filled = fill(batch.clone())?;
-        let filled = filled.pieces.into_iter().skip(start).take(batch.len());
-        pieces.extend(filled.inspect(|piece| {
-            made += piece
-                .as_ref()
-                .map_or(0, |piece| piece.triangles.len() as u64);
-        }));
-        if made > budget.triangles {
-            return Err(MeshError::TooMany {
-                predicted: as_float(made),
-                least: true,
-                most: budget.triangles(),
-            });
-        }
+        let end = start + count.count().max(1);
+        found.push(start..end);
+        start = end;
     }
-    Ok(Tessellation { pieces })
-}
-
-/// The floor of all pieces for which `wanted` holds.
-fn whole_floor(
-    set: &PatchSet,
-    topology: &Topology,
-    limits: &Limits,
-    wanted: &(impl Fn(PieceId) -> bool + Sync),
-) -> f64 {
-    let pieces = set.pieces().par_iter().enumerate();
-    let floors: Vec<f64> = pieces
-        .filter(|(index, _)| wanted(PieceId::new(*index)))
-        .map(|(index, piece)| {
-            let collapsed = [0, 1, 2, 3].map(|side| topology.edges()[index * 4 + side].collapsed);
-            floor(&piece.surface, collapsed, limits.chord)
-        })
-        .collect();
-    // Added in order, whatever the threads did.
-    floors.iter().sum()
-}
-
-/// How few triangles would do for the largest edge and the normal angle, where
-/// these are asked for: areas on the surfaces and on the sphere of normals, over
-/// that of the equilateral triangle with such edges. Sampled.
-fn least(set: &PatchSet, limits: &Limits, wanted: &impl Fn(PieceId) -> bool) -> f64 {
-    const PLACES: [f64; 4] = [0.125, 0.375, 0.625, 0.875];
-    let largest = |edge: Option<f64>| edge.map(|e| 3.0_f64.sqrt() / 4.0 * e * e);
-    let (flat, turned) = (largest(limits.max_edge), largest(limits.normal_rad));
-    if flat.is_none() && turned.is_none() {
-        return 0.0;
-    }
-    let (mut area, mut image) = (0.0, 0.0);
-    for (index, piece) in set.pieces().iter().enumerate() {
-        if !wanted(PieceId::new(index)) {
-            continue;
-        }
-        for (u, v) in PLACES.iter().flat_map(|u| PLACES.map(|v| (*u, v))) {
-            let jet = piece.surface.jet(u, v);
-            let part = jet.cross().norm() / 16.0;
-            area += part;
-            image += part * jet.gaussian_and_mean().map_or(0.0, |(k, _)| k.abs());
-        }
-    }
-    flat.map_or(0.0, |most| area / most)
-        .max(turned.map_or(0.0, |most| image / most))
+    found
 }
 
 /// Joined edges must lie closer together than the chord: nothing could be

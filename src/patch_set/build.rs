@@ -1,5 +1,7 @@
 //! The model under construction: patches and copies, one after the other.
 
+use std::collections::HashMap;
+
 use rayon::prelude::*;
 
 use super::collector::Collector;
@@ -14,8 +16,13 @@ use crate::pace;
 use crate::scalar::Point;
 use crate::surface::{PieceGrid, Place, PlacedFault, Step};
 
-/// More pieces than this would not fit into memory; refused before it is tried.
-const MAX_PIECES: usize = 20_000_000;
+/// More pieces than this are refused: a run takes 4 kB for each, and 16 GB is what
+/// it takes at most unless more is allowed.
+const MAX_PIECES: usize = 4_000_000;
+
+/// Entries looked at together, so that a short text that stands for very many pieces
+/// is refused before they are all there.
+const CHUNK: usize = 256;
 
 /// The model under construction.
 #[derive(Debug, Default)]
@@ -51,9 +58,34 @@ impl Build {
             motions.push(good.then(|| Motion::new(entry.mirror, entry.place.as_ref())));
         }
         pace::expect(entries.len() as u64, "patches");
+        let mut entries = entries.into_iter();
+        let mut start = 0;
+        while entries.len() > 0 {
+            let chunk: Vec<PatchEntry> = entries.by_ref().take(CHUNK).collect();
+            let count = chunk.len();
+            let own = &motions[start..start + count];
+            let fits = self.chunk((start, chunk), own, (table, gap), faults, &mut warnings);
+            if !fits {
+                break;
+            }
+            start += count;
+        }
+        warnings
+    }
+
+    /// Some entries, the first of them by number; `false` where there is no room for
+    /// their pieces.
+    fn chunk(
+        &mut self,
+        (first, entries): (usize, Vec<PatchEntry>),
+        motions: &[Option<Motion>],
+        (table, gap): (&[Point], f64),
+        faults: &mut Collector,
+        warnings: &mut Vec<Diagnostic>,
+    ) -> bool {
         let built: Vec<(PatchEntryRest, Built)> = entries
             .into_par_iter()
-            .zip(&motions)
+            .zip(motions)
             .map(|(entry, motion)| {
                 let grid = entry.surface.pieces(table, gap).map(|mut grid| {
                     if let Some(motion) = motion.filter(|motion| !motion.is_identity()) {
@@ -68,7 +100,8 @@ impl Build {
                 (PatchEntryRest::from(entry), grid)
             })
             .collect();
-        for (k, ((entry, built), motion)) in built.into_iter().zip(&motions).enumerate() {
+        for (k, ((entry, built), motion)) in built.into_iter().zip(motions).enumerate() {
+            let k = first + k;
             let place = format!("patch `{}`", entry.name);
             let name_path = patch_path(k, &[Step::Field("name")]);
             let named = self.check_name(&entry.name, &place, name_path.clone(), faults);
@@ -97,13 +130,16 @@ impl Build {
                         });
                     }
                     let mirrored = motion.is_some_and(|motion| motion.mirrors());
-                    if named && self.room_for(grid.pieces.len(), &place, name_path, faults) {
+                    if !self.room_for(grid.pieces.len(), &place, name_path, faults) {
+                        return false;
+                    }
+                    if named {
                         self.push(entry.name, entry.kind, entry.flip != mirrored, grid);
                     }
                 }
             }
         }
-        warnings
+        true
     }
 
     /// Whether the name may be used; it is taken from now on.
@@ -173,7 +209,37 @@ impl Build {
         });
     }
 
+    /// The first copy for whose pieces there is no room, and how many there would be:
+    /// found before any is made.
+    fn overfull(&self, copies: &[CopyEntry]) -> Option<(usize, usize)> {
+        let mut sizes: HashMap<&str, usize> = HashMap::new();
+        for patch in &self.patches {
+            let panel = &self.panels[patch.panel.index()].name;
+            *sizes.entry(panel).or_default() += patch.pieces.len();
+            // A patch that is its own panel is one thing.
+            if patch.name != *panel {
+                *sizes.entry(&patch.name).or_default() += patch.pieces.len();
+            }
+        }
+        let mut total = self.pieces.len();
+        for (k, copy) in copies.iter().enumerate() {
+            let all = sizes.get(copy.of.as_str()).copied().unwrap_or(0);
+            total = total.saturating_add(all);
+            if total > MAX_PIECES {
+                return Some((k, total));
+            }
+            *sizes.entry(&copy.name).or_default() += all;
+        }
+        None
+    }
+
     pub(super) fn copies(&mut self, copies: &[CopyEntry], faults: &mut Collector) {
+        if let Some((k, total)) = self.overfull(copies) {
+            let path = vec![Step::Field("copies"), Step::Item(k)];
+            let place = format!("copy `{}`", copies[k].name);
+            faults.fault(place, path, SetFault::TooMany(total));
+            return;
+        }
         for (k, copy) in copies.iter().enumerate() {
             let place = || format!("copy `{}`", copy.name);
             let path = |rest: &[Step]| [&[Step::Field("copies"), Step::Item(k)], rest].concat();

@@ -21,7 +21,7 @@ pub enum SetFault {
     #[error("the set has no patches; it must have at least one")]
     Empty,
     /// More patches or pieces than ids.
-    #[error("the set has {0} Bezier pieces; at most 1 000 000 000 are accepted")]
+    #[error("the set has {0} Bezier pieces; at most 4 000 000 are accepted")]
     TooMany(usize),
     /// A name is empty, or the part before or after its slash is.
     #[error("the name `{0}` has an empty part; panel and part must be named")]

@@ -18,6 +18,7 @@ mod name;
 mod reading;
 mod resolve;
 mod standard;
+mod syntax;
 mod tolerance;
 mod warning;
 

@@ -2,7 +2,6 @@
 
 use std::path::Path;
 
-use ron::error::{Error as RonError, SpannedError};
 use ron::extensions::Extensions;
 
 use super::PatchSet;
@@ -10,8 +9,8 @@ use super::diagnostic::{Diagnostic, Faults, Finding, Lines, Position, Reading};
 use super::fault::SetFault;
 use super::file::SetFile;
 use super::locate::Locator;
-use super::name::nearest;
 use super::resolve;
+use super::syntax::syntax;
 use crate::pace;
 use crate::surface::Place;
 
@@ -151,98 +150,4 @@ fn place(list: &mut [Diagnostic], text: &str) {
         diagnostic.position = Some(Position::new(text, range, &lines));
     }
     list.sort_by_key(|diagnostic| diagnostic.position.as_ref().map(|p| (p.line, p.column)));
-}
-
-/// The parser's fault in our words.
-fn syntax(error: &SpannedError, text: &str) -> Diagnostic {
-    let lines = Lines::new(text);
-    let span = &error.span;
-    let start = lines.byte(text, span.start.line, span.start.col);
-    // The parser points before the blanks it was about to skip.
-    let rest = &text[start..];
-    let start = start + (rest.len() - rest.trim_start().len());
-    let end = lines.byte(text, span.end.line, span.end.col).max(start);
-    let among = |list: &[&str]| {
-        let quoted: Vec<String> = list.iter().map(|name| format!("`{name}`")).collect();
-        quoted.join(", ")
-    };
-    let meant = |found: &str, list: &[&'static str]| {
-        nearest(found, list.iter().copied()).map(|name| format!("did you mean `{name}`?"))
-    };
-    let (message, hint) = match &error.code {
-        RonError::Eof
-        | RonError::ExpectedComma
-        | RonError::ExpectedArrayEnd
-        | RonError::ExpectedStructLikeEnd
-            if end >= text.trim_end().len() =>
-        {
-            (
-                "the text ends too early; a bracket is not closed".to_owned(),
-                None,
-            )
-        }
-        RonError::NoSuchStructField {
-            expected, found, ..
-        } => (
-            format!(
-                "unknown field `{found}`; the fields here are {}",
-                among(expected)
-            ),
-            meant(found, expected),
-        ),
-        RonError::NoSuchEnumVariant {
-            expected, found, ..
-        } => (
-            format!(
-                "unknown word `{found}`; it must be one of {}",
-                among(expected)
-            ),
-            meant(found, expected),
-        ),
-        RonError::MissingStructField { field, .. } => (
-            format!("the field `{field}` is missing; it has no default"),
-            None,
-        ),
-        RonError::DuplicateStructField { field, .. } => (
-            format!("the field `{field}` is given twice; once is enough"),
-            None,
-        ),
-        RonError::ExpectedStructLike | RonError::ExpectedNamedStructLike(_) => (
-            "expected `(`; a structure stands in round brackets".to_owned(),
-            None,
-        ),
-        RonError::ExpectedAttribute => (
-            "this is no patch set; a set begins with `(`, comments with `//`".to_owned(),
-            None,
-        ),
-        RonError::ExpectedFloat => ("expected a number".to_owned(), None),
-        RonError::ExpectedInteger => ("expected a whole number".to_owned(), None),
-        RonError::ExpectedDifferentLength { expected, found }
-            if expected == "an array of length 3" =>
-        {
-            (
-                format!("{found} numbers; a point has three, (x, y, z)"),
-                None,
-            )
-        }
-        RonError::ExceededRecursionLimit => (
-            "the brackets are nested too deeply; 128 levels are read".to_owned(),
-            None,
-        ),
-        other => (small_first(&other.to_string()), None),
-    };
-    Diagnostic {
-        finding: Finding::Fault(SetFault::Syntax(message)),
-        place: String::new(),
-        hint,
-        position: Some(Position::new(text, start..end, &lines)),
-        path: Place::default(),
-    }
-}
-
-fn small_first(text: &str) -> String {
-    let mut letters = text.chars();
-    letters.next().map_or_else(String::new, |first| {
-        first.to_lowercase().chain(letters).collect()
-    })
 }

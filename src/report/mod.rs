@@ -11,6 +11,7 @@ mod seams;
 mod seams_csv;
 mod seams_rest;
 mod seams_text;
+mod streamed;
 mod summary;
 mod summary_text;
 
@@ -28,4 +29,5 @@ pub use seams::{
     CrowdLine, LoopLine, NearMissLine, OrientationLine, OverlapLine, SeamReport, SeamSummary,
     SliverLine, ToleranceLines,
 };
+pub use streamed::{ProvedLine, StreamSummary};
 pub use summary::{BridgedLine, DeviationLine, SecondsLine, StorageLine, Summary, WrittenLine};

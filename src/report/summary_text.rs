@@ -137,12 +137,12 @@ impl Summary {
     }
 }
 
-fn many(count: usize, one: &str) -> String {
+pub(super) fn many(count: usize, one: &str) -> String {
     format!("{count} {one}{}", if count == 1 { "" } else { "s" })
 }
 
 /// Five significant digits, without an exponent where that stays short.
-fn figure(value: f64) -> String {
+pub(super) fn figure(value: f64) -> String {
     let size = value.abs();
     if size > 0.0 && !(1e-4..1e9).contains(&size) {
         return format!("{value:.3e}");

@@ -91,7 +91,7 @@ impl Coons {
 }
 
 /// Curves with many knots each would multiply; no real panel comes near.
-const MAX_PIECES: usize = 1_000_000;
+const MAX_PIECES: usize = 10_000;
 
 /// The refined curves: v = 0, v = 1 and u = 0, u = 1.
 struct Blend {

@@ -255,7 +255,7 @@ pub enum SurfaceFault {
     )]
     CoonsWeight(f64),
     /// The breaks of the curves multiply to too many pieces.
-    #[error("the breaks of the curves make {0} pieces; at most 1 000 000 are accepted")]
+    #[error("the breaks of the curves make {0} pieces; at most 10 000 are accepted")]
     TooManyPieces(usize),
     /// The construction leaves the range of numbers.
     #[error(

@@ -98,6 +98,43 @@ fn syntax() -> Vec<Case> {
         ),
         text("too deep", &format!("(patches: {})", "[".repeat(300))),
         text("attribute", "#!/bin/sh\n"),
+        text("comma", "(name: \"a\" patches: [])"),
+        text("list", "(patches: 3)"),
+        text(
+            "end of a list",
+            "(patches: [(name: \"a\", surface: Sphere(radius: 1)) 3])",
+        ),
+        text(
+            "end of a structure",
+            "(patches: [(name: \"a\", surface: Sphere(radius: 1 2))])",
+        ),
+        text("colon", "(name \"a\")"),
+        text("name of a field", "(3: 4)"),
+        text("no text", "(name: 3)"),
+        text("text not closed", "(name: \"a)"),
+        text("escape", "(name: \"\\q\")"),
+        text("comment not closed", "( /* name: 3)"),
+        text("two sets", "(patches: []) (patches: [])"),
+        text("letter", "(name: ?)"),
+        text(
+            "no flag",
+            "(patches: [(name: \"a\", surface: Sphere(radius: 1), flip: 3)])",
+        ),
+        text("underscore", "(tolerance: (chord: 0_1))"),
+        text("extension", "#![enable(speed)]\n(patches: [])"),
+        text("other name", "PatchSet(patches: [])"),
+        text(
+            "digit",
+            "(points: [(0, 0, 0)], patches: [(name: \"a\", surface: Bezier(indexed: [[0b12]]))])",
+        ),
+        text(
+            "huge index",
+            "(points: [(0, 0, 0)], patches: [(name: \"a\", surface: Bezier(indexed: [[99999999999999999999999]]))])",
+        ),
+        text(
+            "degrees",
+            "(patches: [(name: \"a\", surface: BSpline(degree: (1, 2, 3)))])",
+        ),
         Case {
             files: vec![("set.ron", b"(patches: [(name: \"fl\xfcgel\")])".to_vec())],
             ..text("not UTF-8", "")
@@ -168,6 +205,30 @@ fn surfaces() -> Vec<Case> {
             "Revolution(profile: Line(from: (0, 0, 0), to: (0, 0, 5)))",
         ),
         surface(
+            "beyond numbers",
+            "Revolution(profile: Line(from: (1e9, 1e9, 0), to: (1e9, 1e9, 1e9)), center: (-1e9, -1e9, 0))",
+        ),
+        surface("Coons of too many pieces", &{
+            let curve = |from: [u32; 2], way: [u32; 2]| {
+                let points: Vec<String> = (0..=101)
+                    .map(|k| format!("({}, {}, 0)", from[0] + k * way[0], from[1] + k * way[1]))
+                    .collect();
+                let inner: Vec<String> = (1..101).map(|k| k.to_string()).collect();
+                format!(
+                    "BSpline(degree: 1, knots: [0, 0, {}, 101, 101], points: [{}])",
+                    inner.join(", "),
+                    points.join(", ")
+                )
+            };
+            format!(
+                "Coons(u0: {}, u1: {}, v0: {}, v1: {})",
+                curve([0, 0], [0, 1]),
+                curve([101, 0], [0, 1]),
+                curve([0, 0], [1, 0]),
+                curve([0, 101], [1, 0])
+            )
+        }),
+        surface(
             "Coons corner",
             "Coons(u0: Line(from: (0, 0, 0), to: (0, 1, 0)), u1: Line(from: (1, 0, 0), to: (1, 1, 0)), v0: Line(from: (0, 0, 0), to: (1, 0, 0)), v1: Line(from: (0, 3, 0), to: (1, 1, 0)))",
         ),
@@ -209,6 +270,19 @@ fn sets() -> Vec<Case> {
             "contradiction",
             "seams: [\n(between: \"wing\", and: \"wing\", demand: G1),\n(between: \"wing\", and: \"wing\", demand: open),\n],",
         ),
+        text("too many pieces", &{
+            let patches: Vec<String> = (0..1000)
+                .map(|k| format!("(name: \"wing/{k}\", surface: Sphere(radius: 1))"))
+                .collect();
+            let copies: Vec<String> = (0..501)
+                .map(|k| format!("(of: \"wing\", name: \"b{k}\")"))
+                .collect();
+            format!(
+                "(patches: [\n{}\n], copies: [\n{}\n])",
+                patches.join(",\n"),
+                copies.join(",\n")
+            )
+        }),
         surface("many faults", "Sphere(radius: -1, latitude_deg: (10, -10))"),
     ];
     let many: String = (0..53)
@@ -235,6 +309,11 @@ fn warnings() -> Vec<Case> {
             "Bezier(net: [[(0, 0, 0), (0, 1, 0)], [(3, 0, 0), (3, 1, 0)], [(-2, 0, 0), (-2, 1, 0)], [(1, 0, 0), (1, 1, 0)]])",
         ),
         surface("tiny", "Sphere(radius: 0.001)"),
+        case(
+            "warned before it is refused",
+            &[BALL],
+            "tessellate ball.ron -o a.stl --chord 1e-7",
+        ),
     ]
 }
 
@@ -293,11 +372,31 @@ fn usage() -> Vec<Case> {
             "extras in STL",
             "tessellate ball.ron -o a.stl --extra seams",
         ),
+        ball("PLY as a stream", "tessellate ball.ron -o a.ply --stream"),
+        ball(
+            "stream to standard output",
+            "tessellate ball.ron --as stl -o - --stream",
+        ),
         ball("no manual", "man tesselate"),
         ball("no shell", "completions ed"),
         ball("too many panels", "demo --panels 0 -o a.ron"),
     ]
 }
+
+/// Sheets across one another and narrower than the gap tolerance, found by chance.
+const CLOSED_UP: &str = "(tolerance: (chord: 3, gap: 0.5, search: 1), patches: [
+    (name: \"a\", surface: Bezier(net: [[(10.6, 20.3, 0), (20, 10, 0)], [(10.6, 20.3, 0), (20, 10, 0)]])),
+    (name: \"b\", surface: Bezier(net: [[(10.6, 20.3, 0), (20.3, 0, 0)], [(20, 10, 0), (10, 20, 0)]])),
+    (name: \"c\", surface: Bezier(net: [[(20, 0, 0), (20, 10, 0)], [(20, 10, 0), (20, 0, 0)]])),
+    (name: \"d\", surface: Bezier(net: [[(10, 20, 0), (0, 0, 0)], [(10.6, 20.3, 0), (20, 0, 0)]])),
+    (name: \"e\", surface: Bezier(net: [[(20, 0, 0), (20, 0, 0)], [(0, 0, 0), (20.3, 0, 0)]])),
+])";
+const UNSETTLED: &str = "(tolerance: (chord: 3, gap: 0.5, search: 1), patches: [
+    (name: \"a\", surface: Bezier(net: [[(0, -0.1, 0), (0, -0.1, 0)], [(10, 10, 0), (10, 10, 0)]])),
+    (name: \"b\", surface: Bezier(net: [[(10, 10.2, 0), (20.2, 19.9, 0)], [(0, 0, 0), (0, -0.1, 0)]])),
+    (name: \"c\", surface: Bezier(net: [[(20.2, -0.1, 0), (20.2, 19.9, 0)], [(0, 0, 0), (9.9, 19.8, 0)]])),
+    (name: \"d\", surface: Bezier(net: [[(0, -0.1, 0), (20.2, 19.9, 0)], [(20.2, -0.1, 0), (0, -0.1, 0)]])),
+])";
 
 /// What cannot be meshed, written or audited.
 fn runs() -> Vec<Case> {
@@ -324,6 +423,25 @@ fn runs() -> Vec<Case> {
         ball(
             "too many triangles predicted",
             "tessellate ball.ron -o a.stl --chord 0.01 --max-triangles 12k",
+        ),
+        case(
+            "edge that would be closed up",
+            &[("set.ron", CLOSED_UP)],
+            "seams set.ron",
+        ),
+        case(
+            "corners that do not settle in a revision",
+            &[BALL, ("set.ron", UNSETTLED)],
+            "compare set.ron ball.ron",
+        ),
+        case(
+            "corners that do not settle",
+            &[("set.ron", UNSETTLED)],
+            "seams set.ron",
+        ),
+        ball(
+            "larger than a GLB file can be",
+            "tessellate ball.ron -o a.glb --chord 4e-7 --dry-run",
         ),
         ball(
             "too much memory",
