@@ -30,6 +30,8 @@ pub mod continuity;
 
 pub mod revision;
 
+pub mod mending;
+
 pub mod sampling;
 
 pub mod tessellation;

@@ -190,7 +190,7 @@ fn a_mistyped_command_gets_a_hint() {
     let (code, _, err) = run(&["man", "tesselate"]);
     assert_eq!(code, 2);
     assert!(
-        err.ends_with("the commands are tessellate, audit, seams, draw, report, check, compare, demo, completions, man\n"),
+        err.ends_with("the commands are tessellate, audit, seams, draw, report, check, compare, mend, demo, completions, man\n"),
         "{err}"
     );
 }

@@ -218,6 +218,7 @@ fn the_readme_names_only_what_can_be_typed_and_all_of_it() {
             "report",
             "check",
             "compare",
+            "mend",
             "demo",
             "completions",
             "man"

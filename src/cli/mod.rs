@@ -16,6 +16,7 @@ mod draw;
 mod interrupt;
 mod joining;
 mod man;
+mod mend;
 mod meshing;
 mod message;
 mod outcome;
@@ -38,6 +39,7 @@ Examples:
   chordwise tessellate front.ron -o front.glb      a proved mesh
   chordwise seams front.ron                        how its patches meet
   chordwise compare old.ron new.ron                what changed
+  chordwise mend front.ron -o mended.ron           seams as demanded
   chordwise draw front.ron -o front.png            a picture of it
   chordwise report front.ron -o front.html         a page to sign off";
 
@@ -74,6 +76,7 @@ enum Command {
     Report(report::ReportArguments),
     Check(check::CheckArguments),
     Compare(compare::CompareArguments),
+    Mend(mend::MendArguments),
     Demo(demo::DemoArguments),
     Completions(completions::CompletionsArguments),
     Man(man::ManArguments),
@@ -90,6 +93,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
             Command::Demo(arguments) => arguments.run(),
             Command::Draw(arguments) => arguments.run(),
             Command::Man(arguments) => arguments.run(),
+            Command::Mend(arguments) => arguments.run(),
             Command::Report(arguments) => arguments.run(),
             Command::Seams(arguments) => arguments.run(),
             Command::Tessellate(arguments) => arguments.run(),

@@ -19,14 +19,14 @@ struct TopField<'a> {
 /// A text ready for look-ups: the entries of the lists at the top are found
 /// once, so that a look-up walks one entry only.
 #[derive(Debug)]
-pub(super) struct Locator<'a> {
+pub(crate) struct Locator<'a> {
     text: &'a str,
     whole: Range<usize>,
     fields: Vec<TopField<'a>>,
 }
 
 impl<'a> Locator<'a> {
-    pub(super) fn new(text: &'a str) -> Self {
+    pub(crate) fn new(text: &'a str) -> Self {
         let mut walk = Walk { text, at: 0 };
         walk.skip_attributes();
         let start = walk.at;
@@ -48,7 +48,7 @@ impl<'a> Locator<'a> {
     }
 
     /// The bytes of the value, or of the nearest value around it that is there.
-    pub(super) fn locate(&self, place: &Place) -> Range<usize> {
+    pub(crate) fn locate(&self, place: &Place) -> Range<usize> {
         let Some((&Step::Field(name), rest)) = place.0.split_first() else {
             return self.whole.clone();
         };

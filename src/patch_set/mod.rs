@@ -28,10 +28,13 @@ pub use file::{
     Axis, ClassEntry, CopyEntry, PatchEntry, PlaceEntry, SeamEndEntry, SeamEntry, SetFile,
     ToleranceEntry, Units,
 };
+pub(crate) use locate::Locator;
 pub use model::{
     Demand, Panel, PanelId, Patch, PatchId, PatchSet, Piece, PieceId, SeamDemand, SeamEnd,
     Tolerances,
 };
+pub(crate) use motion::Motion;
+pub(crate) use name::panel_of;
 pub(crate) use standard::Standard;
 pub use standard::{Class, DemandSource, Limit, SeamLimits, Source};
 pub use tolerance::{

@@ -8,7 +8,7 @@ use crate::surface::{Step, cos_sin_deg};
 
 /// A mirroring of one coordinate, then a turn about an axis, then a shift.
 #[derive(Debug, Clone, Copy)]
-pub(super) struct Motion {
+pub(crate) struct Motion {
     mirror: Option<Axis>,
     turn: Option<Turn>,
     shift: Vector,
@@ -25,7 +25,7 @@ struct Turn {
 impl Motion {
     /// The motion of an entry whose numbers are finite and whose axis is not
     /// zero.
-    pub(super) fn new(mirror: Option<Axis>, place: Option<&PlaceEntry>) -> Self {
+    pub(crate) fn new(mirror: Option<Axis>, place: Option<&PlaceEntry>) -> Self {
         let place = place.copied().unwrap_or_default();
         let [cos, sin] = cos_sin_deg(place.angle_deg);
         let turns = cos < 1.0 || sin.abs() > 0.0;
@@ -52,7 +52,7 @@ impl Motion {
 
     /// Where a point goes. Points that are bitwise equal stay so; mirroring
     /// changes no digit.
-    pub(super) fn apply(&self, mut point: Point) -> Point {
+    pub(crate) fn apply(&self, mut point: Point) -> Point {
         // 0 - y rather than -y: a point in the mirror plane must not become -0.
         match self.mirror {
             Some(Axis::X) => point.x = 0.0 - point.x,

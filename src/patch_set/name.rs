@@ -5,7 +5,7 @@ use std::collections::{BTreeMap, BTreeSet};
 use super::{PanelId, PatchId};
 
 /// The panel of a patch: the part of its name before the last slash.
-pub(super) fn panel_of(name: &str) -> &str {
+pub(crate) fn panel_of(name: &str) -> &str {
     name.rfind('/').map_or(name, |slash| &name[..slash])
 }
 

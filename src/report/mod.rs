@@ -5,6 +5,7 @@ mod bound;
 mod caution;
 mod comparison;
 mod forecast;
+mod mending;
 mod panel_pairs;
 mod seam_line;
 mod seams;
@@ -23,6 +24,7 @@ pub use comparison::{
     StandingLine,
 };
 pub use forecast::Forecast;
+pub use mending::{LeftLine, MendedLine, MendingReport, MoveLine};
 pub use panel_pairs::PanelPairLine;
 pub use seam_line::{EdgeName, FailingLine, FigureLine, LimitLine, PlaceLine, SeamLine};
 pub use seams::{
