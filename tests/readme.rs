@@ -83,7 +83,7 @@ fn excerpts_are_what_the_program_prints() {
         .skip(1)
         .map(|after| after.split(" -->").next().unwrap().to_owned())
         .collect();
-    assert_eq!(commands.len(), 2);
+    assert_eq!(commands.len(), 3);
     let mut wrong = Vec::new();
     for command in &commands {
         let printed = excerpt(command, &output(command, folder.path()));
