@@ -181,6 +181,16 @@ fn a_slit_is_a_near_miss_with_its_length() {
     assert!((slit.gap.bracket.attained - 0.1).abs() < 1e-6);
     assert!(slit.gap.bracket.proved <= slit.gap.bracket.attained * 1.02);
     assert_eq!(found.findings(), 1);
+    // So is an edge that runs into the other patch as slowly.
+    let mut overlapping = empty();
+    add(&mut overlapping, "a", &rectangle([0.0, 50.0], [0.0, 100.0]));
+    let into = net((1, 1), |u, v| (50.0 - v + u * (50.0 + v), 100.0 * v, 0.0));
+    add(&mut overlapping, "b", &into);
+    let found_slits = survey(&overlapping).slits;
+    let [slit] = found_slits.as_slice() else {
+        panic!("{found_slits:?}")
+    };
+    assert!((slit.length - 10.0).abs() < 0.01, "{slit:?}");
     // Demanded open, it is none.
     let set = {
         let (a, b) = (

@@ -176,7 +176,8 @@ fn stretches(
 }
 
 /// Whether each edge lies on the side of the other where that one's own patch
-/// is: the outline of a pointed part, not a slit.
+/// is, and the patches end between them: the outline of a pointed part, not a
+/// slit. Patches that go on beyond the other edge overlap.
 fn faces_itself(set: &PatchSet, edges: [&EdgeCurve; 2], s: f64, t: f64) -> bool {
     let at = [s, t];
     let points = [0, 1].map(|k| edges[k].curve.eval(at[k]));
@@ -197,5 +198,12 @@ fn faces_itself(set: &PatchSet, edges: [&EdgeCurve; 2], s: f64, t: f64) -> bool 
         let across = inward - along * (inward.dot(&along) / along.norm_squared());
         towards.dot(&across) > 0.0
     };
-    inside(0, away) && inside(1, -away)
+    let is_thin = |k: usize| {
+        let side = edges[k].id.side();
+        let opposite = Side::ALL[side.index() ^ 1].at(at[k]);
+        let surface = &set.pieces()[edges[k].id.piece().index()].surface;
+        let wide = (surface.eval(opposite[0], opposite[1]) - points[k]).norm();
+        wide <= 2.0 * away.norm()
+    };
+    inside(0, away) && inside(1, -away) && is_thin(0) && is_thin(1)
 }
