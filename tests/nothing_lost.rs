@@ -394,3 +394,41 @@ fn an_interrupt_while_meshing_leaves_the_old_file() {
         assert_eq!(names(folder.path()), ["mesh.stl"]);
     }
 }
+
+/// Where some signals are ignored by the wish of whoever started the program (a
+/// script's background, `nohup`), the others clean up all the same; and those that
+/// are ignored do nothing.
+#[test]
+fn signals_that_are_not_ignored_clean_up() {
+    let sent = |signal: &str, child: &std::process::Child| {
+        let arguments = [format!("-{signal}"), child.id().to_string()];
+        let status = Command::new("kill").args(arguments).status();
+        assert!(status.unwrap().success());
+    };
+    for (ignored, signal) in [("INT,HUP", "TERM"), ("HUP", "INT")] {
+        let folder = tempfile::tempdir().unwrap();
+        let target = folder.path().join("mesh.stl");
+        fs::write(&target, OLD).unwrap();
+        let mut arguments = mesh_to(&set("front_quarter.ron"), &target);
+        arguments.extend(["--chord", "0.0005", "--stream"].map(Into::into));
+        let mut child = Command::new("env")
+            .arg("--default-signal=INT,TERM,HUP")
+            .arg(format!("--ignore-signal={ignored}"))
+            .arg(program())
+            .args(&arguments)
+            .stderr(Stdio::null())
+            .spawn()
+            .unwrap();
+        // A stream has its file from the beginning.
+        while names(folder.path()).len() < 2 {
+            std::thread::sleep(Duration::from_millis(5));
+        }
+        sent("HUP", &child);
+        std::thread::sleep(Duration::from_millis(200));
+        assert!(child.try_wait().unwrap().is_none(), "HUP is ignored");
+        sent(signal, &child);
+        assert_eq!(child.wait().unwrap().code(), Some(130), "{signal}");
+        assert_eq!(fs::read(&target).unwrap(), OLD);
+        assert_eq!(names(folder.path()), ["mesh.stl"]);
+    }
+}

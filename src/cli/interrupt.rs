@@ -5,7 +5,11 @@ use std::io;
 use std::path::{Path, PathBuf};
 #[cfg(unix)]
 use std::sync::Arc;
+#[cfg(unix)]
+use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::{Mutex, MutexGuard, Once, PoisonError};
+#[cfg(unix)]
+use std::time::Duration;
 
 use tempfile::NamedTempFile;
 
@@ -27,16 +31,55 @@ pub(super) fn watch() {
     WATCH.call_once(|| {
         #[cfg(unix)]
         outlive_size_limit();
-        // It fails where a signal is ignored already, by the wish of whoever
-        // started the program. Then it stays so.
-        let _ = ctrlc::try_set_handler(|| {
-            let files = half_written();
-            for file in files.iter() {
-                let _ = fs::remove_file(file);
-            }
-            std::process::exit(INTERRUPTED);
-        });
+        // It fails where one of the signals is ignored already, by the wish of
+        // whoever started the program: a script's background, or `nohup`.
+        if ctrlc::try_set_handler(clean_up).is_err() {
+            #[cfg(unix)]
+            attend();
+        }
     });
+}
+
+/// Removes what is half written, and ends the program.
+fn clean_up() {
+    let files = half_written();
+    for file in files.iter() {
+        let _ = fs::remove_file(file);
+    }
+    std::process::exit(INTERRUPTED);
+}
+
+/// Cleans up at those of the signals that are not ignored; those that are stay so.
+#[cfg(unix)]
+fn attend() {
+    use signal_hook::consts::{SIGHUP, SIGINT, SIGTERM};
+    // How long a signal may wait: less than a person does.
+    const LOOK: Duration = Duration::from_millis(50);
+    let told = Arc::new(AtomicBool::new(false));
+    let ignored = ignored();
+    for signal in [SIGTERM, SIGINT, SIGHUP] {
+        if ignored & (1 << (signal - 1)) == 0 {
+            let _ = signal_hook::flag::register(signal, Arc::clone(&told));
+        }
+    }
+    std::thread::spawn(move || {
+        loop {
+            std::thread::sleep(LOOK);
+            if told.load(Ordering::Relaxed) {
+                clean_up();
+            }
+        }
+    });
+}
+
+/// The signals that are ignored, as bits from the first on. Where the system does
+/// not say, all but the request to terminate are taken to be.
+#[cfg(unix)]
+fn ignored() -> u64 {
+    let status = fs::read_to_string("/proc/self/status").unwrap_or_default();
+    let line = status.lines().find_map(|line| line.strip_prefix("SigIgn:"));
+    line.and_then(|bits| u64::from_str_radix(bits.trim(), 16).ok())
+        .unwrap_or(!(1 << (signal_hook::consts::SIGTERM - 1)))
 }
 
 /// Lets writing beyond a file-size limit fail, as writing to a full disk does,
