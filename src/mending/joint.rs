@@ -50,6 +50,8 @@ pub(super) struct Joint {
     pub(super) limits: SeamLimits,
     /// Whether the tangent planes have to agree, too.
     pub(super) is_tangent: bool,
+    /// How far it was from closed, in units of what it is held to.
+    pub(super) opening: f64,
     samples: Vec<Sample>,
     start: Vec<f64>,
 }
@@ -203,8 +205,10 @@ impl Joint {
             is_tangent,
             samples,
             start: Vec::new(),
+            opening: 0.0,
         };
         joint.start = joint.residuals(nets);
+        joint.opening = joint.miss(nets, true).units;
         joint
     }
 
@@ -294,12 +298,12 @@ impl Joint {
         }
     }
 
-    /// The worst place, of what `to_nothing` asks for.
-    pub(super) fn miss(&self, nets: &Nets, to_nothing: bool) -> Miss {
+    /// The worst place: of what is to close, or of what became worse.
+    pub(super) fn miss(&self, nets: &Nets, to_close: bool) -> Miss {
         let residuals = self.residuals(nets);
         let off = |k: usize| {
-            let aim = if to_nothing { 0.0 } else { self.start[k] };
-            (residuals[k] - aim).abs()
+            let allowed = if to_close { 0.0 } else { self.start[k].abs() };
+            (residuals[k].abs() - allowed).max(0.0)
         };
         let mut worst = Miss {
             units: 0.0,

@@ -17,6 +17,9 @@ const ROUNDS: usize = 16;
 /// What is left of a condition counts as met below this, in tolerances.
 const MET: f64 = 0.05;
 
+/// Seams with less than this, in tolerances, are closed to rounding.
+const AJAR: f64 = 1e-3;
+
 /// Moves below this, in gap tolerances, are not made.
 const LEAST: f64 = 1e-5;
 
@@ -129,14 +132,22 @@ impl<'a> Plan<'a> {
         moves: &mut [Vector],
     ) {
         let mut targets = group.to_vec();
+        // What is as demanded keeps its figures, unless that contradicts what is
+        // mended round a corner: then its gaps close, too.
+        let mut closes_all = false;
         while !targets.is_empty() {
-            let (free, joints) = self.neighbourhood(&targets, sources, users);
+            let closing = if closes_all {
+                self.widened(&targets, sources, users)
+            } else {
+                targets.clone()
+            };
+            let (free, joints) = self.neighbourhood(&closing, sources, users);
             let before: Vec<_> = nets
                 .list
                 .iter()
                 .map(|n| n.as_ref().map(|n| n.points.clone()))
                 .collect();
-            let found = self.solve(&targets, &free, &joints, nets);
+            let found = self.solve(&closing, &free, &joints, nets);
             let largest = found.iter().map(Vector::norm).fold(0.0, f64::max);
             let worst = joints
                 .iter()
@@ -166,6 +177,11 @@ impl<'a> Plan<'a> {
                     net.points = points;
                 }
             }
+            if missed.is_some() && !closes_all {
+                closes_all = true;
+                continue;
+            }
+            closes_all = false;
             let joint = targets.remove(dropped);
             if let Some(seam) = self.joints[joint].seam {
                 self.left.insert(seam, reason);
@@ -208,6 +224,37 @@ impl<'a> Plan<'a> {
         (own.unwrap_or_else(worst), reason)
     }
 
+    /// The targets, and all seams around that are as demanded but not closed to
+    /// rounding, as far as they hang together.
+    fn widened(
+        &self,
+        targets: &[usize],
+        sources: &[Vec<usize>],
+        users: &[Vec<usize>],
+    ) -> Vec<usize> {
+        let mut closing = targets.to_vec();
+        loop {
+            let (_, joints) = self.neighbourhood(&closing, sources, users);
+            let more: Vec<usize> = joints
+                .into_iter()
+                .filter(|j| !closing.contains(j) && self.is_ajar(*j))
+                .collect();
+            if more.is_empty() {
+                return closing;
+            }
+            closing.extend(more);
+        }
+    }
+
+    /// Whether a joint is as demanded, but not closed to rounding.
+    fn is_ajar(&self, joint: usize) -> bool {
+        let joint = &self.joints[joint];
+        let is_met = joint
+            .seam
+            .is_none_or(|s| self.survey.seams[s].verdict == Verdict::Met);
+        is_met && joint.opening > AJAR
+    }
+
     /// The points that may move, and the joints that have a say: the targets,
     /// what touches them, and what touches that.
     fn neighbourhood(
@@ -235,7 +282,7 @@ impl<'a> Plan<'a> {
     /// Solves, and moves the nets; the displacements of the free points.
     fn solve(
         &self,
-        targets: &[usize],
+        closing: &[usize],
         free: &[usize],
         joints: &[usize],
         nets: &mut Nets,
@@ -246,7 +293,7 @@ impl<'a> Plan<'a> {
             let column = |source: usize| free.binary_search(&source).ok();
             let mut rows = Vec::new();
             for joint in joints {
-                let to_nothing = targets.contains(joint);
+                let to_nothing = closing.contains(joint);
                 self.joints[*joint].conditions(nets, &column, to_nothing, &mut rows);
             }
             let step = damped(rows, free.len());
