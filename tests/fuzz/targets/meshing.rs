@@ -90,7 +90,10 @@ fn set(u: &mut Unstructured) -> Result<SetFile> {
 
 fuzz_target!(|bytes: &[u8]| {
     let mut u = Unstructured::new(bytes);
-    let Ok((file, fine)) = set(&mut u).and_then(|file| Ok((file, u.int_in_range(0..=4)?))) else {
+    // Seams take longest with the counting of branches, and every eighth set has its
+    // own examined. What is over when the bytes are counts as no.
+    let made = set(&mut u).and_then(|file| Ok((file, u.int_in_range(0..=4)?, !u.ratio(7, 8)?)));
+    let Ok((file, fine, surveyed)) = made else {
         return;
     };
     let Ok(reading) = PatchSet::build(file) else {
@@ -101,9 +104,11 @@ fuzz_target!(|bytes: &[u8]| {
     let chord = size(&set) * 0.04 * 0.5_f64.powi(fine);
     if let Ok(topology) = Topology::build(&set) {
         gaps(&set, &topology);
-        let survey = Survey::of(&set, &topology);
-        let text = chordwise::report::SeamReport::new(&set, &survey, None).text();
-        assert!(text.contains("seams"));
+        if surveyed {
+            let survey = Survey::of(&set, &topology);
+            let text = chordwise::report::SeamReport::new(&set, &survey, None).text();
+            assert!(text.contains("seams"));
+        }
     }
     let limits = Limits::new(chord, None, None);
     // What is nearly refused is meshed in part to predict it; nothing is, here.
@@ -140,6 +145,7 @@ fn gaps(set: &PatchSet, topology: &Topology) {
     let curve = |edge: chordwise::topology::EdgeId| {
         set.pieces()[edge.piece().index()].surface.edge(edge.side())
     };
+    let slack = 1e-9 + verdict::rounding(set);
     for seam in topology.seams().iter().filter(|seam| seam.spans.len() > 1) {
         let master = &topology.spans()[seam.spans[0].index()];
         let along = curve(master.edge);
@@ -149,7 +155,6 @@ fn gaps(set: &PatchSet, topology: &Topology) {
             for k in 0..=8 {
                 let t = other.t[0] + (other.t[1] - other.t[0]) * f64::from(k) / 8.0;
                 let distance = distance(&own.eval(t), at);
-                let slack = 1e-9 + verdict::rounding(set);
                 assert!(
                     distance <= other.gap.proved + slack,
                     "{distance:e} apart, {:e} proved",
