@@ -1,13 +1,19 @@
-//! How many triangles, beside the floor? One line a surface and chord.
+//! How many triangles, beside the floor, and how many a second? One line a
+//! surface and chord; then the smooth panel at three chords on one thread and on
+//! two, beside what this machine's memory takes.
 //!
 //! `cargo bench --bench triangles` prints the family; names of the family or
-//! paths of sets behind `--` choose.
+//! paths of sets behind `--` choose, and leave out the speeds.
+
+use std::hint::black_box;
+use std::time::Instant;
 
 use chordwise::demo::family;
 use chordwise::mesh::Meshed;
 use chordwise::patch_set::PatchSet;
-use chordwise::sampling::Limits;
-use chordwise::tessellation::floor;
+use chordwise::sampling::{Limits, Samples};
+use chordwise::tessellation::{floor, tessellate};
+use chordwise::topology::Topology;
 
 fn main() {
     println!(
@@ -37,6 +43,74 @@ fn main() {
             Err(faults) => println!("{}", faults.render(false)),
         }
     }
+    if arguments.is_empty()
+        && let Err(message) = speeds()
+    {
+        println!("{message}");
+    }
+}
+
+/// Bytes of a triangle in memory, shared vertices counted: three indices, and half
+/// a vertex of a point and a normal in double precision.
+const BYTES: f64 = 12.0 + 24.0;
+
+/// Runs of everything that is timed; the quickest counts.
+const RUNS: usize = 5;
+
+fn quickest(mut run: impl FnMut()) -> f64 {
+    let times = (0..RUNS).map(|_| {
+        let start = Instant::now();
+        run();
+        start.elapsed().as_secs_f64()
+    });
+    times.fold(f64::INFINITY, f64::min)
+}
+
+/// The speed table: sampling and tessellation of the smooth panel, proved.
+fn speeds() -> Result<(), Box<dyn std::error::Error>> {
+    let mut memory = vec![0.0_f64; 32 << 20];
+    let seconds = quickest(|| black_box(&mut memory[..]).fill(black_box(1.0)));
+    let bandwidth = number(memory.len() * 8) / seconds;
+    println!(
+        "\nwriting memory: {:.1} GB/s on one thread",
+        bandwidth / 1e9
+    );
+    println!(
+        "\n| triangles a patch | one thread, M/s | two threads, M/s | two over one | one thread, part of writing memory |"
+    );
+    println!("|---|---|---|---|---|");
+    let members = family();
+    let smooth = &members[0].set;
+    let topology = Topology::build(smooth)?;
+    for chord in [0.006, 0.0006, 0.0002] {
+        let limits = Limits::new(chord, None, None);
+        let mut count = 0;
+        let mut rates = Vec::new();
+        for threads in [1, 2] {
+            let pool = rayon::ThreadPoolBuilder::new()
+                .num_threads(threads)
+                .build()?;
+            let seconds = pool.install(|| {
+                quickest(|| {
+                    let samples = Samples::new(smooth, &topology, &limits).expect("it samples");
+                    let made = tessellate(smooth, &topology, &samples, &limits, |_| true);
+                    let pieces = made.expect("it is proved").pieces;
+                    count = pieces.iter().flatten().map(|p| p.triangles.len()).sum();
+                    black_box(&pieces);
+                })
+            });
+            rates.push(number(count) / seconds);
+        }
+        println!(
+            "| {} | {:.2} | {:.2} | {:.2} | {:.1} % |",
+            count / smooth.pieces().len(),
+            rates[0] / 1e6,
+            rates[1] / 1e6,
+            rates[1] / rates[0],
+            100.0 * rates[0] * BYTES / bandwidth,
+        );
+    }
+    Ok(())
 }
 
 fn line(name: &str, set: &PatchSet, chord: f64, goal: Option<f64>) {

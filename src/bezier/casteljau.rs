@@ -34,6 +34,13 @@ pub(super) fn value<const N: usize>(points: &mut [SVector<f64, N>], t: f64) -> S
     points[0]
 }
 
+/// The point at `t` of a cubic: the same operations, unrolled.
+#[inline]
+pub(super) fn cubic<const N: usize>([a, b, c, d]: [SVector<f64, N>; 4], t: f64) -> SVector<f64, N> {
+    let (ab, bc, cd) = (lerp(a, b, t), lerp(b, c, t), lerp(c, d, t));
+    lerp(lerp(ab, bc, t), lerp(bc, cd, t), t)
+}
+
 /// Value, first and second derivative at `t`; overwrites `points`.
 #[inline]
 pub(super) fn value_and_derivatives<const N: usize>(

@@ -96,11 +96,22 @@ impl BezierPatch {
     }
 
     fn value<const N: usize>(&self, net: &[SVector<f64, N>], u: f64, v: f64) -> SVector<f64, N> {
-        if self.is_short() {
+        if self.degree == (3, 3) {
+            Self::bicubic(net, u, v)
+        } else if self.is_short() {
             self.value_within::<N, { casteljau::SHORT }>(net, u, v)
         } else {
             self.value_within::<N, { casteljau::LONG }>(net, u, v)
         }
+    }
+
+    /// The usual case, with rows of known length.
+    fn bicubic<const N: usize>(net: &[SVector<f64, N>], u: f64, v: f64) -> SVector<f64, N> {
+        let mut column = [SVector::zeros(); 4];
+        for (target, row) in column.iter_mut().zip(net.chunks_exact(4)) {
+            *target = casteljau::cubic([row[0], row[1], row[2], row[3]], v);
+        }
+        casteljau::cubic(column, u)
     }
 
     fn value_within<const N: usize, const LEN: usize>(

@@ -65,6 +65,11 @@ pub(super) struct TessellateArguments {
     #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
     max_edge: Option<Length>,
 
+    /// Take out every vertex the proof can do without: fewer triangles, for many
+    /// times the time
+    #[arg(long)]
+    thin: bool,
+
     /// How triangles are stored [default: strips for GLB, triangles for STL,
     /// else indexed]
     #[arg(long, value_name = "LAYOUT", value_parser = names(&Layout::ALL.map(Layout::name)))]
@@ -199,11 +204,12 @@ impl TessellateArguments {
         let limits = self.limits(set)?;
         let chord = Tolerance::new(limits.chord)?;
         let (low, high) = extents(set);
-        let held = Limits::new(
+        let mut held = Limits::new(
             limits.chord - format.rounding(low, high, chord),
             limits.normal_rad,
             limits.max_edge,
         );
+        held.thin = self.thin;
         let wanted = self.wanted(set)?;
         let of = |piece: PieceId| wanted[piece.index()];
         let budget = self.meshing.budget();

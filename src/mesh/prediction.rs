@@ -220,13 +220,17 @@ pub(super) fn sizes(
 /// Four times the chord lets triangles be twice as large.
 fn coarser(limits: &Limits, level: i32) -> Limits {
     let twice = 2.0_f64.powi(level);
-    Limits::new(
+    let coarse = Limits::new(
         limits.chord * twice * twice,
         limits
             .normal_rad
             .map(|angle| (angle * twice).min(std::f64::consts::PI)),
         limits.max_edge.map(|edge| edge * twice),
-    )
+    );
+    Limits {
+        thin: limits.thin,
+        ..coarse
+    }
 }
 
 fn trial(

@@ -8,18 +8,18 @@
 //! ```
 //!
 //! L, M, N is the second form in the frame (along, across), W the width of the
-//! piece. The triangle of least area at error e has edges of error 3/4 e where
-//! K > 0, so a run that used all of e would leave the triangles beside it
-//! without proof: lambda = 0.75 there, and 0.9 where the surface across is
-//! straight (or saddle-shaped) as far as the piece goes. The twist terms are
-//! the lattice's own: along a straight edge of a saddle the samples stand as
-//! far apart as the rows inside.
+//! piece. lambda is 0.64 where K > 0: the rows and the columns of a lattice whose
+//! triangles are as wide as high stand 8 lambda e = 5.12 e apart (in squares of
+//! the second form), so samples that far apart fit them both ways. It is 0.9 where
+//! the surface across is straight (or saddle-shaped) as far as the piece goes. The
+//! twist terms are the lattice's own: along a straight edge of a saddle the
+//! samples stand as far apart as the rows inside.
 
 use super::Limits;
 use crate::bezier::{BezierPatch, CurveJet, Side};
 
 /// The part of the chord an edge may use where the surface bends across it.
-const BENT_ACROSS: f64 = 0.75;
+const BENT_ACROSS: f64 = 0.64;
 
 /// The part it may use where the surface is straight across.
 const STRAIGHT_ACROSS: f64 = 0.9;
@@ -57,9 +57,9 @@ pub(super) fn density(curve: &CurveJet, uses: &[Use], s: f64, limits: &Limits) -
         if gaussian < 0.0 && shape.twist.abs() > 0.0 {
             let twist = shape.twist.abs();
             least = least.max(
-                (twist / (8.94 * e))
+                (twist / (8.94 * limits.interior))
                     .sqrt()
-                    .min(twist * shape.width / (8.0 * e)),
+                    .min(twist * shape.width / (8.0 * limits.interior)),
             );
         }
     }

@@ -12,11 +12,14 @@ pub struct Limits {
     pub normal_rad: Option<f64>,
     /// Largest edge of a triangle.
     pub max_edge: Option<f64>,
+    /// Whether vertices are taken out again where the rest can still be proved:
+    /// fewer triangles for a multiple of the time.
+    pub thin: bool,
 }
 
 /// Inner triangles are laid out for this part of the chord: the rest is for
 /// the Hessian's change over a triangle, which the layout does not see.
-const LAYOUT: f64 = 0.985;
+const LAYOUT: f64 = 0.97;
 
 impl Limits {
     /// Limits for a chord tolerance, and the others where asked for.
@@ -27,7 +30,13 @@ impl Limits {
             interior: chord * LAYOUT,
             normal_rad,
             max_edge,
+            thin: false,
         }
+    }
+
+    /// Whether the chord alone rules.
+    pub(crate) fn shape_is_free(&self) -> bool {
+        self.normal_rad.is_none() && self.max_edge.is_none()
     }
 
     /// What a length says of a triangle beside its deviation: the chord where

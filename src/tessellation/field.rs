@@ -1,15 +1,10 @@
 //! Second derivatives of a piece on a coarse grid, to choose steps and
 //! diagonals by. Nothing here proves anything.
 
-use crate::bezier::BezierPatch;
+use super::nets::Nets;
+use crate::bezier::{BezierPatch, SurfaceJet};
 use crate::sampling::{Limits, ratio};
 use crate::scalar::{Point, Vector};
-
-/// Grid cells in each direction for a polynomial of degree 3 or less.
-const CELLS: usize = 6;
-
-/// Grid cells where the surface may vary more.
-const CELLS_FINE: usize = 12;
 
 /// How much a sideways shift of an edge counts beside a height: about the tilt
 /// of neighbouring triangles, by which the proof multiplies it.
@@ -61,30 +56,53 @@ pub(super) struct Field<'a> {
 }
 
 impl<'a> Field<'a> {
-    pub(super) fn new(surface: &'a BezierPatch) -> Self {
-        let (m, n) = surface.degree();
-        let fine = surface.is_rational() || m.max(n) > 3;
-        let cells = if fine { CELLS_FINE } else { CELLS };
-        let mut bends = Vec::with_capacity((cells + 1) * (cells + 1));
-        for i in 0..=cells {
-            for j in 0..=cells {
-                let (u, v) = (ratio(i, cells), ratio(j, cells));
-                let jet = surface.jet(u, v);
-                let normal = jet.normal().or_else(|| surface.normal(u, v));
-                let normal = normal.unwrap_or_else(Vector::zeros);
-                bends.push(Bend {
-                    normal,
-                    first: [jet.du, jet.dv],
-                    second: [jet.duu, jet.duv, jet.dvv],
-                    form: jet.second_form(&normal),
-                });
+    pub(super) fn new(surface: &'a BezierPatch, nets: &Nets) -> Self {
+        let orders = [[0, 0], [1, 0], [0, 1], [2, 0], [1, 1], [0, 2]];
+        let grids = orders.map(|[i, j]| nets.grid(nets.derived(i, j)));
+        let cells = nets.cells;
+        let bends = (0..grids[0].len()).map(|node| {
+            let [s, u, v, uu, uv, vv] = [0, 1, 2, 3, 4, 5].map(|k| grids[k][node]);
+            // Of N = w S, by the product rule.
+            let w = s.w;
+            let point = s.xyz() / w;
+            let first = [u, v].map(|d| (d.xyz() - point * d.w) / w);
+            let second = [
+                (uu.xyz() - first[0] * (2.0 * u.w) - point * uu.w) / w,
+                (uv.xyz() - first[1] * u.w - first[0] * v.w - point * uv.w) / w,
+                (vv.xyz() - first[1] * (2.0 * v.w) - point * vv.w) / w,
+            ];
+            let jet = SurfaceJet {
+                point: nets.origin + point,
+                du: first[0],
+                dv: first[1],
+                duu: second[0],
+                duv: second[1],
+                dvv: second[2],
+            };
+            // Towards a pole the normal is a limit.
+            let normal = jet.normal().or_else(|| {
+                let [i, j] = [node / (cells + 1), node % (cells + 1)];
+                surface.normal(ratio(i, cells), ratio(j, cells))
+            });
+            let normal = normal.unwrap_or_else(Vector::zeros);
+            Bend {
+                normal,
+                first,
+                second,
+                form: jet.second_form(&normal),
             }
-        }
+        });
+        let bends = bends.collect();
         Self {
             surface,
             cells,
             bends,
         }
+    }
+
+    /// The surface's normals on the grid.
+    pub(super) fn normals(&self) -> impl Iterator<Item = &Vector> {
+        self.bends.iter().map(|bend| &bend.normal)
     }
 
     /// The bend at (u, v), bilinear between grid places.
@@ -142,7 +160,7 @@ impl<'a> Field<'a> {
         ];
         let facet = (points[1] - points[0]).cross(&(points[2] - points[0]));
         let mut inward = 0.0;
-        if facet.dot(&normal) <= 0.0 && self.faces_inwards(facet, middle) {
+        if facet.dot(&normal) <= 0.0 && self.faces_inwards(facet, &[middle]) {
             inward = INWARD * limits.chord;
         }
         let mut square = [0.0; 3];
@@ -174,9 +192,11 @@ impl<'a> Field<'a> {
             .max(inward)
     }
 
-    /// Whether a facet faces against the surface's own normal.
-    pub(super) fn faces_inwards(&self, facet: Vector, [u, v]: [f64; 2]) -> bool {
-        let normal = self.surface.normal(u, v);
-        normal.is_some_and(|normal| facet.dot(&normal) <= 0.0)
+    /// Whether a facet faces against the mean of the surface's own normals at
+    /// some places.
+    pub(super) fn faces_inwards(&self, facet: Vector, places: &[[f64; 2]]) -> bool {
+        let normals = places.iter().map(|[u, v]| self.surface.normal(*u, *v));
+        let sum: Option<Vector> = normals.sum();
+        sum.is_some_and(|normal| facet.dot(&normal) <= 0.0)
     }
 }

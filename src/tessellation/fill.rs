@@ -1,11 +1,15 @@
 //! One piece: laid out, proved, laid out better, refined until all is proved.
 
-use super::certificate::Prover;
+use super::certificate::{Flat, Prover};
 use super::field::Field;
+use super::finish;
 use super::interpolation::SecondDerivatives;
 use super::lattice::Ground;
-use super::layout::layout;
+use super::layout::{Layout, layout};
+use super::nets::Nets;
 use super::planar;
+use super::quick::Quick;
+use super::sweep::Sweep;
 use super::work::Work;
 use crate::bezier::BezierPatch;
 use crate::sampling::{Limits, Outline};
@@ -39,6 +43,14 @@ pub struct Proved {
 }
 
 impl Proved {
+    /// The worst of many.
+    pub(super) fn worst(figures: &[Self]) -> Self {
+        figures.iter().fold(Self::default(), |worst, figure| Self {
+            to_mesh: worst.to_mesh.max(figure.to_mesh),
+            to_surface: worst.to_surface.max(figure.to_surface),
+        })
+    }
+
     /// The larger of the two.
     pub(super) fn largest(&self) -> f64 {
         self.to_mesh.max(self.to_surface)
@@ -64,6 +76,46 @@ pub(crate) struct Stuck {
     pub(crate) proved: f64,
 }
 
+impl Stuck {
+    /// A triangle without area that cannot be left out.
+    pub(super) fn uncovered(surface: &BezierPatch, place: [f64; 2]) -> Self {
+        Self {
+            place,
+            point: surface.eval(place[0], place[1]),
+            proved: f64::INFINITY,
+        }
+    }
+}
+
+/// Fills one piece with triangles that are proved within the limits: where
+/// thinning is asked for, the best of several layouts, thinned.
+pub(crate) fn fill(
+    surface: &BezierPatch,
+    outline: &Outline,
+    limits: &Limits,
+) -> Result<Filled, Stuck> {
+    if !limits.thin {
+        return filled(surface, outline, limits);
+    }
+    let mut best = filled(surface, outline, limits)?;
+    for part in WIDER {
+        let wider = Limits {
+            interior: limits.chord * part,
+            ..*limits
+        };
+        if let Ok(other) = filled(surface, outline, &wider)
+            && other.triangles.len() < best.triangles.len()
+        {
+            best = other;
+        }
+    }
+    Ok(best)
+}
+
+/// Parts of the chord that inner triangles are laid out for when thinning: what
+/// fails is refined, which may come out at fewer triangles.
+const WIDER: [f64; 3] = [0.985, 1.0, 1.03];
+
 /// Fills one piece with triangles that are proved within the limits.
 ///
 /// The layout follows the second derivatives and may come out a hair too wide,
@@ -71,19 +123,11 @@ pub(crate) struct Stuck {
 /// looked at as a whole, and the layout made again with what it taught, while
 /// more than a few triangles away from the border fail. The most promising
 /// layout is then refined.
-pub(crate) fn fill(
-    surface: &BezierPatch,
-    outline: &Outline,
-    limits: &Limits,
-) -> Result<Filled, Stuck> {
+fn filled(surface: &BezierPatch, outline: &Outline, limits: &Limits) -> Result<Filled, Stuck> {
     if is_curve(surface) {
         return Ok(Filled::empty());
     }
-    let field = Field::new(surface);
-    let derivatives = SecondDerivatives::new(surface);
-    let planar = planar::proof(surface, outline, limits);
-    let mut ground = Ground::new(&field, limits, planar.is_some());
-    let mut prover = Prover::new(surface);
+    let prover = Prover::new(surface);
     if prover.slack() > limits.chord {
         // Rounding alone exceeds the chord: no refinement can help.
         return Err(Stuck {
@@ -92,17 +136,81 @@ pub(crate) fn fill(
             proved: prover.slack(),
         });
     }
+    let nets = Nets::new(surface);
+    let field = Field::new(surface, &nets);
+    let planar = planar::proof(surface, outline, limits);
+    let coursed = planar.is_none() && !outline.collapsed.contains(&true);
+    let ground = Ground::new(&field, limits, planar.is_some(), coursed);
+    let first = layout(surface, &ground, outline);
+    let quick = (coursed && limits.shape_is_free())
+        .then(|| Quick::new(surface, &nets))
+        .flatten();
+    if let Some(quick) = quick {
+        let off = first.off(surface);
+        let sweep = quick.sweep(&first, &off, &field, limits, prover.slack());
+        if sweep.failed.is_empty() && sweep.upright && !limits.thin {
+            return swept(surface, first, &sweep);
+        }
+        if first.inner_share(&sweep.failed) <= FEW {
+            let derivatives = SecondDerivatives::new(surface, &nets);
+            let work = Work::swept(surface, &field, &derivatives, limits, first, sweep);
+            return refined(work, prover, planar);
+        }
+    }
+    let derivatives = SecondDerivatives::new(surface, &nets);
+    laid_out_again(
+        surface,
+        outline,
+        ground,
+        &derivatives,
+        first,
+        prover,
+        planar,
+    )
+}
+
+/// A piece the sweep has proved.
+fn swept(surface: &BezierPatch, layout: Layout, sweep: &Sweep) -> Result<Filled, Stuck> {
+    let candidates = sweep.highest.iter().map(|&(t, peak)| {
+        let corners = layout.triangulation.triangles[t as usize];
+        let flat = Flat::new(corners.map(|v| layout.points[v as usize]));
+        (layout.triangulation.corners(t), flat, peak)
+    });
+    let attained = finish::attained(surface, candidates);
+    let worst = Proved::worst(&sweep.figures);
+    layout
+        .finish(worst, attained)
+        .map_err(|place| Stuck::uncovered(surface, place))
+}
+
+/// Refines what has not been proved.
+fn refined(mut work: Work, mut prover: Prover, planar: Option<f64>) -> Result<Filled, Stuck> {
+    let failed = work.round(&mut prover, planar);
+    work.prove(&mut prover, failed, planar)?;
+    if work.limits.thin && planar.is_none() {
+        work.thin(&mut prover);
+    }
+    let proved = Proved::worst(&work.figures);
+    work.finish(&mut prover, proved)
+}
+
+/// Lays a piece out until few triangles fail, and refines these.
+fn laid_out_again(
+    surface: &BezierPatch,
+    outline: &Outline,
+    mut ground: Ground,
+    derivatives: &SecondDerivatives,
+    first: Layout,
+    mut prover: Prover,
+    planar: Option<f64>,
+) -> Result<Filled, Stuck> {
+    let (field, limits) = (ground.field, ground.limits);
     let mut best: Option<Trial> = None;
+    let mut next = first;
     for _ in 0..LAYOUTS {
-        let mut work = Work::new(
-            surface,
-            &field,
-            &derivatives,
-            limits,
-            layout(surface, &ground, outline),
-        );
+        let mut work = Work::new(surface, field, derivatives, limits, next);
         let failed = work.round(&mut prover, planar);
-        let inner = work.inner_failing(&failed);
+        let inner = work.layout.inner_share(&failed);
         let cost = work.figures.len() + 2 * failed.len();
         let lesson = (inner > FEW).then(|| work.lesson(&mut prover));
         if best.as_ref().is_none_or(|b| cost < b.cost) {
@@ -110,12 +218,17 @@ pub(crate) fn fill(
         }
         let Some(lesson) = lesson else { break };
         ground.correction.learn(lesson.into_iter());
+        next = layout(surface, &ground, outline);
     }
     let Trial {
         mut work, failed, ..
     } = best.expect("at least one layout is tried");
-    let proved = work.prove(&mut prover, failed, planar)?;
-    work.finish(proved)
+    work.prove(&mut prover, failed, planar)?;
+    if work.limits.thin && planar.is_none() {
+        work.thin(&mut prover);
+    }
+    let proved = Proved::worst(&work.figures);
+    work.finish(&mut prover, proved)
 }
 
 /// Layouts tried at most.

@@ -38,23 +38,15 @@
 //! A vertex that does not lie on the piece (a seam joined over a gap) adds its
 //! distance to every figure.
 
-use nalgebra::Vector4;
-
 use super::certificate::{Cell, Flat};
+use super::nets::{Homogeneous, Net, Nets};
 use super::quadratic::Quadratic;
 use crate::bezier::BezierPatch;
 use crate::sampling::ratio;
 use crate::scalar::Point;
 
-type Homogeneous = Vector4<f64>;
-
 /// Covers the roundings of a root and what goes before it.
 const ROUNDED_UP: f64 = 1.0 + 4.0 * f64::EPSILON;
-
-/// Grid cells in each direction; more where degrees or weights let second
-/// derivatives vary.
-const CELLS: usize = 6;
-const CELLS_FINE: usize = 12;
 
 /// Orders along u and v of the derivatives in the grid.
 const ORDERS: [[usize; 2]; 7] = [[2, 0], [1, 1], [0, 2], [3, 0], [2, 1], [1, 2], [0, 3]];
@@ -77,139 +69,29 @@ pub(super) struct SecondDerivatives {
     weights: Option<Net>,
 }
 
-/// A net of homogeneous control values, v fastest.
-#[derive(Debug, Clone)]
-struct Net {
-    degree: [usize; 2],
-    values: Vec<Homogeneous>,
-}
-
-impl Net {
-    /// The derivative along one parameter; zero where the degree is.
-    fn derivative(&self, axis: usize) -> Self {
-        let [m, n] = self.degree;
-        if self.degree[axis] == 0 {
-            let mut zero = self.clone();
-            zero.values.fill(Homogeneous::zeros());
-            return zero;
-        }
-        let mut degree = self.degree;
-        degree[axis] -= 1;
-        let factor = ratio(self.degree[axis], 1);
-        let step = if axis == 0 { n + 1 } else { 1 };
-        let mut values = Vec::with_capacity(self.values.len());
-        for i in 0..=m.min(degree[0]) {
-            for j in 0..=n.min(degree[1]) {
-                let at = i * (n + 1) + j;
-                values.push((self.values[at + step] - self.values[at]) * factor);
-            }
-        }
-        Self { degree, values }
-    }
-
-    /// The derivative `along_u` times along u and `along_v` times along v.
-    fn derived(&self, along_u: usize, along_v: usize) -> Self {
-        let axes = [0].repeat(along_u).into_iter().chain([1].repeat(along_v));
-        axes.fold(self.clone(), |net, axis| net.derivative(axis))
-    }
-
-    /// Value by the two rows of Bernstein polynomials.
-    fn value(&self, [bu, bv]: [&[f64]; 2]) -> Homogeneous {
-        let mut sum = Homogeneous::zeros();
-        for (row, x) in self.values.chunks_exact(bv.len()).zip(bu) {
-            let mut along = Homogeneous::zeros();
-            for (value, y) in row.iter().zip(bv) {
-                along += value * *y;
-            }
-            sum += along * *x;
-        }
-        sum
-    }
-
-    /// The largest size of a value, as a functional (n, -n . s) sees it.
-    fn largest(&self, reach: f64) -> f64 {
-        let sizes = self.values.iter().map(|x| size(x, reach));
-        sizes.fold(0.0, f64::max)
-    }
-}
-
-fn size(x: &Homogeneous, reach: f64) -> f64 {
-    x.xyz().norm() + reach * x.w.abs()
-}
-
-/// Bernstein polynomials of one degree at t.
-fn bernstein(degree: usize, t: f64) -> Vec<f64> {
-    let mut row = vec![1.0];
-    for _ in 0..degree {
-        let mut next = vec![0.0; row.len() + 1];
-        for (k, b) in row.iter().enumerate() {
-            next[k] += b * (1.0 - t);
-            next[k + 1] += b * t;
-        }
-        row = next;
-    }
-    row
-}
-
 impl SecondDerivatives {
-    pub(super) fn new(surface: &BezierPatch) -> Self {
-        let (m, n) = surface.degree();
-        let origin = surface.control_point(0, 0);
-        let mut values = Vec::with_capacity((m + 1) * (n + 1));
-        let mut reach = 0.0_f64;
-        for (k, p) in surface.control_points().enumerate() {
-            let w = surface.weight(k / (n + 1), k % (n + 1));
-            let from = p - origin;
-            reach = reach.max(from.norm());
-            values.push(Homogeneous::new(from.x * w, from.y * w, from.z * w, w));
-        }
-        // Vertices of joined seams may lie a little outside the net.
-        reach *= 1.25;
-        let net = Net {
-            degree: [m, n],
-            values,
-        };
-        let fine = surface.is_rational() || m.max(n) > 3;
-        let cells = if fine { CELLS_FINE } else { CELLS };
-        let width = ratio(1, cells);
-        let nets = ORDERS.map(|[i, j]| net.derived(i, j));
-        let off = [0, 1, 2, 3, 4, 5, 6].map(|k| {
-            let bend = |i, j| nets[k].derived(i, j).largest(reach);
-            (bend(2, 0) + bend(0, 2)) * width * width / 8.0
-        });
-        let fourth = [0, 1, 2, 3, 4].map(|k| net.derived(4 - k, k).largest(reach));
-        let rows = |degree: usize| -> Vec<Vec<f64>> {
-            (0..=cells)
-                .map(|k| bernstein(degree, ratio(k, cells)))
-                .collect()
-        };
-        let tables = [0, 1, 2, 3, 4, 5, 6].map(|k| nets[k].degree.map(rows));
-        let mut nodes = Vec::with_capacity((cells + 1) * (cells + 1));
-        for i in 0..=cells {
-            for j in 0..=cells {
-                nodes.push(
-                    [0, 1, 2, 3, 4, 5, 6]
-                        .map(|k| nets[k].value([&tables[k][0][i], &tables[k][1][j]])),
-                );
-            }
-        }
+    pub(super) fn new(surface: &BezierPatch, nets: &Nets) -> Self {
+        let reach = reach(surface, &nets.origin);
+        let width = ratio(1, nets.cells);
+        let largest = |i: usize, j: usize| nets.derived(i, j).largest(reach);
+        let off =
+            ORDERS.map(|[i, j]| (largest(i + 2, j) + largest(i, j + 2)) * width * width / 8.0);
+        let grids = ORDERS.map(|[i, j]| nets.grid(nets.derived(i, j)));
+        let nodes = (0..grids[0].len()).map(|node| [0, 1, 2, 3, 4, 5, 6].map(|k| grids[k][node]));
         Self {
-            origin,
+            origin: nets.origin,
             reach,
-            cells,
-            nodes,
+            cells: nets.cells,
+            nodes: nodes.collect(),
             off,
-            fourth,
-            weights: surface.is_rational().then_some(net),
+            fourth: [0, 1, 2, 3, 4].map(|k| largest(4 - k, k)),
+            weights: surface.is_rational().then(|| nets.itself().clone()),
         }
     }
 
     /// The weight of the piece at a place: 1 where there are none.
-    pub(super) fn weight(&self, [u, v]: [f64; 2]) -> f64 {
-        self.weights.as_ref().map_or(1.0, |net| {
-            let [m, n] = net.degree;
-            net.value([&bernstein(m, u), &bernstein(n, v)]).w
-        })
+    pub(super) fn weight(&self, place: [f64; 2]) -> f64 {
+        self.weights.as_ref().map_or(1.0, |net| net.at(place).w)
     }
 
     /// Bounds a cell against a target whose corners stand at `places`, as
@@ -327,6 +209,13 @@ impl SecondDerivatives {
     }
 }
 
+/// How far from the origin a corner may be: the net's own extent, and a little
+/// more, because vertices of joined seams may lie outside it.
+pub(super) fn reach(surface: &BezierPatch, origin: &Point) -> f64 {
+    let far = surface.control_points().map(|p| (p - origin).norm());
+    1.25 * far.fold(0.0, f64::max)
+}
+
 /// The largest Bernstein coefficient of the error of linear interpolation for
 /// the third derivatives `t` alone, the second ones vanishing at `middle`.
 fn third_part(t: [f64; 4], places: [[f64; 2]; 3], middle: [f64; 2]) -> f64 {
@@ -401,7 +290,7 @@ mod tests {
         let mut bounded = 0;
         for round in 0..600 {
             let surface = patch(round, &mut seed);
-            let derivatives = SecondDerivatives::new(&surface);
+            let derivatives = SecondDerivatives::new(&surface, &Nets::new(&surface));
             let size = [0.02, 0.1, 0.4, 0.8][round / 7 % 4];
             let start = [0, 1].map(|_| random(&mut seed) * (1.0 - size));
             let places = [0, 1, 2].map(|_| start.map(|x| x + size * random(&mut seed)));
@@ -450,7 +339,7 @@ mod tests {
             let small = surface.map(|p| Point::from(p.coords * 1e-3));
             let places = [[0.2, 0.3], [0.5, 0.35], [0.3, 0.6]];
             let [large, small] = [surface, small].map(|surface| {
-                let derivatives = SecondDerivatives::new(&surface);
+                let derivatives = SecondDerivatives::new(&surface, &Nets::new(&surface));
                 let flat = Flat::new(places.map(|[u, v]| surface.eval(u, v)));
                 let weights = places.map(|place| derivatives.weight(place));
                 derivatives.cell(places, weights, &flat, 0.0, 0.0)
@@ -475,7 +364,7 @@ mod tests {
             [0.0, 1.0].map(|y| Point::new(f64::from(i) / 3.0, y, z))
         });
         let surface = BezierPatch::new((3, 1), points.collect(), None).unwrap();
-        let derivatives = SecondDerivatives::new(&surface);
+        let derivatives = SecondDerivatives::new(&surface, &Nets::new(&surface));
         let places = [[0.0, 0.0], [1.0, 0.0], [1.0, 1.0]];
         let flat = Flat::new(places.map(|[u, v]| surface.eval(u, v)));
         let cell = derivatives.cell(places, [1.0; 3], &flat, 0.0, 0.0).unwrap();

@@ -17,25 +17,24 @@
 
 use super::correction::Correction;
 use super::field::{Bend, Field};
-use crate::sampling::Limits;
-use crate::sampling::{Cumulative, ratio};
+use crate::sampling::{Limits, ratio};
 use crate::scalar::Vector;
 
 /// Samples along a row, and of rows.
-const SAMPLES: usize = 16;
-
-/// A point nearer to the side of the piece than this part of a step is left
-/// to the side's own samples.
-const SIDE_CLEARANCE: f64 = 0.5;
-
-/// A row count is rounded up only above this fraction: the rows then stand
-/// slightly wider than asked, and the certificate decides.
-const ROW_SLACK: f64 = 0.12;
+pub(super) const SAMPLES: usize = 8;
 
 /// A step of the lattice along a parameter line may leave the straight line
 /// sideways by this multiple of the chord. The mesh does not care, but the
 /// proof of a triangle pays for it with the tilt of its neighbours.
 const WANDER: f64 = 3.0;
+
+/// A h^2 / e and (C - B^2 / A) k^2 / e of the optimal lattice where K > 0.
+const EQUILATERAL: [f64; 2] = [6.0, 4.5];
+
+/// The same for triangles as wide as high (2 e is the squared circumradius:
+/// k = h = 1.6 sqrt 2e), 1.5 % smaller: rows and columns are then as far apart as the
+/// samples of the sides, whichever way they run.
+const EVEN: [f64; 2] = [5.12, 5.12];
 
 /// Which parameter the rows run along.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -66,19 +65,21 @@ impl Along {
 
 /// Local lattice: row step, row distance and shift, in parameters.
 #[derive(Debug, Clone, Copy)]
-struct Step {
+pub(super) struct Step {
     /// Steps per unit of p (1 / h); zero where the row is straight.
-    rows_step: f64,
+    pub(super) rows_step: f64,
     /// Rows per unit of q (1 / k); zero where the surface is straight across.
-    rows_cross: f64,
+    pub(super) rows_cross: f64,
     /// (A, B, C) of the heights in (p, q).
-    form: [f64; 3],
+    pub(super) form: [f64; 3],
     /// The error it is laid out for.
-    e: f64,
+    pub(super) e: f64,
 }
 
 impl Step {
-    fn new(bend: &Bend, along: Along, limits: &Limits, correction: f64, flat: bool) -> Self {
+    fn new(bend: &Bend, along: Along, ground: &Ground, correction: f64) -> Self {
+        let (limits, flat) = (ground.limits, ground.flat);
+        let [along_row, across] = if ground.coursed { EVEN } else { EQUILATERAL };
         let [l, m, n] = bend.form;
         let (form, first) = match along {
             Along::U => ([l, m, n], bend.first),
@@ -92,8 +93,8 @@ impl Step {
         let floor = 1e-12 * (a * a + b * b + c * c);
         let (mut rows_step, mut rows_cross) = if determinant > floor {
             (
-                (a.abs() / (6.0 * e)).sqrt(),
-                (determinant / (4.5 * e * a.abs())).sqrt(),
+                (a.abs() / (along_row * e)).sqrt(),
+                (determinant / (across * e * a.abs())).sqrt(),
             )
         } else if determinant < -floor {
             // h as long as wide, shorter where the row itself bends, and no
@@ -129,7 +130,7 @@ impl Step {
 
     /// The shift of p that carries a point of one row to a point of the row
     /// `gap` further in q.
-    fn shift(&self, gap: f64) -> f64 {
+    pub(super) fn shift(&self, gap: f64) -> f64 {
         let ([a, b, c], e) = (self.form, self.e);
         let h = 1.0 / self.rows_step;
         let determinant = a * c - b * b;
@@ -198,49 +199,25 @@ fn turn_rate(bend: &Bend, direction: [f64; 2]) -> f64 {
         .sqrt()
 }
 
-/// Points estimated for a lattice with rows along each parameter.
-pub(super) fn cost(ground: &Ground, along: Along) -> f64 {
-    let plan = Plan::new(ground, along);
-    let rows: f64 = plan.rows_total().max(1.0);
-    let per_row = (0..=SAMPLES).map(|j| plan.row_total(j)).sum::<f64>() / ratio(SAMPLES + 1, 1);
-    rows * per_row.max(1.0)
-}
-
-/// The interior points of a piece, row after row: for each row its q and the
-/// ascending p of its points; no row is empty. `before` is the chain of samples on the edge q = 0, by
-/// ascending p: the first row is placed against it.
-pub(super) fn rows(ground: &Ground, along: Along, before: &[f64]) -> Vec<(f64, Vec<f64>)> {
-    let plan = Plan::new(ground, along);
-    let mut rows = Vec::new();
-    let mut chain = before.to_vec();
-    let (places, gap) = plan.row_places();
-    for q in places {
-        let row = plan.row(q, gap, &chain);
-        if !row.is_empty() {
-            chain.clone_from(&row);
-            rows.push((q, row));
-        }
-    }
-    rows
-}
-
 /// What a layout is made on: the surface's bend, the limits, and what earlier
 /// layouts have taught.
 #[derive(Debug)]
 pub(super) struct Ground<'a> {
     pub(super) field: &'a Field<'a>,
     /// The bend on a grid of samples, u-major.
-    bends: Vec<Bend>,
+    pub(super) bends: Vec<Bend>,
     pub(super) limits: &'a Limits,
     pub(super) correction: Correction,
     /// Whether the piece is proved as a plane, where steps need not follow how
     /// the parameters run.
     pub(super) flat: bool,
+    /// Whether rows end in samples of the sides.
+    pub(super) coursed: bool,
 }
 
 impl<'a> Ground<'a> {
     /// Ground no layout has been made on yet.
-    pub(super) fn new(field: &'a Field<'a>, limits: &'a Limits, flat: bool) -> Self {
+    pub(super) fn new(field: &'a Field<'a>, limits: &'a Limits, flat: bool, coursed: bool) -> Self {
         let samples = || 0..=SAMPLES;
         let places =
             samples().flat_map(|i| samples().map(move |j| [ratio(i, SAMPLES), ratio(j, SAMPLES)]));
@@ -250,142 +227,14 @@ impl<'a> Ground<'a> {
             limits,
             correction: Correction::none(),
             flat,
+            coursed,
         }
     }
 
-    fn step(&self, bend: &Bend, along: Along, place: [f64; 2]) -> Step {
+    pub(super) fn step(&self, bend: &Bend, along: Along, place: [f64; 2]) -> Step {
         let correction = self.correction.at(place);
-        Step::new(bend, along, self.limits, correction, self.flat)
+        Step::new(bend, along, self, correction)
     }
-}
-
-struct Plan<'a> {
-    ground: &'a Ground<'a>,
-    along: Along,
-    /// Steps on a grid, q-major.
-    steps: Vec<Step>,
-}
-
-impl<'a> Plan<'a> {
-    fn new(ground: &'a Ground<'a>, along: Along) -> Self {
-        let mut steps = Vec::with_capacity((SAMPLES + 1) * (SAMPLES + 1));
-        for j in 0..=SAMPLES {
-            for i in 0..=SAMPLES {
-                let [row, column] = match along {
-                    Along::U => [i, j],
-                    Along::V => [j, i],
-                };
-                let bend = &ground.bends[row * (SAMPLES + 1) + column];
-                let place = [ratio(row, SAMPLES), ratio(column, SAMPLES)];
-                steps.push(ground.step(bend, along, place));
-            }
-        }
-        Self {
-            ground,
-            along,
-            steps,
-        }
-    }
-
-    fn row_steps(&self, j: usize) -> &[Step] {
-        &self.steps[j * (SAMPLES + 1)..(j + 1) * (SAMPLES + 1)]
-    }
-
-    /// Row density at one q: the power mean of order 4 along the row, near the
-    /// densest place without being ruled by one point.
-    fn density(&self, j: usize) -> f64 {
-        let steps = self.row_steps(j);
-        let mean = steps.iter().map(|s| s.rows_cross.powi(4)).sum::<f64>() / ratio(steps.len(), 1);
-        mean.powf(0.25)
-    }
-
-    fn row_sums(&self) -> Cumulative {
-        Cumulative::new((0..=SAMPLES).map(|j| self.density(j)))
-    }
-
-    /// Number of row distances over the whole piece, not rounded.
-    fn rows_total(&self) -> f64 {
-        self.row_sums().total()
-    }
-
-    /// Number of steps in the row at sample j.
-    fn row_total(&self, j: usize) -> f64 {
-        Cumulative::new(self.row_steps(j).iter().map(|s| s.rows_step)).total()
-    }
-
-    /// The q of every row, and the mean distance between rows.
-    fn row_places(&self) -> (Vec<f64>, f64) {
-        let sums = self.row_sums();
-        let count = round_up(sums.total(), ROW_SLACK);
-        let places = (1..count).map(|k| sums.reach(sums.total() * ratio(k, count)));
-        (places.collect(), 1.0 / ratio(count, 1))
-    }
-
-    fn row(&self, q: f64, gap: f64, before: &[f64]) -> Vec<f64> {
-        let steps: Vec<Step> = (0..=SAMPLES)
-            .map(|i| {
-                let place = self.along.place(ratio(i, SAMPLES), q);
-                let bend = self.ground.field.at(place);
-                self.ground.step(&bend, self.along, place)
-            })
-            .collect();
-        let sums = Cumulative::new(steps.iter().map(|s| s.rows_step));
-        let total = sums.total();
-        if total < 2.0 * SIDE_CLEARANCE {
-            return Vec::new();
-        }
-        let offset = Self::offset(&steps, &sums, gap, before);
-        let mut row = Vec::new();
-        let mut phase = offset;
-        while phase < total - SIDE_CLEARANCE {
-            if phase > SIDE_CLEARANCE {
-                row.push(sums.reach(phase));
-            }
-            phase += 1.0;
-        }
-        row
-    }
-
-    /// The phase in 0..1 at which this row's points stand best against the row
-    /// before: the circular mean over the row of where each place would have it.
-    fn offset(steps: &[Step], sums: &Cumulative, gap: f64, before: &[f64]) -> f64 {
-        let (mut x, mut y) = (0.0, 0.0);
-        for (i, step) in steps.iter().enumerate() {
-            if step.rows_step <= 0.0 {
-                continue;
-            }
-            let p = ratio(i, SAMPLES);
-            let target = p + step.shift(gap);
-            if !(0.0..=1.0).contains(&target) {
-                continue;
-            }
-            let turn = (sums.at(target) - index_in(before, p)) * std::f64::consts::TAU;
-            x += turn.cos();
-            y += turn.sin();
-        }
-        (y.atan2(x) / std::f64::consts::TAU).rem_euclid(1.0)
-    }
-}
-
-/// Where `p` stands among ascending `chain`, as a fractional index, carried on
-/// evenly beyond the ends.
-fn index_in(chain: &[f64], p: f64) -> f64 {
-    let last = chain.len() - 1;
-    if last == 0 {
-        return 0.0;
-    }
-    let cell = chain.partition_point(|&c| c <= p).clamp(1, last) - 1;
-    ratio(cell, 1) + (p - chain[cell]) / (chain[cell + 1] - chain[cell])
-}
-
-/// At least 1; rounds up only when the fraction exceeds `slack`.
-#[allow(
-    clippy::cast_possible_truncation,
-    clippy::cast_sign_loss,
-    reason = "counts are predicted and limited before anything is built"
-)]
-pub(super) fn round_up(total: f64, slack: f64) -> usize {
-    ((total - slack).ceil().max(1.0)) as usize
 }
 
 #[cfg(test)]

@@ -1,10 +1,13 @@
 //! The first triangulation of a piece: border, rows of the lattice, stitching.
 
-use super::lattice::{self, Along, Ground};
-use super::stitch;
+use super::courses::{self, courses};
+use super::lattice::{Along, Ground, SAMPLES};
+use super::plan::{self, Plan};
+use super::stitch::{self, Strips};
 use super::triangulation::{Pole, Triangulation, is_proper};
+use super::work::index;
 use crate::bezier::{BezierPatch, Side};
-use crate::sampling::{BorderVertex, Outline};
+use crate::sampling::{BorderVertex, Outline, ratio};
 use crate::scalar::Point;
 
 /// No mesh vertex yet: a point inside the piece.
@@ -19,6 +22,36 @@ pub(super) struct Layout {
     pub(super) vertices: Vec<u32>,
 }
 
+impl Layout {
+    /// Whether no corner of a triangle is on the border.
+    pub(super) fn is_inner(&self, t: u32) -> bool {
+        let corners = self.triangulation.triangles[t as usize];
+        corners.iter().all(|&v| self.vertices[v as usize] == INNER)
+    }
+
+    /// The share of failing triangles among those that do not touch the
+    /// border; what touches it depends on the seams' samples as much.
+    pub(super) fn inner_share(&self, failed: &[u32]) -> f64 {
+        let all = 0..index(self.triangulation.triangles.len());
+        let all = all.filter(|&t| self.is_inner(t)).count();
+        let bad = failed.iter().filter(|&&t| self.is_inner(t)).count();
+        ratio(bad, all.max(1))
+    }
+
+    /// How far the vertices are off the surface: those on the border may be,
+    /// where a seam is joined over a gap.
+    pub(super) fn off(&self, surface: &BezierPatch) -> Vec<f64> {
+        let off = |(v, point): (usize, &Point)| {
+            if self.vertices[v] == INNER {
+                return 0.0;
+            }
+            let [u, w] = self.triangulation.places[v];
+            (surface.eval(u, w) - point).norm()
+        };
+        self.points.iter().enumerate().map(off).collect()
+    }
+}
+
 /// The sides at q = 0, q = 1, p = 0, p = 1.
 fn sides(along: Along) -> [Side; 4] {
     match along {
@@ -27,20 +60,20 @@ fn sides(along: Along) -> [Side; 4] {
     }
 }
 
-/// Which way the rows run: along collapsed sides if there are any, else the
-/// way that needs fewer points.
-fn direction(ground: &Ground, outline: &Outline) -> Along {
+/// Rows along collapsed sides if there are any, else the way that needs fewer
+/// points.
+fn plan<'a>(ground: &'a Ground, outline: &Outline) -> Plan<'a> {
     let collapsed = |side: Side| outline.collapsed[side.index()];
     if collapsed(Side::V0) || collapsed(Side::V1) {
-        Along::U
+        Plan::new(ground, Along::U)
     } else if collapsed(Side::U0) || collapsed(Side::U1) {
-        Along::V
+        Plan::new(ground, Along::V)
     } else {
-        let cost = |along| lattice::cost(ground, along);
-        if cost(Along::V) < cost(Along::U) * 0.999 {
-            Along::V
+        let [along_u, along_v] = [Along::U, Along::V].map(|along| Plan::new(ground, along));
+        if along_v.cost() < along_u.cost() * 0.999 {
+            along_v
         } else {
-            Along::U
+            along_u
         }
     }
 }
@@ -82,11 +115,17 @@ impl Builder<'_> {
 }
 
 pub(super) fn layout(surface: &BezierPatch, ground: &Ground, outline: &Outline) -> Layout {
-    let along = direction(ground, outline);
+    let plan = plan(ground, outline);
+    let along = plan.along;
     let [bottom, top, left, right] = sides(along);
     let ps = |side: Side| -> Vec<f64> { outline.side(side).iter().map(|b| b.t).collect() };
     let collapsed = |side: Side| outline.collapsed[side.index()];
-    let mut rows = lattice::rows(ground, along, &ps(bottom));
+    if ground.coursed
+        && let Some(layout) = coursed(surface, &plan, outline)
+    {
+        return layout;
+    }
+    let mut rows = plan::rows(&plan, &ps(bottom));
     if rows.is_empty() && (collapsed(bottom) || collapsed(top)) && !is_plain(outline, left, right) {
         // The polygon of a piece with a pole is not monotone without a row.
         rows.push((0.5, vec![0.5]));
@@ -192,6 +231,92 @@ pub(super) fn layout(surface: &BezierPatch, ground: &Ground, outline: &Outline) 
         points: build.points,
         vertices: build.vertices,
     }
+}
+
+/// A piece without collapsed sides, in rows that end in the sides' samples;
+/// `None` where these would run into each other.
+fn coursed(surface: &BezierPatch, plan: &Plan, outline: &Outline) -> Option<Layout> {
+    let along = plan.along;
+    let sides = sides(along);
+    let parameters = sides.map(|side| outline.side(side).iter().map(|b| b.t).collect::<Vec<f64>>());
+    let rows = courses(plan, &parameters);
+    let inside: usize = rows.iter().map(|row| row.points.len()).sum();
+    let count = inside + parameters.iter().map(Vec::len).sum::<usize>();
+    let mut build = Builder {
+        surface,
+        along,
+        places: Vec::with_capacity(count),
+        points: Vec::with_capacity(count),
+        vertices: Vec::with_capacity(count),
+    };
+    let [bottom, top] = [0, 1].map(|k| build.border(sides[k], outline.side(sides[k])));
+    let [left, right] = [2, 3].map(|k| {
+        let samples = outline.side(sides[k]);
+        let end = |chain: &[u32]| {
+            if k == 2 {
+                chain[0]
+            } else {
+                chain[chain.len() - 1]
+            }
+        };
+        let mut chain = vec![end(&bottom)];
+        chain.extend(build.border(sides[k], &samples[1..samples.len() - 1]));
+        chain.push(end(&top));
+        chain
+    });
+    let chains: Vec<Vec<u32>> = rows
+        .iter()
+        .map(|row| {
+            let inner = row.points.iter().map(|&[p, q]| {
+                let place = along.place(p, q);
+                let point = surface.eval(place[0], place[1]);
+                build.push(place, point, INNER)
+            });
+            let mut chain = Vec::with_capacity(row.points.len() + 2);
+            chain.push(left[row.ends[0]]);
+            chain.extend(inner);
+            chain.push(right[row.ends[1]]);
+            chain
+        })
+        .collect();
+    let at = |v: u32| {
+        let (p, q) = along.split(build.places[v as usize]);
+        [p, q]
+    };
+    let mut strips = Strips::new(build.places.len());
+    let last = [left.len() - 1, right.len() - 1];
+    for row in 0..=rows.len() {
+        let (below, start) = row
+            .checked_sub(1)
+            .map_or((&bottom, [0, 0]), |k| (&chains[k], rows[k].ends));
+        let (above, stop) = rows
+            .get(row)
+            .map_or((&top, last), |course| (&chains[row], course.ends));
+        let mut lower = below.clone();
+        lower.extend(right.get(start[1] + 1..stop[1]).unwrap_or_default());
+        let mut upper = left.get(start[0] + 1..stop[0]).unwrap_or_default().to_vec();
+        upper.extend(above);
+        let steps = rows
+            .get(row)
+            .map_or_else(|| plan.row_steps(SAMPLES), |course| &course.steps);
+        strips.fill(&lower, &upper, at, |corners| courses::error(steps, corners));
+    }
+    if !strips.good {
+        return None;
+    }
+    if along == Along::V {
+        strips = strips.mirrored();
+    }
+    Some(Layout {
+        triangulation: Triangulation {
+            places: build.places,
+            pole: None,
+            triangles: strips.triangles,
+            neighbours: strips.neighbours,
+        },
+        points: build.points,
+        vertices: build.vertices,
+    })
 }
 
 /// Whether both upright sides are one segment each.

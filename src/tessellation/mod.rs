@@ -1,30 +1,40 @@
 //! Triangles for every piece, each proved within the chord tolerance.
 //!
 //! A piece is laid out (`layout`): its border as the seams have sampled it, its
-//! inside as rows of the optimal lattice (`lattice`, steps from a coarse
-//! `field` of second derivatives), stitched into triangles (`stitch`) and
-//! improved by exchanging diagonals. None of that is trusted: every triangle is
-//! then proved (`proving`): from the ranges of second derivatives where that does
-//! (`interpolation`), from its net where it does not (`certificate`), with its
-//! neighbours where parameters wander (`verdict`), or at once where the piece is
-//! flat (`planar`). A layout that fails in many places is made again with what
-//! the proof taught (`correction`); what still fails is refined until it is
-//! proved (`refine`), or the run fails and says where.
+//! inside as rows of the optimal lattice (`lattice`, `plan`, steps from a coarse
+//! `field` of second derivatives) that end in the border's samples (`courses`),
+//! stitched into triangles (`stitch`). None of that is trusted: every triangle is
+//! then proved. Most are in one pass (`sweep`) with quick bounds from second
+//! derivatives (`quick`, `border`). Others are proved (`proving`) by closer ones
+//! (`interpolation`) or from their nets (`certificate`), with their neighbours where
+//! parameters wander (`verdict`), or at once where the piece is flat (`planar`). A
+//! layout that fails in many places is made again with what the proof taught
+//! (`correction`); what still fails is refined until it is proved (`refine`), or
+//! the run fails and says where. On request vertices are taken out again (`thin`).
 
+mod border;
 mod certificate;
 mod correction;
+mod courses;
 mod field;
 mod fill;
+mod finish;
 mod floor;
+mod hole;
 mod interpolation;
 mod lattice;
 mod layout;
+mod nets;
+mod plan;
 mod planar;
 mod proving;
 mod quadratic;
+mod quick;
 mod refine;
 mod remainder;
 mod stitch;
+mod sweep;
+mod thin;
 mod triangulation;
 mod verdict;
 mod work;

@@ -19,7 +19,7 @@ impl Work<'_> {
         let stale: Vec<u32> = (0..index(count))
             .filter(|&t| self.stale[t as usize])
             .collect();
-        self.measure(prover, &stale);
+        self.make_room(count);
         self.figures.resize(count, Proved::default());
         let mut ring = std::mem::take(&mut self.ring);
         let mut affected = stale.clone();
@@ -36,6 +36,7 @@ impl Work<'_> {
         }
         let mut failed = Vec::new();
         for &t in &affected {
+            self.measure(prover, t);
             let figure = match planar {
                 Some(bound) => Proved {
                     to_mesh: bound,
@@ -54,8 +55,15 @@ impl Work<'_> {
 
     /// The figures of a triangle: from the bounds at hand, from its own net
     /// where these do not do, and from the nets of its ring where that does not.
-    fn judge(&mut self, prover: &mut Prover, t: u32, ring: &mut Vec<u32>) -> Proved {
+    pub(super) fn judge(&mut self, prover: &mut Prover, t: u32, ring: &mut Vec<u32>) -> Proved {
         let chord = self.limits.chord;
+        self.measure(prover, t);
+        let alone = verdict::alone(self, t);
+        if alone.largest() <= chord {
+            return alone;
+        }
+        self.layout.triangulation.ring(t, ring);
+        ring.iter().for_each(|&member| self.measure(prover, member));
         let mut figure = verdict::judge(self, prover, t, ring);
         if figure.largest() <= chord || self.cells[t as usize].likely > HOPELESS * chord {
             return figure;
@@ -76,38 +84,41 @@ impl Work<'_> {
         figure
     }
 
-    /// Brings flats and cells up to date, cells by interpolation where that
-    /// gives a bound.
-    fn measure(&mut self, prover: &mut Prover, stale: &[u32]) {
-        let count = self.layout.triangulation.triangles.len();
+    fn make_room(&mut self, count: usize) {
         self.flats.resize(count, Flat::new([Point::origin(); 3]));
         self.cells.resize(count, Cell::default());
         self.by_net.resize(count, false);
         for v in self.vertex_facts.len()..self.layout.points.len() {
             self.vertex_facts.push(self.facts(v));
         }
-        for &t in stale {
-            let corners = self.layout.triangulation.triangles[t as usize];
-            let flat = Flat::new(corners.map(|v| self.layout.points[v as usize]));
-            self.flats[t as usize] = flat;
-            self.by_net[t as usize] = false;
-            // Towards a pole parameter lines wander sideways so far that
-            // interpolation would be too wide a bound.
-            let quick = if self.layout.triangulation.pole.is_none() {
-                let places = self.layout.triangulation.corners(t);
-                let facts = corners.map(|v| self.vertex_facts[v as usize]);
-                let off = facts[0][1].max(facts[1][1]).max(facts[2][1]);
-                let weights = facts.map(|fact| fact[0]);
-                self.derivatives
-                    .cell(places, weights, &flat, off, prover.slack())
-            } else {
-                None
-            };
-            match quick {
-                Some(cell) => self.cells[t as usize] = cell,
-                None => {
-                    self.bound_by_net(prover, t);
-                }
+    }
+
+    /// Brings flat and cell of a triangle up to date, the cell by interpolation
+    /// where that gives a bound.
+    pub(super) fn measure(&mut self, prover: &mut Prover, t: u32) {
+        if std::mem::replace(&mut self.measured[t as usize], true) {
+            return;
+        }
+        let corners = self.layout.triangulation.triangles[t as usize];
+        let flat = Flat::new(corners.map(|v| self.layout.points[v as usize]));
+        self.flats[t as usize] = flat;
+        self.by_net[t as usize] = false;
+        // Towards a pole parameter lines wander sideways so far that
+        // interpolation would be too wide a bound.
+        let quick = if self.layout.triangulation.pole.is_none() {
+            let places = self.layout.triangulation.corners(t);
+            let facts = corners.map(|v| self.vertex_facts[v as usize]);
+            let off = facts[0][1].max(facts[1][1]).max(facts[2][1]);
+            let weights = facts.map(|fact| fact[0]);
+            self.derivatives
+                .cell(places, weights, &flat, off, prover.slack())
+        } else {
+            None
+        };
+        match quick {
+            Some(cell) => self.cells[t as usize] = cell,
+            None => {
+                self.bound_by_net(prover, t);
             }
         }
     }

@@ -1,7 +1,7 @@
 //! Refinement: a vertex more where a triangle fails, until none does.
 
 use super::certificate::Prover;
-use super::fill::{Proved, Stuck};
+use super::fill::Stuck;
 use super::layout::INNER;
 use super::triangulation::{BORDER, TriangleEdge, doubled_area, is_proper};
 use super::work::{Work, index};
@@ -17,15 +17,18 @@ const SHORTEST: f64 = 1e-7;
 const GROWTH: usize = 40;
 const GROWTH_BASE: usize = 20_000;
 
+/// The grid's normals are trusted where a facet agrees with them by more than
+/// this, as a cosine.
+const DOUBT: f64 = 0.5;
+
 impl Work<'_> {
-    /// Refines what failed until everything is proved; returns the figures of
-    /// the worst triangle.
+    /// Refines what failed until everything is proved.
     pub(super) fn prove(
         &mut self,
         prover: &mut Prover,
         mut failed: Vec<u32>,
         planar: Option<f64>,
-    ) -> Result<Proved, Stuck> {
+    ) -> Result<(), Stuck> {
         let most = self.layout.triangulation.triangles.len() * GROWTH + GROWTH_BASE;
         let mut turned = false;
         loop {
@@ -47,42 +50,29 @@ impl Work<'_> {
             turned = true;
             failed = self.face_outwards(prover, planar);
         }
-        Ok(self
-            .figures
-            .iter()
-            .fold(Proved::default(), |worst, f| Proved {
-                to_mesh: worst.to_mesh.max(f.to_mesh),
-                to_surface: worst.to_surface.max(f.to_surface),
-            }))
+        Ok(())
     }
 
     /// Exchanges diagonals of triangles that face inwards where what results
-    /// is proved as well. Such triangles are slivers; the bounds hold for them.
-    /// Returns what fails after all, where an exchange had to be taken back.
+    /// is proved as well, and puts a vertex into those where that does not help.
+    /// Such triangles are slivers, or the surface turns round in them; the bounds
+    /// hold for them. Returns what fails after all.
     fn face_outwards(&mut self, prover: &mut Prover, planar: Option<f64>) -> Vec<u32> {
         let mut failed = Vec::new();
+        let mut stubborn = Vec::new();
         for t in 0..index(self.figures.len()) {
             let corners = self.layout.triangulation.triangles[t as usize];
-            if !self.faces_inwards(corners) {
+            let known = self.upright && !self.measured[t as usize];
+            if known || !self.faces_inwards(corners) {
                 continue;
             }
-            for i in 0..3 {
-                let Some([a, b, c, d]) = self.layout.triangulation.quad((t, i)) else {
-                    continue;
-                };
-                let good = |corners| {
-                    is_proper(self.layout.triangulation.places_of(corners))
-                        && !self.faces_inwards(corners)
-                };
-                if !good([d, a, b]) || !good([b, c, d]) {
-                    continue;
-                }
-                self.exchange((t, i));
-                if self.round(prover, planar).is_empty() {
-                    break;
-                }
-                // Flipping the new diagonal restores the old one.
-                self.exchange((t, 2));
+            if !self.turn(prover, planar, t, &mut failed) {
+                stubborn.push(t);
+            }
+        }
+        for t in stubborn {
+            let corners = self.layout.triangulation.triangles[t as usize];
+            if self.faces_inwards(corners) && !self.refine(prover, t) {
                 failed.extend(self.round(prover, planar));
             }
         }
@@ -93,6 +83,38 @@ impl Work<'_> {
         failed
     }
 
+    /// Exchanges an edge of a triangle so that both that come of it face outwards
+    /// and are proved; false if there is none. What fails after an exchange that
+    /// was taken back is added to `failed`.
+    fn turn(
+        &mut self,
+        prover: &mut Prover,
+        planar: Option<f64>,
+        t: u32,
+        failed: &mut Vec<u32>,
+    ) -> bool {
+        for i in 0..3 {
+            let Some([a, b, c, d]) = self.layout.triangulation.quad((t, i)) else {
+                continue;
+            };
+            let good = |corners| {
+                is_proper(self.layout.triangulation.places_of(corners))
+                    && !self.faces_inwards(corners)
+            };
+            if !good([d, a, b]) || !good([b, c, d]) {
+                continue;
+            }
+            self.exchange((t, i));
+            if self.round(prover, planar).is_empty() {
+                return true;
+            }
+            // Flipping the new diagonal restores the old one.
+            self.exchange((t, 2));
+            failed.extend(self.round(prover, planar));
+        }
+        false
+    }
+
     fn exchange(&mut self, (t, i): TriangleEdge) {
         let other = self.layout.triangulation.neighbours[t as usize][i];
         self.layout.triangulation.flip((t, i));
@@ -100,12 +122,18 @@ impl Work<'_> {
         self.touch(other);
     }
 
-    fn faces_inwards(&self, corners: [u32; 3]) -> bool {
+    pub(super) fn faces_inwards(&self, corners: [u32; 3]) -> bool {
         let [a, b, c] = corners.map(|v| self.layout.points[v as usize]);
         let [p, q, r] = self.layout.triangulation.places_of(corners);
         let middle = [0, 1].map(|axis| (p[axis] + q[axis] + r[axis]) / 3.0);
         let facet = (b - a).cross(&(c - a));
-        facet.dot(&self.field.at(middle).normal) <= 0.0 && self.field.faces_inwards(facet, middle)
+        let against = |places: &[[f64; 2]]| {
+            let rough: Vector = places.iter().map(|p| self.field.at(*p).normal).sum();
+            facet.dot(&rough) <= DOUBT * facet.norm() && self.field.faces_inwards(facet, places)
+        };
+        // Against the normal in its middle, or against those at its corners,
+        // which are what a mesh shows.
+        against(&[middle]) || against(&[p, q, r])
     }
 
     pub(super) fn stuck(&self, t: u32, proved: f64) -> Stuck {

@@ -1,5 +1,7 @@
 //! Triangles between chains of points: rows zipped together, sides filled.
 
+use super::triangulation::{BORDER, TriangleEdge, is_proper, narrow};
+
 /// Triangles between two chains that run the same way, `lower` to the right
 /// of `upper` when seen along them (lower chain below when running in +p).
 /// Greedy: the chain goes on whose new triangle has the smaller error.
@@ -25,6 +27,128 @@ pub(super) fn zip(
             triangles.extend(on_upper);
             j += 1;
         }
+    }
+}
+
+/// Triangles between rows, linked as they are made. `open` holds, for a vertex,
+/// the edge from there along its row that the row above is to be linked to.
+#[derive(Debug)]
+pub(super) struct Strips {
+    pub(super) triangles: Vec<[u32; 3]>,
+    /// As in `Triangulation`.
+    pub(super) neighbours: Vec<[u32; 3]>,
+    open: Vec<Option<TriangleEdge>>,
+    /// Whether every triangle so far has area and runs counterclockwise.
+    pub(super) good: bool,
+}
+
+impl Strips {
+    /// For rows made of this many vertices.
+    pub(super) fn new(vertices: usize) -> Self {
+        Self {
+            triangles: Vec::with_capacity(2 * vertices),
+            neighbours: Vec::with_capacity(2 * vertices),
+            open: vec![None; vertices],
+            good: true,
+        }
+    }
+
+    /// Fills the strip between two rows, `lower` below, that may share their
+    /// first and their last vertex. The chain goes on whose new triangle has the
+    /// smaller error.
+    pub(super) fn fill(
+        &mut self,
+        lower: &[u32],
+        upper: &[u32],
+        at: impl Fn(u32) -> [f64; 2],
+        error: impl Fn([[f64; 2]; 3]) -> f64,
+    ) {
+        let (mut i, mut j) = (0, 0);
+        let (mut lower_end, mut upper_end) = (lower.len() - 1, upper.len() - 1);
+        // The edge towards what comes next.
+        let mut ahead = None;
+        if lower[0] == upper[0] {
+            let t = self.push([lower[0], lower[1], upper[1]], &at, None);
+            self.link_below(t, lower[0]);
+            self.open[upper[0] as usize] = Some((t, 2));
+            ahead = Some((t, 1));
+            (i, j) = (1, 1);
+        }
+        let shared = lower[lower_end] == upper[upper_end] && lower_end > i && upper_end > j;
+        if shared {
+            lower_end -= 1;
+            upper_end -= 1;
+        }
+        while i < lower_end || j < upper_end {
+            let on_lower = (i < lower_end).then(|| [lower[i], lower[i + 1], upper[j]]);
+            let on_upper = (j < upper_end).then(|| [lower[i], upper[j + 1], upper[j]]);
+            let rate = |corners: [u32; 3]| {
+                let places = corners.map(&at);
+                if is_proper(places) {
+                    error(places)
+                } else {
+                    f64::INFINITY
+                }
+            };
+            let below = match (on_lower, on_upper) {
+                (Some(a), Some(b)) => rate(a) <= rate(b),
+                (a, _) => a.is_some(),
+            };
+            if below {
+                let t = self.push([lower[i], lower[i + 1], upper[j]], &at, ahead);
+                self.link_below(t, lower[i]);
+                ahead = Some((t, 1));
+                i += 1;
+            } else {
+                let t = self.push([lower[i], upper[j + 1], upper[j]], &at, ahead);
+                self.open[upper[j] as usize] = Some((t, 1));
+                ahead = Some((t, 0));
+                j += 1;
+            }
+        }
+        if shared {
+            let t = self.push([lower[i], lower[i + 1], upper[j]], &at, ahead);
+            self.link_below(t, lower[i]);
+            self.open[upper[j] as usize] = Some((t, 1));
+        }
+    }
+
+    /// Adds a triangle whose last edge is `behind`.
+    fn push(
+        &mut self,
+        corners: [u32; 3],
+        at: impl Fn(u32) -> [f64; 2],
+        behind: Option<TriangleEdge>,
+    ) -> u32 {
+        self.good &= is_proper(corners.map(at));
+        let t = narrow(self.triangles.len());
+        self.triangles.push(corners);
+        self.neighbours.push([BORDER; 3]);
+        if let Some(behind) = behind {
+            self.link((t, 2), behind);
+        }
+        t
+    }
+
+    /// Links the first edge of a triangle to the strip below.
+    fn link_below(&mut self, t: u32, start: u32) {
+        if let Some(below) = self.open[start as usize].take() {
+            self.link((t, 0), below);
+        }
+    }
+
+    fn link(&mut self, (t, i): TriangleEdge, (other, j): TriangleEdge) {
+        self.neighbours[t as usize][i] = other;
+        self.neighbours[other as usize][j] = t;
+    }
+
+    /// The other hand: for rows that were made in a mirror image.
+    pub(super) fn mirrored(mut self) -> Self {
+        for ([_, b, c], [ab, _, ca]) in self.triangles.iter_mut().zip(&mut self.neighbours) {
+            std::mem::swap(b, c);
+            std::mem::swap(ab, ca);
+        }
+        self
     }
 }
 

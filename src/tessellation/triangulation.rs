@@ -59,7 +59,7 @@ pub(super) fn is_proper(corners: [[f64; 2]; 3]) -> bool {
     doubled_area(corners) > FLAT
 }
 
-fn narrow(count: usize) -> u32 {
+pub(super) fn narrow(count: usize) -> u32 {
     u32::try_from(count).expect("a piece has far fewer than 2^32 triangles")
 }
 
@@ -141,7 +141,7 @@ impl Triangulation {
     }
 
     /// Which edge of `t` leads to `neighbour`.
-    fn edge_towards(&self, t: u32, neighbour: u32) -> usize {
+    pub(super) fn edge_towards(&self, t: u32, neighbour: u32) -> usize {
         self.neighbours[t as usize]
             .iter()
             .position(|&n| n == neighbour)
@@ -306,7 +306,7 @@ impl Triangulation {
         }
     }
 
-    fn corner_of(&self, t: u32, vertex: u32) -> usize {
+    pub(super) fn corner_of(&self, t: u32, vertex: u32) -> usize {
         self.triangles[t as usize]
             .iter()
             .position(|&v| v == vertex)

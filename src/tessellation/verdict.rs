@@ -82,7 +82,7 @@ pub(super) fn closest(work: &Work, prover: &mut Prover, t: u32, ring: &mut Vec<u
     })
 }
 
-fn alone(work: &Work, t: u32) -> Proved {
+pub(super) fn alone(work: &Work, t: u32) -> Proved {
     let cell = &work.cells[t as usize];
     let edges = cell.edges.iter().copied().fold(0.0, f64::max);
     Proved {

@@ -1,16 +1,16 @@
 //! A piece at work: its triangulation, and what is known of each triangle.
 
-use std::collections::HashSet;
-
 use super::certificate::{Cell, Flat, Prover};
 use super::field::Field;
-use super::fill::{Attained, Filled, Proved, Stuck};
+use super::fill::{Filled, Proved, Stuck};
+use super::finish;
 use super::interpolation::SecondDerivatives;
-use super::layout::{INNER, Layout};
+use super::layout::Layout;
+use super::sweep::Sweep;
 use super::triangulation::{BORDER, TriangleEdge, is_proper};
 use super::verdict;
 use crate::bezier::BezierPatch;
-use crate::sampling::{Limits, ratio};
+use crate::sampling::Limits;
 use crate::scalar::Vector;
 
 /// Triangles of a piece whose true deviation is looked at.
@@ -33,7 +33,16 @@ pub(super) struct Work<'a> {
     pub(super) derivatives: &'a SecondDerivatives,
     /// Weight of the piece at every vertex, and how far the vertex is off it.
     pub(super) vertex_facts: Vec<[f64; 2]>,
+    /// Whether flat and cell of a triangle are up to date.
+    pub(super) measured: Vec<bool>,
+    /// Whether a triangle has changed since it was last judged.
     pub(super) stale: Vec<bool>,
+    /// Triangles that are no more, once thinning has begun.
+    pub(super) dead: Vec<bool>,
+    /// Triangles known to be high.
+    highest: Vec<u32>,
+    /// Whether what has not been measured is known to face outwards.
+    pub(super) upright: bool,
     /// Estimated errors; NaN where not known.
     errors: Vec<f64>,
     pub(super) figures: Vec<Proved>,
@@ -52,8 +61,51 @@ impl<'a> Work<'a> {
         limits: &'a Limits,
         layout: Layout,
     ) -> Self {
+        let mut work = Self::unimproved(surface, field, derivatives, limits, layout);
+        let all = 0..index(work.stale.len());
+        work.improve(&mut work.inner_edges(all));
+        work
+    }
+
+    /// A layout whose figures are known but for the triangles that failed.
+    pub(super) fn swept(
+        surface: &'a BezierPatch,
+        field: &'a Field<'a>,
+        derivatives: &'a SecondDerivatives,
+        limits: &'a Limits,
+        layout: Layout,
+        sweep: Sweep,
+    ) -> Self {
+        let mut work = Self::unimproved(surface, field, derivatives, limits, layout);
+        work.highest = sweep.highest.into_iter().map(|(t, _)| t).collect();
+        work.upright = sweep.upright;
+        work.figures = sweep.figures;
+        work.stale.fill(false);
+        for &t in &sweep.failed {
+            work.stale[t as usize] = true;
+        }
+        let mut doubtful = sweep.failed;
+        if !sweep.upright {
+            // Exchanges do away with most that face inwards.
+            let all = 0..index(work.stale.len());
+            let corners = |t: u32| work.layout.triangulation.triangles[t as usize];
+            doubtful.extend(all.filter(|&t| work.faces_inwards(corners(t))));
+            doubtful.sort_unstable();
+            doubtful.dedup();
+        }
+        work.improve(&mut work.inner_edges(doubtful.into_iter()));
+        work
+    }
+
+    fn unimproved(
+        surface: &'a BezierPatch,
+        field: &'a Field<'a>,
+        derivatives: &'a SecondDerivatives,
+        limits: &'a Limits,
+        layout: Layout,
+    ) -> Self {
         let count = layout.triangulation.triangles.len();
-        let mut work = Self {
+        Self {
             surface,
             limits,
             field,
@@ -64,22 +116,32 @@ impl<'a> Work<'a> {
             by_net: Vec::new(),
             derivatives,
             vertex_facts: Vec::new(),
+            measured: vec![false; count],
             stale: vec![true; count],
+            dead: Vec::new(),
+            highest: Vec::new(),
+            upright: false,
             errors: vec![f64::NAN; count],
             figures: Vec::new(),
             ring: Vec::new(),
-        };
-        let neighbours = &work.layout.triangulation.neighbours;
-        let all = (0..index(count)).flat_map(|t| (0..3).map(move |i| (t, i)));
-        let mut edges: Vec<TriangleEdge> = all
-            .filter(|&(t, i)| t < neighbours[t as usize][i])
-            .filter(|&(t, i)| neighbours[t as usize][i] != BORDER)
-            .collect();
-        work.improve(&mut edges);
-        work
+        }
     }
 
-    fn error(&self, corners: [u32; 3]) -> f64 {
+    /// The edges of some triangles that have triangles on both sides, each once
+    /// where both are among them.
+    fn inner_edges(&self, triangles: impl Iterator<Item = u32>) -> Vec<TriangleEdge> {
+        let neighbours = &self.layout.triangulation.neighbours;
+        triangles
+            .flat_map(|t| (0..3).map(move |i| (t, i)))
+            .filter(|&(t, i)| neighbours[t as usize][i] != BORDER)
+            .filter(|&(t, i)| {
+                let other = neighbours[t as usize][i];
+                t < other || !self.stale[other as usize]
+            })
+            .collect()
+    }
+
+    pub(super) fn error(&self, corners: [u32; 3]) -> f64 {
         let places = self.layout.triangulation.places_of(corners);
         let points = corners.map(|v| self.layout.points[v as usize]);
         self.field.estimate(places, points, self.limits)
@@ -128,26 +190,11 @@ impl<'a> Work<'a> {
     pub(super) fn touch(&mut self, t: u32) {
         let count = self.layout.triangulation.triangles.len();
         self.stale.resize(count, true);
+        self.measured.resize(count, false);
         self.errors.resize(count, f64::NAN);
         self.stale[t as usize] = true;
+        self.measured[t as usize] = false;
         self.errors[t as usize] = f64::NAN;
-    }
-
-    fn is_inner(&self, t: u32) -> bool {
-        let corners = self.layout.triangulation.triangles[t as usize];
-        corners
-            .iter()
-            .all(|&v| self.layout.vertices[v as usize] == INNER)
-    }
-
-    /// The share of failing triangles among those that do not touch the
-    /// border; what touches it depends on the seams' samples as much.
-    pub(super) fn inner_failing(&self, failed: &[u32]) -> f64 {
-        let all = (0..index(self.figures.len()))
-            .filter(|&t| self.is_inner(t))
-            .count();
-        let bad = failed.iter().filter(|&&t| self.is_inner(t)).count();
-        ratio(bad, all.max(1))
     }
 
     /// Where the inner triangles are, and how much of the chord they use: by
@@ -155,7 +202,7 @@ impl<'a> Work<'a> {
     pub(super) fn lesson(&self, prover: &mut Prover) -> Vec<([f64; 2], f64)> {
         let mut ring = Vec::new();
         (0..index(self.figures.len()))
-            .filter(|&t| self.is_inner(t))
+            .filter(|&t| self.layout.is_inner(t))
             .map(|t| {
                 let cell = &self.cells[t as usize];
                 let figure = verdict::closest(self, prover, t, &mut ring).largest();
@@ -170,51 +217,18 @@ impl<'a> Work<'a> {
         [(a[0] + b[0] + c[0]) / 3.0, (a[1] + b[1] + c[1]) / 3.0]
     }
 
-    /// Drops triangles without area and finds the largest true deviation.
-    pub(super) fn finish(mut self, proved: Proved) -> Result<Filled, Stuck> {
-        let attained = self.attained();
-        let mesh = &self.layout.triangulation;
-        let mut places = mesh.places.clone();
-        let mut triangles = Vec::with_capacity(mesh.triangles.len());
-        let mut dropped = Vec::new();
-        for (t, &corners) in mesh.triangles.iter().enumerate() {
-            let [a, b, c] = corners.map(|v| self.layout.vertices[v as usize]);
-            let same = |x: u32, y: u32| x == y && x != INNER;
-            if same(a, b) || same(b, c) || same(c, a) {
-                dropped.push(index(t));
-                continue;
-            }
-            let mut written = corners;
-            if let Some((k, _)) = mesh.pole_corner(corners) {
-                // A pole has a parameter, and so a normal, in each triangle.
-                written[k] = index(places.len());
-                places.push(mesh.corners(index(t))[k]);
-                self.layout
-                    .points
-                    .push(self.layout.points[corners[k] as usize]);
-                self.layout
-                    .vertices
-                    .push(self.layout.vertices[corners[k] as usize]);
-            }
-            triangles.push(written);
+    /// The filled piece, with the largest true deviation found at the places
+    /// where the heights of the worst triangles are largest.
+    pub(super) fn finish(mut self, prover: &mut Prover, proved: Proved) -> Result<Filled, Stuck> {
+        let highest = std::mem::take(&mut self.highest);
+        let dead = std::mem::take(&mut self.dead);
+        let alive = |t: u32| dead.get(t as usize) != Some(&true);
+        for t in highest.into_iter().filter(|&t| alive(t)) {
+            self.measure(prover, t);
         }
-        if let Some(t) = self.uncovered(&dropped) {
-            return Err(self.stuck(t, f64::INFINITY));
-        }
-        Ok(Filled {
-            places,
-            points: self.layout.points,
-            vertices: self.layout.vertices,
-            triangles,
-            proved,
-            attained,
-        })
-    }
-
-    /// The largest deviation found at the places where the heights of the
-    /// worst triangles are largest.
-    fn attained(&self) -> Attained {
-        let mut worst: Vec<u32> = (0..index(self.cells.len())).collect();
+        let mut worst: Vec<u32> = (0..index(self.cells.len()))
+            .filter(|&t| self.measured[t as usize] && alive(t))
+            .collect();
         let height = |t: &u32| self.cells[*t as usize].height;
         if worst.len() > LOOKED_AT {
             let order = |a: &u32, b: &u32| height(b).total_cmp(&height(a)).then(a.cmp(b));
@@ -222,56 +236,16 @@ impl<'a> Work<'a> {
             worst.truncate(LOOKED_AT);
             worst.sort_unstable();
         }
-        let mut attained = Attained {
-            distance: 0.0,
-            place: [0.5, 0.5],
-            point: self.surface.eval(0.5, 0.5),
-        };
-        for t in worst {
-            let flat = &self.flats[t as usize];
-            let Some(normal) = flat.normal else {
-                continue;
-            };
-            let around = self.layout.triangulation.corners(t);
+        let candidates = worst.iter().map(|&t| {
             let peak = self.cells[t as usize].peak;
-            let at = |axis: usize| (0..3).map(|k| peak[k] * around[k][axis]).sum::<f64>();
-            let point = self.surface.eval(at(0), at(1));
-            let distance = (point - flat.corners[0]).dot(&normal).abs();
-            if distance > attained.distance {
-                attained = Attained {
-                    distance,
-                    place: [at(0), at(1)],
-                    point,
-                };
-            }
-        }
-        attained
-    }
-
-    /// A dropped triangle whose remaining edge is in no triangle that is
-    /// written. A triangle two of whose corners are one vertex was proved
-    /// against that edge, which must then be in the mesh.
-    fn uncovered(&self, dropped: &[u32]) -> Option<u32> {
-        if dropped.is_empty() {
-            return None;
-        }
-        let identity = |v: u32| match self.layout.vertices[v as usize] {
-            INNER => (true, v),
-            vertex => (false, vertex),
-        };
-        let corners_of = |t: u32| self.layout.triangulation.triangles[t as usize].map(identity);
-        let edges_of = |t: u32| {
-            let [a, b, c] = corners_of(t);
-            [[a, b], [b, c], [c, a]].map(|[x, y]| [x.min(y), x.max(y)])
-        };
-        let unwritten: HashSet<u32> = dropped.iter().copied().collect();
-        let written: HashSet<_> = (0..index(self.figures.len()))
-            .filter(|t| !unwritten.contains(t))
-            .flat_map(edges_of)
-            .collect();
-        dropped.iter().copied().find(|&t| {
-            let remaining = edges_of(t).into_iter().find(|[x, y]| x != y);
-            remaining.is_none_or(|edge| !written.contains(&edge))
-        })
+            let places = self.layout.triangulation.corners(t);
+            (places, self.flats[t as usize], peak)
+        });
+        let attained = finish::attained(self.surface, candidates);
+        let surface = self.surface;
+        self.layout
+            .without(&dead)
+            .finish(proved, attained)
+            .map_err(|place| Stuck::uncovered(surface, place))
     }
 }
