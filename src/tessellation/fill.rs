@@ -139,7 +139,10 @@ fn filled(surface: &BezierPatch, outline: &Outline, limits: &Limits) -> Result<F
     let nets = Nets::new(surface);
     let field = Field::new(surface, &nets);
     let planar = planar::proof(surface, outline, limits);
-    let coursed = planar.is_none() && !outline.collapsed.contains(&true);
+    // With weights, rows that end in the sides' samples leave slivers at a border
+    // that runs through a strong bend.
+    let plain = !surface.is_rational() && !outline.collapsed.contains(&true);
+    let coursed = plain && planar.is_none();
     let ground = Ground::new(&field, limits, planar.is_some(), coursed);
     let first = layout(surface, &ground, outline);
     let quick = (coursed && limits.shape_is_free())

@@ -76,10 +76,10 @@ impl Work<'_> {
                 failed.extend(self.round(prover, planar));
             }
         }
-        let chord = self.limits.chord;
-        failed.retain(|&t| self.figures[t as usize].largest() > chord);
         failed.sort_unstable();
         failed.dedup();
+        let chord = self.limits.chord;
+        failed.retain(|&t| self.figures[t as usize].largest() > chord || !self.keeps_shape(t));
         failed
     }
 
