@@ -34,7 +34,7 @@ fn stages_longer_than_a_second_show_rate_and_time_left() {
         assert!(output.status.code() != Some(2));
         String::from_utf8(output.stderr).unwrap()
     };
-    run("demo --panels 3000 -o set.ron");
+    run("demo --panels 12000 -o set.ron");
     let line = "tessellate set.ron -o a.obj --chord 0.02";
     let Some(shown) = on_a_terminal(folder.path(), line) else {
         return;

@@ -17,6 +17,10 @@ const SHORTEST: f64 = 1e-7;
 const GROWTH: usize = 40;
 const GROWTH_BASE: usize = 20_000;
 
+/// How often triangles that face inwards are looked for: what is put right may
+/// leave others.
+const TURNS: usize = 4;
+
 /// The grid's normals are trusted where a facet agrees with them by more than
 /// this, as a cosine.
 const DOUBT: f64 = 0.5;
@@ -30,8 +34,7 @@ impl Work<'_> {
         planar: Option<f64>,
     ) -> Result<(), Stuck> {
         let most = self.layout.triangulation.triangles.len() * GROWTH + GROWTH_BASE;
-        let mut turned = false;
-        loop {
+        for pass in 0..=TURNS {
             while !failed.is_empty() {
                 for t in failed {
                     if self.stale[t as usize] {
@@ -44,11 +47,9 @@ impl Work<'_> {
                 }
                 failed = self.round(prover, planar);
             }
-            if turned {
-                break;
+            if pass < TURNS {
+                failed = self.face_outwards(prover, planar);
             }
-            turned = true;
-            failed = self.face_outwards(prover, planar);
         }
         Ok(())
     }
