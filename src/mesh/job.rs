@@ -120,7 +120,7 @@ pub struct Meshed {
     pub mesh: Mesh,
     /// What was proved and attained.
     pub deviation: Deviation,
-    /// How few triangles would do (see [`floor`]).
+    /// How few triangles would do (see [`crate::tessellation::floor`]).
     pub floor: f64,
     /// Seconds by stage.
     pub seconds: Stages,
