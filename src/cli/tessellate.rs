@@ -23,7 +23,7 @@ use crate::patch_set::{PanelId, PatchId, PatchSet, PieceId};
 use crate::picture::{Extra, seam_curves};
 use crate::report::{Forecast, SecondsLine, StreamSummary, Summary};
 use crate::sampling::Limits;
-use crate::scalar::{Length, Point, Tolerance, Vector};
+use crate::scalar::{Cuboid, Length, Tolerance};
 
 const EXAMPLES: &str = "\
 Examples:
@@ -203,7 +203,7 @@ impl TessellateArguments {
         let set = &reading.set;
         let limits = self.limits(set)?;
         let chord = Tolerance::new(limits.chord)?;
-        let (low, high) = extents(set);
+        let Cuboid { low, high } = set.cuboid();
         let mut held = Limits::new(
             limits.chord - format.rounding(low, high, chord),
             limits.normal_rad,
@@ -329,19 +329,4 @@ impl TessellateArguments {
             .map(|piece| chosen.as_ref().is_none_or(|c| c.contains(&of_piece(piece))))
             .collect())
     }
-}
-
-/// The box of all control points, which holds the surfaces.
-fn extents(set: &PatchSet) -> (Point, Point) {
-    let all = || {
-        let pieces = set.pieces().iter();
-        pieces.flat_map(|piece| piece.surface.control_points())
-    };
-    let bound = |pick: fn(f64, f64) -> f64, from: f64| {
-        Point::from(all().fold(Vector::repeat(from), |m, p| m.zip_map(&p.coords, pick)))
-    };
-    (
-        bound(f64::min, f64::INFINITY),
-        bound(f64::max, f64::NEG_INFINITY),
-    )
 }

@@ -14,7 +14,7 @@ use serde_json::{Value, json};
 use super::markup::base64;
 use crate::patch_set::PatchSet;
 use crate::picture::{Ramp, Scene, SeamCurve, finding_bytes, panel_colour, to_srgb};
-use crate::scalar::{Point, Vector};
+use crate::scalar::{Cuboid, Point, Vector};
 
 /// Control points that go into a page at most; above that picked figures are
 /// interpolated.
@@ -83,7 +83,7 @@ impl ViewerMesh {
         seams: &[SeamCurve],
     ) -> Self {
         let (set, mesh) = (scene.set, scene.mesh);
-        let (low, high) = bounds(&mesh.points);
+        let Cuboid { low, high } = Cuboid::around(mesh.points.iter().copied());
         let side = [0, 1, 2].map(|i| [low[i], high[i]]);
         let (mut places, mut normals, mut uv) = <(Stream, Stream, Stream)>::default();
         let (mut bends, mut corners, mut proved) = <(Stream, Stream, Stream)>::default();
@@ -138,7 +138,7 @@ impl ViewerMesh {
         Self {
             data: json!({
                 "unit": set.unit().symbol(), "chord": chord, "ranges": ranges,
-                "low": low.as_slice(), "high": high.as_slice(),
+                "low": low.coords.as_slice(), "high": high.coords.as_slice(),
                 "places": base64(&places.0), "normals": base64(&normals.0),
                 "uv": base64(&uv.0), "bends": base64(&bends.0),
                 "corners": base64(&corners.0), "proved": base64(&proved.0),
@@ -207,19 +207,6 @@ fn nets(set: &PatchSet) -> Value {
         );
     }
     Value::Object(patches)
-}
-
-/// The box of points.
-fn bounds(points: &[Point]) -> (Vector, Vector) {
-    let bound = |pick: fn(f64, f64) -> f64, from: f64| {
-        points
-            .iter()
-            .fold(Vector::repeat(from), |m, p| m.zip_map(&p.coords, pick))
-    };
-    (
-        bound(f64::min, f64::INFINITY),
-        bound(f64::max, f64::NEG_INFINITY),
-    )
 }
 
 #[cfg(test)]

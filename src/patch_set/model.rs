@@ -8,7 +8,7 @@ use serde::{Deserialize, Serialize};
 
 use super::{DemandSource, Standard};
 use crate::bezier::{BezierPatch, Side};
-use crate::scalar::{LengthUnit, Tolerance, id};
+use crate::scalar::{Cuboid, LengthUnit, Tolerance, id};
 
 id! {
     /// A panel of the set, by position in [`PatchSet::panels`].
@@ -217,6 +217,12 @@ impl PatchSet {
     #[must_use]
     pub fn pieces(&self) -> &[Piece] {
         &self.pieces
+    }
+
+    /// The box of all control points, which holds the surfaces.
+    pub(crate) fn cuboid(&self) -> Cuboid {
+        let pieces = self.pieces.iter();
+        Cuboid::around(pieces.flat_map(|piece| piece.surface.control_points()))
     }
 
     /// The demands the file states.

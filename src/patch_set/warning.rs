@@ -3,7 +3,7 @@
 use thiserror::Error;
 
 use crate::bezier::{BezierPatch, Side};
-use crate::scalar::Vector;
+use crate::scalar::{Cuboid, Vector};
 use crate::surface::PieceGrid;
 
 /// A warning. All are judged on the control points and on samples: not proved.
@@ -43,6 +43,7 @@ pub(super) fn judge(grid: &PieceGrid, gap: f64) -> Vec<Warning> {
     let mut found = Vec::new();
     let columns = grid.breaks_v.len() - 1;
     let rows = grid.breaks_u.len() - 1;
+    let diagonal = |piece: &BezierPatch| Cuboid::around(piece.control_points()).diagonal();
     let size = grid.pieces.iter().map(diagonal).fold(0.0, f64::max);
     if size < gap {
         return vec![Warning::Tiny { size, gap }];
@@ -82,20 +83,6 @@ pub(super) fn judge(grid: &PieceGrid, gap: f64) -> Vec<Warning> {
     });
     found.extend(fold);
     found
-}
-
-/// The diagonal of the box of the net.
-fn diagonal(surface: &BezierPatch) -> f64 {
-    let mut points = surface.control_points();
-    let Some(first) = points.next() else {
-        return 0.0;
-    };
-    let (mut low, mut high) = (first.coords, first.coords);
-    for point in points {
-        low = low.inf(&point.coords);
-        high = high.sup(&point.coords);
-    }
-    (high - low).norm()
 }
 
 /// Whether all control points of an edge keep within `gap` of its start.

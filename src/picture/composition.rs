@@ -11,7 +11,7 @@ use super::lights::Lights;
 use super::paint::{Curvature, Paint, Shading};
 use super::raster;
 use super::scene::{Scene, largest_principal};
-use crate::scalar::{Point, Vector};
+use crate::scalar::{Cuboid, Point};
 
 /// What the picture is filled with.
 #[derive(Debug, Clone, PartialEq)]
@@ -255,17 +255,10 @@ fn figure(value: f64) -> String {
 
 /// The middle of all points and half their box's diagonal.
 fn bounds(scene: &Scene<'_>) -> (Point, f64) {
-    let points = &scene.mesh.points;
-    let bound = |pick: fn(f64, f64) -> f64, from: f64| {
-        points
-            .iter()
-            .fold(Vector::repeat(from), |m, p| m.zip_map(&p.coords, pick))
-    };
-    let low = bound(f64::min, f64::INFINITY);
-    let high = bound(f64::max, f64::NEG_INFINITY);
+    let cuboid = Cuboid::around(scene.mesh.points.iter().copied());
     (
-        Point::from((low + high) / 2.0),
-        ((high - low).norm() / 2.0).max(f64::MIN_POSITIVE),
+        cuboid.middle(),
+        (cuboid.diagonal() / 2.0).max(f64::MIN_POSITIVE),
     )
 }
 

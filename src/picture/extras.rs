@@ -8,7 +8,7 @@ use crate::continuity::{Finding, Verdict};
 use crate::format::{Overlay, Stroke};
 use crate::mesh::Mesh;
 use crate::patch_set::{PatchSet, PieceId};
-use crate::scalar::{Point, Vector};
+use crate::scalar::{Cuboid, Point, Vector};
 use crate::topology::{EdgeId, patch_side};
 
 /// One kind of extra.
@@ -97,7 +97,7 @@ impl Extra {
                 })
             }
             Self::Normals => {
-                let long = LONG * diagonal(mesh);
+                let long = LONG * Cuboid::around(mesh.points.iter().copied()).diagonal();
                 let lines = mesh.vertices.iter().flat_map(|vertex| {
                     let from = mesh.points[vertex.point as usize];
                     [from, from + vertex.normal * long]
@@ -182,7 +182,8 @@ fn combs(set: &PatchSet, mesh: &Mesh, edges: &[EdgeId]) -> Vec<Point> {
     let mut sizes: Vec<f64> = found.iter().map(|f| f.1.norm()).collect();
     sizes.sort_by(f64::total_cmp);
     let usual = sizes.get(sizes.len() * 9 / 10).copied().unwrap_or(0.0);
-    let long = LONG * diagonal(mesh) / usual.max(f64::MIN_POSITIVE);
+    let long = LONG * Cuboid::around(mesh.points.iter().copied()).diagonal()
+        / usual.max(f64::MIN_POSITIVE);
     found
         .into_iter()
         .filter(|_| usual > 0.0)
@@ -208,14 +209,4 @@ fn isolines(set: &PatchSet, piece: PieceId, way: usize) -> Vec<Vec<Point>> {
                 .collect()
         })
         .collect()
-}
-
-/// The diagonal of the mesh's box.
-fn diagonal(mesh: &Mesh) -> f64 {
-    let bound = |pick: fn(f64, f64) -> f64, from: f64| {
-        mesh.points
-            .iter()
-            .fold(Vector::repeat(from), |m, p| m.zip_map(&p.coords, pick))
-    };
-    (bound(f64::max, f64::NEG_INFINITY) - bound(f64::min, f64::INFINITY)).norm()
 }

@@ -10,7 +10,7 @@ use super::distance::{Distance, between};
 use super::seams::{SeamChange, seam_changes};
 use super::sheet::Sheet;
 use crate::patch_set::{Patch, PatchId, PatchSet};
-use crate::scalar::{LengthUnit, Tolerance, ToleranceError, Vector};
+use crate::scalar::{LengthUnit, Tolerance, ToleranceError};
 use crate::topology::TopologyError;
 
 /// Distances below this fraction of the sets' size are rounding.
@@ -121,7 +121,7 @@ impl Comparison {
                 new: new.unit(),
             });
         }
-        let floor = FLOOR * size(old).max(size(new));
+        let floor = FLOOR * old.cuboid().diagonal().max(new.cuboid().diagonal());
         let allowed = match tolerance {
             Some(tolerance) => tolerance,
             None => Tolerance::new(floor)?,
@@ -221,19 +221,4 @@ fn description(set: &PatchSet, patch: &Patch) -> Description {
         degree,
         pieces: (patch.breaks_u.len() - 1, patch.breaks_v.len() - 1),
     }
-}
-
-/// The diagonal of the box of all control points.
-fn size(set: &PatchSet) -> f64 {
-    let (mut low, mut high) = (
-        Vector::repeat(f64::INFINITY),
-        Vector::repeat(f64::NEG_INFINITY),
-    );
-    for piece in set.pieces() {
-        for point in piece.surface.control_points() {
-            low = low.inf(&point.coords);
-            high = high.sup(&point.coords);
-        }
-    }
-    (high - low).norm()
 }

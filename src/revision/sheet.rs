@@ -5,7 +5,7 @@ use std::collections::BinaryHeap;
 
 use crate::bezier::BezierPatch;
 use crate::patch_set::{Patch, PatchSet, Piece};
-use crate::scalar::{Point, Vector};
+use crate::scalar::{Cuboid, Point};
 
 /// Parts after which a search for the nearest point ends.
 const PARTS: usize = 1500;
@@ -202,16 +202,7 @@ fn extent(surface: &BezierPatch) -> (f64, f64) {
 
 /// A proved lower bound on the distance of a point from a part.
 fn lower(surface: &BezierPatch, point: &Point) -> f64 {
-    let (mut low, mut high) = (
-        Vector::repeat(f64::INFINITY),
-        Vector::repeat(f64::NEG_INFINITY),
-    );
-    for p in surface.control_points() {
-        low = low.inf(&p.coords);
-        high = high.sup(&p.coords);
-    }
-    let nearest = point.coords.sup(&low).inf(&high);
-    let boxed = (point.coords - nearest).norm();
+    let boxed = Cuboid::around(surface.control_points()).distance(point);
     let towards = surface.eval(0.5, 0.5) - point;
     let norm = towards.norm();
     if norm <= 0.0 {

@@ -29,7 +29,7 @@
 use super::quadratic::Quadratic;
 use super::remainder::Shape;
 use crate::bezier::{BezierPatch, TriangleNet, TriangleRestriction, chord_bound};
-use crate::scalar::{Point, Vector};
+use crate::scalar::{Cuboid, Point, Vector};
 
 /// A flat triangle of the mesh.
 #[derive(Debug, Clone, Copy)]
@@ -96,16 +96,9 @@ pub(super) struct Prover<'a> {
 
 impl<'a> Prover<'a> {
     pub(super) fn new(surface: &'a BezierPatch) -> Self {
-        let (mut largest, mut low, mut high) = (
-            0.0_f64,
-            Point::from([f64::MAX; 3]),
-            Point::from([f64::MIN; 3]),
-        );
-        for p in surface.control_points() {
-            largest = largest.max(p.coords.amax());
-            low = low.inf(&p);
-            high = high.sup(&p);
-        }
+        let largest = surface.control_points();
+        let largest = largest.fold(0.0_f64, |most, p| most.max(p.coords.amax()));
+        let diagonal = Cuboid::around(surface.control_points()).diagonal();
         let (m, n) = surface.degree();
         let weights = || {
             (0..=m)
@@ -115,7 +108,7 @@ impl<'a> Prover<'a> {
         let ratio = weights().fold(0.0, f64::max) / weights().fold(f64::MAX, f64::min);
         Self {
             surface,
-            slack: f64::EPSILON * (4.0 * largest + 64.0 * (high - low).norm()) * ratio,
+            slack: f64::EPSILON * (4.0 * largest + 64.0 * diagonal) * ratio,
             restriction: TriangleRestriction::default(),
             net: TriangleNet::default(),
             heights: Vec::new(),

@@ -4,7 +4,7 @@
 //! two millimetres costs a tree nothing. Built by index alone, so the order of
 //! what it finds is the same on every machine.
 
-use super::edge_curve::Cuboid;
+use crate::scalar::Cuboid;
 
 /// Entries in a leaf.
 const LEAF: usize = 4;

@@ -4,7 +4,7 @@ use rayon::prelude::*;
 
 use super::EdgeId;
 use super::assembly::{Assembly, assemble};
-use super::edge_curve::{Cuboid, EdgeCurve, edges_of};
+use super::edge_curve::{EdgeCurve, edges_of};
 use super::error::TopologyError;
 use super::loops::loops;
 use super::model::{Contact, Topology};
@@ -13,6 +13,7 @@ use super::nodes::{Marks, Unsettled};
 use super::pairing::{Limits, Reach, contacts};
 use super::place::{demand_between, gap_between, place};
 use crate::patch_set::{Class, Demand, PatchSet, PieceId};
+use crate::scalar::Cuboid;
 
 /// Rounds of giving up joints before a set is refused.
 const GIVE_UPS: usize = 64;

@@ -3,65 +3,7 @@
 use super::EdgeId;
 use crate::bezier::{BezierCurve, Side};
 use crate::patch_set::{PatchSet, PieceId};
-use crate::scalar::{Point, Vector};
-
-/// An axis-parallel box.
-#[derive(Debug, Clone, Copy)]
-pub(super) struct Cuboid {
-    pub(super) low: Point,
-    pub(super) high: Point,
-}
-
-impl Cuboid {
-    pub(super) fn around(points: impl IntoIterator<Item = Point>) -> Self {
-        let start = Self {
-            low: Point::from(Vector::repeat(f64::INFINITY)),
-            high: Point::from(Vector::repeat(f64::NEG_INFINITY)),
-        };
-        points.into_iter().fold(start, |cuboid, p| Self {
-            low: cuboid.low.inf(&p),
-            high: cuboid.high.sup(&p),
-        })
-    }
-
-    pub(super) fn union(&self, other: &Self) -> Self {
-        Self {
-            low: self.low.inf(&other.low),
-            high: self.high.sup(&other.high),
-        }
-    }
-
-    pub(super) fn grown(&self, by: f64) -> Self {
-        Self {
-            low: self.low - Vector::repeat(by),
-            high: self.high + Vector::repeat(by),
-        }
-    }
-
-    pub(super) fn meets(&self, other: &Self) -> bool {
-        (0..3).all(|k| self.low[k] <= other.high[k] && other.low[k] <= self.high[k])
-    }
-
-    pub(super) fn holds(&self, point: &Point) -> bool {
-        (0..3).all(|k| self.low[k] <= point[k] && point[k] <= self.high[k])
-    }
-
-    /// Distance of a point from the box, zero inside.
-    pub(super) fn distance(&self, point: &Point) -> f64 {
-        let nearest = point.sup(&self.low).inf(&self.high);
-        (point - nearest).norm()
-    }
-
-    pub(super) fn middle(&self) -> Point {
-        nalgebra::center(&self.low, &self.high)
-    }
-
-    /// Length of the space diagonal.
-    pub(super) fn diagonal(&self) -> f64 {
-        let diagonal = (self.high - self.low).norm();
-        if diagonal.is_finite() { diagonal } else { 0.0 }
-    }
-}
+use crate::scalar::{Cuboid, Point};
 
 /// One edge of a piece with what pairing asks of it again and again.
 #[derive(Debug, Clone)]

@@ -1,8 +1,7 @@
 //! The nearest point of a curve.
 
-use super::edge_curve::Cuboid;
 use crate::bezier::BezierCurve;
-use crate::scalar::Point;
+use crate::scalar::{Cuboid, Point};
 
 /// A place on a curve and its distance from the point asked about.
 #[derive(Debug, Clone, Copy, PartialEq)]

@@ -4,11 +4,10 @@
 use rayon::prelude::*;
 
 use super::box_tree::BoxTree;
-use super::edge_curve::Cuboid;
 use super::gap::difference_bound;
 use crate::bezier::{BezierPatch, Side};
 use crate::patch_set::{PatchId, PatchSet};
-use crate::scalar::{Point, Vector};
+use crate::scalar::{Cuboid, Point, Vector};
 
 /// Places inside a piece, in each direction.
 const PLACES: [f64; 3] = [0.25, 0.5, 0.75];

@@ -167,7 +167,7 @@ fn meetings(a: &EdgeCurve, b: &EdgeCurve, reach: &Reach) -> Vec<Meeting> {
     let mut found: Vec<Meeting> = Vec::with_capacity(4);
     let (near_a, near_b) = (a.cuboid.grown(reach.search), b.cuboid.grown(reach.search));
     // Cheap first: one end of each on an end of the other is most often all.
-    let reachable = |ends: &EdgeCurve, near: &super::edge_curve::Cuboid| {
+    let reachable = |ends: &EdgeCurve, near: &crate::scalar::Cuboid| {
         ends.ends.iter().filter(|p| near.holds(p)).count()
     };
     if reachable(a, &near_b) + reachable(b, &near_a) < 2 {
