@@ -6,6 +6,7 @@
 
 use std::ops::{Add, Mul, Sub};
 
+use super::binomials;
 use crate::scalar::Vector;
 
 /// What can stand as a Bernstein coefficient.
@@ -44,41 +45,6 @@ fn ratio(a: usize, b: usize) -> f64 {
     #[allow(clippy::cast_precision_loss, reason = "degrees are far below 2^52")]
     let (a, b) = (a as f64, b as f64);
     a / b
-}
-
-/// The largest degree whose binomials are at hand: the normal of a rational
-/// piece of degree 15, squared, has 88.
-const MOST: usize = 96;
-
-/// Pascal's triangle.
-static BINOMIALS: [[f64; MOST + 1]; MOST + 1] = pascal();
-
-const fn pascal() -> [[f64; MOST + 1]; MOST + 1] {
-    let mut rows = [[0.0; MOST + 1]; MOST + 1];
-    let mut n = 0;
-    while n <= MOST {
-        rows[n][0] = 1.0;
-        let mut k = 1;
-        while k <= n {
-            rows[n][k] = rows[n - 1][k - 1] + rows[n - 1][k];
-            k += 1;
-        }
-        n += 1;
-    }
-    rows
-}
-
-fn binomials(n: usize) -> std::borrow::Cow<'static, [f64]> {
-    if let Some(row) = BINOMIALS.get(n) {
-        return std::borrow::Cow::Borrowed(&row[..=n]);
-    }
-    let mut row = Vec::with_capacity(n + 1);
-    let mut value = 1.0;
-    for k in 0..=n {
-        row.push(value);
-        value *= ratio(n - k, k + 1);
-    }
-    std::borrow::Cow::Owned(row)
 }
 
 impl<T: Coefficient> Bernstein<T> {

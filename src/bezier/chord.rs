@@ -14,6 +14,7 @@
 //! the same distance of the curve: nearest points run from end to end, so they
 //! cover it.
 
+use super::binomials;
 use crate::scalar::Vector;
 
 /// Proved bound on the distance between a Bezier curve and the segment from
@@ -69,16 +70,4 @@ fn split(points: &[Vector], weights: &[f64], across: impl Fn(&Vector) -> Vector)
         rest = rest.max((sum / total).norm());
     }
     largest + rest
-}
-
-/// C(degree, i) for every i; degrees stay below 31.
-fn binomials(degree: usize) -> [f64; 32] {
-    let mut row = [0.0; 32];
-    row[0] = 1.0;
-    for i in 1..=degree {
-        #[allow(clippy::cast_precision_loss, reason = "degrees stay below 31")]
-        let factor = (degree + 1 - i) as f64 / i as f64;
-        row[i] = row[i - 1] * factor;
-    }
-    row
 }

@@ -11,6 +11,7 @@
 //! all proofs of the project rest on that.
 
 pub(crate) mod bernstein;
+mod binomial;
 mod casteljau;
 mod chord;
 mod curve;
@@ -20,6 +21,7 @@ mod patch;
 mod side;
 mod triangle;
 
+pub(crate) use binomial::{binomial, binomials};
 pub(crate) use chord::chord_bound;
 pub(crate) use curve::GAUSS_8;
 pub use curve::{BezierCurve, CurveJet};

@@ -14,6 +14,7 @@
 
 use nalgebra::SVector;
 
+use super::binomial;
 use crate::scalar::{Point, Vector};
 
 /// A triangular (rational) Bezier net: `S(t)` lies in the hull of `points`.
@@ -174,11 +175,6 @@ fn triples(degree: usize) -> impl Iterator<Item = (usize, usize, usize)> {
     (0..=degree)
         .rev()
         .flat_map(move |i| (0..=degree - i).rev().map(move |j| (i, j, degree - i - j)))
-}
-
-fn binomial(n: usize, k: usize) -> f64 {
-    #[allow(clippy::cast_precision_loss, reason = "n is at most 30")]
-    (0..k).fold(1.0, |value, i| value * (n - i) as f64 / (i + 1) as f64)
 }
 
 impl<const N: usize> Scratch<N> {

@@ -8,9 +8,9 @@
 //! tangent across every joint of the guides and of the profile, because S_u is
 //! continuous along with (p, q) and S_v keeps its direction along with (p', q').
 
-use super::guide::{Guide, elevated, real};
+use super::guide::{Guide, elevated};
 use super::profile::Stroke;
-use crate::bezier::{BezierPatch, NetError};
+use crate::bezier::{BezierPatch, NetError, binomial};
 use crate::scalar::{Point, Vector};
 
 /// A control net, rows along u, with weights if it is rational.
@@ -128,10 +128,6 @@ pub(super) fn product_2d(a: &[Vec<f64>], b: &[Vec<f64>]) -> Vec<Vec<f64>> {
             sum.iter().map(|total| total / binomial(m + n, k)).collect()
         })
         .collect()
-}
-
-fn binomial(n: usize, k: usize) -> f64 {
-    (0..k).fold(1.0, |c, i| c * real(n - i) / real(i + 1))
 }
 
 #[cfg(test)]

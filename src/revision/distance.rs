@@ -21,7 +21,7 @@ use std::collections::BinaryHeap;
 
 use super::course::Course;
 use super::sheet::Sheet;
-use crate::bezier::BezierPatch;
+use crate::bezier::{BezierPatch, binomial};
 use crate::scalar::{Bracket, Point, Vector};
 
 /// Cells after which a bracket stays as wide as it is.
@@ -285,11 +285,6 @@ fn difference(a: &BezierPatch, b: &BezierPatch) -> f64 {
     }
     // The binomials of the product fall out of the quotient.
     sums.iter().map(|(d, w)| d.norm() / w).fold(0.0, f64::max) + 4.0 * round
-}
-
-fn binomial(n: usize, k: usize) -> f64 {
-    #[allow(clippy::cast_precision_loss, reason = "n is at most 15")]
-    (0..k).fold(1.0, |value, i| value * (n - i) as f64 / (i + 1) as f64)
 }
 
 impl Ord for Cell {

@@ -11,6 +11,7 @@
 //! weights. Degree elevation of Bernstein polynomials, multiplied out.
 
 use super::quadratic::Quadratic;
+use crate::bezier::{binomial, binomials};
 use crate::sampling::ratio;
 
 /// Index tables of a triangular net of one degree.
@@ -54,9 +55,7 @@ impl Shape {
             (0..=d).map(|s| index([0, d - s, s])).collect(),
             (0..=d).map(|s| index([s, 0, d - s])).collect(),
         ];
-        let binomial =
-            |n: usize, k: usize| (0..k).fold(1.0, |value, i| value * ratio(n - i, i + 1));
-        self.binomials = (0..=d).map(|i| binomial(d, i)).collect();
+        self.binomials = binomials(d).into_owned();
         self.multinomials = self
             .triples
             .iter()

@@ -16,8 +16,8 @@ use std::cmp::Ordering;
 use std::collections::BinaryHeap;
 
 use super::nearest::{distance_at_least, nearest, nearest_from};
-use crate::bezier::BezierCurve;
 use crate::bezier::bernstein::{Bernstein, Coefficient};
+use crate::bezier::{BezierCurve, binomial};
 use crate::scalar::{Bracket, Vector};
 
 /// Pieces after which a bracket stays as wide as it is.
@@ -348,9 +348,4 @@ fn compose<T: Coefficient>(
             .collect();
     }
     row.swap_remove(0)
-}
-
-fn binomial(n: usize, k: usize) -> f64 {
-    #[allow(clippy::cast_precision_loss, reason = "n is at most 15")]
-    (0..k).fold(1.0, |value, i| value * (n - i) as f64 / (i + 1) as f64)
 }
