@@ -10,6 +10,7 @@ use super::outcome::Outcome;
 use super::source;
 use super::style::OutputStyle;
 use crate::patch_set::{Diagnostic, Faults, PatchSet, Reading};
+use crate::report::many;
 
 const EXAMPLES: &str = "\
 Examples:
@@ -170,16 +171,13 @@ impl Summary {
         } else {
             format!("{}: ", self.name)
         };
-        let many = |count: usize, one: &str, more: &str| {
-            format!("{count} {}", if count == 1 { one } else { more })
-        };
         let corner = |[x, y, z]: [f64; 3]| format!("({}, {}, {})", short(x), short(y), short(z));
         format!(
             "{name}valid; {}, {}, {}, {}; box of the nets {} to {} {}",
-            many(self.panels, "panel", "panels"),
-            many(self.patches, "patch", "patches"),
-            many(self.pieces, "Bezier piece", "Bezier pieces"),
-            many(self.control_points, "control point", "control points"),
+            many(self.panels, "panel"),
+            many(self.patches, "patch"),
+            many(self.pieces, "Bezier piece"),
+            many(self.control_points, "control point"),
             corner(self.low),
             corner(self.high),
             self.unit,

@@ -5,6 +5,7 @@ use std::path::Path;
 
 use super::message::say;
 use crate::patch_set::{Diagnostic, Faults, PatchSet, Reading};
+use crate::report::many;
 
 /// How many diagnostics are shown in full; a script that goes wrong can make
 /// one for every patch.
@@ -54,11 +55,10 @@ pub(super) fn show_faults(faults: &Faults) {
         return;
     }
     show(&faults.list, &faults.source_name);
-    let count = faults.list.len();
-    let plural = if count == 1 { "fault" } else { "faults" };
     say(format_args!(
-        "{}: {count} {plural}; the set is not used",
-        faults.source_name
+        "{}: {}; the set is not used",
+        faults.source_name,
+        many(faults.list.len(), "fault")
     ));
 }
 

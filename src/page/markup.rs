@@ -62,12 +62,6 @@ pub(super) fn figure(value: f64) -> String {
     }
 }
 
-/// A count with its noun.
-#[must_use]
-pub(super) fn many(count: usize, one: &str) -> String {
-    format!("{count} {one}{}", if count == 1 { "" } else { "s" })
-}
-
 /// Rows of a list of terms.
 #[must_use]
 pub(super) fn terms(rows: &[(&str, String)]) -> String {

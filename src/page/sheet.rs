@@ -2,12 +2,13 @@
 
 use super::gallery::Gallery;
 use super::histogram::Histogram;
-use super::markup::{escape, figure, many, terms};
+use super::markup::{escape, figure, terms};
 use super::tables;
 use super::viewer::ViewerMesh;
 use crate::mesh::{Measures, Meshed, Storage, Strips};
 use crate::patch_set::PatchSet;
 use crate::picture::{Scene, SeamCurve, round_up};
+use crate::report::many;
 use crate::report::{CAUTION, SeamReport, upward};
 
 const STYLE: &str = include_str!("assets/page.css");

@@ -3,9 +3,10 @@
 use std::fmt::Write;
 
 use super::gallery::Gallery;
-use super::markup::{escape, figure, many};
+use super::markup::{escape, figure};
 use crate::mesh::{Mesh, Storage};
 use crate::patch_set::{Demand, PatchSet};
+use crate::report::many;
 use crate::report::{FigureLine, SeamLine, SeamReport, upward};
 
 /// Opens a table whose columns can be sorted; `numbers` says which hold figures.

@@ -4,6 +4,7 @@ use std::fmt::Write;
 
 use serde::Serialize;
 
+use super::wording::{many, written};
 use super::{CAUTION, upward};
 use crate::mesh::{Audit, Finding};
 use crate::patch_set::PatchSet;
@@ -145,10 +146,7 @@ impl AuditReport {
     /// The report as text.
     #[must_use]
     pub fn text(&self) -> String {
-        let mut out = String::new();
-        // Writing to a string cannot fail.
-        let _ = self.write_text(&mut out);
-        out
+        written(|out| self.write_text(out))
     }
 
     fn write_text(&self, out: &mut String) -> std::fmt::Result {
@@ -165,8 +163,9 @@ impl AuditReport {
         };
         writeln!(
             out,
-            "mesh        {} triangles on {} patches; {absent}",
-            self.triangles, self.patches
+            "mesh        {} on {}; {absent}",
+            many(self.triangles, "triangle"),
+            many(self.patches, "patch")
         )?;
         let d = &self.deviation;
         let long = |value: f64| format!("{value:.6e}");

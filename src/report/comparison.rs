@@ -6,7 +6,8 @@ use serde::Serialize;
 
 use super::CAUTION;
 use super::seam_line::EdgeName;
-use super::seams_text::{edge, figure, length, many, upward};
+use super::seams_text::{edge, figure, length, upward};
+use super::wording::{many, written};
 use crate::patch_set::{Demand, PatchSet};
 use crate::revision::{
     Comparison, Description, PatchChange, PatchState, SeamChange, SeamStanding, Trend,
@@ -193,10 +194,7 @@ impl ComparisonReport {
     /// The report as text.
     #[must_use]
     pub fn text(&self) -> String {
-        let mut out = String::new();
-        // Writing to a string cannot fail.
-        let _ = self.write_text(&mut out);
-        out
+        written(|out| self.write_text(out))
     }
 
     fn write_text(&self, out: &mut String) -> std::fmt::Result {
@@ -356,7 +354,7 @@ impl DescriptionLine {
         format!(
             "{}, degrees {m} and {n}, {}",
             self.kind,
-            many(rows * columns, "piece", "pieces")
+            many(rows * columns, "piece")
         )
     }
 }

@@ -4,6 +4,7 @@ use std::fmt::Write;
 
 use serde::Serialize;
 
+use super::wording::written;
 use super::{CAUTION, WrittenLine};
 use crate::format::{Format, Written};
 use crate::mesh::Prediction;
@@ -88,10 +89,7 @@ impl Forecast {
     /// The prediction as text, one subject a line.
     #[must_use]
     pub fn text(&self) -> String {
-        let mut out = String::new();
-        // Writing to a string cannot fail.
-        let _ = self.write_text(&mut out);
-        out
+        written(|out| self.write_text(out))
     }
 
     fn write_text(&self, out: &mut String) -> std::fmt::Result {

@@ -6,7 +6,8 @@ use serde::Serialize;
 
 use super::CAUTION;
 use super::seam_line::{EdgeName, name};
-use super::seams_text::{edge, figure, many, upward};
+use super::seams_text::{edge, figure, upward};
+use super::wording::{many, written};
 use crate::continuity::SurveyedSeam;
 use crate::mending::Mending;
 use crate::scalar::Tolerance;
@@ -135,10 +136,7 @@ impl MendingReport {
     /// The report as text.
     #[must_use]
     pub fn text(&self) -> String {
-        let mut out = String::new();
-        // Writing to a string cannot fail.
-        let _ = self.write_text(&mut out);
-        out
+        written(|out| self.write_text(out))
     }
 
     fn write_text(&self, out: &mut String) -> std::fmt::Result {
@@ -149,7 +147,7 @@ impl MendingReport {
         writeln!(
             out,
             "{} mended, {} left alone",
-            many(self.mended.len(), "seam", "seams"),
+            many(self.mended.len(), "seam"),
             self.left.len()
         )?;
         if self.moves.is_empty() {
@@ -158,7 +156,7 @@ impl MendingReport {
             writeln!(
                 out,
                 "{} of the file moved by up to {} {unit}, proved for the surfaces too; limit {} {unit}",
-                many(self.points, "point", "points"),
+                many(self.points, "point"),
                 upward(self.largest_move),
                 self.limit
             )?;
@@ -169,7 +167,7 @@ impl MendingReport {
                     "  {:>10} {unit}  {}, {}",
                     upward(line.largest),
                     line.patch,
-                    many(line.points, "control point", "control points")
+                    many(line.points, "control point")
                 )?;
             }
         }
@@ -205,7 +203,7 @@ impl MendingReport {
         let check = if self.findings == 0 {
             "every seam is as demanded".to_owned()
         } else {
-            many(self.findings, "finding", "findings")
+            many(self.findings, "finding")
         };
         writeln!(out, "\nseam check of the mended set: {check}")?;
         writeln!(out, "\n{}", self.caution)

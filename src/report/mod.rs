@@ -15,6 +15,7 @@ mod seams_text;
 mod streamed;
 mod summary;
 mod summary_text;
+mod wording;
 
 pub use audit::{AuditDeviation, AuditReport, FindingLine};
 pub(crate) use bound::upward;
@@ -33,3 +34,4 @@ pub use seams::{
 };
 pub use streamed::{ProvedLine, StreamSummary};
 pub use summary::{BridgedLine, DeviationLine, SecondsLine, StorageLine, Summary, WrittenLine};
+pub(crate) use wording::many;

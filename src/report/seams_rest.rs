@@ -3,7 +3,8 @@
 use std::fmt::Write;
 
 use super::seams::{NearMissLine, SeamReport};
-use super::seams_text::{edge, figure, length, many};
+use super::seams_text::{edge, figure, length};
+use super::wording::many;
 
 /// Names of a list told in full; the rest is counted.
 const NAMES: usize = 12;
@@ -71,7 +72,7 @@ impl SeamReport {
             writeln!(
                 out,
                 "\nnormals: across {} they point to opposite sides",
-                many(opposed, "seam", "seams")
+                many(opposed, "seam")
             )?;
         }
         let told = |names: &[String]| {

@@ -4,6 +4,7 @@ use std::fmt::Write;
 
 use super::seam_line::{EdgeName, FailingLine, FigureLine, SeamLine};
 use super::seams::{LoopLine, SeamReport};
+use super::wording::{many, written};
 use crate::patch_set::Demand;
 
 /// Edges of a loop named in full; the rest is counted.
@@ -14,10 +15,7 @@ impl SeamReport {
     /// the caution.
     #[must_use]
     pub fn text(&self) -> String {
-        let mut out = String::new();
-        // Writing to a string cannot fail.
-        let _ = self.write_text(&mut out);
-        out
+        written(|out| self.write_text(out))
     }
 
     fn write_text(&self, out: &mut String) -> std::fmt::Result {
@@ -30,12 +28,12 @@ impl SeamReport {
         writeln!(
             out,
             "{name}{}, {}{}{}{}{}",
-            many(sum.seams, "seam", "seams"),
-            many(sum.faults, "fault", "faults"),
+            many(sum.seams, "seam"),
+            many(sum.faults, "fault"),
             some(sum.undecided, ", ", " undecided"),
             some(sum.non_manifold, ", ", " of three edges or more"),
-            several(sum.near_misses, "near miss", "near misses"),
-            several(sum.overlaps, "overlap", "overlaps"),
+            several(sum.near_misses, "near miss"),
+            several(sum.overlaps, "overlap"),
         )?;
         let t = &self.tolerances;
         write!(
@@ -135,8 +133,8 @@ impl SeamReport {
             writeln!(
                 out,
                 "  {name}: {} of {}{}, up to {:.1} x the tolerance, {} of {} {} fail",
-                many(pair.faults, "fault", "faults"),
-                many(pair.seams, "seam", "seams"),
+                many(pair.faults, "fault"),
+                many(pair.seams, "seam"),
                 some(pair.undecided, ", ", " undecided"),
                 pair.severity,
                 length(pair.failing_length),
@@ -307,16 +305,12 @@ fn trail(chain: &LoopLine) -> String {
     names.join(", ")
 }
 
-pub(super) fn many(count: usize, one: &str, more: &str) -> String {
-    format!("{count} {}", if count == 1 { one } else { more })
-}
-
-fn several(count: usize, one: &str, more: &str) -> String {
-    some(
-        count,
-        ", ",
-        &format!(" {}", if count == 1 { one } else { more }),
-    )
+fn several(count: usize, one: &str) -> String {
+    if count == 0 {
+        String::new()
+    } else {
+        format!(", {}", many(count, one))
+    }
 }
 
 fn some(count: usize, before: &str, after: &str) -> String {

@@ -4,7 +4,8 @@ use std::fmt::Write;
 
 use serde::Serialize;
 
-use super::summary_text::{figure, many};
+use super::summary_text::figure;
+use super::wording::{many, written};
 use super::{CAUTION, SecondsLine, WrittenLine, upward};
 use crate::format::{Format, Written};
 use crate::mesh::Streamed;
@@ -117,10 +118,7 @@ impl StreamSummary {
     /// The outcome as text, one subject a line.
     #[must_use]
     pub fn text(&self) -> String {
-        let mut out = String::new();
-        // Writing to a string cannot fail.
-        let _ = self.write_text(&mut out);
-        out
+        written(|out| self.write_text(out))
     }
 
     fn write_text(&self, out: &mut String) -> std::fmt::Result {

@@ -5,6 +5,7 @@ use std::collections::BTreeSet;
 use serde::Serialize;
 
 use super::CAUTION;
+use super::wording::many;
 use crate::format::Written;
 use crate::mesh::{Measures, Meshed, Storage, Strips};
 use crate::patch_set::{Demand, PatchId, PatchSet};
@@ -292,9 +293,9 @@ fn watertight(measures: &Measures, made: &Meshed, set: &PatchSet) -> String {
     }
     let loops = measures.open_loops;
     let all: f64 = measures.open_lengths.iter().sum();
-    let plural = if loops == 1 { "loop" } else { "loops" };
     let along = format!(
-        "{loops} open {plural}, {all:.1} {} in all",
+        "{}, {all:.1} {} in all",
+        many(loops, "open loop"),
         set.unit().symbol()
     );
     if measures.non_manifold_edges > 0 {

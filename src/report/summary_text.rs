@@ -2,16 +2,14 @@
 
 use std::fmt::Write;
 
+use super::wording::{many, written};
 use super::{Summary, upward};
 
 impl Summary {
     /// The outcome as text, one subject a line.
     #[must_use]
     pub fn text(&self) -> String {
-        let mut out = String::new();
-        // Writing to a string cannot fail.
-        let _ = self.write_text(&mut out);
-        out
+        written(|out| self.write_text(out))
     }
 
     fn write_text(&self, out: &mut String) -> std::fmt::Result {
@@ -95,11 +93,10 @@ impl Summary {
             )?;
         }
         if !self.turned_over.is_empty() {
-            let count = self.turned_over.len();
-            let word = if count == 1 { "patch" } else { "patches" };
             writeln!(
                 out,
-                "turned over {count} {word}: {}",
+                "turned over {}: {}",
+                many(self.turned_over.len(), "patch"),
                 self.turned_over.join(", ")
             )?;
         }
@@ -135,10 +132,6 @@ impl Summary {
         )?;
         writeln!(out, "\n{}", self.caution)
     }
-}
-
-pub(super) fn many(count: usize, one: &str) -> String {
-    format!("{count} {one}{}", if count == 1 { "" } else { "s" })
 }
 
 /// Five significant digits, without an exponent where that stays short.
