@@ -7,7 +7,7 @@ use super::triangulation::BORDER;
 use crate::scalar::Vector;
 
 /// Least half angle between border edges at a vertex, as a sine.
-const SHARPEST: f64 = 0.38;
+pub(super) const SHARPEST: f64 = 0.38;
 
 /// No neighbour along the border.
 const NONE: u32 = u32::MAX;
@@ -73,11 +73,9 @@ impl Border {
             let (incoming, outgoing) = ([before, corner], [corner, after]);
             let along = |[a, b]: [u32; 2]| -> Vector { point(b) - point(a) };
             let (first, second) = (along(incoming), along(outgoing));
-            let turn = first.cross(&second);
-            if turn.dot(&bound.normal) >= 0.0 {
+            if let Some(half) = half_angle(&first, &second, &bound.normal) {
                 most = most.max(line(incoming)?).max(line(outgoing)?);
-                let angle = turn.norm().atan2(-first.dot(&second));
-                sharpest = sharpest.min((angle / 2.0).sin());
+                sharpest = sharpest.min(half);
             } else {
                 // Inside one of the two lines is inside the piece.
                 let edges = if own(outgoing).is_some() {
@@ -90,6 +88,14 @@ impl Border {
         }
         (sharpest >= SHARPEST).then_some(most / sharpest)
     }
+}
+
+/// Sine of half the angle inside a corner of the border, between the edge that
+/// comes in and the one that goes out; `None` where the border turns inwards.
+pub(super) fn half_angle(incoming: &Vector, outgoing: &Vector, normal: &Vector) -> Option<f64> {
+    let turn = incoming.cross(outgoing);
+    let angle = turn.norm().atan2(-incoming.dot(outgoing));
+    (turn.dot(normal) >= 0.0).then(|| (angle / 2.0).sin())
 }
 
 #[cfg(test)]

@@ -41,7 +41,7 @@ pub(super) struct Flat {
 
 /// A triangle whose height is below this part of its longest edge has no
 /// trustworthy normal.
-const THIN: f64 = 1e-9;
+pub(super) const THIN: f64 = 1e-9;
 
 impl Flat {
     pub(super) fn new(corners: [Point; 3]) -> Self {
@@ -298,6 +298,7 @@ fn distance_to_border(p: &Vector, corners: &[Vector; 3]) -> f64 {
 
 #[cfg(test)]
 mod tests {
+    use super::super::random::random;
     use super::*;
 
     fn target(surface: &BezierPatch, places: [[f64; 2]; 3]) -> Flat {
@@ -332,14 +333,7 @@ mod tests {
     #[test]
     fn samples_never_exceed_the_bounds() {
         let mut seed = 1_u64;
-        let mut next = || {
-            seed = seed
-                .wrapping_mul(6_364_136_223_846_793_005)
-                .wrapping_add(1_442_695_040_888_963_407);
-            #[allow(clippy::cast_precision_loss, reason = "a random number")]
-            let value = (seed >> 11) as f64 / (1_u64 << 53) as f64;
-            value
-        };
+        let mut next = || random(&mut seed);
         for round in 0..400 {
             let (m, n) = (1 + round % 5, 1 + round / 5 % 4);
             let spread = [1.0, 1e-3, 1e3][round % 3];

@@ -1,6 +1,7 @@
 //! Second derivatives of a piece on a coarse grid, to choose steps and
 //! diagonals by. Nothing here proves anything.
 
+use super::grid::Grid;
 use super::nets::Nets;
 use crate::bezier::{BezierPatch, SurfaceJet};
 use crate::sampling::{Limits, ratio};
@@ -51,8 +52,7 @@ impl Bend {
 #[derive(Debug)]
 pub(super) struct Field<'a> {
     surface: &'a BezierPatch,
-    cells: usize,
-    bends: Vec<Bend>,
+    bends: Grid<Bend>,
 }
 
 impl<'a> Field<'a> {
@@ -92,47 +92,21 @@ impl<'a> Field<'a> {
                 form: jet.second_form(&normal),
             }
         });
-        let bends = bends.collect();
         Self {
             surface,
-            cells,
-            bends,
+            bends: Grid::new(cells, bends.collect()),
         }
     }
 
     /// The surface's normals on the grid.
     pub(super) fn normals(&self) -> impl Iterator<Item = &Vector> {
-        self.bends.iter().map(|bend| &bend.normal)
+        self.bends.nodes().iter().map(|bend| &bend.normal)
     }
 
     /// The bend at (u, v), bilinear between grid places.
     pub(super) fn at(&self, [u, v]: [f64; 2]) -> Bend {
-        let (corners, weights) = self.around([u, v]);
+        let (corners, weights) = self.bends.around([u, v]);
         Bend::blend(corners, weights)
-    }
-
-    /// The nodes round a place, and their weights.
-    fn around(&self, [u, v]: [f64; 2]) -> ([&Bend; 4], [f64; 4]) {
-        let (i, s) = self.cell(u);
-        let (j, t) = self.cell(v);
-        let stride = self.cells + 1;
-        let at = |i: usize, j: usize| &self.bends[i * stride + j];
-        (
-            [at(i, j), at(i + 1, j), at(i, j + 1), at(i + 1, j + 1)],
-            [(1.0 - s) * (1.0 - t), s * (1.0 - t), (1.0 - s) * t, s * t],
-        )
-    }
-
-    #[allow(
-        clippy::cast_possible_truncation,
-        clippy::cast_sign_loss,
-        clippy::cast_precision_loss,
-        reason = "a parameter in 0..1 times a cell count of at most a dozen"
-    )]
-    fn cell(&self, t: f64) -> (usize, f64) {
-        let scaled = t.clamp(0.0, 1.0) * self.cells as f64;
-        let cell = (scaled as usize).min(self.cells - 1);
-        (cell, scaled - cell as f64)
     }
 
     /// Estimated deviation of a triangle, in length: the largest height error
@@ -147,7 +121,7 @@ impl<'a> Field<'a> {
     ) -> f64 {
         let third = |axis: usize| (places[0][axis] + places[1][axis] + places[2][axis]) / 3.0;
         let middle = [third(0), third(1)];
-        let (corners, weights) = self.around(middle);
+        let (corners, weights) = self.bends.around(middle);
         let mix = |get: &dyn Fn(&Bend) -> &Vector| {
             let [a, b, c, d] = corners.map(get);
             a * weights[0] + b * weights[1] + c * weights[2] + d * weights[3]

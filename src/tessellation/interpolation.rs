@@ -39,14 +39,13 @@
 //! distance to every figure.
 
 use super::certificate::{Cell, Flat};
+use super::grid::Grid;
 use super::nets::{Homogeneous, Net, Nets};
 use super::quadratic::Quadratic;
+use super::quick::ROUNDED_UP;
 use crate::bezier::BezierPatch;
 use crate::sampling::ratio;
 use crate::scalar::Point;
-
-/// Covers the roundings of a root and what goes before it.
-const ROUNDED_UP: f64 = 1.0 + 4.0 * f64::EPSILON;
 
 /// Orders along u and v of the derivatives in the grid.
 const ORDERS: [[usize; 2]; 7] = [[2, 0], [1, 1], [0, 2], [3, 0], [2, 1], [1, 2], [0, 3]];
@@ -58,9 +57,8 @@ pub(super) struct SecondDerivatives {
     origin: Point,
     /// No corner of a triangle may be farther from the origin.
     reach: f64,
-    cells: usize,
-    /// uu, uv, vv, uuu, uuv, uvv, vvv at the nodes, v fastest.
-    nodes: Vec<[Homogeneous; 7]>,
+    /// uu, uv, vv, uuu, uuv, uvv, vvv.
+    grid: Grid<[Homogeneous; 7]>,
     /// How far each may be from bilinear.
     off: [f64; 7],
     /// Bounds of the fourth derivatives uuuu, uuuv, uuvv, uvvv, vvvv.
@@ -81,8 +79,7 @@ impl SecondDerivatives {
         Self {
             origin: nets.origin,
             reach,
-            cells: nets.cells,
-            nodes: nodes.collect(),
+            grid: Grid::new(nets.cells, nodes.collect()),
             off,
             fourth: [0, 1, 2, 3, 4].map(|k| largest(4 - k, k)),
             weights: surface.is_rational().then(|| nets.itself().clone()),
@@ -184,26 +181,8 @@ impl SecondDerivatives {
     }
 
     /// The derivatives at a place by the grid.
-    #[allow(
-        clippy::cast_possible_truncation,
-        clippy::cast_sign_loss,
-        reason = "a parameter in 0..1 times a cell count of at most a dozen"
-    )]
-    fn at(&self, [u, v]: [f64; 2]) -> [Homogeneous; 7] {
-        let cells = ratio(self.cells, 1);
-        let (x, y) = (u * cells, v * cells);
-        let cell = |t: f64| (t.max(0.0) as usize).min(self.cells - 1);
-        let (i, j) = (cell(x), cell(y));
-        let (x, y) = (x - ratio(i, 1), y - ratio(j, 1));
-        let stride = self.cells + 1;
-        let corner = i * stride + j;
-        let [a, b] = [&self.nodes[corner], &self.nodes[corner + 1]];
-        let [c, d] = [
-            &self.nodes[corner + stride],
-            &self.nodes[corner + stride + 1],
-        ];
-        let (x0, y0) = (1.0 - x, 1.0 - y);
-        let weights = [x0 * y0, x0 * y, x * y0, x * y];
+    fn at(&self, place: [f64; 2]) -> [Homogeneous; 7] {
+        let ([a, b, c, d], weights) = self.grid.around(place);
         [0, 1, 2, 3, 4, 5, 6]
             .map(|k| a[k] * weights[0] + b[k] * weights[1] + c[k] * weights[2] + d[k] * weights[3])
     }
@@ -254,16 +233,8 @@ fn third_part(t: [f64; 4], places: [[f64; 2]; 3], middle: [f64; 2]) -> f64 {
 #[cfg(test)]
 mod tests {
     use super::super::certificate::Prover;
+    use super::super::random::random;
     use super::*;
-
-    fn random(seed: &mut u64) -> f64 {
-        *seed = seed
-            .wrapping_mul(6_364_136_223_846_793_005)
-            .wrapping_add(1_442_695_040_888_963_407);
-        #[allow(clippy::cast_precision_loss, reason = "a random number")]
-        let value = (*seed >> 11) as f64 / (1_u64 << 53) as f64;
-        value
-    }
 
     fn patch(round: usize, seed: &mut u64) -> BezierPatch {
         let scale = [1.0, 1e-6, 1e6][round / 11 % 3];

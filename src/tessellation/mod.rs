@@ -20,6 +20,7 @@ mod field;
 mod fill;
 mod finish;
 mod floor;
+mod grid;
 mod hole;
 mod interpolation;
 mod lattice;
@@ -30,6 +31,8 @@ mod planar;
 mod proving;
 mod quadratic;
 mod quick;
+#[cfg(test)]
+mod random;
 mod refine;
 mod remainder;
 mod stitch;

@@ -6,7 +6,7 @@ use super::fill::Proved;
 use super::layout::INNER;
 use super::triangulation::Pole;
 use super::verdict;
-use super::work::{Work, index};
+use super::work::Work;
 use crate::scalar::Point;
 
 /// A height likely above this part of the chord is so by any bound.
@@ -16,24 +16,15 @@ impl Work<'_> {
     /// Brings all figures up to date; returns the triangles that fail.
     pub(super) fn round(&mut self, prover: &mut Prover, planar: Option<f64>) -> Vec<u32> {
         let count = self.layout.triangulation.triangles.len();
-        let stale: Vec<u32> = (0..index(count))
-            .filter(|&t| self.stale[t as usize])
-            .collect();
+        let changed = self.take_changed();
         self.make_room(count);
         self.figures.resize(count, Proved::default());
         let mut ring = std::mem::take(&mut self.ring);
-        let mut affected = stale.clone();
-        if stale.len() < count {
-            for &t in &stale {
-                self.layout.triangulation.ring(t, &mut ring);
-                affected.extend_from_slice(&ring);
-            }
-            affected.sort_unstable();
-            affected.dedup();
-        }
-        for &t in &stale {
-            self.stale[t as usize] = false;
-        }
+        let affected = if changed.len() < count {
+            self.with_rings(changed, &mut ring)
+        } else {
+            changed
+        };
         let mut failed = Vec::new();
         for &t in &affected {
             self.measure(prover, t);
@@ -51,6 +42,17 @@ impl Work<'_> {
         }
         self.ring = ring;
         failed
+    }
+
+    /// Some triangles and those round them, in order.
+    pub(super) fn with_rings(&self, mut triangles: Vec<u32>, ring: &mut Vec<u32>) -> Vec<u32> {
+        for k in 0..triangles.len() {
+            self.layout.triangulation.ring(triangles[k], ring);
+            triangles.extend_from_slice(ring);
+        }
+        triangles.sort_unstable();
+        triangles.dedup();
+        triangles
     }
 
     /// The figures of a triangle: from the bounds at hand, from its own net

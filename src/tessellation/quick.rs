@@ -11,16 +11,14 @@
 //! for heights in the direction of the normal: |n . T| <= |m . T| + |n - m| |T|,
 //! m one direction for the piece.
 
+use super::certificate::THIN;
 use super::fill::Proved;
+use super::grid::Grid;
 use super::nets::Nets;
 use super::quadratic::Quadratic;
 use crate::bezier::BezierPatch;
 use crate::sampling::ratio;
 use crate::scalar::{Point, Vector};
-
-/// A triangle thinner than this has no trustworthy normal: its area beside the
-/// square of its longest edge.
-const THIN: f64 = 1e-9;
 
 /// Covers the roundings of a root and of the few products before it.
 pub(super) const ROUNDED_UP: f64 = 1.0 + 16.0 * f64::EPSILON;
@@ -28,9 +26,8 @@ pub(super) const ROUNDED_UP: f64 = 1.0 + 16.0 * f64::EPSILON;
 /// Second derivatives on a grid, and bounds on what the grid does not say.
 #[derive(Debug)]
 pub(super) struct Quick {
-    cells: usize,
-    /// S_uu, S_uv, S_vv at the nodes, v fastest.
-    nodes: Vec<[Vector; 3]>,
+    /// S_uu, S_uv, S_vv.
+    grid: Grid<[Vector; 3]>,
     /// How far each may be from bilinear between nodes.
     off: [f64; 3],
     /// Largest third derivatives uuu, uuv, uvv, vvv, and the same along `normal`.
@@ -102,8 +99,7 @@ impl Quick {
         let [uu, uv, vv] = [[2, 0], [1, 1], [0, 2]].map(|[i, j]| nets.grid(nets.derived(i, j)));
         let nodes = (0..uu.len()).map(|k| [uu[k].xyz(), uv[k].xyz(), vv[k].xyz()]);
         Some(Self {
-            cells: nets.cells,
-            nodes: nodes.collect(),
+            grid: Grid::new(nets.cells, nodes.collect()),
             off: [[2, 0], [1, 1], [0, 2]]
                 .map(|[i, j]| (largest(i + 2, j) + largest(i, j + 2)) * width * width / 8.0),
             third: [0, 1, 2, 3].map(|k| largest(3 - k, k)),
@@ -178,26 +174,8 @@ impl Quick {
     }
 
     /// Second derivatives at a place by the grid.
-    #[allow(
-        clippy::cast_possible_truncation,
-        clippy::cast_sign_loss,
-        reason = "a parameter in 0..1 times a cell count of at most a dozen"
-    )]
-    fn at(&self, [u, v]: [f64; 2]) -> [Vector; 3] {
-        let cells = ratio(self.cells, 1);
-        let (x, y) = (u * cells, v * cells);
-        let cell = |t: f64| (t.max(0.0) as usize).min(self.cells - 1);
-        let (i, j) = (cell(x), cell(y));
-        let (x, y) = (x - ratio(i, 1), y - ratio(j, 1));
-        let stride = self.cells + 1;
-        let corner = i * stride + j;
-        let [a, b] = [&self.nodes[corner], &self.nodes[corner + 1]];
-        let [c, d] = [
-            &self.nodes[corner + stride],
-            &self.nodes[corner + stride + 1],
-        ];
-        let (x0, y0) = (1.0 - x, 1.0 - y);
-        let weights = [x0 * y0, x0 * y, x * y0, x * y];
+    fn at(&self, place: [f64; 2]) -> [Vector; 3] {
+        let ([a, b, c, d], weights) = self.grid.around(place);
         [0, 1, 2]
             .map(|k| a[k] * weights[0] + b[k] * weights[1] + c[k] * weights[2] + d[k] * weights[3])
     }
@@ -222,16 +200,8 @@ fn middle(places: [[f64; 2]; 3]) -> ([f64; 2], [f64; 2]) {
 
 #[cfg(test)]
 mod tests {
+    use super::super::random::random;
     use super::*;
-
-    fn random(seed: &mut u64) -> f64 {
-        *seed = seed
-            .wrapping_mul(6_364_136_223_846_793_005)
-            .wrapping_add(1_442_695_040_888_963_407);
-        #[allow(clippy::cast_precision_loss, reason = "a random number")]
-        let value = (*seed >> 11) as f64 / (1_u64 << 53) as f64;
-        value
-    }
 
     /// No sample of the surface may lie outside what was proved, for triangles
     /// of all sizes and places.

@@ -31,12 +31,10 @@ use super::fill::Proved;
 use super::layout::{INNER, Layout};
 use super::quick::{Bound, Quick, ROUNDED_UP, larger, lesser};
 use super::triangulation::BORDER;
+use super::verdict::LARGEST_TAN;
 use super::work::index;
 use crate::sampling::Limits;
 use crate::scalar::Vector;
-
-/// Rings that tilt more than this (45 degrees) prove nothing.
-const LARGEST_TAN: f64 = 1.0;
 
 /// Where triangles and surface are nearer to one direction than this, as a cosine
 /// (41 degrees), they are within a right angle of each other.

@@ -56,13 +56,12 @@ impl Work<'_> {
         };
         let before = self.layout.triangulation.replace(&star, &ears);
         for &t in &star {
-            self.touch(t);
-            self.stale[t as usize] = false;
+            self.forget(t);
         }
         let Some(figures) = self.proved_round(prover, &star[..ears.len()]) else {
             self.layout.triangulation.put_back(&star, before);
             for &t in &star {
-                self.measured[t as usize] = false;
+                self.forget(t);
             }
             return false;
         };
@@ -127,13 +126,7 @@ impl Work<'_> {
     /// fails.
     fn proved_round(&mut self, prover: &mut Prover, changed: &[u32]) -> Option<Vec<(u32, Proved)>> {
         let mut ring = Vec::new();
-        let mut affected = changed.to_vec();
-        for &t in changed {
-            self.layout.triangulation.ring(t, &mut ring);
-            affected.extend_from_slice(&ring);
-        }
-        affected.sort_unstable();
-        affected.dedup();
+        let mut affected = self.with_rings(changed.to_vec(), &mut ring);
         // What is new fails first.
         affected.sort_by_key(|t| !changed.contains(t));
         let mut figures = Vec::with_capacity(affected.len());

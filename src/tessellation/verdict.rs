@@ -46,6 +46,7 @@
 //!
 //! and the edge figures of border edges join the reverse.
 
+use super::border::{SHARPEST, half_angle};
 use super::certificate::Prover;
 use super::fill::Proved;
 use super::triangulation::BORDER;
@@ -53,10 +54,7 @@ use super::work::Work;
 use crate::scalar::{Point, Vector};
 
 /// Rings that tilt more than this (45 degrees) prove nothing.
-const LARGEST_TAN: f64 = 1.0;
-
-/// Least half angle between border edges at a vertex, as a sine.
-const SHARPEST: f64 = 0.38;
+pub(super) const LARGEST_TAN: f64 = 1.0;
 
 /// The figures of one triangle, from its cell and if need be from its ring.
 pub(super) fn judge(work: &Work, prover: &mut Prover, t: u32, ring: &mut Vec<u32>) -> Proved {
@@ -191,13 +189,9 @@ fn at_border(
             holds.then_some((start, away))
         };
         let (incoming, outgoing) = (along(before), along(after));
-        if incoming.cross(&outgoing).dot(normal) >= 0.0 {
+        if let Some(half) = half_angle(&incoming, &outgoing, normal) {
             lines.extend([line(before)?, line(after)?]);
-            let angle = incoming
-                .cross(&outgoing)
-                .norm()
-                .atan2(-incoming.dot(&outgoing));
-            sharpest = sharpest.min((angle / 2.0).sin());
+            sharpest = sharpest.min(half);
         } else {
             // Inside one of the two lines is inside the piece.
             let first = if after.1 {

@@ -37,6 +37,8 @@ pub(super) struct Work<'a> {
     pub(super) measured: Vec<bool>,
     /// Whether a triangle has changed since it was last judged.
     pub(super) stale: Vec<bool>,
+    /// Those triangles, in the order in which they changed.
+    changed: Vec<u32>,
     /// Triangles that are no more, once thinning has begun.
     pub(super) dead: Vec<bool>,
     /// Triangles known to be high.
@@ -81,9 +83,8 @@ impl<'a> Work<'a> {
         work.upright = sweep.upright;
         work.figures = sweep.figures;
         work.stale.fill(false);
-        for &t in &sweep.failed {
-            work.stale[t as usize] = true;
-        }
+        work.changed.clear();
+        sweep.failed.iter().for_each(|&t| work.touch(t));
         let mut doubtful = sweep.failed;
         if !sweep.upright {
             // Exchanges do away with most that face inwards.
@@ -118,6 +119,7 @@ impl<'a> Work<'a> {
             vertex_facts: Vec::new(),
             measured: vec![false; count],
             stale: vec![true; count],
+            changed: (0..index(count)).collect(),
             dead: Vec::new(),
             highest: Vec::new(),
             upright: false,
@@ -189,12 +191,31 @@ impl<'a> Work<'a> {
     /// Notes that a triangle has changed, or that new ones have come.
     pub(super) fn touch(&mut self, t: u32) {
         let count = self.layout.triangulation.triangles.len();
+        self.changed.extend(index(self.stale.len())..index(count));
         self.stale.resize(count, true);
         self.measured.resize(count, false);
         self.errors.resize(count, f64::NAN);
-        self.stale[t as usize] = true;
+        if !std::mem::replace(&mut self.stale[t as usize], true) {
+            self.changed.push(t);
+        }
+        self.forget(t);
+    }
+
+    /// What was known of a triangle holds no longer.
+    pub(super) fn forget(&mut self, t: u32) {
         self.measured[t as usize] = false;
         self.errors[t as usize] = f64::NAN;
+    }
+
+    /// The triangles that have changed since they were last judged, in order;
+    /// they are to be judged now.
+    pub(super) fn take_changed(&mut self) -> Vec<u32> {
+        let mut changed = std::mem::take(&mut self.changed);
+        changed.sort_unstable();
+        for &t in &changed {
+            self.stale[t as usize] = false;
+        }
+        changed
     }
 
     /// Where the inner triangles are, and how much of the chord they use: by
