@@ -103,6 +103,15 @@ impl Builder<'_> {
             .collect()
     }
 
+    /// A side between chains that have its ends.
+    fn upright(&mut self, outline: &Outline, side: Side, [start, end]: [u32; 2]) -> Vec<u32> {
+        let samples = outline.side(side);
+        let mut chain = vec![start];
+        chain.extend(self.border(side, &samples[1..samples.len() - 1]));
+        chain.push(end);
+        chain
+    }
+
     fn row(&mut self, q: f64, ps: &[f64]) -> Vec<u32> {
         let mut row = Vec::with_capacity(ps.len());
         for &p in ps {
@@ -153,20 +162,9 @@ pub(super) fn layout(surface: &BezierPatch, ground: &Ground, outline: &Outline) 
     };
     let bottom_chain = chain(&mut build, bottom);
     let top_chain = chain(&mut build, top);
-    let upright = |build: &mut Builder, side: Side, start: u32, end: u32| {
-        let samples = outline.side(side);
-        let mut chain = vec![start];
-        chain.extend(build.border(side, &samples[1..samples.len() - 1]));
-        chain.push(end);
-        chain
-    };
-    let left_chain = upright(&mut build, left, bottom_chain[0], top_chain[0]);
-    let right_chain = upright(
-        &mut build,
-        right,
-        bottom_chain[bottom_chain.len() - 1],
-        top_chain[top_chain.len() - 1],
-    );
+    let left_chain = build.upright(outline, left, [bottom_chain[0], top_chain[0]]);
+    let ends = [&bottom_chain, &top_chain].map(|chain| chain[chain.len() - 1]);
+    let right_chain = build.upright(outline, right, ends);
     let row_chains: Vec<Vec<u32>> = rows.iter().map(|(q, ps)| build.row(*q, ps)).collect();
 
     let mut triangles = Vec::new();
@@ -250,20 +248,9 @@ fn coursed(surface: &BezierPatch, plan: &Plan, outline: &Outline) -> Option<Layo
         vertices: Vec::with_capacity(count),
     };
     let [bottom, top] = [0, 1].map(|k| build.border(sides[k], outline.side(sides[k])));
-    let [left, right] = [2, 3].map(|k| {
-        let samples = outline.side(sides[k]);
-        let end = |chain: &[u32]| {
-            if k == 2 {
-                chain[0]
-            } else {
-                chain[chain.len() - 1]
-            }
-        };
-        let mut chain = vec![end(&bottom)];
-        chain.extend(build.border(sides[k], &samples[1..samples.len() - 1]));
-        chain.push(end(&top));
-        chain
-    });
+    let left = build.upright(outline, sides[2], [bottom[0], top[0]]);
+    let ends = [&bottom, &top].map(|chain| chain[chain.len() - 1]);
+    let right = build.upright(outline, sides[3], ends);
     let chains: Vec<Vec<u32>> = rows
         .iter()
         .map(|row| {
