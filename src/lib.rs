@@ -38,6 +38,8 @@ pub mod tessellation;
 
 pub mod mesh;
 
+pub mod quality;
+
 pub mod format;
 
 pub mod report;

@@ -316,8 +316,15 @@ fn json_has_the_fields_that_are_documented() {
         }
     };
     every(&told);
-    for group in ["deviation", "storage", "written", "seconds"] {
+    for group in ["deviation", "storage", "written", "seconds", "quality"] {
         every(&told[group]);
+    }
+    let quality = &told["quality"];
+    every(&quality["shortest_edge"]);
+    for line in quality["measures"].as_array().unwrap() {
+        every(line);
+        every(&line["histogram"]);
+        every(&line["worst"][0]);
     }
     let (_, out, _) = run(&["seams", "patches/front_quarter.ron", "--format", "json"]);
     let seams = json(&out);

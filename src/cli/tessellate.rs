@@ -21,6 +21,7 @@ use crate::mesh::{Meshed, Prediction, Strips};
 use crate::pace;
 use crate::patch_set::{PanelId, PatchId, PatchSet, PieceId};
 use crate::picture::{Extra, seam_curves};
+use crate::quality::{Asked, Quality};
 use crate::report::{Forecast, SecondsLine, StreamSummary, Summary};
 use crate::sampling::Limits;
 use crate::scalar::{Cuboid, Length, Tolerance};
@@ -108,6 +109,11 @@ pub(super) struct TessellateArguments {
     /// needs the whole mesh (strips, its area, loops of its edges) is not told
     #[arg(long, conflicts_with_all = ["dry_run", "evidence", "normals", "extras"])]
     stream: bool,
+
+    /// Tell the shape and size of triangles in full: all measures with quantiles,
+    /// histograms and the worst twenty with their places
+    #[arg(long, conflicts_with_all = ["dry_run", "stream"])]
+    quality: bool,
 
     /// How the summary is printed
     #[arg(long, value_enum, default_value_t)]
@@ -266,9 +272,18 @@ impl TessellateArguments {
         let Some(written) = written else {
             return Ok(Outcome::Done);
         };
-        let summary = Summary::new(set, &limits, &made, &strips, format, &written, seconds)
+        let mut summary = Summary::new(set, &limits, &made, &strips, format, &written, seconds)
             .with_turned_over(set, &turned_over);
-        report(&self.format.print(&summary, Summary::text)?, standard)?;
+        if self.quality {
+            let found = Quality::of(&made.mesh, &Asked::default());
+            summary = summary.with_quality(&made.mesh, &found);
+        }
+        let text = if self.quality {
+            Summary::text_with_places
+        } else {
+            Summary::text
+        };
+        report(&self.format.print(&summary, text)?, standard)?;
         Ok(Outcome::Done)
     }
 

@@ -11,7 +11,7 @@ pub(super) const NO_SIDE: u32 = u32::MAX;
 
 /// The sides of some triangles, edge by edge. Side `3 t + c` of triangle `t`
 /// runs from its corner `c` to its corner `(c + 1) mod 3`.
-pub(super) struct EdgeTable {
+pub(crate) struct EdgeTable {
     /// Bucket of each lesser end point in `entries`.
     starts: Vec<usize>,
     /// Greater end point in the upper half, side in the lower half.
@@ -19,9 +19,9 @@ pub(super) struct EdgeTable {
 }
 
 /// All sides that lie on one edge.
-pub(super) struct EdgeUses<'a> {
+pub(crate) struct EdgeUses<'a> {
     /// The lesser end point.
-    pub(super) low: u32,
+    pub(crate) low: u32,
     entries: &'a [u64],
 }
 
@@ -52,7 +52,7 @@ pub(super) fn is_degenerate([a, b, c]: [u32; 3]) -> bool {
 impl EdgeTable {
     /// Groups the sides of triangles whose corners count below `points`.
     /// Triangles with a repeated corner have no sides.
-    pub(super) fn new(triangles: &[[u32; 3]], points: usize) -> Self {
+    pub(crate) fn new(triangles: &[[u32; 3]], points: usize) -> Self {
         let sides = || {
             triangles
                 .iter()
@@ -88,7 +88,7 @@ impl EdgeTable {
     }
 
     /// The edges, ordered by their end points.
-    pub(super) fn edges(&self) -> impl Iterator<Item = EdgeUses<'_>> {
+    pub(crate) fn edges(&self) -> impl Iterator<Item = EdgeUses<'_>> {
         self.starts
             .windows(2)
             .zip(0_u32..)
@@ -115,13 +115,18 @@ impl EdgeTable {
 }
 
 impl EdgeUses<'_> {
+    /// The greater end point.
+    pub(crate) fn high(&self) -> u32 {
+        u32::try_from(self.entries[0] >> 32).expect("the shift leaves 32 bits")
+    }
+
     /// How many triangles lie on the edge.
-    pub(super) fn len(&self) -> usize {
+    pub(crate) fn len(&self) -> usize {
         self.entries.len()
     }
 
     /// The sides, ascending.
-    pub(super) fn sides(&self) -> impl Iterator<Item = u32> {
+    pub(crate) fn sides(&self) -> impl Iterator<Item = u32> {
         self.entries
             .iter()
             .map(|entry| u32::try_from(entry & 0xFFFF_FFFF).expect("the mask leaves 32 bits"))

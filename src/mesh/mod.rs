@@ -18,6 +18,7 @@ mod strips;
 pub use audit::{Audit, AuditError, Evidence, Face, Fault, Finding, Worst};
 pub use budget::{Budget, MOST_BYTES, MOST_TRIANGLES};
 pub use deviation::Deviation;
+pub(crate) use edges::EdgeTable;
 pub use job::{MeshError, Meshed, Stages};
 pub use measure::Measures;
 pub use model::{Mesh, Part, Vertex};

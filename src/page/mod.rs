@@ -5,6 +5,7 @@
 mod gallery;
 mod histogram;
 mod markup;
+mod quality;
 mod sheet;
 mod tables;
 mod viewer;

@@ -3,13 +3,14 @@
 use super::gallery::Gallery;
 use super::histogram::Histogram;
 use super::markup::{escape, figure, terms};
+use super::quality;
 use super::tables;
 use super::viewer::ViewerMesh;
 use crate::mesh::{Measures, Meshed, Storage, Strips};
 use crate::patch_set::PatchSet;
 use crate::picture::{Scene, SeamCurve, round_up};
-use crate::report::many;
-use crate::report::{CAUTION, SeamReport, upward};
+use crate::quality::{Asked, Quality};
+use crate::report::{CAUTION, QualityReport, SeamReport, many, upward};
 
 const STYLE: &str = include_str!("assets/page.css");
 const SCRIPT: &str = include_str!("assets/page.js");
@@ -70,7 +71,7 @@ impl Sheet<'_> {
         // In a script element only this could end it or open a comment.
         let data = viewer.data.to_string().replace('<', "\\u003c");
         let template = include_str!("assets/page.html");
-        let parts: [(&str, String); 18] = [
+        let parts: [(&str, String); 19] = [
             ("{title}", escape(name)),
             ("{style}", STYLE.to_owned()),
             ("{verdict}", self.verdict()),
@@ -81,6 +82,7 @@ impl Sheet<'_> {
             ("{seams}", tables::seams(self.report, self.gallery)),
             ("{close-ups}", self.gallery.close_ups()),
             ("{histograms}", self.histograms()),
+            ("{quality}", self.quality()),
             (
                 "{panels}",
                 tables::panels(set, &self.made.mesh, self.deviations),
@@ -231,37 +233,8 @@ impl Sheet<'_> {
             self.deviations.iter().copied(),
         );
         deviation.limit = Some((self.chord, "tolerance".to_owned()));
-        let each = || (0..mesh.triangles.len()).map(|t| mesh.triangle_corners(t));
-        let sides = |[a, b, c]: [crate::scalar::Point; 3]| [b - a, c - b, a - c];
-        let smallest = each().map(|corners| {
-            let e = sides(corners);
-            (0..3)
-                .map(|k| {
-                    let (p, q) = (e[k], -e[(k + 2) % 3]);
-                    p.cross(&q).norm().atan2(p.dot(&q)).to_degrees()
-                })
-                .fold(180.0, f64::min)
-        });
-        let angles = Histogram::of(
-            "Smallest angle",
-            "smallest angle, degrees",
-            [0.0, 60.0],
-            smallest,
-        );
-        // Verdict library, SAND2007-1751: 1 for the equilateral triangle.
-        let shape = each().map(|corners| {
-            let e = sides(corners);
-            let squares: f64 = e.iter().map(|s| s.norm_squared()).sum();
-            2.0 * 3.0_f64.sqrt() * e[0].cross(&e[1]).norm() / squares
-        });
-        let shapes = Histogram::of(
-            "Shape",
-            "shape: 4 sqrt 3 area / sum of squared sides",
-            [0.0, 1.0],
-            shape,
-        );
-        [deviation, angles, shapes]
-            .iter()
+        std::iter::once(deviation)
+            .chain(quality::histograms(mesh))
             .enumerate()
             .map(|(k, h)| {
                 format!(
@@ -271,6 +244,12 @@ impl Sheet<'_> {
                 )
             })
             .collect()
+    }
+
+    fn quality(&self) -> String {
+        let mesh = &self.made.mesh;
+        let found = Quality::of(mesh, &Asked::default());
+        quality::measures(&QualityReport::new(mesh, &found), self.set.unit().symbol())
     }
 
     fn tolerances(&self) -> String {

@@ -10,7 +10,7 @@ use crate::report::many;
 use crate::report::{FigureLine, SeamLine, SeamReport, upward};
 
 /// Opens a table whose columns can be sorted; `numbers` says which hold figures.
-fn open(id: &str, caption: &str, columns: &[(&str, bool)]) -> String {
+pub(super) fn open(id: &str, caption: &str, columns: &[(&str, bool)]) -> String {
     let mut out = format!(
         "<section class=\"wide\" tabindex=\"0\" aria-label=\"{0}\">\n\
          <table id=\"{id}\" class=\"sortable\">\n<caption>{0}</caption>\n<thead>\n<tr>\n",
@@ -28,10 +28,11 @@ fn open(id: &str, caption: &str, columns: &[(&str, bool)]) -> String {
     out + "</tr>\n</thead>\n<tbody>\n"
 }
 
-const CLOSE: &str = "</tbody>\n</table>\n</section>\n";
+/// Closes what [`open`] has opened.
+pub(super) const CLOSE: &str = "</tbody>\n</table>\n</section>\n";
 
 /// A cell with a figure and the value it is sorted by.
-fn number(value: f64, text: &str) -> String {
+pub(super) fn number(value: f64, text: &str) -> String {
     format!("<td class=\"number\" data-value=\"{value:e}\">{text}</td>")
 }
 

@@ -7,6 +7,7 @@ mod comparison;
 mod forecast;
 mod mending;
 mod panel_pairs;
+mod quality;
 mod seam_line;
 mod seams;
 mod seams_csv;
@@ -27,6 +28,7 @@ pub use comparison::{
 pub use forecast::Forecast;
 pub use mending::{LeftLine, MendedLine, MendingReport, MoveLine};
 pub use panel_pairs::PanelPairLine;
+pub use quality::{HistogramLine, MeasureLine, QualityReport, TIME_STEP, WorstLine};
 pub use seam_line::{EdgeName, FailingLine, FigureLine, LimitLine, PlaceLine, SeamLine};
 pub use seams::{
     CrowdLine, LoopLine, NearMissLine, OrientationLine, OverlapLine, SeamReport, SeamSummary,

@@ -4,11 +4,12 @@ use std::collections::BTreeSet;
 
 use serde::Serialize;
 
-use super::CAUTION;
 use super::wording::many;
+use super::{CAUTION, QualityReport};
 use crate::format::Written;
-use crate::mesh::{Measures, Meshed, Storage, Strips};
+use crate::mesh::{Measures, Mesh, Meshed, Storage, Strips};
 use crate::patch_set::{Demand, PatchId, PatchSet};
+use crate::quality::Quality;
 use crate::sampling::Limits;
 use crate::topology::{Contact, EdgeId, Topology, demand_between};
 
@@ -81,6 +82,8 @@ pub struct Summary {
     pub area: f64,
     /// Volume, if the mesh is closed.
     pub volume: Option<f64>,
+    /// Shape and size of the triangles, which says nothing of the deviation.
+    pub quality: QualityReport,
     /// Bytes of bare geometry by way of storing.
     pub storage: StorageLine,
     /// The file.
@@ -246,6 +249,7 @@ impl Summary {
             turned_over: Vec::new(),
             area: measures.area,
             volume: measures.volume,
+            quality: QualityReport::new(mesh, &Quality::brief(mesh)),
             storage: StorageLine {
                 triangles: storage.triangles,
                 indexed: storage.indexed,
@@ -264,6 +268,13 @@ impl Summary {
 }
 
 impl Summary {
+    /// The same, with another account of the triangles of the same mesh.
+    #[must_use]
+    pub fn with_quality(mut self, mesh: &Mesh, found: &Quality) -> Self {
+        self.quality = QualityReport::new(mesh, found);
+        self
+    }
+
     /// The same, telling of patches that were turned over.
     #[must_use]
     pub fn with_turned_over(mut self, set: &PatchSet, patches: &[PatchId]) -> Self {

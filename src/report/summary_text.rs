@@ -9,7 +9,21 @@ impl Summary {
     /// The outcome as text, one subject a line.
     #[must_use]
     pub fn text(&self) -> String {
-        written(|out| self.write_text(out))
+        written(|out| {
+            self.write_text(out)?;
+            writeln!(out, "\n{}", self.caution)
+        })
+    }
+
+    /// The same, with histograms and the worst triangles with their places, where
+    /// these are known.
+    #[must_use]
+    pub fn text_with_places(&self) -> String {
+        written(|out| {
+            self.write_text(out)?;
+            self.quality.write_places(out)?;
+            writeln!(out, "\n{}", self.caution)
+        })
     }
 
     fn write_text(&self, out: &mut String) -> std::fmt::Result {
@@ -109,6 +123,8 @@ impl Summary {
             )?,
             None => writeln!(out, "size        area {} {unit}^2", figure(self.area))?,
         }
+        self.quality.write_short(out, unit)?;
+        self.quality.write_table(out)?;
         let s = &self.storage;
         writeln!(
             out,
@@ -129,8 +145,7 @@ impl Summary {
             out,
             "seconds     {total:.2}: reading {:.2}, pairing {:.2}, sampling {:.2}, tessellating and proving {:.2}, assembling {:.2}, strips {:.2}, writing {:.2}",
             t.reading, t.pairing, t.sampling, t.tessellation, t.assembly, t.strips, t.writing
-        )?;
-        writeln!(out, "\n{}", self.caution)
+        )
     }
 }
 
