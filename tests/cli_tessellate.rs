@@ -95,7 +95,7 @@ fn wrong_usage_is_refused_in_plain_words() {
         ),
         (
             &[set, "-o", "mesh.xyz"],
-            "error: --output mesh.xyz: no format is known for this extension; name it stl, obj, ply or glb, or give --as",
+            "error: --output mesh.xyz: no format is known for this extension; name it stl, obj, ply, glb or vtu, or give --as",
         ),
         (
             &[set, "-o", "mesh"],
@@ -103,11 +103,11 @@ fn wrong_usage_is_refused_in_plain_words() {
         ),
         (
             &[set, "-o", "-"],
-            "give the format with --as stl, obj, ply or glb",
+            "give the format with --as stl, obj, ply, glb or vtu",
         ),
         (
             &[set, "-o", mesh, "--as", "xyz"],
-            "[possible values: stl, obj, ply, glb]",
+            "[possible values: stl, obj, ply, glb, vtu]",
         ),
         (
             &[set, "-o", mesh, "--as", "stl", "--layout", "strips"],

@@ -35,6 +35,7 @@ fn files(mesh: &Mesh, chord: f64) -> Vec<Vec<u8>> {
         (Format::Ply, None),
         (Format::Glb, None),
         (Format::Glb, Some(Layout::Strips)),
+        (Format::Vtu, None),
     ] {
         let options = WriteOptions {
             layout,

@@ -441,11 +441,17 @@ fn files_for_the_judges() {
             if name == "far" && format == Format::Stl {
                 continue;
             }
-            let plain = format.layouts().iter().map(|layout| (*layout, false));
-            let with_normals = (format == Format::Ply).then_some((Layout::Indexed, true));
-            for (layout, normals) in plain.chain(with_normals) {
+            let plain = format.layouts().iter();
+            let plain = plain.map(|layout| (*layout, layout.name()));
+            let more = match format {
+                Format::Ply => Some((Layout::Indexed, "normals")),
+                Format::Stl => Some((Layout::Triangles, "solids")),
+                _ => None,
+            };
+            for (layout, kind) in plain.chain(more) {
                 let options = WriteOptions {
-                    normals,
+                    normals: kind == "normals",
+                    solids: kind == "solids",
                     ..options(Some(layout))
                 };
                 let (mut bytes, mut again) = (Vec::new(), Vec::new());
@@ -464,7 +470,6 @@ fn files_for_the_judges() {
                     "euler": measures.euler,
                     "components": measures.components,
                 });
-                let kind = if normals { "normals" } else { layout.name() };
                 let file = folder.join(format!("{name}-{kind}.{format}"));
                 std::fs::write(&file, bytes).unwrap();
                 std::fs::write(format!("{}.json", file.display()), json.to_string()).unwrap();

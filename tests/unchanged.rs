@@ -136,7 +136,7 @@ fn panels_of_ten_thousand_patches_keep_their_bytes() {
         [at - 1, at + 1, 0].map(|k| all[k]).to_vec()
     };
     for name in near {
-        for format in ["obj", "glb"] {
+        for format in ["obj", "glb", "vtu"] {
             let bytes = ["old", "new"].map(|which| {
                 let (set, mesh) = (format!("{which}.ron"), format!("{which}.{format}"));
                 chordwise(folder, &["tessellate", &set, "-o", &mesh, "--panel", name]);

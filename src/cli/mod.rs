@@ -13,6 +13,7 @@ mod completions;
 mod demo;
 mod disk;
 mod draw;
+mod figures;
 mod interrupt;
 mod joining;
 mod man;

@@ -124,7 +124,22 @@ impl Output {
             return Ok(None);
         };
         let done = |(_, patch): &(T, _)| Some(*patch);
-        replace(&name, &target, job, done).map(|(done, _)| Some(done))
+        replace(name, target, job, done).map(|(done, _)| Some(done))
+    }
+
+    /// Writes a result to a plain file that gets its name later. `None` where it is
+    /// no plain file.
+    ///
+    /// # Errors
+    /// As [`Output::write`].
+    pub(crate) fn prepare<T>(
+        self,
+        job: impl FnOnce(&mut dyn Write) -> Result<T, FormatError>,
+    ) -> Result<Option<(T, Ready)>, OutputError> {
+        match self {
+            Self::File { name, target } => prepare(name, target, job, |_| None).map(Some),
+            _ => Ok(None),
+        }
     }
 
     /// Writes a result. `None` means that the reader of standard output has
@@ -161,36 +176,75 @@ impl Output {
                     .map(Some)
                     .map_err(|error| failed(&path, error))
             }
-            Self::File { name, target } => replace(&name, &target, job, |_| None).map(Some),
+            Self::File { name, target } => replace(name, target, job, |_| None).map(Some),
         }
     }
 }
 
+/// A result that is on the disk as a whole, and has not got its name yet. Dropped,
+/// it is gone.
+#[derive(Debug)]
+pub(crate) struct Ready {
+    name: PathBuf,
+    target: PathBuf,
+    pending: interrupt::Pending,
+}
+
+impl Ready {
+    /// Gives it its name.
+    ///
+    /// # Errors
+    /// [`OutputError`] where the system fails.
+    pub(crate) fn place(self) -> Result<(), OutputError> {
+        let Self {
+            name,
+            target,
+            pending,
+        } = self;
+        disk::rename(pending, &target).map_err(|error| system(&name, "put it in place", error))?;
+        disk::sync_folder(folder_of(&target)).map_err(|error| {
+            system(
+                &name,
+                "be sure that it lasts: its folder was not synced",
+                error,
+            )
+        })
+    }
+}
+
 fn replace<T>(
-    name: &Path,
-    target: &Path,
+    name: PathBuf,
+    target: PathBuf,
     job: impl FnOnce(&mut dyn Write) -> Result<T, FormatError>,
     patch: impl FnOnce(&T) -> Option<(u64, [u8; 4])>,
 ) -> Result<T, OutputError> {
-    let folder = folder_of(target);
-    let mut pending =
-        disk::create(folder).map_err(|error| system(name, "make a file beside it", error))?;
-    let done = job(&mut disk::Written(pending.file())).map_err(|error| failed(name, error))?;
+    let (done, ready) = prepare(name, target, job, patch)?;
+    ready.place()?;
+    Ok(done)
+}
+
+fn prepare<T>(
+    name: PathBuf,
+    target: PathBuf,
+    job: impl FnOnce(&mut dyn Write) -> Result<T, FormatError>,
+    patch: impl FnOnce(&T) -> Option<(u64, [u8; 4])>,
+) -> Result<(T, Ready), OutputError> {
+    let mut pending = disk::create(folder_of(&target))
+        .map_err(|error| system(&name, "make a file beside it", error))?;
+    let done = job(&mut disk::Written(pending.file())).map_err(|error| failed(&name, error))?;
     if let Some((place, bytes)) = patch(&done) {
         disk::patch(&mut pending, place, &bytes)
-            .map_err(|error| system(name, "write it", error))?;
+            .map_err(|error| system(&name, "write it", error))?;
     }
-    disk::permit(&pending, target).map_err(|error| system(name, "keep its permissions", error))?;
-    disk::sync(&mut pending).map_err(|error| system(name, "sync it", error))?;
-    disk::rename(pending, target).map_err(|error| system(name, "put it in place", error))?;
-    disk::sync_folder(folder).map_err(|error| {
-        system(
-            name,
-            "be sure that it lasts: its folder was not synced",
-            error,
-        )
-    })?;
-    Ok(done)
+    disk::permit(&pending, &target)
+        .map_err(|error| system(&name, "keep its permissions", error))?;
+    disk::sync(&mut pending).map_err(|error| system(&name, "sync it", error))?;
+    let ready = Ready {
+        name,
+        target,
+        pending,
+    };
+    Ok((done, ready))
 }
 
 /// What a path means once links are followed, whether it exists or not.

@@ -1,5 +1,8 @@
 //! `chordwise tessellate`: from a patch set to a proved mesh in a file.
 
+mod family;
+mod making;
+
 use std::path::PathBuf;
 use std::time::Instant;
 
@@ -7,24 +10,22 @@ use clap::Args;
 use clap::builder::{PossibleValuesParser, TypedValueParser};
 
 use super::Outcome;
+use super::figures::Figures;
 use super::meshing::MeshingArguments;
 use super::message::report;
 use super::output::Output;
 use super::panels::panels;
-use super::progress::{Counted, Progress};
 use super::source;
 use super::stream::stream;
 use super::style::OutputStyle;
-use crate::continuity::Survey;
-use crate::format::{self, Format, FormatError, Layout, Overlay, WriteOptions};
-use crate::mesh::{Meshed, Prediction, Strips};
-use crate::pace;
+use making::Job;
+use crate::format::{self, Format, FormatError, Layout, WriteOptions};
+use crate::mesh::Prediction;
 use crate::patch_set::{PanelId, PatchId, PatchSet, PieceId};
-use crate::picture::{Extra, seam_curves};
-use crate::quality::{Asked, Quality};
-use crate::report::{Forecast, SecondsLine, StreamSummary, Summary};
+use crate::picture::Extra;
+use crate::report::{FamilySummary, Forecast, SecondsLine, StreamSummary, Summary};
 use crate::sampling::Limits;
-use crate::scalar::{Cuboid, Length, Tolerance};
+use crate::scalar::{Length, Tolerance};
 
 const EXAMPLES: &str = "\
 Examples:
@@ -34,6 +35,7 @@ Examples:
   chordwise tessellate front.ron --as obj -o - | gzip > front.obj.gz
   chordwise tessellate front.ron -o front.ply --evidence
   chordwise tessellate front.ron -o front.glb --chord 0.001 --dry-run
+  chordwise tessellate front.ron -o front.vtu --family 4
 
 The format follows the extension. Every triangle is proved to lie within the
 chord tolerance of the surface, and the surface of the mesh, or nothing is
@@ -85,12 +87,16 @@ pub(super) struct TessellateArguments {
     #[arg(long)]
     normals: bool,
 
+    /// Write STL as text, with a named solid for every panel
+    #[arg(long, conflicts_with = "stream")]
+    solids: bool,
+
     /// Only this panel; may be repeated. Seams keep the vertices they have in
     /// the whole set, so that panels meshed apart fit together
     #[arg(long = "panel", value_name = "NAME")]
     panels: Vec<String>,
 
-    /// Keep the patch, u and v of every corner in the file (PLY and OBJ), so
+    /// Keep the patch, u and v of every corner in the file (PLY, OBJ and VTU), so
     /// that `chordwise audit` can prove a PLY file anew
     #[arg(long)]
     evidence: bool,
@@ -109,6 +115,12 @@ pub(super) struct TessellateArguments {
     /// needs the whole mesh (strips, its area, loops of its edges) is not told
     #[arg(long, conflicts_with_all = ["dry_run", "evidence", "normals", "extras"])]
     stream: bool,
+
+    /// Make this many meshes, each 1.5 times finer in length than the one before,
+    /// for convergence studies: OUT_1, OUT_2 and so on, the first as asked for
+    #[arg(long, value_name = "N", conflicts_with_all = ["dry_run", "stream"],
+          value_parser = clap::value_parser!(u32).range(1..=20))]
+    family: Option<u32>,
 
     /// Tell the shape and size of triangles in full: all measures with quantiles,
     /// histograms and the worst twenty with their places
@@ -140,11 +152,11 @@ fn names(names: &[&'static str]) -> impl TypedValueParser<Value = String> + use<
 #[derive(Debug, thiserror::Error)]
 enum UsageError {
     #[error(
-        "--output {0}: no format is known for this extension; name it stl, obj, ply or glb, or give --as"
+        "--output {0}: no format is known for this extension; name it stl, obj, ply, glb or vtu, or give --as"
     )]
     Extension(String),
     #[error(
-        "--output -: standard output has no extension; give the format with --as stl, obj, ply or glb"
+        "--output -: standard output has no extension; give the format with --as stl, obj, ply, glb or vtu"
     )]
     Standard,
     #[error("`{0}` is no normal angle; write degrees, from 0.01 to 180")]
@@ -153,6 +165,12 @@ enum UsageError {
         "--normals: stl has no vertex normals, only those of its facets; write ply, obj or glb"
     )]
     Normals,
+    #[error(
+        "--family: a file a level is written, and all get their names together; name a plain file"
+    )]
+    Family,
+    #[error("--solids: only stl has solids; write stl")]
+    Solids,
     #[error("--stream: {0} needs the whole mesh before its first byte; write stl")]
     Stream(Format),
     #[error("--extra {0}: only glb has room for lines and points besides the mesh")]
@@ -169,8 +187,11 @@ impl TessellateArguments {
     }
 
     fn try_run(&self) -> Result<Outcome, Box<dyn std::error::Error>> {
-        let output = Output::open(&self.output, &[&self.set])?;
         let format = self.file_format()?;
+        let (output, family) = match self.family {
+            None => (Some(Output::open(&self.output, &[&self.set])?), Vec::new()),
+            Some(levels) => (None, self.family_outputs(levels)?),
+        };
         let layout = self
             .layout
             .as_deref()
@@ -179,6 +200,9 @@ impl TessellateArguments {
         format.layout(layout)?;
         if self.normals && format == Format::Stl {
             return Err(UsageError::Normals.into());
+        }
+        if self.solids && format != Format::Stl {
+            return Err(UsageError::Solids.into());
         }
         if let Some(extra) = self.extras.first()
             && format != Format::Glb
@@ -201,30 +225,38 @@ impl TessellateArguments {
                 return Ok(Outcome::Refused);
             }
         };
-        let mut seconds = SecondsLine {
-            reading: clock.elapsed().as_secs_f64(),
-            ..SecondsLine::default()
-        };
+        let seconds = clock.elapsed().as_secs_f64();
         let turned_over = self.meshing.prepare(&mut reading, &progress)?;
         let set = &reading.set;
         let limits = self.limits(set)?;
-        let chord = Tolerance::new(limits.chord)?;
-        let Cuboid { low, high } = set.cuboid();
-        let mut held = Limits::new(
-            limits.chord - format.rounding(low, high, chord),
-            limits.normal_rad,
-            limits.max_edge,
-        );
-        held.thin = self.thin;
         let wanted = self.wanted(set)?;
         let of = |piece: PieceId| wanted[piece.index()];
         let budget = self.meshing.budget();
         let stage = |name| progress.stage(name);
+        let job = Job {
+            set,
+            turned_over: &turned_over,
+            wanted: &wanted,
+            format,
+            layout,
+            budget,
+            progress: &progress,
+            reading: seconds,
+        };
+        let chord = Tolerance::new(limits.chord)?;
+        let held = job.held(&limits, chord, self.thin);
         if self.dry_run {
-            let prediction = Prediction::new(set, &held, of, self.evidence, stage)?;
+            let mut prediction = Prediction::new(set, &held, of, self.carries(format), stage)?;
+            if !self.evidence {
+                prediction.sample.evidence = None;
+            }
+            let none = Figures::default();
             let options = WriteOptions {
                 layout,
                 normals: self.normals,
+                solids: self.solids,
+                // Only whether they are there tells on the size.
+                surface: none.given(),
                 ..WriteOptions::new(chord)
             };
             let written = format::predict(&prediction, set, format, &options)?;
@@ -235,49 +267,39 @@ impl TessellateArguments {
             report(&self.format.print(&forecast, Forecast::text)?, false)?;
             return Ok(refused.map_or(Outcome::Done, Outcome::refuse));
         }
+        let Some(output) = output else {
+            let summary = self.family(&job, &limits, family)?;
+            drop(progress);
+            let text = if self.quality {
+                FamilySummary::text_with_places
+            } else {
+                FamilySummary::text
+            };
+            report(&self.format.print(&summary, text)?, false)?;
+            return Ok(Outcome::Done);
+        };
         if self.stream {
             let limits_held = (&held, chord);
             let (made, written) = stream(output, set, limits_held, &budget, of, &progress)?;
             drop(progress);
             let name = |patch: &PatchId| set.patches()[patch.index()].name.clone();
             let turned_over = turned_over.iter().map(name).collect();
-            let summary = StreamSummary::new(set, &limits, &made, &written, seconds, turned_over);
+            let reading = SecondsLine {
+                reading: seconds,
+                ..SecondsLine::default()
+            };
+            let summary = StreamSummary::new(set, &limits, &made, &written, reading, turned_over);
             report(&self.format.print(&summary, StreamSummary::text)?, false)?;
             return Ok(Outcome::Done);
         }
-        let made = Meshed::within(set, &held, &budget, of, self.evidence, stage)?;
-        progress.stage("finding strips");
-        let clock = Instant::now();
-        let strips = Strips::of(&made.mesh);
-        seconds.strips = clock.elapsed().as_secs_f64();
-        let overlays = self.overlays(set, &made, &limits, of, &progress);
-        progress.stage("writing");
-        let clock = Instant::now();
-        let options = WriteOptions {
-            overlays: &overlays,
-            layout,
-            strips: Some(&strips),
-            normals: self.normals,
-            ..WriteOptions::new(chord)
-        };
         let standard = output.is_standard();
-        let written = output.write(|out| {
-            pace::expect(format::about_bytes(&made.mesh, format, &options), "bytes");
-            let written = format::write(&made.mesh, format, &options, &mut Counted { out })?;
-            progress.stage("syncing");
-            Ok(written)
+        let made = self.make(&job, &limits, |write| {
+            Ok(output.write(write)?.map(|written| (written, ())))
         })?;
-        seconds.writing = clock.elapsed().as_secs_f64();
         drop(progress);
-        let Some(written) = written else {
+        let Some((summary, ())) = made else {
             return Ok(Outcome::Done);
         };
-        let mut summary = Summary::new(set, &limits, &made, &strips, format, &written, seconds)
-            .with_turned_over(set, &turned_over);
-        if self.quality {
-            let found = Quality::of(&made.mesh, &Asked::default());
-            summary = summary.with_quality(&made.mesh, &found);
-        }
         let text = if self.quality {
             Summary::text_with_places
         } else {
@@ -287,26 +309,9 @@ impl TessellateArguments {
         Ok(Outcome::Done)
     }
 
-    /// The extras asked for.
-    fn overlays(
-        &self,
-        set: &PatchSet,
-        made: &Meshed,
-        limits: &Limits,
-        wanted: impl Fn(PieceId) -> bool,
-        progress: &Progress,
-    ) -> Vec<Overlay> {
-        if self.extras.is_empty() {
-            return Vec::new();
-        }
-        progress.stage("examining seams");
-        let survey = Survey::of(set, &made.topology);
-        let seams = seam_curves(set, &made.topology, &survey, limits.chord);
-        Extra::ALL
-            .into_iter()
-            .filter(|extra| self.extras.iter().any(|name| name == extra.name()))
-            .flat_map(|extra| extra.make(set, &made.mesh, &seams, &wanted))
-            .collect()
+    /// Whether the mesh has to know the places of its corners.
+    fn carries(&self, format: Format) -> bool {
+        self.evidence || format == Format::Vtu
     }
 
     fn file_format(&self) -> Result<Format, Box<dyn std::error::Error>> {

@@ -6,7 +6,7 @@ use std::str::FromStr;
 
 use thiserror::Error;
 
-use super::{FormatError, rounding};
+use super::{FormatError, rounding, vtu};
 use crate::scalar::{Point, Tolerance};
 
 /// A file format for meshes.
@@ -20,6 +20,9 @@ pub enum Format {
     Ply,
     /// glTF 2.0 in one binary file (ISO/IEC 12113).
     Glb,
+    /// VTK's XML file of an unstructured grid, raw appended data: doubles, and
+    /// arrays for solvers.
+    Vtu,
 }
 
 /// How triangles are stored.
@@ -35,12 +38,12 @@ pub enum Layout {
 
 /// A name that is no format's.
 #[derive(Debug, Clone, PartialEq, Eq, Error)]
-#[error("`{0}` is no mesh format; write stl, obj, ply or glb")]
+#[error("`{0}` is no mesh format; write stl, obj, ply, glb or vtu")]
 pub struct FormatNameError(pub String);
 
 impl Format {
     /// All formats.
-    pub const ALL: [Self; 4] = [Self::Stl, Self::Obj, Self::Ply, Self::Glb];
+    pub const ALL: [Self; 5] = [Self::Stl, Self::Obj, Self::Ply, Self::Glb, Self::Vtu];
 
     /// The format a file's extension asks for, in any case of letters.
     #[must_use]
@@ -56,6 +59,7 @@ impl Format {
             Self::Obj => "obj",
             Self::Ply => "ply",
             Self::Glb => "glb",
+            Self::Vtu => "vtu",
         }
     }
 
@@ -66,6 +70,7 @@ impl Format {
             Self::Stl => &[Layout::Triangles],
             Self::Obj | Self::Ply => &[Layout::Indexed, Layout::Triangles],
             Self::Glb => &[Layout::Strips, Layout::Indexed, Layout::Triangles],
+            Self::Vtu => &[Layout::Indexed],
         }
     }
 
@@ -79,11 +84,13 @@ impl Format {
         rounding::reserve(self, low, high, chord)
     }
 
-    /// The most triangles the format can count: STL in 32 bits, PLY in 31.
+    /// The most triangles the format can count: STL in 32 bits, PLY in 31, VTU
+    /// their corners in 31.
     pub(super) fn most_triangles(self) -> u64 {
         match self {
             Self::Stl => u32::MAX.into(),
             Self::Ply => i32::MAX.unsigned_abs().into(),
+            Self::Vtu => vtu::MOST_TRIANGLES.into(),
             Self::Obj | Self::Glb => u64::MAX,
         }
     }
@@ -99,7 +106,7 @@ impl Format {
     /// Whether the format has room for the patch, u and v of every corner.
     #[must_use]
     pub fn holds_evidence(self) -> bool {
-        matches!(self, Self::Obj | Self::Ply)
+        matches!(self, Self::Obj | Self::Ply | Self::Vtu)
     }
 
     /// The layout to use where the given one was asked for.

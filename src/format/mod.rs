@@ -3,9 +3,11 @@
 //! | format | positions | points shared | normals | names | lengths |
 //! |---|---|---|---|---|---|
 //! | STL, binary | single | no, repeated | facets' | none | the set's unit |
+//! | STL, text | single | no, repeated | facets' | a solid a panel | the set's unit |
 //! | OBJ | double | by index | by index of their own | `o` panel, `g` patch | the set's unit |
 //! | PLY, binary | double | by index | if asked for | comments, with ranges of faces | the set's unit |
 //! | GLB (glTF 2.0) | single, one local origin | inside a panel and crease, else repeated | yes | a node a panel, patches as extras | metres, y up, by a node transform |
+//! | VTU (VTK XML) | double | by index | yes, one a point | numbers a triangle, names as field data | the set's unit |
 //!
 //! A repeated point has bitwise equal coordinates wherever it is repeated, so
 //! merging exact duplicates gives back the mesh. What rounding to single
@@ -14,7 +16,8 @@
 //! written.
 //!
 //! Evidence (patch, u and v of every corner) goes into PLY, the form that
-//! [`read_evidence`] reads back, and into OBJ as texture coordinates.
+//! [`read_evidence`] reads back, into OBJ as texture coordinates, and into VTU as an
+//! array.
 
 mod error;
 mod glb;
@@ -29,6 +32,8 @@ mod rounding;
 mod sink;
 mod size;
 mod stl;
+mod stl_text;
+mod vtu;
 
 use std::io::Write;
 
@@ -39,7 +44,7 @@ pub use ply_reading::{EvidenceError, read_evidence};
 pub use size::{Counts, about_bytes, bytes_of, predict};
 pub use stl::StlStream;
 
-use crate::mesh::{Mesh, Part, Strips};
+use crate::mesh::{Mesh, Nodes, Part, Strips};
 use crate::scalar::Tolerance;
 
 /// How a mesh is to be written.
@@ -56,6 +61,12 @@ pub struct WriteOptions<'a> {
     /// Whether a PLY file gets vertex normals, which repeats points where
     /// normals differ. The other formats are not concerned.
     pub normals: bool,
+    /// Whether STL is written as text, a named solid a panel. The other formats are
+    /// not concerned.
+    pub solids: bool,
+    /// What a VTU file says of the surface. The other formats have no room for it
+    /// and are not concerned.
+    pub surface: SurfaceFigures<'a>,
     /// Lines and points that a GLB file has besides the mesh. The other formats
     /// have no room for them and are not concerned.
     pub overlays: &'a [Overlay],
@@ -70,9 +81,20 @@ impl WriteOptions<'_> {
             layout: None,
             strips: None,
             normals: false,
+            solids: false,
+            surface: SurfaceFigures::default(),
             overlays: &[],
         }
     }
+}
+
+/// What is known of the surface under a mesh.
+#[derive(Debug, Clone, Copy, Default)]
+pub struct SurfaceFigures<'a> {
+    /// Of every point.
+    pub nodes: Option<&'a Nodes>,
+    /// The proved deviation of every triangle.
+    pub deviations: Option<&'a [f64]>,
 }
 
 /// What was written.
@@ -95,6 +117,10 @@ pub struct Written {
 /// [`FormatError`] where the mesh has no triangles, the format does not have
 /// the layout or no room for the evidence the mesh carries, single precision is too coarse, a count exceeds what the format
 /// can hold (all these before the first byte), or the writer fails.
+///
+/// # Panics
+/// Where figures of the surface are given that are fewer than the mesh's points or
+/// triangles.
 pub fn write(
     mesh: &Mesh,
     format: Format,
@@ -109,10 +135,12 @@ pub fn write(
         return Err(FormatError::Evidence(format));
     }
     match format {
+        Format::Stl if options.solids => stl_text::write(mesh, options.chord, out),
         Format::Stl => stl::write(mesh, options.chord, out),
         Format::Obj => obj::write(mesh, layout, out),
         Format::Ply => ply::write(mesh, layout, options.normals, out),
         Format::Glb => glb::write(mesh, layout, options, out),
+        Format::Vtu => vtu::write(mesh, options.surface, out),
     }
 }
 

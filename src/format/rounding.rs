@@ -24,7 +24,7 @@ pub(super) fn reserve(format: Format, low: Point, high: Point, chord: Tolerance)
     let reach = low.coords.amax().max(high.coords.amax()) * (1.0 + 1e-12);
     let plain = bound(reach);
     let moved = match format {
-        Format::Obj | Format::Ply => 0.0,
+        Format::Obj | Format::Ply | Format::Vtu => 0.0,
         Format::Stl => plain,
         Format::Glb => {
             // The origin is a single too, so not quite the middle; taking it

@@ -1,13 +1,13 @@
 //! How large a file will be, before there is a mesh.
 //!
-//! STL and PLY follow from the counts to the byte ([`bytes_of`]). OBJ has
-//! decimals, whose mean length is taken from a sample; GLB has strips, whose
+//! STL, PLY and VTU follow from the counts to the byte ([`bytes_of`]). OBJ and STL
+//! as text have decimals, whose mean length is taken from a sample; GLB has strips, whose
 //! indices a triangle are, and a JSON part that is guessed.
 
 use std::io;
 
 use super::normals::Normals;
-use super::{Format, FormatError, Layout, WriteOptions, Written, ply, stl, write};
+use super::{Format, FormatError, Layout, WriteOptions, Written, ply, stl, stl_text, vtu, write};
 use crate::mesh::{Mesh, Part, Prediction, Strips};
 use crate::patch_set::PatchSet;
 
@@ -41,13 +41,15 @@ impl Counts<'_> {
     }
 }
 
-/// The bytes of a file with these counts, exactly; `None` for OBJ and GLB,
-/// whose sizes depend on more than counts.
+/// The bytes of a file with these counts, exactly; `None` for OBJ, GLB
+/// and STL as text, whose sizes depend on more than counts.
 #[must_use]
 pub fn bytes_of(counts: &Counts<'_>, format: Format, options: &WriteOptions<'_>) -> Option<u64> {
     let layout = format.layout(options.layout).ok()?;
     match format {
+        Format::Stl if options.solids => None,
         Format::Stl => Some(stl::bytes(counts.triangles())),
+        Format::Vtu => Some(vtu::bytes(counts, options.surface)),
         Format::Ply => Some(ply::bytes(counts, layout, options.normals)),
         Format::Obj | Format::Glb => None,
     }
@@ -70,6 +72,7 @@ pub fn about_bytes(mesh: &Mesh, format: Format, options: &WriteOptions<'_>) -> u
     match bytes_of(&counts, format, options) {
         Some(bytes) => bytes,
         None if format == Format::Obj => whole(obj(&counts, mesh, layout)),
+        None if format == Format::Stl => whole(stl_text::bytes(&counts, mesh)),
         None => whole(glb(&counts, mesh, layout, file_vertices, options.strips)),
     }
 }
@@ -86,7 +89,8 @@ pub fn predict(
     options: &WriteOptions<'_>,
 ) -> Result<Written, FormatError> {
     let sample = &prediction.sample;
-    if prediction.exact {
+    // What is said of the surface is not at hand, and its bytes follow from counts.
+    if prediction.exact && format != Format::Vtu {
         return write(sample, format, options, &mut io::sink());
     }
     let layout = format.layout(options.layout)?;
@@ -106,6 +110,7 @@ pub fn predict(
     let bytes = match bytes_of(&counts, format, options) {
         Some(bytes) => bytes,
         None if format == Format::Obj => whole(obj(&counts, sample, layout)),
+        None if format == Format::Stl => whole(stl_text::bytes(&counts, sample)),
         None => whole(glb(&counts, sample, layout, file_vertices, None)),
     };
     let numbers = [

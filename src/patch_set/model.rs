@@ -66,6 +66,20 @@ pub struct Patch {
     pub breaks_v: Vec<f64>,
 }
 
+impl Patch {
+    /// The piece that holds a place in the patch's own (u, v), in
+    /// [`PatchSet::pieces`]; of two that meet there the one beyond.
+    #[must_use]
+    pub fn piece_at(&self, [u, v]: [f64; 2]) -> usize {
+        let cell = |breaks: &[f64], t: f64| {
+            let after = breaks.partition_point(|b| *b <= t);
+            after.clamp(1, breaks.len() - 1) - 1
+        };
+        let columns = self.breaks_v.len() - 1;
+        self.pieces.start + cell(&self.breaks_u, u) * columns + cell(&self.breaks_v, v)
+    }
+}
+
 /// One Bezier piece of a patch.
 #[derive(Debug, Clone)]
 pub struct Piece {

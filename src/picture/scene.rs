@@ -56,7 +56,7 @@ impl<'a> Scene<'a> {
             pieces[part.triangles.clone()]
                 .par_iter_mut()
                 .zip(&places[part.triangles.clone()])
-                .for_each(|(piece, corners)| *piece = piece_at(patch, middle(corners)));
+                .for_each(|(piece, corners)| *piece = number(patch.piece_at(middle(corners))));
         }
         Ok(Self {
             set,
@@ -209,19 +209,12 @@ fn tangent_step(jet: &crate::bezier::SurfaceJet, off: &Vector) -> Option<[f64; 2
     step.iter().all(|s| s.is_finite()).then_some(step)
 }
 
-fn middle(corners: &[[f64; 2]; 3]) -> [f64; 2] {
-    [0, 1].map(|i| (corners[0][i] + corners[1][i] + corners[2][i]) / 3.0)
+fn number(piece: usize) -> u32 {
+    u32::try_from(piece).expect("pieces are numbered in 32 bits")
 }
 
-/// The piece of a patch that holds a place, by number.
-fn piece_at(patch: &Patch, [u, v]: [f64; 2]) -> u32 {
-    let cell = |breaks: &[f64], t: f64| {
-        let after = breaks.partition_point(|b| *b <= t);
-        after.clamp(1, breaks.len() - 1) - 1
-    };
-    let columns = patch.breaks_v.len() - 1;
-    let at = patch.pieces.start + cell(&patch.breaks_u, u) * columns + cell(&patch.breaks_v, v);
-    u32::try_from(at).expect("pieces are numbered in 32 bits")
+fn middle(corners: &[[f64; 2]; 3]) -> [f64; 2] {
+    [0, 1].map(|i| (corners[0][i] + corners[1][i] + corners[2][i]) / 3.0)
 }
 
 /// The weighted parameters on the unit square of the piece.

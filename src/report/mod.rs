@@ -4,6 +4,7 @@ mod audit;
 mod bound;
 mod caution;
 mod comparison;
+mod family;
 mod forecast;
 mod mending;
 mod panel_pairs;
@@ -25,6 +26,7 @@ pub use comparison::{
     ComparisonReport, ComparisonSummary, DescriptionLine, PatchChangeLine, SeamChangeLine,
     StandingLine,
 };
+pub use family::{FAMILY_FACTOR, FamilySummary, LevelLine};
 pub use forecast::Forecast;
 pub use mending::{LeftLine, MendedLine, MendingReport, MoveLine};
 pub use panel_pairs::PanelPairLine;

@@ -9,20 +9,26 @@ impl Summary {
     /// The outcome as text, one subject a line.
     #[must_use]
     pub fn text(&self) -> String {
-        written(|out| {
-            self.write_text(out)?;
-            writeln!(out, "\n{}", self.caution)
-        })
+        format!("{}\n{}\n", self.text_of_one(), self.caution)
     }
 
     /// The same, with histograms and the worst triangles with their places, where
     /// these are known.
     #[must_use]
     pub fn text_with_places(&self) -> String {
+        format!("{}\n{}\n", self.text_of_one_with_places(), self.caution)
+    }
+
+    /// The outcome as one of several.
+    pub(super) fn text_of_one(&self) -> String {
+        written(|out| self.write_text(out))
+    }
+
+    /// The same, with the places.
+    pub(super) fn text_of_one_with_places(&self) -> String {
         written(|out| {
             self.write_text(out)?;
-            self.quality.write_places(out)?;
-            writeln!(out, "\n{}", self.caution)
+            self.quality.write_places(out)
         })
     }
 
@@ -117,9 +123,14 @@ impl Summary {
         match self.volume {
             Some(volume) => writeln!(
                 out,
-                "size        area {} {unit}^2, volume {} {unit}^3",
+                "size        area {} {unit}^2, volume {} {unit}^3{}",
                 figure(self.area),
-                figure(volume)
+                figure(volume),
+                if volume < 0.0 {
+                    ": it faces inwards, --orient turns it outwards"
+                } else {
+                    ""
+                }
             )?,
             None => writeln!(out, "size        area {} {unit}^2", figure(self.area))?,
         }

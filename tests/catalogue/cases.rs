@@ -341,6 +341,7 @@ fn usage() -> Vec<Case> {
             "tessellate ball.ron -o a.stl --normal-angle 0.001",
         ),
         ball("normals of STL", "tessellate ball.ron -o a.stl --normals"),
+        ball("solids elsewhere", "tessellate ball.ron -o a.ply --solids"),
         ball("evidence in GLB", "tessellate ball.ron -o a.glb --evidence"),
         ball("no panel", "tessellate ball.ron -o a.stl --panel bal"),
         ball("no jobs", "tessellate ball.ron -o a.stl --jobs 0"),

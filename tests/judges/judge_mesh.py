@@ -6,7 +6,8 @@ A summary has the fields of `chordwise tessellate --format json`: triangles,
 vertices, file_vertices, area, volume (or null), closed, unit. Where it has
 panels (a list of names), euler, components or touching too, these are compared
 as well. Points are merged only where all their bits are equal; where parts of a
-mesh touch in a point, that makes one point of two, which `touching` counts.
+mesh touch in a point, that makes one point of two, which `touching` counts. The arrays
+of VTU files are worked out anew, as far as the file itself allows.
 """
 
 import json
@@ -14,6 +15,7 @@ import math
 import pathlib
 import sys
 import tempfile
+import urllib.parse
 
 import meshio
 import numpy
@@ -32,13 +34,18 @@ class Faults(Exception):
 def by_trimesh(path):
     """Points, triangles, and names by node where the format has nodes."""
     loaded = trimesh.load(path, process=False)
-    names = None
+    names, merges = None, False
     if isinstance(loaded, trimesh.Scene):
-        names = sorted(loaded.graph.nodes_geometry)
+        # White space in the names of solids is percent-encoded.
+        names = sorted(map(urllib.parse.unquote, loaded.graph.nodes_geometry))
         loaded = loaded.to_mesh()
+        # It merges the points of several solids itself.
+        merges = path.suffix == ".stl"
     points = numpy.asarray(loaded.vertices)
     # It splits the points of an OBJ file where normals differ: count them there.
     stored = points_of_obj(path) if path.suffix == ".obj" else len(points)
+    if merges:
+        stored = 3 * len(loaded.faces)
     return points, numpy.asarray(loaded.faces), stored, names
 
 
@@ -90,6 +97,69 @@ def is_closed(faces):
     forward, uses = numpy.unique(start * count + end, return_counts=True)
     backward = numpy.sort(end * count + start)
     return bool((uses == 1).all() and numpy.array_equal(forward, backward))
+
+
+def shape(points, faces):
+    """The measures of the Verdict report (SAND2007-1751), by the array."""
+    corners = points[faces]
+    sides = [corners[:, (k + 1) % 3] - corners[:, k] for k in range(3)]
+    lengths = numpy.stack([numpy.linalg.norm(s, axis=1) for s in sides])
+    doubled = numpy.linalg.norm(numpy.cross(sides[0], sides[1]), axis=1)
+    longest, shortest = lengths.max(axis=0), lengths.min(axis=0)
+    inradius = doubled / lengths.sum(axis=0)
+    circumradius = lengths.prod(axis=0) / (2 * doubled)
+    dots = [-(sides[k] * sides[(k + 2) % 3]).sum(axis=1) for k in range(3)]
+    angles = numpy.degrees(numpy.stack([numpy.arctan2(doubled, d) for d in dots]))
+    products = numpy.stack([lengths[k] * lengths[(k + 1) % 3] for k in range(3)])
+    return {
+        "minimum_angle": angles.min(axis=0),
+        "maximum_angle": angles.max(axis=0),
+        "aspect_ratio": longest / (2 * math.sqrt(3) * inradius),
+        "radius_ratio": circumradius / (2 * inradius),
+        "scaled_jacobian": 2 / math.sqrt(3) * doubled / products.max(axis=0),
+        "edge_ratio": longest / shortest,
+        "shape": 2 * math.sqrt(3) * doubled / (lengths**2).sum(axis=0),
+    }
+
+
+def judge_arrays(path, summary):
+    """What a VTU file has besides points and triangles."""
+    mesh = meshio.read(path)
+    faults = []
+
+    def holds(what, is_so):
+        if not is_so:
+            faults.append(what)
+
+    (block,) = mesh.cells
+    cells = {name: data for name, (data,) in mesh.cell_data.items()}
+    for name, data in [*cells.items(), *mesh.point_data.items()]:
+        holds(f"{name} is finite", numpy.isfinite(data).all())
+    # Needles have lost digits wherever one begins.
+    for name, meant in shape(mesh.points, block.data).items():
+        holds(f"{name} is what it is", numpy.allclose(cells[name], meant, rtol=1e-6, atol=1e-7))
+    lengths = numpy.linalg.norm(mesh.point_data["normal"], axis=1)
+    holds("normals are of unit length", numpy.allclose(lengths, 1, rtol=1e-12))
+    names = {
+        name: bytes(mesh.field_data[name]).decode().splitlines()
+        for name in ("unit", "panel_names", "patch_names")
+    }
+    holds("the unit is the summary's", names["unit"] == [summary["unit"]])
+    for kind in ("panel", "patch"):
+        numbers = cells[kind]
+        named = names[f"{kind}_names"]
+        holds(f"{kind}: every number has a name", numbers.max() < len(named) and numbers.min() >= 0)
+    if "deviation" in summary:
+        holds("all patches are there", len(names["patch_names"]) == summary["patches"])
+        # Two proofs, of which either may be the closer one.
+        most = cells["proved_deviation"].max()
+        holds("every deviation is within the chord", 0 < most <= summary["chord"])
+        holds("there are curvatures", mesh.point_data["principal_curvatures"].shape[1] == 2)
+        high, low = mesh.point_data["principal_curvatures"].T
+        holds("the larger curvature is first", (high >= low).all())
+    if faults:
+        raise Faults(f"{path} read by meshio: " + "; ".join(f"it is not so that {f}" for f in faults))
+    print(f"{path.name}: all {len(cells)} + {len(mesh.point_data)} arrays are as they should be")
 
 
 def judge(reader, read, path, summary):
@@ -144,11 +214,15 @@ def main(arguments):
         path = pathlib.Path(path)
         summary = json.loads(pathlib.Path(summary).read_text())
         readers = [("trimesh", by_trimesh)]
-        if path.suffix != ".glb":
+        if path.suffix == ".vtu":
+            readers = [("meshio", by_meshio)]
+        elif path.suffix != ".glb":
             readers.append(("meshio", by_meshio))
         for name, read in readers:
             try:
                 judge(name, read, path, summary)
+                if path.suffix == ".vtu":
+                    judge_arrays(path, summary)
             except Faults as faults:
                 failed += 1
                 print(f"FAULT {faults}")

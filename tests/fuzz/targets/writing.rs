@@ -138,6 +138,31 @@ fn read_back(mesh: &Mesh, format: Format, layout: Layout, rounding: f64, bytes: 
             assert_eq!(faces, 3 * mesh.triangles.len());
         }
         Format::Ply => ply(mesh, bytes),
+        Format::Vtu => {
+            let mark = b"<AppendedData encoding=\"raw\">\n_";
+            let at = bytes.windows(mark.len()).position(|w| w == mark).expect("appended data");
+            let head = std::str::from_utf8(&bytes[..at]).expect("a header of text");
+            let data = &bytes[at + mark.len()..];
+            let array = |name: &str| -> &[u8] {
+                let line = head.lines().find(|l| l.contains(&format!("Name=\"{name}\"")));
+                let (_, offset) = line.expect("an array").split_once("offset=\"").expect("an offset");
+                let offset = offset.split('"').next().expect("its end").parse::<usize>();
+                let offset = offset.expect("a number");
+                let length = u64::from_le_bytes(data[offset..offset + 8].try_into().expect("eight bytes"));
+                &data[offset + 8..][..usize::try_from(length).expect("a length")]
+            };
+            let double = |b: &[u8]| f64::from_le_bytes(b.try_into().expect("eight bytes"));
+            let points: Vec<f64> = array("points").chunks(8).map(double).collect();
+            let index = |b: &[u8]| u32::from_le_bytes(b.try_into().expect("four bytes")) as usize;
+            let found: Vec<[f64; 3]> = array("connectivity")
+                .chunks(4)
+                .map(|b| [0, 1, 2].map(|k| points[3 * index(b) + k]))
+                .collect();
+            assert_eq!(bits(&found), bits(&corners(mesh)));
+            for name in ["minimum_angle", "aspect_ratio", "radius_ratio", "shape", "normal"] {
+                assert!(array(name).chunks(8).map(double).all(f64::is_finite), "{name}");
+            }
+        }
         Format::Glb => {
             let file = gltf::Gltf::from_slice(bytes).expect("GLB");
             let blob = file.blob.clone().expect("a buffer");
