@@ -18,7 +18,6 @@ use super::panels::panels;
 use super::source;
 use super::stream::stream;
 use super::style::OutputStyle;
-use making::Job;
 use crate::format::{self, Format, FormatError, Layout, WriteOptions};
 use crate::mesh::Prediction;
 use crate::patch_set::{PanelId, PatchId, PatchSet, PieceId};
@@ -26,6 +25,7 @@ use crate::picture::Extra;
 use crate::report::{FamilySummary, Forecast, SecondsLine, StreamSummary, Summary};
 use crate::sampling::Limits;
 use crate::scalar::{Length, Tolerance};
+use making::Job;
 
 const EXAMPLES: &str = "\
 Examples:

@@ -98,7 +98,10 @@ impl FamilySummary {
             many(self.levels.len(), "mesh"),
             self.factor
         )?;
-        writeln!(out, "mean edge: of the equilateral triangle with the mean area\n")?;
+        writeln!(
+            out,
+            "mean edge: of the equilateral triangle with the mean area\n"
+        )?;
         writeln!(
             out,
             "{:>5}{:>12}{:>10}{:>12}{:>12}{:>13}{:>13}  file",

@@ -342,6 +342,10 @@ fn usage() -> Vec<Case> {
         ),
         ball("normals of STL", "tessellate ball.ron -o a.stl --normals"),
         ball("solids elsewhere", "tessellate ball.ron -o a.ply --solids"),
+        ball(
+            "a family of one place",
+            "tessellate ball.ron -o - --as ply --family 3",
+        ),
         ball("evidence in GLB", "tessellate ball.ron -o a.glb --evidence"),
         ball("no panel", "tessellate ball.ron -o a.stl --panel bal"),
         ball("no jobs", "tessellate ball.ron -o a.stl --jobs 0"),
