@@ -187,11 +187,11 @@ impl TessellateArguments {
     }
 
     fn try_run(&self) -> Result<Outcome, Box<dyn std::error::Error>> {
-        let format = self.file_format()?;
         let (output, family) = match self.family {
             None => (Some(Output::open(&self.output, &[&self.set])?), Vec::new()),
             Some(levels) => (None, self.family_outputs(levels)?),
         };
+        let format = self.file_format()?;
         let layout = self
             .layout
             .as_deref()

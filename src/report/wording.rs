@@ -6,7 +6,7 @@ use std::fmt;
 pub(crate) fn many(count: usize, one: &str) -> String {
     let ending = match one {
         _ if count == 1 => "",
-        _ if one.ends_with("ch") || one.ends_with('s') => "es",
+        _ if ["ch", "sh", "s"].iter().any(|end| one.ends_with(end)) => "es",
         _ => "s",
     };
     format!("{count} {one}{ending}")
@@ -29,6 +29,7 @@ mod tests {
         assert_eq!(many(1, "patch"), "1 patch");
         assert_eq!(many(2, "patch"), "2 patches");
         assert_eq!(many(2, "near miss"), "2 near misses");
+        assert_eq!(many(3, "mesh"), "3 meshes");
         assert_eq!(many(0, "open loop"), "0 open loops");
     }
 }
