@@ -128,7 +128,7 @@ impl TessellateArguments {
         Extra::ALL
             .into_iter()
             .filter(|extra| self.extras.iter().any(|name| name == extra.name()))
-            .flat_map(|extra| extra.make(job.set, &made.mesh, &seams, &|piece| job.of(piece)))
+            .flat_map(|extra| extra.make(job.set, &made.mesh, &seams, |piece| job.of(piece)))
             .collect()
     }
 }
