@@ -38,6 +38,8 @@ pub mod tessellation;
 
 pub mod mesh;
 
+pub mod sizing;
+
 pub mod quality;
 
 pub mod format;

@@ -106,6 +106,7 @@ fn of_the_library() -> String {
         triangles: Vec::new(),
         parts: Vec::new(),
         evidence: None,
+        corner_parts: None,
     };
     let options = WriteOptions::new(Tolerance::new(0.1).unwrap());
     let error = write(&empty, Format::Stl, &options, &mut std::io::sink()).unwrap_err();

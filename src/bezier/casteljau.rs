@@ -65,6 +65,22 @@ pub(super) fn value_and_derivatives<const N: usize>(
     [points[0], first, second]
 }
 
+/// Value and first derivative at `t`; overwrites `points`.
+#[inline]
+pub(super) fn value_and_slope<const N: usize>(
+    points: &mut [SVector<f64, N>],
+    t: f64,
+) -> [SVector<f64, N>; 2] {
+    #[allow(clippy::cast_precision_loss, reason = "a degree is at most 15")]
+    let n = (points.len() - 1) as f64;
+    for len in (3..=points.len()).rev() {
+        step(&mut points[..len], t);
+    }
+    let slope = (points[1] - points[0]) * n;
+    step(&mut points[..2], t);
+    [points[0], slope]
+}
+
 /// Splits at `t`: `points` becomes the part from `t` on; the part before it is
 /// returned.
 pub(super) fn split<const N: usize>(

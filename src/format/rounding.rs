@@ -169,6 +169,7 @@ mod tests {
             triangles: Vec::new(),
             parts: Vec::<Part>::new(),
             evidence: None,
+            corner_parts: None,
         }
     }
 

@@ -161,6 +161,7 @@ fn outline(prediction: &Prediction, set: &PatchSet) -> Mesh {
         triangles: Vec::new(),
         parts,
         evidence: sample.evidence.as_ref().map(|_| Vec::new()),
+        corner_parts: None,
     }
 }
 

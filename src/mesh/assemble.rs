@@ -59,6 +59,7 @@ impl Mesh {
             triangles: Vec::new(),
             parts: Vec::new(),
             evidence: evidence.then(Vec::new),
+            corner_parts: None,
         };
         for patch in set.patches() {
             let start = mesh.triangles.len();

@@ -59,6 +59,16 @@ impl Budget {
         BASE + each * triangles + PER_PIECE * as_float(pieces as u64)
     }
 
+    /// As the two above and below, for the rooms beneath.
+    pub(crate) fn triangles_allowed(&self) -> f64 {
+        self.triangles()
+    }
+
+    /// Bytes that may be taken.
+    pub(crate) fn bytes_allowed(&self) -> f64 {
+        self.bytes()
+    }
+
     /// Bytes that may be taken.
     pub(super) fn bytes(&self) -> f64 {
         as_float(self.bytes)

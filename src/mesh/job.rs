@@ -109,6 +109,8 @@ pub struct Stages {
     pub tessellation: f64,
     /// Joining pieces, normals, measuring the deviation.
     pub assembly: f64,
+    /// Proving, where that is a stage of its own: sized meshes.
+    pub proof: f64,
 }
 
 /// A proved mesh and what is known of it.
@@ -340,7 +342,7 @@ pub(super) fn batches(sizes: &[Size], most: f64) -> Vec<Range<usize>> {
 
 /// Joined edges must lie closer together than the chord: nothing could be
 /// proved across a wider gap.
-pub(super) fn bridgeable(
+pub(crate) fn bridgeable(
     set: &PatchSet,
     topology: &Topology,
     limits: &Limits,

@@ -8,7 +8,7 @@ use crate::tessellation::floor;
 use crate::topology::Topology;
 
 /// The floor of all pieces for which `wanted` holds.
-pub(super) fn whole_floor(
+pub(crate) fn whole_floor(
     set: &PatchSet,
     topology: &Topology,
     limits: &Limits,

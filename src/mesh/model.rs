@@ -48,6 +48,10 @@ pub struct Mesh {
     /// triangle, by triangle: with the part's name all that is needed to prove
     /// the mesh anew. At a pole u (or v) is one of many that would do.
     pub evidence: Option<Vec<[[f64; 2]; 3]>>,
+    /// Where triangles may cross seams and evidence is kept: the parts (indices
+    /// into [`Mesh::parts`]) that the corners of every triangle lie on. A part may
+    /// then have corners and no triangle of its own.
+    pub corner_parts: Option<Vec<[u32; 3]>>,
 }
 
 impl Mesh {

@@ -181,6 +181,7 @@ impl Build {
                 self.panels.push(Panel {
                     name: panel_name.to_owned(),
                     patches: Vec::new(),
+                    size: None,
                 });
                 panel
             }

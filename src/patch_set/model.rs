@@ -42,6 +42,8 @@ pub struct Panel {
     pub name: String,
     /// Its patches, in file order.
     pub patches: Vec<PatchId>,
+    /// Largest edge of its triangles in a sized mesh, if the file says.
+    pub size: Option<f64>,
 }
 
 /// One patch as the user named it.

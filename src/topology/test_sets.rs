@@ -52,6 +52,7 @@ pub(crate) fn add_grid(
             set.panels.push(Panel {
                 name: panel_name.to_owned(),
                 patches: vec![],
+                size: None,
             });
             set.panels.len() - 1
         });

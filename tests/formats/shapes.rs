@@ -67,6 +67,7 @@ pub(crate) fn sphere(k: u32, r: u32, radius: f64, centre: Vector) -> Mesh {
         triangles,
         parts: vec![part("ball/north", 0..north), part("ball/south", north..all)],
         evidence: None,
+        corner_parts: None,
     }
 }
 
@@ -98,6 +99,7 @@ pub(crate) fn case(corner: Vector) -> Mesh {
         triangles: Vec::new(),
         parts: Vec::new(),
         evidence: None,
+        corner_parts: None,
     };
     for (i, (corners, normal)) in faces.into_iter().enumerate() {
         let first = u32::try_from(mesh.vertices.len()).unwrap();
@@ -150,6 +152,7 @@ pub(crate) fn grid(n: u32, m: u32) -> Mesh {
         }],
         triangles,
         evidence: None,
+        corner_parts: None,
     }
 }
 

@@ -165,7 +165,7 @@ impl Facets {
 
 /// Distance of a point from a triangle, from its plane where the foot is
 /// inside, else from the nearest edge.
-pub(super) fn to_triangle(point: &Vector, corners: &[Vector; 3]) -> f64 {
+pub(in crate::mesh) fn to_triangle(point: &Vector, corners: &[Vector; 3]) -> f64 {
     let [a, b, c] = corners;
     let normal = (b - a).cross(&(c - a));
     let square = normal.norm_squared();
@@ -179,7 +179,7 @@ pub(super) fn to_triangle(point: &Vector, corners: &[Vector; 3]) -> f64 {
 }
 
 /// Distance of a point from a segment.
-pub(super) fn to_segment(point: &Vector, a: &Vector, b: &Vector) -> f64 {
+pub(in crate::mesh) fn to_segment(point: &Vector, a: &Vector, b: &Vector) -> f64 {
     let along = b - a;
     let length = along.norm_squared();
     let t = if length > 0.0 {

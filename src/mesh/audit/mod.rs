@@ -31,6 +31,9 @@ use rayon::prelude::*;
 use thiserror::Error;
 
 pub use evidence::{Evidence, Face};
+pub(super) use facet::{to_segment, to_triangle};
+pub(super) use part::quarters;
+pub(super) use rounding::slack;
 pub use finding::{Fault, Finding};
 
 use crate::bezier::Side;

@@ -70,7 +70,7 @@ pub(super) fn centre([a, b, c]: [[f64; 2]; 3]) -> [f64; 2] {
 }
 
 /// A triangle by the middles of its sides.
-pub(super) fn quarters([a, b, c]: [[f64; 2]; 3]) -> [[[f64; 2]; 3]; 4] {
+pub(in crate::mesh) fn quarters([a, b, c]: [[f64; 2]; 3]) -> [[[f64; 2]; 3]; 4] {
     let (p, q, r) = (middle(a, b), middle(b, c), middle(c, a));
     [[a, p, r], [p, b, q], [r, q, c], [p, q, r]]
 }

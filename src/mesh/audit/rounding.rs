@@ -16,7 +16,7 @@ pub(super) fn scale(surface: &BezierPatch) -> f64 {
 }
 
 /// The slack of a surface, see the module's text.
-pub(super) fn slack(surface: &BezierPatch) -> f64 {
+pub(in crate::mesh) fn slack(surface: &BezierPatch) -> f64 {
     let (m, n) = surface.degree();
     let (mut least, mut most) = (f64::INFINITY, 0.0_f64);
     for (i, j) in (0..=m).flat_map(|i| (0..=n).map(move |j| (i, j))) {

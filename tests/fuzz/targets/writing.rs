@@ -59,6 +59,7 @@ fn mesh(u: &mut Unstructured) -> Result<Mesh> {
         triangles,
         parts,
         evidence,
+        corner_parts: None,
     })
 }
 

@@ -1,0 +1,431 @@
+//! Mesh to surface: flat triangles against triangles of parameters.
+
+use rayon::prelude::*;
+
+use super::super::audit::{quarters, to_segment, to_triangle};
+use super::{Spot, Task};
+use crate::bezier::{BezierPatch, Side, TriangleNet, TriangleRestriction};
+use crate::patch_set::PieceId;
+use crate::scalar::{Point, Vector};
+use crate::topology::EdgeId;
+
+/// Parts of one flat triangle looked at, at most: while the chord is not proved,
+/// and to come closer to the attained figure.
+const BUDGET: usize = 600;
+const MORE: usize = 64;
+
+/// Steps of a projection.
+const STEPS: usize = 4;
+
+/// A part of a flat triangle: its corners and a place for each.
+#[derive(Debug, Clone, Copy)]
+struct Part {
+    points: [Point; 3],
+    spots: [Spot; 3],
+}
+
+#[derive(Default)]
+struct Scratch {
+    restriction: TriangleRestriction,
+    net: TriangleNet,
+    /// Each with its bound, and the piece that gave it.
+    parts: Vec<(f64, PieceId, Part)>,
+}
+
+impl Task<'_> {
+    /// For every facet its bound, and where it is worst.
+    pub(super) fn facets(&self, attained: f64) -> Vec<(f64, Spot)> {
+        (0..self.triangles.len())
+            .into_par_iter()
+            .map_init(Scratch::default, |scratch, t| {
+                self.facet(t, attained, scratch)
+            })
+            .collect()
+    }
+
+    fn surface(&self, piece: PieceId) -> &BezierPatch {
+        &self.set.pieces()[piece.index()].surface
+    }
+
+    fn facet(&self, t: usize, attained: f64, scratch: &mut Scratch) -> (f64, Spot) {
+        let points = self.triangles[t].map(|p| self.points[p as usize]);
+        let whole = Part {
+            points,
+            spots: self.spots[t],
+        };
+        let goal = self.goal(attained);
+        scratch.parts.clear();
+        self.look(whole, goal, scratch);
+        let mut looked = 1;
+        // The worst part first; what is left when the budget is spent counts.
+        loop {
+            let worst = (0..scratch.parts.len())
+                .max_by(|&a, &b| scratch.parts[a].0.total_cmp(&scratch.parts[b].0));
+            let Some(worst) = worst else {
+                return (0.0, self.spots[t][0]);
+            };
+            let (bound, piece, part) = scratch.parts[worst];
+            let most = if bound > self.chord { BUDGET } else { MORE };
+            if bound > 3.0 * goal && looked >= most && std::env::var("DBG").is_ok() {
+                eprintln!("t{t} looked {looked} bound {bound:.3e} goal {goal:.3e} orig {:?}", self.spots[t]);
+                eprintln!("   part {:?} lens {:?}", part, [0,1,2].map(|k| (part.points[k]-part.points[(k+1)%3]).norm()));
+            }
+            if bound <= goal || looked >= most {
+                return (bound, part.spots[0]);
+            }
+            scratch.parts.swap_remove(worst);
+            looked += self.cut(&part, piece, goal, scratch);
+        }
+    }
+
+    /// Bounds a part and puts it with the others.
+    fn look(&self, part: Part, goal: f64, scratch: &mut Scratch) {
+        let (bound, piece) = self.held(&part, goal, scratch);
+        scratch.parts.push((bound, piece, part));
+    }
+
+    /// The best bound of a part over the pieces its corners lie on.
+    fn held(&self, part: &Part, goal: f64, scratch: &mut Scratch) -> (f64, PieceId) {
+        let mut best = (f64::INFINITY, part.spots[0].piece);
+        for k in 0..3 {
+            let piece = part.spots[k].piece;
+            if part.spots[..k].iter().any(|s| s.piece == piece) {
+                continue;
+            }
+            let uv = [0, 1, 2].map(|c| {
+                let spot = part.spots[c];
+                if spot.piece == piece {
+                    spot.uv
+                } else {
+                    self.foot(piece, self.guess(spot, piece, part.spots[k].uv), &part.points[c])
+                }
+            });
+            let bound = self.bound(piece, uv, &part.points, scratch);
+            if bound < best.0 {
+                best = (bound, piece);
+            }
+            if bound <= goal {
+                break;
+            }
+        }
+        best
+    }
+
+    /// Where to begin to look for a spot's like on another piece: across its
+    /// border if it lies on one.
+    fn guess(&self, spot: Spot, piece: PieceId, other: [f64; 2]) -> [f64; 2] {
+        let like = self.beyond(spot).into_iter().find(|s| s.piece == piece);
+        if let Some(like) = like {
+            return like.uv;
+        }
+        other
+    }
+
+    /// The nearest place of a piece, by steps that keep to its square.
+    fn foot(&self, piece: PieceId, from: [f64; 2], point: &Point) -> [f64; 2] {
+        let surface = self.surface(piece);
+        let mut uv = from;
+        let mut best = (f64::INFINITY, uv);
+        for _ in 0..=STEPS {
+            let (place, du, dv) = surface.frame(uv[0], uv[1]);
+            let away = point - place;
+            if away.norm_squared() < best.0 {
+                best = (away.norm_squared(), uv);
+            }
+            let Some(step) = step(&du, &dv, &away) else { break };
+            let next = inside(uv, step);
+            // On a side it slides along it.
+            let next = if next == uv { slid(uv, &du, &dv, &away) } else { next };
+            if next == uv {
+                break;
+            }
+            uv = next;
+        }
+        best.1
+    }
+
+    /// The nearest place to a point, from a place near it and over the borders it
+    /// meets on the way, and the distance.
+    fn settled(&self, from: Spot, point: &Point) -> (Spot, f64) {
+        let away = |spot: Spot| {
+            let [u, v] = spot.uv;
+            (self.surface(spot.piece).eval(u, v) - point).norm()
+        };
+        let foot = |spot: Spot| {
+            let uv = self.foot(spot.piece, spot.uv, point);
+            let spot = Spot { uv, ..spot };
+            (spot, away(spot))
+        };
+        let mut best = foot(from);
+        for _ in 0..4 {
+            let mut next = best;
+            for over in self.beyond(best.0) {
+                let other = foot(over);
+                if other.1 < next.1 {
+                    next = other;
+                }
+            }
+            if next.1 >= best.1 {
+                break;
+            }
+            best = next;
+        }
+        best
+    }
+
+    /// The places of other pieces that a place on a border is joined to.
+    fn beyond(&self, spot: Spot) -> Vec<Spot> {
+        let [u, v] = spot.uv;
+        let mut found = Vec::new();
+        for (side, on, t) in [
+            (Side::U0, u <= 0.0, v),
+            (Side::U1, u >= 1.0, v),
+            (Side::V0, v <= 0.0, u),
+            (Side::V1, v >= 1.0, u),
+        ] {
+            if !on {
+                continue;
+            }
+            let edge = &self.topology.edges()[EdgeId::of(spot.piece, side).index()];
+            let spans = &self.topology.spans()[edge.spans.clone()];
+            for span in spans.iter().filter(|s| s.t[0] <= t && t <= s.t[1]) {
+                let seam = &self.topology.seams()[span.seam.index()];
+                for id in &seam.spans {
+                    let to = &self.topology.spans()[id.index()];
+                    if to.edge == span.edge {
+                        continue;
+                    }
+                    let along = (t - span.t[0]) / (span.t[1] - span.t[0]);
+                    let along = if to.reversed == span.reversed {
+                        along
+                    } else {
+                        1.0 - along
+                    };
+                    let at = to.t[0] * (1.0 - along) + to.t[1] * along;
+                    found.push(Spot {
+                        piece: to.edge.piece(),
+                        uv: to.edge.side().at(at),
+                    });
+                }
+            }
+        }
+        found
+    }
+
+    fn bound(
+        &self,
+        piece: PieceId,
+        uv: [[f64; 2]; 3],
+        points: &[Point; 3],
+        scratch: &mut Scratch,
+    ) -> f64 {
+        let origin = points[0];
+        self.surface(piece)
+            .restrict_triangle(uv, &origin, &mut scratch.restriction, &mut scratch.net);
+        let net = &scratch.net;
+        let flat = points.map(|p| p - origin);
+        let d = net.degree;
+        let mut most = 0.0_f64;
+        let mut at = 0;
+        for i in (0..=d).rev() {
+            for j in (0..=d - i).rev() {
+                let k = d - i - j;
+                let b = &net.points[at];
+                at += 1;
+                let away = match (i, j, k) {
+                    (_, 0, 0) => (b - flat[0]).norm(),
+                    (0, _, 0) => (b - flat[1]).norm(),
+                    (0, 0, _) => (b - flat[2]).norm(),
+                    (_, _, 0) => to_segment(b, &flat[0], &flat[1]),
+                    (0, _, _) => to_segment(b, &flat[1], &flat[2]),
+                    (_, 0, _) => to_segment(b, &flat[2], &flat[0]),
+                    _ => to_triangle(b, &flat),
+                };
+                most = most.max(away);
+            }
+        }
+        most + self.slack[piece.index()]
+    }
+
+    /// Cuts a part: into quarters if it lies on one piece, else where it leaves
+    /// one. Returns how many parts that makes.
+    fn cut(&self, part: &Part, piece: PieceId, goal: f64, scratch: &mut Scratch) -> usize {
+        let spots = part.spots;
+        let whole = spots.iter().all(|s| s.piece == spots[0].piece);
+        if whole {
+            let uv = quarters(spots.map(|s| s.uv));
+            let [a, b, c] = part.points;
+            let half = |p: Point, q: Point| Point::from((p.coords + q.coords) / 2.0);
+            let (p, q, r) = (half(a, b), half(b, c), half(c, a));
+            let points = [[a, p, r], [p, b, q], [r, q, c], [p, q, r]];
+            // The middles' own places, once each.
+            let middle = |k: usize, point: &Point| {
+                let from = [uv[3][0], uv[3][1], uv[3][2]][k];
+                self.settled(Spot { piece, uv: from }, point).0
+            };
+            let (x, y, z) = (middle(0, &p), middle(1, &q), middle(2, &r));
+            let [s, t, w] = spots;
+            let cornered = [[s, x, z], [x, t, y], [z, y, w], [x, y, z]];
+            for (points, spots) in points.into_iter().zip(cornered) {
+                self.look(Part { points, spots }, goal, scratch);
+            }
+            return 4;
+        }
+        // The longest edge that passes from one piece to the next, else the longest.
+        let length = |k: usize| (part.points[(k + 1) % 3] - part.points[k]).norm_squared();
+        let end = |k: usize| (part.points[k % 3], spots[k % 3]);
+        let passing = (0..3)
+            .filter(|&k| spots[k].piece != spots[(k + 1) % 3].piece)
+            .filter_map(|k| Some((k, self.crossing(end(k), end(k + 1))?)))
+            .max_by(|a, b| length(a.0).total_cmp(&length(b.0)).then(b.0.cmp(&a.0)));
+        let (k, (point, near, far)) = passing.unwrap_or_else(|| {
+            let longest = (0..3)
+                .max_by(|&a, &b| length(a).total_cmp(&length(b)).then(b.cmp(&a)))
+                .unwrap_or(0);
+            (longest, self.halved(end(longest), end(longest + 1)))
+        });
+        let (a, b, c) = (k, (k + 1) % 3, (k + 2) % 3);
+        let first = Part {
+            points: [part.points[a], point, part.points[c]],
+            spots: [spots[a], near, spots[c]],
+        };
+        let second = Part {
+            points: [point, part.points[b], part.points[c]],
+            spots: [far, spots[b], spots[c]],
+        };
+        self.look(first, goal, scratch);
+        self.look(second, goal, scratch);
+        2
+    }
+
+    /// The middle of an edge, with its nearer foot on the pieces of the ends.
+    fn halved(&self, a: (Point, Spot), b: (Point, Spot)) -> (Point, Spot, Spot) {
+        let point = Point::from((a.0.coords + b.0.coords) / 2.0);
+        let (p, q) = (self.settled(a.1, &point), self.settled(b.1, &point));
+        let near = if q.1 < p.1 { q.0 } else { p.0 };
+        (point, near, near)
+    }
+
+    /// Where a straight edge passes from one piece to the next, with the place of
+    /// that point on the piece it leaves, and on the one it enters; `None` where it
+    /// does so at its ends only.
+    fn crossing(&self, a: (Point, Spot), b: (Point, Spot)) -> Option<(Point, Spot, Spot)> {
+        let along = b.0 - a.0;
+        let at = |s: f64| a.0 + along * s;
+        let uv = self.foot(a.1.piece, a.1.uv, &b.0);
+        let border = [
+            (Side::U0, uv[0] <= 0.0, uv[1]),
+            (Side::U1, uv[0] >= 1.0, uv[1]),
+            (Side::V0, uv[1] <= 0.0, uv[0]),
+            (Side::V1, uv[1] >= 1.0, uv[0]),
+        ];
+        let &(side, _, mut t) = border.iter().find(|(_, on, _)| *on)?;
+        let curve = self.surface(a.1.piece).edge(side);
+        // Newton's steps to the plane through the edge and the normal there.
+        let [u, v] = a.1.uv;
+        let (_, du, dv) = self.surface(a.1.piece).frame(u, v);
+        let across = along.cross(&du.cross(&dv)).try_normalize(0.0)?;
+        for _ in 0..8 {
+            let jet = curve.jet(t);
+            let slope = jet.dt.dot(&across);
+            if slope.abs() <= 1e-9 * jet.dt.norm() {
+                return None;
+            }
+            let next = (t - (jet.point - a.0).dot(&across) / slope).clamp(0.0, 1.0);
+            let moved = (next - t).abs();
+            t = next;
+            if moved < 1e-13 {
+                break;
+            }
+        }
+        let on = curve.eval(t) - a.0;
+        let s = on.dot(&along) / along.norm_squared();
+        if (on - along * s).norm() > 0.25 * along.norm() {
+            return None;
+        }
+        if !(0.01..=0.99).contains(&s) {
+            return None;
+        }
+        let near = Spot {
+            piece: a.1.piece,
+            uv: side.at(t),
+        };
+        let edge = &self.topology.edges()[EdgeId::of(a.1.piece, side).index()];
+        let spans = &self.topology.spans()[edge.spans.clone()];
+        let over = spans.iter().find(|span| t <= span.t[1]).and_then(|span| {
+            let seam = &self.topology.seams()[span.seam.index()];
+            let mut others = seam
+                .spans
+                .iter()
+                .map(|id| self.topology.spans()[id.index()].edge.piece())
+                .filter(|&p| p != a.1.piece);
+            others.next()
+        });
+        let piece = over.unwrap_or(b.1.piece);
+        let uv = self.foot(piece, self.guess(near, piece, [0.5; 2]), &at(s));
+        Some((at(s), near, Spot { piece, uv }))
+    }
+}
+
+/// (a, b) of the step a S_u + b S_v nearest to a vector.
+fn step(du: &Vector, dv: &Vector, away: &Vector) -> Option<[f64; 2]> {
+    let (e, f, g) = (du.norm_squared(), du.dot(dv), dv.norm_squared());
+    let determinant = e * g - f * f;
+    if determinant <= 1e-12 * e * g || determinant <= 0.0 {
+        return None;
+    }
+    let (p, q) = (away.dot(du), away.dot(dv));
+    Some([(p * g - q * f) / determinant, (q * e - p * f) / determinant])
+}
+
+/// A step that ends where it leaves the unit square.
+fn inside(uv: [f64; 2], step: [f64; 2]) -> [f64; 2] {
+    let mut fraction = 1.0_f64;
+    for k in 0..2 {
+        let to = uv[k] + step[k];
+        if to < 0.0 {
+            fraction = fraction.min(-uv[k] / step[k]);
+        } else if to > 1.0 {
+            fraction = fraction.min((1.0 - uv[k]) / step[k]);
+        }
+    }
+    let fraction = fraction.max(0.0);
+    // Ends are ends exactly.
+    [0, 1].map(|k| {
+        let to = uv[k] + fraction * step[k];
+        if to < 1e-14 {
+            0.0
+        } else if to > 1.0 - 1e-14 {
+            1.0
+        } else {
+            to
+        }
+    })
+}
+
+/// A step along the side or sides a place lies on.
+fn slid([u, v]: [f64; 2], du: &Vector, dv: &Vector, away: &Vector) -> [f64; 2] {
+    let along = |t: f64, d: &Vector| {
+        let speed = d.norm_squared();
+        if speed > 0.0 {
+            (t + away.dot(d) / speed).clamp(0.0, 1.0)
+        } else {
+            t
+        }
+    };
+    let on_u = u <= 0.0 || u >= 1.0;
+    let on_v = v <= 0.0 || v >= 1.0;
+    if on_u && !on_v {
+        [u, along(v, dv)]
+    } else if on_v && !on_u {
+        [along(u, du), v]
+    } else {
+        // In a corner: along the side that leads on.
+        let (x, y) = (along(u, du), along(v, dv));
+        if (x - u).abs() * du.norm() > (y - v).abs() * dv.norm() {
+            [x, v]
+        } else {
+            [u, y]
+        }
+    }
+}
