@@ -30,6 +30,14 @@ impl Figures {
         })
     }
 
+    /// The figures of a sized mesh, whose triangles are proved already.
+    pub(super) fn proved(set: &PatchSet, mesh: &Mesh, deviations: Vec<f64>) -> Self {
+        Self {
+            nodes: Nodes::of(set, mesh).unwrap_or_default(),
+            deviations,
+        }
+    }
+
     /// As the writer takes them.
     pub(super) fn given(&self) -> SurfaceFigures<'_> {
         SurfaceFigures {

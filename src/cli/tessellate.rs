@@ -2,6 +2,7 @@
 
 mod family;
 mod making;
+mod sizing;
 
 use std::path::PathBuf;
 use std::time::Instant;
@@ -26,6 +27,7 @@ use crate::report::{FamilySummary, Forecast, SecondsLine, StreamSummary, Summary
 use crate::sampling::Limits;
 use crate::scalar::{Length, Tolerance};
 use making::Job;
+use sizing::SizingArguments;
 
 const EXAMPLES: &str = "\
 Examples:
@@ -36,6 +38,7 @@ Examples:
   chordwise tessellate front.ron -o front.ply --evidence
   chordwise tessellate front.ron -o front.glb --chord 0.001 --dry-run
   chordwise tessellate front.ron -o front.vtu --family 4
+  chordwise tessellate front.ron -o front.vtu --size 5mm --chord 0.05mm
 
 The format follows the extension. Every triangle is proved to lie within the
 chord tolerance of the surface, and the surface of the mesh, or nothing is
@@ -67,6 +70,9 @@ pub(super) struct TessellateArguments {
     /// Largest edge of a triangle [default: the set's, else none]
     #[arg(long, value_name = "LENGTH", allow_negative_numbers = true)]
     max_edge: Option<Length>,
+
+    #[command(flatten)]
+    sized: SizingArguments,
 
     /// Take out every vertex the proof can do without: fewer triangles, for many
     /// times the time
@@ -169,6 +175,10 @@ enum UsageError {
         "--family: a file a level is written, and all get their names together; name a plain file"
     )]
     Family,
+    #[error(
+        "--evidence: obj has one patch a triangle, and triangles of a sized mesh may lie on several; write ply or vtu"
+    )]
+    SizedEvidence,
     #[error("--solids: only stl has solids; write stl")]
     Solids,
     #[error("--stream: {0} needs the whole mesh before its first byte; write stl")]
@@ -211,6 +221,9 @@ impl TessellateArguments {
         }
         if self.evidence && !format.holds_evidence() {
             return Err(FormatError::Evidence(format).into());
+        }
+        if self.evidence && self.sized.given() && format == Format::Obj {
+            return Err(UsageError::SizedEvidence.into());
         }
         if self.stream && format != Format::Stl {
             return Err(UsageError::Stream(format).into());
@@ -293,7 +306,7 @@ impl TessellateArguments {
             return Ok(Outcome::Done);
         }
         let standard = output.is_standard();
-        let made = self.make(&job, &limits, |write| {
+        let made = self.make(&job, &limits, 1.0, |write| {
             Ok(output.write(write)?.map(|written| (written, ())))
         })?;
         drop(progress);

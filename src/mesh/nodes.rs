@@ -46,14 +46,25 @@ impl Nodes {
         let mut met: Vec<Option<(u32, usize, usize)>> = vec![None; mesh.points.len()];
         for (part, number) in mesh.parts.iter().zip(0..) {
             for t in part.triangles.clone() {
+                let own = mesh
+                    .corner_parts
+                    .as_ref()
+                    .map_or([number; 3], |parts| parts[t]);
                 for (corner, point) in mesh.triangle_points(t).into_iter().enumerate() {
-                    met[point as usize].get_or_insert((number, t, corner));
+                    met[point as usize].get_or_insert((own[corner], t, corner));
                 }
             }
         }
         let curvatures = met.par_iter().map(|met| {
             met.and_then(|(part, t, corner)| {
-                curvatures(set, patches[part as usize], &evidence[t], corner)
+                let mut corners = evidence[t];
+                if let Some(parts) = &mesh.corner_parts {
+                    // Places on other patches say nothing here.
+                    for k in (0..3).filter(|&k| parts[t][k] != part) {
+                        corners[k] = evidence[t][corner];
+                    }
+                }
+                curvatures(set, patches[part as usize], &corners, corner)
             })
             .unwrap_or_default()
         });

@@ -119,7 +119,7 @@ impl FamilySummary {
                 out,
                 "{:>5}{:>12}{:>10}{:>12}{:>12}{:>13}{:>13}  {}",
                 line.level,
-                figure(summary.chord),
+                summary.chord.map_or_else(|| "none".to_owned(), figure),
                 summary.triangles,
                 figure(line.mean_edge),
                 upward(summary.deviation.proved, figure),

@@ -14,6 +14,7 @@ mod seams;
 mod seams_csv;
 mod seams_rest;
 mod seams_text;
+mod sized;
 mod streamed;
 mod summary;
 mod summary_text;
@@ -36,6 +37,7 @@ pub use seams::{
     CrowdLine, LoopLine, NearMissLine, OrientationLine, OverlapLine, SeamReport, SeamSummary,
     SliverLine, ToleranceLines,
 };
+pub use sized::{ForcedLine, SizedReport};
 pub use streamed::{ProvedLine, StreamSummary};
 pub use summary::{BridgedLine, DeviationLine, SecondsLine, StorageLine, Summary, WrittenLine};
 pub(crate) use wording::many;

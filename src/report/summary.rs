@@ -5,7 +5,7 @@ use std::collections::BTreeSet;
 use serde::Serialize;
 
 use super::wording::many;
-use super::{CAUTION, QualityReport};
+use super::{CAUTION, QualityReport, SizedReport};
 use crate::format::Written;
 use crate::mesh::{Measures, Mesh, Meshed, Storage, Strips};
 use crate::patch_set::{Demand, PatchId, PatchSet};
@@ -26,8 +26,9 @@ pub struct Summary {
     pub name: String,
     /// The unit of all lengths.
     pub unit: &'static str,
-    /// The chord tolerance the mesh was held to.
-    pub chord: f64,
+    /// The chord tolerance the mesh was held to; none for a sized mesh that was
+    /// not given one.
+    pub chord: Option<f64>,
     /// Largest turn of the normal in a triangle, if asked for.
     pub normal_deg: Option<f64>,
     /// Largest edge, if asked for.
@@ -84,6 +85,9 @@ pub struct Summary {
     pub volume: Option<f64>,
     /// Shape and size of the triangles, which says nothing of the deviation.
     pub quality: QualityReport,
+    /// What was asked of a sized mesh, and what came of it.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub sized: Option<SizedReport>,
     /// Bytes of bare geometry by way of storing.
     pub storage: StorageLine,
     /// The file.
@@ -207,7 +211,7 @@ impl Summary {
             schema_version: SCHEMA_VERSION,
             name: set.name().to_owned(),
             unit: set.unit().symbol(),
-            chord: limits.chord,
+            chord: Some(limits.chord),
             normal_deg: limits.normal_rad.map(f64::to_degrees),
             max_edge: limits.max_edge,
             patches: mesh.parts.len(),
@@ -250,6 +254,7 @@ impl Summary {
             area: measures.area,
             volume: measures.volume,
             quality: QualityReport::new(mesh, &Quality::brief(mesh)),
+            sized: None,
             storage: StorageLine {
                 triangles: storage.triangles,
                 indexed: storage.indexed,
@@ -272,6 +277,17 @@ impl Summary {
     #[must_use]
     pub fn with_quality(mut self, mesh: &Mesh, found: &Quality) -> Self {
         self.quality = QualityReport::new(mesh, found);
+        self
+    }
+
+    /// The same, telling of sizes; `held` says whether a chord was given.
+    #[must_use]
+    pub fn with_sized(mut self, sized: SizedReport, held: bool) -> Self {
+        self.chord = self.chord.filter(|_| held);
+        // These make sizes and are not held for every triangle.
+        self.normal_deg = None;
+        self.max_edge = None;
+        self.sized = Some(sized);
         self
     }
 

@@ -57,13 +57,16 @@ impl Summary {
         let d = &self.deviation;
         writeln!(
             out,
-            "deviation   {} {unit} proved, {} {unit} attained at {} (u {:.4}, v {:.4}); chord tolerance {} {unit}",
+            "deviation   {} {unit} proved, {} {unit} attained at {} (u {:.4}, v {:.4}); {}",
             upward(d.proved, figure),
             figure(d.attained),
             d.patch,
             d.u,
             d.v,
-            self.chord
+            self.chord.map_or_else(
+                || "no chord tolerance was given".to_owned(),
+                |chord| format!("chord tolerance {chord} {unit}")
+            )
         )?;
         writeln!(
             out,
@@ -88,11 +91,14 @@ impl Summary {
         if let Some(edge) = self.max_edge {
             writeln!(out, "            edges at most {edge} {unit}")?;
         }
-        writeln!(
-            out,
-            "economy     {:.2} x the theoretical floor of {:.0} triangles",
-            self.triangles_over_floor, self.floor
-        )?;
+        match &self.sized {
+            Some(sized) => sized.write_text(unit, out)?,
+            None => writeln!(
+                out,
+                "economy     {:.2} x the theoretical floor of {:.0} triangles",
+                self.triangles_over_floor, self.floor
+            )?,
+        }
         writeln!(out, "watertight  {}", self.watertight)?;
         if !self.bridged.is_empty() {
             writeln!(

@@ -158,9 +158,19 @@ fn parts(
     }
     if evidence {
         let own = |spot: &Spot| set.pieces()[spot.piece.index()].patch_parameters(spot.uv);
-        mesh.evidence = Some(spots.iter().map(|c| [0, 1, 2].map(|k| own(&c[k]))).collect());
+        mesh.evidence = Some(
+            spots
+                .iter()
+                .map(|c| [0, 1, 2].map(|k| own(&c[k])))
+                .collect(),
+        );
         let part = |spot: &Spot| part_of[patch_of(spot)];
-        mesh.corner_parts = Some(spots.iter().map(|c| [0, 1, 2].map(|k| part(&c[k]))).collect());
+        mesh.corner_parts = Some(
+            spots
+                .iter()
+                .map(|c| [0, 1, 2].map(|k| part(&c[k])))
+                .collect(),
+        );
     }
 }
 

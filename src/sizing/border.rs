@@ -130,7 +130,15 @@ impl Border {
         border.runs = topology
             .spans()
             .par_iter()
-            .map(|span| own(set, topology, &border.points, span, &masters[span.seam.index()]))
+            .map(|span| {
+                own(
+                    set,
+                    topology,
+                    &border.points,
+                    span,
+                    &masters[span.seam.index()],
+                )
+            })
             .collect();
         border
     }
@@ -185,7 +193,9 @@ impl Border {
         }
         for k in 1..whole {
             let q = total * ratio(k, whole);
-            let link = starts[1..].partition_point(|&s| s <= q).min(chain.links.len() - 1);
+            let link = starts[1..]
+                .partition_point(|&s| s <= q)
+                .min(chain.links.len() - 1);
             if (q - starts[link]).abs() <= SAME || (q - starts[link + 1]).abs() <= SAME {
                 continue;
             }

@@ -175,7 +175,11 @@ impl Field {
             .collect();
         let bridges = self.bridges(set, topology, &firsts);
         let piece_of = |node: usize| firsts.partition_point(|&first| first <= node) - 1;
-        let mut h: Vec<f64> = self.grids.iter().flat_map(|g| g.h.iter().copied()).collect();
+        let mut h: Vec<f64> = self
+            .grids
+            .iter()
+            .flat_map(|g| g.h.iter().copied())
+            .collect();
         // Positive doubles are ordered as their bits are.
         let mut heap: BinaryHeap<Reverse<(u64, usize)>> = h
             .iter()
@@ -266,12 +270,7 @@ impl Grid {
         let node = i * row + j;
         (
             [node, node + 1, node + row, node + row + 1],
-            [
-                (1.0 - a) * (1.0 - b),
-                (1.0 - a) * b,
-                a * (1.0 - b),
-                a * b,
-            ],
+            [(1.0 - a) * (1.0 - b), (1.0 - a) * b, a * (1.0 - b), a * b],
         )
     }
 

@@ -4,15 +4,17 @@ use std::fmt;
 
 use super::Sizing;
 use super::assemble::Assembled;
-use super::atlas::Atlas;
 use super::job::Made;
 use super::mend::sharpest;
 use super::parts::Part;
-use super::region::previous;
+use super::region::{NONE, previous};
 use crate::scalar::{Point, angle_rad};
 
 /// Angles below this are listed one by one, degrees.
 pub const LISTED_DEG: f64 = 20.0;
+
+/// Edges below the smallest edge are told with their place, so many.
+const MOST_BELOW: usize = 100;
 
 /// A corner of kept edges sharper than this forces a triangle as sharp, degrees.
 const SHARP_DEG: f64 = 40.0;
@@ -40,6 +42,8 @@ pub struct Figures {
     pub shortest_at: [f64; 3],
     /// Edges below the smallest edge asked for.
     pub below_min_edge: usize,
+    /// Where the shortest of those are, the shortest first.
+    pub below_at: Vec<[f64; 3]>,
     /// The largest ratio of the sizes asked for at the two ends of an edge.
     pub growth: f64,
     /// Triangles with an angle below [`LISTED_DEG`], each with its cause.
@@ -100,14 +104,17 @@ impl fmt::Display for Cause {
     }
 }
 
+fn index_of(k: usize) -> u32 {
+    u32::try_from(k).expect("there are three corners")
+}
+
 #[allow(clippy::cast_precision_loss, reason = "counts stay far below 2^52")]
 fn float(count: usize) -> f64 {
     count as f64
 }
 
 impl Figures {
-    pub(super) fn of(atlas: &Atlas, made: &Made, of: &Assembled, sizing: &Sizing) -> Self {
-        let _ = atlas;
+    pub(super) fn of(made: &Made, of: &Assembled, sizing: &Sizing) -> Self {
         let mesh = &of.mesh;
         let mut angles = Vec::with_capacity(mesh.triangles.len());
         let mut figures = Self {
@@ -121,11 +128,13 @@ impl Figures {
             shortest: f64::INFINITY,
             shortest_at: [0.0; 3],
             below_min_edge: 0,
+            below_at: Vec::new(),
             growth: 1.0,
             forced: Vec::new(),
             left: made.left.len(),
         };
         let mut edges = 0;
+        let mut below: Vec<(f64, [f64; 3])> = Vec::new();
         let mut part_of = Vec::with_capacity(mesh.triangles.len());
         for (index, part) in mesh.parts.iter().enumerate() {
             part_of.extend(part.triangles.clone().map(|_| index));
@@ -149,14 +158,18 @@ impl Figures {
                 figures.mean_edge += lengths[k];
                 figures.mean_to_size += lengths[k] / (0.5 * (a + b));
                 figures.growth = figures.growth.max(a / b).max(b / a);
+                let ends = [[p, q], [q, r], [r, p]][k];
+                let middle = (ends[0].coords + ends[1].coords) / 2.0;
+                let at = [middle.x, middle.y, middle.z];
                 if lengths[k] < figures.shortest {
-                    let ends = [[p, q], [q, r], [r, p]][k];
-                    let middle = (ends[0].coords + ends[1].coords) / 2.0;
                     figures.shortest = lengths[k];
-                    figures.shortest_at = [middle.x, middle.y, middle.z];
+                    figures.shortest_at = at;
                 }
-                if sizing.min_edge.is_some_and(|least| lengths[k] < least) {
-                    figures.below_min_edge += 1;
+                // An inner edge is met twice, once from its lesser end.
+                let [from, to] = [corners[k], corners[(k + 1) % 3]];
+                let once = part.region.twin(3 * number + index_of(k)) == NONE || from < to;
+                if once && sizing.min_edge.is_some_and(|least| lengths[k] < least) {
+                    below.push((lengths[k], at));
                 }
             }
             if deg < LISTED_DEG {
@@ -172,7 +185,9 @@ impl Figures {
         }
         let count = float(angles.len());
         figures.below_20 = figures.forced.len();
-        figures.below_min_edge = figures.below_min_edge.div_ceil(2);
+        below.sort_by(|a, b| a.0.total_cmp(&b.0));
+        figures.below_min_edge = below.len();
+        figures.below_at = below.iter().take(MOST_BELOW).map(|b| b.1).collect();
         figures.mean_aspect /= count;
         figures.mean_edge /= float(edges);
         figures.mean_to_size /= float(edges);

@@ -115,8 +115,8 @@ fn afford(
             most,
         }));
     }
-    let bytes = Budget::predicted_bytes(triangles, set.pieces().len(), true)
-        + PER_TRIANGLE * triangles;
+    let bytes =
+        Budget::predicted_bytes(triangles, set.pieces().len(), true) + PER_TRIANGLE * triangles;
     if bytes > budget.bytes_allowed() {
         return Err(SizingError::Mesh(MeshError::Memory {
             triangles,
@@ -276,12 +276,7 @@ fn towards(part: &Part, v: u32, to: u32) -> Option<(u32, u32)> {
         .find(|&(h, w)| region.twin(h) == NONE && region.vertices[w as usize].border == to)
 }
 
-fn may_go(
-    atlas: &Atlas,
-    field: &Field,
-    part: &mut Part,
-    (h, goes, keep): (u32, u32, u32),
-) -> bool {
+fn may_go(atlas: &Atlas, field: &Field, part: &mut Part, (h, goes, keep): (u32, u32, u32)) -> bool {
     let remesher = Remesher {
         atlas,
         field,

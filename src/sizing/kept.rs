@@ -23,8 +23,6 @@ const CORNER_DEG: f64 = 5.0;
 pub(super) struct Seams {
     kept: Vec<bool>,
     pub(super) chains: Vec<Chain>,
-    /// By node: whether a chain ends or begins there.
-    pub(super) corner: Vec<bool>,
 }
 
 /// A curve of kept seams.
@@ -49,12 +47,8 @@ impl Seams {
             .into_par_iter()
             .map(|seam| keeps(set, topology, seam))
             .collect();
-        let (chains, corner) = chains(set, topology, &kept);
-        Self {
-            kept,
-            chains,
-            corner,
-        }
+        let chains = chains(set, topology, &kept);
+        Self { kept, chains }
     }
 
     /// Whether a seam stays a run of mesh edges.
@@ -68,10 +62,7 @@ fn keeps(set: &PatchSet, topology: &Topology, seam: usize) -> bool {
     let &[a, b] = spans.as_slice() else {
         return true;
     };
-    let (a, b) = (
-        &topology.spans()[a.index()],
-        &topology.spans()[b.index()],
-    );
+    let (a, b) = (&topology.spans()[a.index()], &topology.spans()[b.index()]);
     if set.patch_of(a.edge.piece()).panel != set.patch_of(b.edge.piece()).panel {
         return true;
     }
@@ -88,7 +79,11 @@ fn keeps(set: &PatchSet, topology: &Topology, seam: usize) -> bool {
         let normal = |span: &crate::topology::Span, t: f64| {
             let piece = span.edge.piece();
             let [u, v] = span.edge.side().at(t);
-            let outward = if set.patch_of(piece).flipped { -1.0 } else { 1.0 };
+            let outward = if set.patch_of(piece).flipped {
+                -1.0
+            } else {
+                1.0
+            };
             let normal = set.pieces()[piece.index()].surface.normal(u, v)?;
             Some(normal * outward)
         };
@@ -125,7 +120,7 @@ fn ends(set: &PatchSet, topology: &Topology, seam: usize) -> [(usize, Vector); 2
     ]
 }
 
-fn chains(set: &PatchSet, topology: &Topology, kept: &[bool]) -> (Vec<Chain>, Vec<bool>) {
+fn chains(set: &PatchSet, topology: &Topology, kept: &[bool]) -> Vec<Chain> {
     let mut at: Vec<Vec<(usize, usize, Vector)>> = vec![Vec::new(); topology.nodes().len()];
     let members: Vec<usize> = (0..kept.len()).filter(|&s| kept[s]).collect();
     let mut nodes = vec![[0; 2]; kept.len()];
@@ -183,5 +178,5 @@ fn chains(set: &PatchSet, topology: &Topology, kept: &[bool]) -> (Vec<Chain>, Ve
             found.push(Chain { links, closed });
         }
     }
-    (found, corner)
+    found
 }

@@ -33,6 +33,8 @@ pub struct SizedMesh {
     pub spots: Vec<[Spot; 3]>,
     /// Proved deviation of every triangle, both ways.
     pub by_triangle: Vec<f64>,
+    /// The size asked for at every point.
+    pub sizes: Vec<f64>,
     /// Shape and size.
     pub figures: Figures,
     /// How often it was meshed until the chord was proved.
@@ -134,11 +136,18 @@ impl SizedMesh {
                 lower(&made.field, &wide.over, chord, &mut sources);
                 continue;
             }
-            let figures = Figures::of(&atlas, &made, &assembled, &sizing);
+            let figures = Figures::of(&made, &assembled, &sizing);
             let deviation = deviation(set, &wide, &assembled.mesh)?;
             let limits = Limits::new(deviation.proved(), None, None);
             let floor = whole_floor(set, &topology, &limits, &wanted);
             seconds.assembly += lap(&mut clock);
+            let mut sizes = vec![f64::INFINITY; assembled.mesh.points.len()];
+            for (points, spots) in triangles.iter().zip(&assembled.spots) {
+                for (point, spot) in points.iter().zip(spots) {
+                    let size = &mut sizes[*point as usize];
+                    *size = size.min(made.field.at(place(*spot)));
+                }
+            }
             let (mesh, spots) = (assembled.mesh, assembled.spots);
             return Ok(Self {
                 meshed: Meshed {
@@ -149,11 +158,19 @@ impl SizedMesh {
                     seconds,
                 },
                 spots,
+                sizes,
                 by_triangle: wide.by_triangle,
                 figures,
                 rounds,
             });
         }
+    }
+}
+
+fn place(spot: Spot) -> Place {
+    Place {
+        piece: u32::try_from(spot.piece.index()).expect("pieces are counted in u32"),
+        uv: spot.uv,
     }
 }
 
@@ -181,17 +198,9 @@ fn worst(over: &[(Spot, f64)]) -> Option<(Spot, f64)> {
 
 /// Asks for smaller edges where the chord was not proved: deviations go with the
 /// square of the size.
-fn lower(
-    field: &super::field::Field,
-    over: &[(Spot, f64)],
-    chord: f64,
-    sources: &mut Vec<Source>,
-) {
+fn lower(field: &super::field::Field, over: &[(Spot, f64)], chord: f64, sources: &mut Vec<Source>) {
     for (spot, proved) in over {
-        let place = Place {
-            piece: u32::try_from(spot.piece.index()).expect("pieces are counted in u32"),
-            uv: spot.uv,
-        };
+        let place = place(*spot);
         let part = (AGAIN * (chord / proved).sqrt()).max(0.4);
         sources.push(Source {
             place,

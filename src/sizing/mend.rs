@@ -81,7 +81,10 @@ impl Remesher<'_> {
     }
 
     fn better(&mut self, t: u32) -> bool {
-        self.flip_better(t) || self.collapse_better(t) || self.move_better(t) || self.split_better(t)
+        self.flip_better(t)
+            || self.collapse_better(t)
+            || self.move_better(t)
+            || self.split_better(t)
     }
 
     fn flip_better(&mut self, t: u32) -> bool {
@@ -180,7 +183,10 @@ impl Remesher<'_> {
     }
 
     fn split_better(&mut self, t: u32) -> bool {
-        let length = |h: u32| (self.region.point(self.region.origin(h)) - self.region.point(self.region.end(h))).norm();
+        let length = |h: u32| {
+            (self.region.point(self.region.origin(h)) - self.region.point(self.region.end(h)))
+                .norm()
+        };
         let longest = (3 * t..3 * t + 3)
             .max_by(|&a, &b| length(a).total_cmp(&length(b)))
             .filter(|&h| self.region.twin(h) != NONE);

@@ -22,6 +22,6 @@ mod remesh;
 mod request;
 mod start;
 
-pub use figures::{Cause, Figures, Forced};
+pub use figures::{Cause, Figures, Forced, LISTED_DEG};
 pub use made::SizedMesh;
 pub use request::{DEFAULT_GROWTH, Sizing, SizingError};

@@ -8,11 +8,10 @@ use super::remesh::vertex;
 use super::start::Start;
 use crate::topology::SeamId;
 
-/// A region and the panel it belongs to.
+/// What hangs together.
 #[derive(Debug)]
 pub(super) struct Part {
     pub(super) region: Region,
-    pub(super) panel: usize,
 }
 
 /// Disjoint sets by path halving; the least member stands for all.
@@ -140,11 +139,7 @@ pub(super) fn parts(
             return Err(group[0]);
         }
         settle(&mut region, border);
-        let panel = atlas.set.patches()[atlas.set.pieces()[group[0]].patch.index()].panel;
-        found.push(Part {
-            region,
-            panel: panel.index(),
-        });
+        found.push(Part { region });
     }
     Ok(found)
 }

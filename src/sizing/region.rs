@@ -219,10 +219,7 @@ impl Region {
         if g != NONE && self.on_border(a) && self.on_border(b) {
             return false;
         }
-        let across = [
-            self.apex(h),
-            if g == NONE { NONE } else { self.apex(g) },
-        ];
+        let across = [self.apex(h), if g == NONE { NONE } else { self.apex(g) }];
         // A triangle with two border edges would leave a loose edge behind.
         let loose = |h: u32| self.twin(next(h)) == NONE && self.twin(previous(h)) == NONE;
         if loose(h) || (g != NONE && loose(g)) {
@@ -302,13 +299,6 @@ impl Region {
                 return;
             }
         }
-    }
-
-    /// The sides of a triangle as vectors of its cross product: twice its area
-    /// along its normal.
-    pub(super) fn cross(&self, [a, b, c]: [u32; 3]) -> Vector {
-        let (p, q, r) = (self.point(a), self.point(b), self.point(c));
-        (q - p).cross(&(r - p))
     }
 }
 

@@ -282,7 +282,11 @@ impl Remesher<'_> {
             // A circumcentre far outside says little.
             let reach = away.norm();
             let most = 0.5 * size;
-            let away = if reach > most { away * (most / reach) } else { away };
+            let away = if reach > most {
+                away * (most / reach)
+            } else {
+                away
+            };
             sum += away * weight;
             weights += weight;
         }
@@ -294,7 +298,11 @@ impl Remesher<'_> {
         let spot = self.region.vertices[v as usize].spot;
         let mut goal = *target;
         for _ in 0..3 {
-            let moved = vertex(self.atlas, self.field, self.atlas.toward(&spot, &goal, steps));
+            let moved = vertex(
+                self.atlas,
+                self.field,
+                self.atlas.toward(&spot, &goal, steps),
+            );
             if self.fits(v, &moved) {
                 self.region.vertices[v as usize] = moved;
                 return true;

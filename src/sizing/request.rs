@@ -84,7 +84,9 @@ pub enum SizingError {
         size: f64,
     },
     /// The growth ratio is out of range.
-    #[error("growth {0}: out of range; a growth ratio must be from {LEAST_GROWTH} to {MOST_GROWTH}")]
+    #[error(
+        "growth {0}: out of range; a growth ratio must be from {LEAST_GROWTH} to {MOST_GROWTH}"
+    )]
     Growth(f64),
     /// The chord is no length.
     #[error("chord {0}: not a length; a chord must be positive and finite")]

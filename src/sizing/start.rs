@@ -70,7 +70,9 @@ pub(super) fn outline(topology: &Topology, border: &Border, piece: usize) -> Opt
         let before = edge(ROUND[(k + 3) % 4].0).collapsed;
         if edge(side).collapsed {
             // The next side that is a curve says what seam begins here.
-            let next = (1..4).map(|n| ROUND[(k + n) % 4]).find(|s| !edge(s.0).collapsed)?;
+            let next = (1..4)
+                .map(|n| ROUND[(k + n) % 4])
+                .find(|s| !edge(s.0).collapsed)?;
             if !before {
                 found.push(Entry {
                     uv: side.at(0.5),

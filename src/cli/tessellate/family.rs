@@ -59,7 +59,8 @@ impl TessellateArguments {
         let (mut written, mut levels) = (Vec::new(), Vec::new());
         for ((name, output), level) in outputs.into_iter().zip(1..) {
             let limits = limits(asked, level);
-            let made = self.make(job, &limits, |write| output.prepare(write))?;
+            let finer = (1..level).fold(1.0, |all, _| all * FAMILY_FACTOR);
+            let made = self.make(job, &limits, finer, |write| output.prepare(write))?;
             let Some((summary, ready)) = made else {
                 return Err(UsageError::Family.into());
             };

@@ -13,10 +13,11 @@ use crate::mesh::{Budget, Meshed, Strips};
 use crate::pace;
 use crate::patch_set::{PatchId, PatchSet, PieceId};
 use crate::picture::{Extra, seam_curves};
-use crate::quality::{Asked, Quality};
-use crate::report::{SecondsLine, Summary};
+use crate::quality::{Asked, Quality, Target};
+use crate::report::{SecondsLine, SizedReport, Summary};
 use crate::sampling::Limits;
 use crate::scalar::{Cuboid, Tolerance};
+use crate::sizing::SizedMesh;
 
 /// What is meshed, into what, whatever the limits.
 pub(super) struct Job<'a> {
@@ -31,6 +32,13 @@ pub(super) struct Job<'a> {
     pub(super) progress: &'a Progress,
     /// Seconds it took to read the set.
     pub(super) reading: f64,
+}
+
+/// A mesh by size, with what is told of it.
+struct Sized {
+    meshed: Meshed,
+    by_triangle: Vec<f64>,
+    report: SizedReport,
 }
 
 /// Writes the file into what it is given.
@@ -61,6 +69,7 @@ impl TessellateArguments {
         &self,
         job: &Job<'_>,
         limits: &Limits,
+        finer: f64,
         put: impl FnOnce(&mut Writing<'_>) -> Result<Option<(Written, T)>, OutputError>,
     ) -> Result<Option<(Summary, T)>, Box<dyn std::error::Error>> {
         let (set, format, progress) = (job.set, job.format, job.progress);
@@ -69,14 +78,27 @@ impl TessellateArguments {
         let of = |piece: PieceId| job.of(piece);
         let evidence = self.carries(format);
         let stage = |name| progress.stage(name);
-        let mut made = Meshed::within(set, &held, &job.budget, of, evidence, stage)?;
+        let sized = self.sized(job, limits, finer, evidence)?;
+        let (mut made, sized) = match sized {
+            Some(sized) => (sized.meshed, Some((sized.by_triangle, sized.report))),
+            None => (
+                Meshed::within(set, &held, &job.budget, of, evidence, stage)?,
+                None,
+            ),
+        };
         let mut figures = None;
         if format == Format::Vtu {
-            progress.stage("proving each triangle");
-            figures = Some(Figures::of(set, &made.mesh, chord)?);
+            figures = Some(match &sized {
+                Some((by_triangle, _)) => Figures::proved(set, &made.mesh, by_triangle.clone()),
+                None => {
+                    progress.stage("proving each triangle");
+                    Figures::of(set, &made.mesh, chord)?
+                }
+            });
         }
         if !self.evidence {
             made.mesh.evidence = None;
+            made.mesh.corner_parts = None;
         }
         let mut seconds = SecondsLine {
             reading: job.reading,
@@ -110,14 +132,47 @@ impl TessellateArguments {
         };
         let mut summary = Summary::new(set, limits, &made, &strips, format, &written, seconds)
             .with_turned_over(set, job.turned_over);
+        let sizes = sized.as_ref().map(|(_, report)| report.sizes.as_slice());
         if self.quality {
-            let found = Quality::of(&made.mesh, &Asked::default());
+            let asked = Asked {
+                size: sizes.map(Target::Points),
+                growth: sized.as_ref().map(|(_, report)| report.growth),
+            };
+            let found = Quality::of(&made.mesh, &asked);
             summary = summary.with_quality(&made.mesh, &found);
+        }
+        if let Some((_, report)) = sized {
+            summary = summary.with_sized(report, self.meshing.chord.is_some());
         }
         Ok(Some((summary, more)))
     }
 
     /// The extras asked for.
+    /// The mesh by size, if one is asked for.
+    fn sized(
+        &self,
+        job: &Job<'_>,
+        limits: &Limits,
+        finer: f64,
+        evidence: bool,
+    ) -> Result<Option<Sized>, Box<dyn std::error::Error>> {
+        let chord = Tolerance::new(limits.chord)?;
+        let given = self.meshing.chord.is_some();
+        let held = given.then(|| job.held(limits, chord, false).chord);
+        let Some(sizing) = self.sized.sizing(job, limits, (held, finer)) else {
+            return Ok(None);
+        };
+        let wanted = (|piece: PieceId| job.of(piece), evidence);
+        let stage = |name| job.progress.stage(name);
+        let made = SizedMesh::within(job.set, &sizing, &job.budget, wanted, stage)?;
+        let report = SizedReport::new(&sizing, &made);
+        Ok(Some(Sized {
+            meshed: made.meshed,
+            by_triangle: made.by_triangle,
+            report,
+        }))
+    }
+
     fn overlays(&self, job: &Job<'_>, made: &Meshed, limits: &Limits) -> Vec<Overlay> {
         if self.extras.is_empty() {
             return Vec::new();

@@ -32,9 +32,9 @@ use thiserror::Error;
 
 pub use evidence::{Evidence, Face};
 pub(super) use facet::{to_segment, to_triangle};
+pub use finding::{Fault, Finding};
 pub(super) use part::quarters;
 pub(super) use rounding::slack;
-pub use finding::{Fault, Finding};
 
 use crate::bezier::Side;
 use crate::patch_set::{PatchSet, PieceId};

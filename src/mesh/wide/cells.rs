@@ -51,7 +51,10 @@ fn lengths(surface: &BezierPatch) -> [f64; 2] {
             .sum::<f64>()
     };
     let longest = |at: &dyn Fn(f64, f64) -> Point| {
-        [0.0, 0.5, 1.0].map(|s| sum(at, s)).into_iter().fold(0.0, f64::max)
+        [0.0, 0.5, 1.0]
+            .map(|s| sum(at, s))
+            .into_iter()
+            .fold(0.0, f64::max)
     };
     [
         longest(&|t, s| surface.eval(t, s)),
@@ -177,9 +180,7 @@ impl Task<'_> {
         first
             .par_iter()
             .enumerate()
-            .filter_map(|(piece, look)| {
-                look.as_ref().map(|look| self.piece(piece, look, attained))
-            })
+            .filter_map(|(piece, look)| look.as_ref().map(|look| self.piece(piece, look, attained)))
             .collect()
     }
 

@@ -14,9 +14,6 @@ use crate::topology::EdgeId;
 const BUDGET: usize = 600;
 const MORE: usize = 64;
 
-/// Steps of a projection.
-const STEPS: usize = 4;
-
 /// A part of a flat triangle: its corners and a place for each.
 #[derive(Debug, Clone, Copy)]
 struct Part {
@@ -43,10 +40,6 @@ impl Task<'_> {
             .collect()
     }
 
-    fn surface(&self, piece: PieceId) -> &BezierPatch {
-        &self.set.pieces()[piece.index()].surface
-    }
-
     fn facet(&self, t: usize, attained: f64, scratch: &mut Scratch) -> (f64, Spot) {
         let points = self.triangles[t].map(|p| self.points[p as usize]);
         let whole = Part {
@@ -66,10 +59,6 @@ impl Task<'_> {
             };
             let (bound, piece, part) = scratch.parts[worst];
             let most = if bound > self.chord { BUDGET } else { MORE };
-            if bound > 3.0 * goal && looked >= most && std::env::var("DBG").is_ok() {
-                eprintln!("t{t} looked {looked} bound {bound:.3e} goal {goal:.3e} orig {:?}", self.spots[t]);
-                eprintln!("   part {:?} lens {:?}", part, [0,1,2].map(|k| (part.points[k]-part.points[(k+1)%3]).norm()));
-            }
             if bound <= goal || looked >= most {
                 return (bound, part.spots[0]);
             }
@@ -97,7 +86,11 @@ impl Task<'_> {
                 if spot.piece == piece {
                     spot.uv
                 } else {
-                    self.foot(piece, self.guess(spot, piece, part.spots[k].uv), &part.points[c])
+                    self.foot(
+                        piece,
+                        self.guess(spot, piece, part.spots[k].uv),
+                        &part.points[c],
+                    )
                 }
             });
             let bound = self.bound(piece, uv, &part.points, scratch);
@@ -111,107 +104,6 @@ impl Task<'_> {
         best
     }
 
-    /// Where to begin to look for a spot's like on another piece: across its
-    /// border if it lies on one.
-    fn guess(&self, spot: Spot, piece: PieceId, other: [f64; 2]) -> [f64; 2] {
-        let like = self.beyond(spot).into_iter().find(|s| s.piece == piece);
-        if let Some(like) = like {
-            return like.uv;
-        }
-        other
-    }
-
-    /// The nearest place of a piece, by steps that keep to its square.
-    fn foot(&self, piece: PieceId, from: [f64; 2], point: &Point) -> [f64; 2] {
-        let surface = self.surface(piece);
-        let mut uv = from;
-        let mut best = (f64::INFINITY, uv);
-        for _ in 0..=STEPS {
-            let (place, du, dv) = surface.frame(uv[0], uv[1]);
-            let away = point - place;
-            if away.norm_squared() < best.0 {
-                best = (away.norm_squared(), uv);
-            }
-            let Some(step) = step(&du, &dv, &away) else { break };
-            let next = inside(uv, step);
-            // On a side it slides along it.
-            let next = if next == uv { slid(uv, &du, &dv, &away) } else { next };
-            if next == uv {
-                break;
-            }
-            uv = next;
-        }
-        best.1
-    }
-
-    /// The nearest place to a point, from a place near it and over the borders it
-    /// meets on the way, and the distance.
-    fn settled(&self, from: Spot, point: &Point) -> (Spot, f64) {
-        let away = |spot: Spot| {
-            let [u, v] = spot.uv;
-            (self.surface(spot.piece).eval(u, v) - point).norm()
-        };
-        let foot = |spot: Spot| {
-            let uv = self.foot(spot.piece, spot.uv, point);
-            let spot = Spot { uv, ..spot };
-            (spot, away(spot))
-        };
-        let mut best = foot(from);
-        for _ in 0..4 {
-            let mut next = best;
-            for over in self.beyond(best.0) {
-                let other = foot(over);
-                if other.1 < next.1 {
-                    next = other;
-                }
-            }
-            if next.1 >= best.1 {
-                break;
-            }
-            best = next;
-        }
-        best
-    }
-
-    /// The places of other pieces that a place on a border is joined to.
-    fn beyond(&self, spot: Spot) -> Vec<Spot> {
-        let [u, v] = spot.uv;
-        let mut found = Vec::new();
-        for (side, on, t) in [
-            (Side::U0, u <= 0.0, v),
-            (Side::U1, u >= 1.0, v),
-            (Side::V0, v <= 0.0, u),
-            (Side::V1, v >= 1.0, u),
-        ] {
-            if !on {
-                continue;
-            }
-            let edge = &self.topology.edges()[EdgeId::of(spot.piece, side).index()];
-            let spans = &self.topology.spans()[edge.spans.clone()];
-            for span in spans.iter().filter(|s| s.t[0] <= t && t <= s.t[1]) {
-                let seam = &self.topology.seams()[span.seam.index()];
-                for id in &seam.spans {
-                    let to = &self.topology.spans()[id.index()];
-                    if to.edge == span.edge {
-                        continue;
-                    }
-                    let along = (t - span.t[0]) / (span.t[1] - span.t[0]);
-                    let along = if to.reversed == span.reversed {
-                        along
-                    } else {
-                        1.0 - along
-                    };
-                    let at = to.t[0] * (1.0 - along) + to.t[1] * along;
-                    found.push(Spot {
-                        piece: to.edge.piece(),
-                        uv: to.edge.side().at(at),
-                    });
-                }
-            }
-        }
-        found
-    }
-
     fn bound(
         &self,
         piece: PieceId,
@@ -220,8 +112,12 @@ impl Task<'_> {
         scratch: &mut Scratch,
     ) -> f64 {
         let origin = points[0];
-        self.surface(piece)
-            .restrict_triangle(uv, &origin, &mut scratch.restriction, &mut scratch.net);
+        self.surface(piece).restrict_triangle(
+            uv,
+            &origin,
+            &mut scratch.restriction,
+            &mut scratch.net,
+        );
         let net = &scratch.net;
         let flat = points.map(|p| p - origin);
         let d = net.degree;
@@ -340,7 +236,9 @@ impl Task<'_> {
         }
         let on = curve.eval(t) - a.0;
         let s = on.dot(&along) / along.norm_squared();
-        if (on - along * s).norm() > 0.25 * along.norm() {
+        // The side may end before it comes to the plane.
+        let beside = on.dot(&across).abs();
+        if beside > 1e-6 * along.norm() || (on - along * s).norm() > 0.25 * along.norm() {
             return None;
         }
         if !(0.01..=0.99).contains(&s) {
@@ -364,68 +262,5 @@ impl Task<'_> {
         let piece = over.unwrap_or(b.1.piece);
         let uv = self.foot(piece, self.guess(near, piece, [0.5; 2]), &at(s));
         Some((at(s), near, Spot { piece, uv }))
-    }
-}
-
-/// (a, b) of the step a S_u + b S_v nearest to a vector.
-fn step(du: &Vector, dv: &Vector, away: &Vector) -> Option<[f64; 2]> {
-    let (e, f, g) = (du.norm_squared(), du.dot(dv), dv.norm_squared());
-    let determinant = e * g - f * f;
-    if determinant <= 1e-12 * e * g || determinant <= 0.0 {
-        return None;
-    }
-    let (p, q) = (away.dot(du), away.dot(dv));
-    Some([(p * g - q * f) / determinant, (q * e - p * f) / determinant])
-}
-
-/// A step that ends where it leaves the unit square.
-fn inside(uv: [f64; 2], step: [f64; 2]) -> [f64; 2] {
-    let mut fraction = 1.0_f64;
-    for k in 0..2 {
-        let to = uv[k] + step[k];
-        if to < 0.0 {
-            fraction = fraction.min(-uv[k] / step[k]);
-        } else if to > 1.0 {
-            fraction = fraction.min((1.0 - uv[k]) / step[k]);
-        }
-    }
-    let fraction = fraction.max(0.0);
-    // Ends are ends exactly.
-    [0, 1].map(|k| {
-        let to = uv[k] + fraction * step[k];
-        if to < 1e-14 {
-            0.0
-        } else if to > 1.0 - 1e-14 {
-            1.0
-        } else {
-            to
-        }
-    })
-}
-
-/// A step along the side or sides a place lies on.
-fn slid([u, v]: [f64; 2], du: &Vector, dv: &Vector, away: &Vector) -> [f64; 2] {
-    let along = |t: f64, d: &Vector| {
-        let speed = d.norm_squared();
-        if speed > 0.0 {
-            (t + away.dot(d) / speed).clamp(0.0, 1.0)
-        } else {
-            t
-        }
-    };
-    let on_u = u <= 0.0 || u >= 1.0;
-    let on_v = v <= 0.0 || v >= 1.0;
-    if on_u && !on_v {
-        [u, along(v, dv)]
-    } else if on_v && !on_u {
-        [along(u, du), v]
-    } else {
-        // In a corner: along the side that leads on.
-        let (x, y) = (along(u, du), along(v, dv));
-        if (x - u).abs() * du.norm() > (y - v).abs() * dv.norm() {
-            [x, v]
-        } else {
-            [u, y]
-        }
     }
 }

@@ -147,7 +147,9 @@ impl<'a> Ground<'a> {
         let mut best = alone;
         let mut set = vec![near];
         for k in 0..3_u32 {
-            if reach[k as usize] > 0.0 && let Some(other) = self.beyond(near, k) {
+            if reach[k as usize] > 0.0
+                && let Some(other) = self.beyond(near, k)
+            {
                 set.push(other);
             }
         }
@@ -200,9 +202,8 @@ impl<'a> Ground<'a> {
             return None;
         }
         // Moving back from one edge that is passed must not lead past another.
-        let beyond = |(at, out, _): &&(Vector, Vector, bool)| {
-            points.iter().any(|p| (p - at).dot(out) > 0.0)
-        };
+        let beyond =
+            |(at, out, _): &&(Vector, Vector, bool)| points.iter().any(|p| (p - at).dot(out) > 0.0);
         let passed: Vec<&Vector> = walls
             .iter()
             .filter(|wall| wall.2)
@@ -273,5 +274,9 @@ fn next(side: u32) -> u32 {
 }
 
 fn previous(side: u32) -> u32 {
-    if side.is_multiple_of(3) { side + 2 } else { side - 1 }
+    if side.is_multiple_of(3) {
+        side + 2
+    } else {
+        side - 1
+    }
 }

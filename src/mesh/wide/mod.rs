@@ -18,6 +18,7 @@
 
 mod cells;
 mod facets;
+mod feet;
 mod ground;
 
 use rayon::prelude::*;
