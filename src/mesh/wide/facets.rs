@@ -4,9 +4,9 @@ use rayon::prelude::*;
 
 use super::super::audit::{quarters, to_segment, to_triangle};
 use super::{Spot, Task};
-use crate::bezier::{BezierPatch, Side, TriangleNet, TriangleRestriction};
+use crate::bezier::{Side, TriangleNet, TriangleRestriction};
 use crate::patch_set::PieceId;
-use crate::scalar::{Point, Vector};
+use crate::scalar::Point;
 use crate::topology::EdgeId;
 
 /// Parts of one flat triangle looked at, at most: while the chord is not proved,

@@ -40,12 +40,13 @@ impl Task<'_> {
             };
             let next = inside(uv, step);
             // On a side it slides along it.
-            let next = if next == uv {
+            let same = |p: [f64; 2]| p.map(f64::to_bits) == uv.map(f64::to_bits);
+            let next = if same(next) {
                 slid(uv, &du, &dv, &away)
             } else {
                 next
             };
-            if next == uv {
+            if same(next) {
                 break;
             }
             uv = next;
