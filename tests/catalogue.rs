@@ -185,13 +185,17 @@ fn templates() -> Vec<(String, Vec<String>)> {
 }
 
 /// Messages of the library alone, which no command passes on.
-const NOT_OF_THE_PROGRAM: [&str; 6] = [
+const NOT_OF_THE_PROGRAM: [&str; 8] = [
     // A guard: no set is known whose mending spoils a seam.
     "would not be as demanded any more",
     // The program makes its meshes with evidence where it draws them.
     "src/picture/scene.rs",
     // What the parser of nets says is said of the patch set's fields instead.
     "src/bezier/net.rs",
+    // The command line has lengths that are none refused before.
+    "not a length; a ",
+    // A guard: no patch is known that a fan could not fill.
+    "its border could not be filled with triangles of the size",
     // Broken invariants, for tests.
     "src/topology/check.rs",
     // The command line only lets names through that are known.

@@ -24,6 +24,9 @@ use crate::scalar::Point;
 /// The parameters of a face's corners, as its properties are called.
 pub(super) const EVIDENCE: [&str; 6] = ["u0", "v0", "u1", "v1", "u2", "v2"];
 
+/// And, where triangles may lie on several patches, those of the corners.
+pub(super) const CORNERS: [&str; 3] = ["patch0", "patch1", "patch2"];
+
 /// Bytes of a file with these counts.
 pub(super) fn bytes(counts: &Counts<'_>, layout: Layout, with_normals: bool) -> u64 {
     let triangles = counts.triangles();
@@ -38,10 +41,10 @@ pub(super) fn bytes(counts: &Counts<'_>, layout: Layout, with_normals: bool) -> 
     let head = header(counts.outline, shape, with_normals, &mut sink).and_then(|()| sink.finish());
     let head = head.expect("writing to nowhere cannot fail");
     let point = if with_normals { 48 } else { 24 };
-    let face = if counts.outline.evidence.is_some() {
-        13 + 52
-    } else {
-        13
+    let face = match (&counts.outline.evidence, &counts.outline.corner_parts) {
+        (Some(_), Some(_)) => 13 + 52 + 12,
+        (Some(_), None) => 13 + 52,
+        (None, _) => 13,
     };
     head + point * vertices + face * triangles
 }
@@ -119,6 +122,11 @@ pub(super) fn write(
             let [[a, b], [c, d], [e, f]] = evidence[t];
             sink.doubles([a, b, c])?;
             sink.doubles([d, e, f])?;
+            if let Some(parts) = &mesh.corner_parts {
+                for part in parts[t] {
+                    sink.put(&part.to_le_bytes())?;
+                }
+            }
         }
     }
     Ok(Written {
@@ -164,6 +172,9 @@ fn header(
         writeln!(sink, "property int patch")?;
         for name in EVIDENCE {
             writeln!(sink, "property double {name}")?;
+        }
+        for name in CORNERS.iter().filter(|_| mesh.corner_parts.is_some()) {
+            writeln!(sink, "property int {name}")?;
         }
     }
     writeln!(sink, "end_header")

@@ -6,7 +6,7 @@
 use thiserror::Error;
 
 use super::names::decoded;
-use super::ply::EVIDENCE;
+use super::ply::{CORNERS, EVIDENCE};
 use crate::mesh::{Evidence, Face};
 use crate::scalar::{LengthUnit, Point};
 
@@ -60,6 +60,9 @@ pub enum EvidenceError {
 /// Bytes of a face: a count, three indices, a patch, six doubles.
 const FACE: usize = 1 + 3 * 4 + 4 + 6 * 8;
 
+/// Bytes more where each corner has a patch of its own.
+const OWN: usize = 3 * 4;
+
 /// Reads a mesh with evidence from the bytes of a PLY file. Points that the
 /// file repeats (separate triangles, or normals) are made one again.
 ///
@@ -68,8 +71,9 @@ const FACE: usize = 1 + 3 * 4 + 4 + 6 * 8;
 pub fn read_evidence(bytes: &[u8]) -> Result<Evidence, EvidenceError> {
     let header = Header::read(bytes)?;
     let stride = 8 * header.vertex_properties.len();
+    let size = FACE + if header.wide { OWN } else { 0 };
     let expected = (header.vertices.checked_mul(stride as u64))
-        .and_then(|v| v.checked_add(header.faces.checked_mul(FACE as u64)?))
+        .and_then(|v| v.checked_add(header.faces.checked_mul(size as u64)?))
         .and_then(|n| n.checked_add(header.length as u64))
         .unwrap_or(u64::MAX);
     let found = bytes.len() as u64;
@@ -87,7 +91,7 @@ pub fn read_evidence(bytes: &[u8]) -> Result<Evidence, EvidenceError> {
         unit: header.unit,
         patches: header.patches,
         points: Vec::with_capacity(vertices),
-        faces: Vec::with_capacity(faces.len() / FACE),
+        faces: Vec::with_capacity(faces.len() / size),
     };
     for (index, vertex) in points.chunks_exact(stride.max(1)).enumerate() {
         let [x, y, z] = header.xyz.map(|at| double(&vertex[8 * at..]));
@@ -101,12 +105,12 @@ pub fn read_evidence(bytes: &[u8]) -> Result<Evidence, EvidenceError> {
         }
         evidence.points.push(Point::new(x, y, z));
     }
-    for (index, bytes) in faces.chunks_exact(FACE).enumerate() {
+    for (index, bytes) in faces.chunks_exact(size).enumerate() {
         let face = face(bytes, vertices, evidence.patches.len()).map_err(|fault| {
             EvidenceError::Value {
                 element: "face",
                 index,
-                byte: header.length + vertices * stride + index * FACE,
+                byte: header.length + vertices * stride + index * size,
                 fault,
             }
         })?;
@@ -134,10 +138,23 @@ fn face(bytes: &[u8], vertices: usize, patches: usize) -> Result<Face, &'static 
     if !places.as_flattened().iter().all(|p| p.is_finite()) {
         return Err("a parameter is not finite; u and v must be finite");
     }
+    let corner_patches = match bytes.get(FACE..FACE + OWN) {
+        None => None,
+        Some(own) => {
+            let own = [0, 1, 2].map(|k| index(&own[4 * k..]));
+            if own.iter().any(|&p| p as usize >= patches) {
+                return Err(
+                    "a corner's patch is not in the header; patches count from 0 in the header's order",
+                );
+            }
+            Some(own)
+        }
+    };
     Ok(Face {
         points: [a, b, c],
         patch,
         places,
+        corner_patches,
     })
 }
 
@@ -164,6 +181,8 @@ struct Header {
     vertex_properties: Vec<String>,
     /// Which of the properties are x, y, z.
     xyz: [usize; 3],
+    /// Whether each corner has a patch of its own.
+    wide: bool,
 }
 
 #[derive(Clone, Copy, PartialEq)]
@@ -184,6 +203,7 @@ impl Header {
             faces: 0,
             vertex_properties: Vec::new(),
             xyz: [0, 1, 2],
+            wide: false,
         };
         let mut element = Element::None;
         let mut face_properties: Vec<String> = Vec::new();
@@ -226,8 +246,12 @@ impl Header {
         let list = std::iter::once("list uchar int vertex_indices".to_owned());
         let corners = EVIDENCE.iter().map(|name| format!("double {name}"));
         let wanted = list.chain(["int patch".to_owned()]).chain(corners);
-        if !wanted.eq(face_properties) {
-            return Err(EvidenceError::NoEvidence);
+        let wanted: Vec<String> = wanted.collect();
+        let own: Vec<String> = CORNERS.iter().map(|name| format!("int {name}")).collect();
+        match face_properties.strip_prefix(&wanted[..]) {
+            Some([]) => {}
+            Some(more) if more == own => header.wide = true,
+            _ => return Err(EvidenceError::NoEvidence),
         }
         for (slot, name) in header.xyz.iter_mut().zip(["x", "y", "z"]) {
             let found = header.vertex_properties.iter().position(|p| p == name);

@@ -5,7 +5,7 @@ use std::collections::BTreeMap;
 use super::build::Build;
 use super::collector::Collector;
 use super::fault::SetFault;
-use super::file::{ClassEntry, SeamEndEntry, SeamEntry};
+use super::file::{ClassEntry, SeamEndEntry, SeamEntry, SizeEntry};
 use super::standard::{Matcher, Rule, fits};
 use super::{Class, Demand, SeamDemand, SeamEnd};
 use crate::surface::Step;
@@ -98,6 +98,25 @@ impl Build {
             }
         }
         found
+    }
+
+    /// Sizes of panels; later entries go before earlier ones.
+    pub(super) fn sizes(&mut self, entries: &[SizeEntry], faults: &mut Collector) {
+        for (k, entry) in entries.iter().enumerate() {
+            let path = |field| vec![Step::Field("sizes"), Step::Item(k), Step::Field(field)];
+            let place = || format!("size {k}");
+            if !entry.size.is_finite() || entry.size <= 0.0 {
+                faults.fault(place(), path("size"), SetFault::Size(entry.size));
+            }
+            let fitting = self.fitting(&entry.of);
+            if !fitting.contains(&true) {
+                let rule = "a size is of panels the set has";
+                self.unknown(&entry.of, "panel", rule, (place(), path("of")), faults);
+            }
+            for (panel, _) in self.panels.iter_mut().zip(&fitting).filter(|p| *p.1) {
+                panel.size = Some(entry.size);
+            }
+        }
     }
 
     /// Which panels fit a name or a pattern.

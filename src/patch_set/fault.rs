@@ -66,6 +66,9 @@ pub enum SetFault {
     /// An axis of zero length.
     #[error("axis has no length; a direction must not be zero")]
     ZeroAxis,
+    /// A size that is none.
+    #[error("size is {0}; a size must be positive and finite")]
+    Size(f64),
     /// A seam between an edge and itself.
     #[error("both ends are the same edge; a seam is between two edges")]
     SelfSeam,

@@ -53,6 +53,9 @@ pub struct SetFile {
     /// Tolerance classes of panels.
     #[serde(default)]
     pub classes: Vec<ClassEntry>,
+    /// Sizes of panels, for sized meshes.
+    #[serde(default)]
+    pub sizes: Vec<SizeEntry>,
 }
 
 impl SetFile {
@@ -249,6 +252,16 @@ pub struct ClassEntry {
     pub of: String,
     /// Its class.
     pub class: Class,
+}
+
+/// The size of edges on a panel, or on all panels that fit a pattern.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct SizeEntry {
+    /// The panel; `*` stands for any run of letters.
+    pub of: String,
+    /// Largest edge that a sized mesh aims at there.
+    pub size: f64,
 }
 
 /// One end of a seam as written: `("wing/1", U1)` for an edge, `"wing"` for

@@ -26,7 +26,7 @@ pub use diagnostic::{Diagnostic, Faults, Finding, Position, Reading, render};
 pub use fault::SetFault;
 pub use file::{
     Axis, ClassEntry, CopyEntry, PatchEntry, PlaceEntry, SeamEndEntry, SeamEntry, SetFile,
-    ToleranceEntry, Units,
+    SizeEntry, ToleranceEntry, Units,
 };
 pub(crate) use locate::Locator;
 pub use model::{

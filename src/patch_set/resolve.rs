@@ -36,6 +36,7 @@ pub(super) fn resolve(file: SetFile) -> Result<(PatchSet, Vec<Diagnostic>), Vec<
         class_of,
         rules,
     };
+    build.sizes(&file.sizes, &mut faults);
     match tolerances {
         Some(tolerances) if faults.list.is_empty() => Ok((
             PatchSet {

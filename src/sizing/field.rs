@@ -4,7 +4,7 @@
 //! request = min(size, panel's size,
 //!               SAFE sqrt(8 e / (k1 + max(k2, 0) / 3)),   chord e, |k1| >= |k2|
 //!               psi / |k1|)                               normal angle psi
-//! h(x)    = min over y of request(y) + slope |x - y|,      slope = ln growth
+//! h(x)    = min over y of request(y) + slope |x - y|,      slope = 0.55 ln growth
 //! ```
 //!
 //! Over an equilateral triangle of edge h with its corners on the surface the
@@ -32,9 +32,9 @@ const SAFE: f64 = 0.82;
 const FEWEST: usize = 4;
 const MOST: usize = 64;
 
-/// The part of the growth that sizes on a grid use: ways along a grid are longer
-/// than straight ones.
-const SLOPE: f64 = 0.9;
+/// The part of the growth that sizes use: single edges are up to two thirds longer
+/// than the size, and ways along a grid longer than straight ones.
+const SLOPE: f64 = 0.55;
 
 /// Sizes on one piece.
 #[derive(Debug, Clone)]

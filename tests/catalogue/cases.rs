@@ -243,6 +243,8 @@ fn surfaces() -> Vec<Case> {
 fn sets() -> Vec<Case> {
     let mut cases = vec![
         text("no patches", "(patches: [])"),
+        with("no size", "sizes: [(of: \"wing\", size: 0)],"),
+        with("size of no panel", "sizes: [(of: \"wint\", size: 2)],"),
         text(
             "empty name",
             "(patches: [(name: \"a//b\", surface: Sphere(radius: 1))])",
@@ -345,6 +347,22 @@ fn usage() -> Vec<Case> {
         ball(
             "a family of one place",
             "tessellate ball.ron -o - --as ply --family 3",
+        ),
+        ball(
+            "a smallest edge above the size",
+            "tessellate ball.ron -o a.ply --size 1 --min-edge 2",
+        ),
+        ball(
+            "no growth",
+            "tessellate ball.ron -o a.ply --size 1 --growth 0.9",
+        ),
+        ball(
+            "a chord that the smallest edge forbids",
+            "tessellate ball.ron -o a.ply --size 1 --min-edge 1 --chord 0.0001",
+        ),
+        ball(
+            "sized evidence in OBJ",
+            "tessellate ball.ron -o a.obj --size 1 --evidence",
         ),
         ball("evidence in GLB", "tessellate ball.ron -o a.glb --evidence"),
         ball("no panel", "tessellate ball.ron -o a.stl --panel bal"),

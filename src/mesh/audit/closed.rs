@@ -107,6 +107,51 @@ fn is_border(topology: &Topology, cell: &Cell, corner: usize, present: &[bool]) 
     })
 }
 
+/// Whether a place lies on a border of its piece where the set is open too, or
+/// joined only to what the mesh leaves out; at an end of a stretch either one counts.
+pub(super) fn is_open_at(
+    topology: &Topology,
+    piece: PieceId,
+    [u, v]: [f64; 2],
+    present: &[bool],
+) -> bool {
+    [
+        (Side::U0, u <= 0.0, v),
+        (Side::U1, u >= 1.0, v),
+        (Side::V0, v <= 0.0, u),
+        (Side::V1, v >= 1.0, u),
+    ]
+    .into_iter()
+    .filter(|(_, on, _)| *on)
+    .any(|(side, _, t)| {
+        let edge = &topology.edges()[EdgeId::of(piece, side).index()];
+        let spans = &topology.spans()[edge.spans.clone()];
+        let here = spans.iter().filter(|span| span.t[0] <= t && t <= span.t[1]);
+        here.into_iter().any(|span| {
+            // All that meet in the nodes at its ends count where the place is one.
+            let alone = |seam: crate::topology::SeamId| {
+                let joined = &topology.seams()[seam.index()].spans;
+                let other = |id: &&crate::topology::SpanId| {
+                    let of = &topology.spans()[id.index()];
+                    of.edge.piece() != piece && present[of.edge.piece().index()]
+                };
+                joined.len() == 1 || !joined.iter().any(|id| other(&id))
+            };
+            let ends = [0, 1]
+                .into_iter()
+                .filter(|&e| (t - span.t[e]).abs() <= 1e-12)
+                .map(|e| span.nodes[e]);
+            let at_node = ends.into_iter().any(|node| {
+                topology
+                    .spans()
+                    .iter()
+                    .any(|other| other.nodes.contains(&node) && alone(other.seam))
+            });
+            alone(span.seam) || at_node
+        })
+    })
+}
+
 /// Edges that share points, by number.
 fn chains(edges: &[Open]) -> Vec<Vec<usize>> {
     let mut at: BTreeMap<u32, Vec<usize>> = BTreeMap::new();

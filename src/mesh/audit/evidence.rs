@@ -30,6 +30,9 @@ pub struct Face {
     pub patch: u32,
     /// The patch's own (u, v) of the corners.
     pub places: [[f64; 2]; 3],
+    /// Where triangles may lie on several patches: the patch of each corner, to
+    /// which its place belongs. Indices into [`Evidence::patches`].
+    pub corner_patches: Option<[u32; 3]>,
 }
 
 impl Evidence {
@@ -43,6 +46,7 @@ impl Evidence {
                 points: mesh.triangle_points(t),
                 patch: number,
                 places: places[t],
+                corner_patches: mesh.corner_parts.as_ref().map(|parts| parts[t]),
             }));
         }
         Some(Self {
@@ -74,6 +78,12 @@ impl Evidence {
         for face in &mut self.faces {
             face.points = face.points.map(|p| merged[p as usize]);
         }
+    }
+
+    /// Whether triangles may lie on several patches.
+    #[must_use]
+    pub fn is_wide(&self) -> bool {
+        self.faces.iter().any(|face| face.corner_patches.is_some())
     }
 
     /// The three corners of a triangle in space.

@@ -26,6 +26,7 @@ mod finding;
 mod part;
 mod proof;
 mod rounding;
+mod sized;
 
 use rayon::prelude::*;
 use thiserror::Error;
@@ -128,6 +129,9 @@ impl Audit {
             return Err(AuditError::Empty);
         }
         let topology = Topology::build(set)?;
+        if evidence.is_wide() {
+            return Ok(sized::audit(set, &topology, evidence, chord.get()));
+        }
         let mut findings = Vec::new();
         let mut cells = cell::cells(set, evidence, &mut findings);
         let mut present = vec![false; set.pieces().len()];
@@ -171,6 +175,9 @@ impl Audit {
         chord: Tolerance,
     ) -> Result<Vec<f64>, AuditError> {
         let topology = Topology::build(set)?;
+        if evidence.is_wide() {
+            return Ok(sized::by_triangle(set, &topology, evidence, chord.get()));
+        }
         let mut cells = cell::cells(set, evidence, &mut Vec::new());
         let mut present = vec![false; set.pieces().len()];
         for cell in &cells {

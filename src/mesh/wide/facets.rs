@@ -9,10 +9,8 @@ use crate::patch_set::PieceId;
 use crate::scalar::Point;
 use crate::topology::EdgeId;
 
-/// Parts of one flat triangle looked at, at most: while the chord is not proved,
-/// and to come closer to the attained figure.
+/// Parts of one flat triangle looked at, at most.
 const BUDGET: usize = 600;
-const MORE: usize = 64;
 
 /// A part of a flat triangle: its corners and a place for each.
 #[derive(Debug, Clone, Copy)]
@@ -58,8 +56,7 @@ impl Task<'_> {
                 return (0.0, self.spots[t][0]);
             };
             let (bound, piece, part) = scratch.parts[worst];
-            let most = if bound > self.chord { BUDGET } else { MORE };
-            if bound <= goal || looked >= most {
+            if bound <= goal || looked >= BUDGET {
                 return (bound, part.spots[0]);
             }
             scratch.parts.swap_remove(worst);
