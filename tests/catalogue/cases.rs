@@ -243,7 +243,7 @@ fn surfaces() -> Vec<Case> {
 fn sets() -> Vec<Case> {
     let mut cases = vec![
         text("no patches", "(patches: [])"),
-        with("no size", "sizes: [(of: \"wing\", size: 0)],"),
+        with("no size of a panel", "sizes: [(of: \"wing\", size: 0)],"),
         with("size of no panel", "sizes: [(of: \"wint\", size: 2)],"),
         text(
             "empty name",
