@@ -27,6 +27,7 @@ fn writing(criterion: &mut Criterion) {
         (Format::Ply, Layout::Indexed),
         (Format::Glb, Layout::Indexed),
         (Format::Glb, Layout::Strips),
+        (Format::Vtu, Layout::Indexed),
     ];
     for (format, layout) in cases {
         let options = WriteOptions {
