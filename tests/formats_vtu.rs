@@ -253,9 +253,9 @@ fn bytes_follow_from_the_counts() {
             };
             let said = bytes_of(&counts, Format::Vtu, &options);
             assert_eq!(said, Some(bytes.len() as u64));
-            // Three fields, the normal, panel, patch, seven measures, points, cells.
+            // Three fields, three of points, three of cells, seven measures, the mesh.
             let more = if surface.nodes.is_some() { 4 } else { 0 };
-            let count = 17 + more + usize::from(mesh.evidence.is_some());
+            let count = 20 + more + usize::from(mesh.evidence.is_some());
             assert_eq!(read(&bytes).len(), count);
         }
     }

@@ -105,6 +105,11 @@ fn growth_and_size_are_told_where_they_are() {
     let size = of(&found, Measure::Size);
     assert_relative_eq!(size.maximum, long / 3.0, max_relative = 1e-14);
     assert_relative_eq!(size.minimum, 1.0, max_relative = 1e-14);
+    let grading = of(&found, Measure::Grading);
+    assert_eq!(
+        (grading.count, grading.worst[0].value.to_bits()),
+        (5, 5.0_f64.to_bits())
+    );
     assert_eq!(found.asked_growth, Some(1.2));
     let found = Quality::of(
         &mesh,

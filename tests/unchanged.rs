@@ -9,6 +9,7 @@ use std::process::Command;
 use chordwise::mesh::{Mesh, Meshed};
 use chordwise::patch_set::PatchSet;
 use chordwise::sampling::Limits;
+use chordwise::sizing::{SizedMesh, Sizing};
 
 /// A patch's part of a mesh, from its own point of view: the points of its
 /// triangles to the bit, in the order they are met, and its triangles by them.
@@ -97,6 +98,102 @@ fn the_front_quarter_keeps_what_was_not_changed() {
     assert!(touched.len() > 1 && touched.len() < all / 2, "{touched:?}");
     for name in &touched {
         assert!(name.starts_with("bumper/"), "{touched:?}");
+    }
+}
+
+/// Sized meshes: a region is joined panel by panel, so a panel that shares no changed
+/// seam keeps its nodes and elements too.
+#[test]
+fn sized_meshes_keep_panels_that_were_not_changed() {
+    let path = concat!(env!("CARGO_MANIFEST_DIR"), "/patches/front_quarter.ron");
+    let text = std::fs::read_to_string(path).unwrap();
+    let meshed = |text: &str| {
+        let set = PatchSet::from_ron(text, "x").unwrap().set;
+        let made = SizedMesh::new(&set, &Sizing::new(25.0), |_| true, |_| ()).unwrap();
+        parts(&made.meshed.mesh)
+    };
+    let old = meshed(&text);
+    assert!(changed(&old, &meshed(&text)).is_empty());
+    let new = meshed(&moved(&text, "sill/3", 9, [0.0, 1.5, 0.0]));
+    let touched = changed(&old, &new);
+    assert!(touched.contains("sill/3"), "{touched:?}");
+    for name in &touched {
+        assert!(name.starts_with("sill/"), "{touched:?}");
+    }
+}
+
+/// The corners of every element of a panel, by the names of its nodes (panel and
+/// number), with their points to the bit: what a file for solvers says.
+fn elements(folder: &Path, text: &str, size: Option<&str>) -> BTreeMap<(String, i32), Vec<Node>> {
+    std::fs::write(folder.join("set.ron"), text).unwrap();
+    let mut arguments = vec!["tessellate", "set.ron", "-o", "set.vtu"];
+    arguments.extend(size.iter().flat_map(|size| ["--size", *size]));
+    chordwise(folder, &arguments);
+    let bytes = std::fs::read(folder.join("set.vtu")).unwrap();
+    let mark = b"<AppendedData encoding=\"raw\">\n_";
+    let at = bytes.windows(mark.len()).position(|w| w == mark).unwrap();
+    let head = std::str::from_utf8(&bytes[..at]).unwrap();
+    let data = &bytes[at + mark.len()..];
+    let array = |place: &str, name: &str| -> &[u8] {
+        let (_, after) = head.split_once(&format!("<{place}>")).unwrap();
+        let (_, after) = after.split_once(&format!("Name=\"{name}\"")).unwrap();
+        let (_, after) = after.split_once("offset=\"").unwrap();
+        let offset: usize = after.split('"').next().unwrap().parse().unwrap();
+        let length = u64::from_le_bytes(data[offset..offset + 8].try_into().unwrap());
+        &data[offset + 8..][..usize::try_from(length).unwrap()]
+    };
+    let numbers = |place: &str, name: &str| -> Vec<i32> {
+        let (all, _) = array(place, name).as_chunks::<4>();
+        all.iter().map(|b| i32::from_le_bytes(*b)).collect()
+    };
+    let index = |number: i32| usize::try_from(number).unwrap();
+    let names = std::str::from_utf8(array("FieldData", "panel_names")).unwrap();
+    let names: Vec<&str> = names.lines().collect();
+    let (panels, nodes) = (numbers("PointData", "panel"), numbers("PointData", "node"));
+    let places = array("Points", "points");
+    let node = |point: &i32| {
+        let point = index(*point);
+        let place = places[24 * point..24 * point + 24].to_vec();
+        (names[index(panels[point])].to_owned(), nodes[point], place)
+    };
+    let corners = numbers("Cells", "connectivity");
+    let own = numbers("CellData", "panel").into_iter();
+    let own = own.zip(numbers("CellData", "element"));
+    own.zip(corners.as_chunks::<3>().0)
+        .map(|((panel, element), corners)| {
+            let name = names[index(panel)].to_owned();
+            ((name, element), corners.iter().map(node).collect())
+        })
+        .collect()
+}
+
+/// A node by its panel and number, and where it stands.
+type Node = (String, i32, Vec<u8>);
+
+/// A changed patch in the fourth panel: elements and nodes of others keep the names
+/// they had, though most are elsewhere in the file.
+#[test]
+fn elements_and_nodes_keep_their_numbers_in_panels_that_were_not_changed() {
+    let path = concat!(env!("CARGO_MANIFEST_DIR"), "/patches/front_quarter.ron");
+    let text = std::fs::read_to_string(path).unwrap();
+    let other = moved(&text, "sill/3", 9, [0.0, 1.5, 0.0]);
+    let folder = tempfile::tempdir().unwrap();
+    for size in [None, Some("25")] {
+        let old = elements(folder.path(), &text, size);
+        let new = elements(folder.path(), &other, size);
+        let mut kept = 0;
+        for (name, corners) in &old {
+            if name.0 != "sill" {
+                assert!(new.get(name) == Some(corners), "{name:?}");
+                kept += 1;
+            }
+        }
+        assert!(kept > 1000, "{kept}");
+        let sill = |all: &BTreeMap<(String, i32), Vec<Node>>| {
+            let own = all.iter().filter(|((panel, _), _)| panel == "sill");
+            own.map(|(_, corners)| corners.clone()).collect::<Vec<_>>()
+        };
+        assert!(sill(&old) != sill(&new));
     }
 }
 

@@ -5,201 +5,40 @@
 //! | where | name | what |
 //! |---|---|---|
 //! | points | `normal` | unit normal of the surface, outward; at a crease that of the first patch |
+//! | points | `panel`, `node` | the first panel that has the point, its number there |
 //! | points | `patch`, `parameters` | number of the patch, its own (u, v) |
 //! | points | `principal_curvatures` | the larger first, in 1 / unit, see [`Nodes`] |
 //! | cells | `panel`, `patch` | numbers, counted from 0 in the order of the names |
+//! | cells | `element` | number in its panel |
 //! | cells | `proved_deviation` | the larger of both directions |
 //! | cells | names of [`Measure::OF_TRIANGLES`] | shape |
 //! | cells | `corner_parameters` | with evidence: the patch's own u, v of the three corners |
+//! | cells | `corner_patches` | with evidence of a mesh that crosses seams: the patches of the three corners |
 //! | field | `unit`, `panel_names`, `patch_names` | bytes of UTF-8, a line break after each name; in names control characters and `%` percent-encoded |
 //!
-//! Patch, parameters, curvatures and deviation are there if the writer is given
+//! Nodes and elements count from 0 in every panel, in the order of its triangles and
+//! their corners: with the panel's name they stay the same between revisions that leave
+//! the panel alone, whatever happens to others. Patch, parameters, curvatures and deviation are there if the writer is given
 //! them. A triangle without an area has angles of 0 and 180 degrees, a shape and
 //! scaled Jacobian of 0, and ratios of 1e30, as the Verdict report caps them (that
 //! figure is from memory).
 
+mod arrays;
+
 use std::io::Write;
 
-use super::names::Encoded;
 use super::normals::Normals;
 use super::sink::Sink;
 use super::{Counts, Format, FormatError, Layout, SurfaceFigures, Written};
 use crate::mesh::Mesh;
 use crate::quality::{Measure, Triangle};
+use arrays::{Content, arrays, header, text};
 
 /// A ratio that has no bound.
 const UNBOUNDED: f64 = 1e30;
 
 /// The number of VTK's linear triangle.
 const TRIANGLE: u8 = 5;
-
-/// Where an array belongs.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-enum Place {
-    Field,
-    Points,
-    PointData,
-    CellData,
-    Cells,
-}
-
-/// What an array holds.
-#[derive(Debug, Clone, Copy)]
-enum Content {
-    Unit,
-    PanelNames,
-    PatchNames,
-    Coordinates,
-    Normals,
-    NodePatches,
-    NodePlaces,
-    Curvatures,
-    Panels,
-    Patches,
-    Deviations,
-    Measure(Measure),
-    Evidence,
-    Connectivity,
-    Offsets,
-    Types,
-}
-
-/// An array: where, what, its name, type, components, and bytes.
-struct Array {
-    place: Place,
-    content: Content,
-    name: &'static str,
-    kind: &'static str,
-    components: u64,
-    bytes: u64,
-}
-
-/// The arrays of a file, in the order of its header.
-fn arrays(counts: &Counts<'_>, with: SurfaceFigures<'_>) -> Vec<Array> {
-    use Content as C;
-    use Place as P;
-    let mesh = counts.outline;
-    let (points, cells) = (counts.points, counts.triangles());
-    let texts = [C::Unit, C::PanelNames, C::PatchNames].map(|c| text(mesh, c).len() as u64);
-    let (int, real, byte) = (("Int32", 4), ("Float64", 8), ("UInt8", 1));
-    let mut all = vec![
-        (P::Field, C::Unit, "unit", byte, 1, texts[0]),
-        (P::Field, C::PanelNames, "panel_names", byte, 1, texts[1]),
-        (P::Field, C::PatchNames, "patch_names", byte, 1, texts[2]),
-        (P::PointData, C::Normals, "normal", real, 3, points),
-    ];
-    if with.nodes.is_some() {
-        all.extend([
-            (P::PointData, C::NodePatches, "patch", int, 1, points),
-            (P::PointData, C::NodePlaces, "parameters", real, 2, points),
-            (
-                P::PointData,
-                C::Curvatures,
-                "principal_curvatures",
-                real,
-                2,
-                points,
-            ),
-        ]);
-    }
-    all.extend([
-        (P::CellData, C::Panels, "panel", int, 1, cells),
-        (P::CellData, C::Patches, "patch", int, 1, cells),
-    ]);
-    if with.deviations.is_some() {
-        let name = "proved_deviation";
-        all.push((P::CellData, C::Deviations, name, real, 1, cells));
-    }
-    let measures = Measure::OF_TRIANGLES.iter();
-    all.extend(measures.map(|m| (P::CellData, C::Measure(*m), m.name(), real, 1, cells)));
-    if mesh.evidence.is_some() {
-        let name = "corner_parameters";
-        all.push((P::CellData, C::Evidence, name, real, 6, cells));
-    }
-    all.extend([
-        (P::Points, C::Coordinates, "points", real, 3, points),
-        (P::Cells, C::Connectivity, "connectivity", int, 1, 3 * cells),
-        (P::Cells, C::Offsets, "offsets", int, 1, cells),
-        (P::Cells, C::Types, "types", byte, 1, cells),
-    ]);
-    all.into_iter()
-        .map(
-            |(place, content, name, (kind, size), components, tuples)| Array {
-                place,
-                content,
-                name,
-                kind,
-                components,
-                bytes: size * components * tuples,
-            },
-        )
-        .collect()
-}
-
-/// The text that a field's bytes are.
-fn text(mesh: &Mesh, content: Content) -> String {
-    let lines = |names: &mut dyn Iterator<Item = &str>| {
-        names
-            .map(|name| format!("{}\n", Encoded::line(name)))
-            .collect()
-    };
-    match content {
-        Content::PanelNames => lines(&mut mesh.panels.iter().map(String::as_str)),
-        Content::PatchNames => lines(&mut mesh.parts.iter().map(|p| p.name.as_str())),
-        _ => format!("{}\n", mesh.unit),
-    }
-}
-
-fn header(arrays: &[Array], [points, cells]: [u64; 2], sink: &mut Sink<'_>) -> std::io::Result<()> {
-    writeln!(sink, "<?xml version=\"1.0\"?>")?;
-    writeln!(
-        sink,
-        "<VTKFile type=\"UnstructuredGrid\" version=\"1.0\" byte_order=\"LittleEndian\" header_type=\"UInt64\">"
-    )?;
-    writeln!(sink, "<!-- chordwise {} -->", env!("CARGO_PKG_VERSION"))?;
-    writeln!(sink, "<UnstructuredGrid>")?;
-    let list = |sink: &mut Sink<'_>, tag: &str, place: Place| {
-        writeln!(sink, "<{tag}>")?;
-        // The data stand in the reverse order: see `write`.
-        let mut offset = 0;
-        let mut lines = Vec::new();
-        for array in arrays.iter().rev() {
-            if array.place == place {
-                let tuples = if place == Place::Field {
-                    format!(" NumberOfTuples=\"{}\"", array.bytes)
-                } else {
-                    format!(" NumberOfComponents=\"{}\"", array.components)
-                };
-                // Readers take lists of one component and many for two things.
-                let tuples = if array.components == 1 && place != Place::Field {
-                    ""
-                } else {
-                    &tuples
-                };
-                lines.push(format!(
-                    "<DataArray type=\"{}\" Name=\"{}\"{tuples} format=\"appended\" offset=\"{offset}\"/>",
-                    array.kind, array.name
-                ));
-            }
-            offset += 8 + array.bytes;
-        }
-        for line in lines.iter().rev() {
-            writeln!(sink, "{line}")?;
-        }
-        writeln!(sink, "</{tag}>")
-    };
-    list(sink, "FieldData", Place::Field)?;
-    writeln!(
-        sink,
-        "<Piece NumberOfPoints=\"{points}\" NumberOfCells=\"{cells}\">"
-    )?;
-    list(sink, "PointData", Place::PointData)?;
-    list(sink, "CellData", Place::CellData)?;
-    list(sink, "Points", Place::Points)?;
-    list(sink, "Cells", Place::Cells)?;
-    writeln!(sink, "</Piece>\n</UnstructuredGrid>")?;
-    write!(sink, "<AppendedData encoding=\"raw\">\n_")
-}
 
 const FOOTER: &str = "\n</AppendedData>\n</VTKFile>\n";
 
@@ -288,6 +127,24 @@ fn data(
                 sink.doubles(normal)?;
             }
         }
+        Content::NodePanels | Content::NodeNumbers => {
+            for [panel, number] in nodes(mesh) {
+                let value = match content {
+                    Content::NodePanels => panel,
+                    _ => number,
+                };
+                sink.put(&value.to_le_bytes())?;
+            }
+        }
+        Content::Elements => {
+            let mut count = vec![0_u32; mesh.panels.len()];
+            for part in &mesh.parts {
+                for _ in part.triangles.clone() {
+                    sink.put(&count[part.panel].to_le_bytes())?;
+                    count[part.panel] += 1;
+                }
+            }
+        }
         Content::NodePatches => {
             for part in with.nodes.iter().flat_map(|nodes| &nodes.parts) {
                 sink.put(&part.to_le_bytes())?;
@@ -323,6 +180,11 @@ fn data(
                 sink.doubles([*d, *e, *f])?;
             }
         }
+        Content::EvidencePatches => {
+            for part in mesh.corner_parts.iter().flatten().flatten() {
+                sink.put(&part.to_le_bytes())?;
+            }
+        }
         Content::Connectivity => {
             for point in cells().flat_map(|t| mesh.triangle_points(t)) {
                 sink.put(&point.to_le_bytes())?;
@@ -340,6 +202,30 @@ fn data(
         }
     }
     Ok(())
+}
+
+/// For every point the first panel that has it and its number there; what no
+/// triangle has counts to the first panel, as its first.
+fn nodes(mesh: &Mesh) -> Vec<[u32; 2]> {
+    let index = |at: usize| u32::try_from(at).expect("counts are limited before the run");
+    let mut found = vec![None; mesh.points.len()];
+    // The panel that has met the point last, so that it counts once a panel.
+    let mut last = vec![None; mesh.points.len()];
+    let mut count = vec![0; mesh.panels.len()];
+    let mut order: Vec<usize> = (0..mesh.parts.len()).collect();
+    order.sort_by_key(|&part| mesh.parts[part].panel);
+    for part in order.into_iter().map(|part| &mesh.parts[part]) {
+        let panel = part.panel;
+        for point in part.triangles.clone().flat_map(|t| mesh.triangle_points(t)) {
+            let point = point as usize;
+            if last[point] != Some(panel) {
+                last[point] = Some(panel);
+                found[point].get_or_insert([index(panel), count[panel]]);
+                count[panel] += 1;
+            }
+        }
+    }
+    found.into_iter().map(Option::unwrap_or_default).collect()
 }
 
 fn pairs(values: Option<&Vec<[f64; 2]>>, sink: &mut Sink<'_>) -> std::io::Result<()> {

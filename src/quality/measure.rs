@@ -25,6 +25,8 @@ pub enum Measure {
     EdgeLength,
     /// Length of an edge over what was asked for there.
     Size,
+    /// The sizes asked for at the two ends of an edge, the larger over the smaller.
+    Grading,
     /// Across an edge: the mean edge of one of its triangles over that of the
     /// other, the larger over the smaller.
     Growth,
@@ -57,6 +59,7 @@ impl Measure {
             Self::Shape => "shape",
             Self::EdgeLength => "edge_length",
             Self::Size => "size",
+            Self::Grading => "grading",
             Self::Growth => "growth",
             Self::Spread => "spread",
         }
@@ -75,6 +78,7 @@ impl Measure {
             Self::Shape => "shape",
             Self::EdgeLength => "edge length",
             Self::Size => "edge over size",
+            Self::Grading => "grading",
             Self::Growth => "growth",
             Self::Spread => "spread at points",
         }
@@ -93,6 +97,7 @@ impl Measure {
             Self::Shape => "4 sqrt 3 area / sum of squared edges",
             Self::EdgeLength => "length of an edge",
             Self::Size => "length of an edge / the size asked for there",
+            Self::Grading => "sizes asked for at the ends of an edge, larger / smaller",
             Self::Growth => "mean edges of the two triangles at an edge, larger / smaller",
             Self::Spread => "longest / shortest edge at a point",
         }
@@ -102,7 +107,7 @@ impl Measure {
     #[must_use]
     pub fn of_what(self) -> &'static str {
         match self {
-            Self::EdgeLength | Self::Size => "edges",
+            Self::EdgeLength | Self::Size | Self::Grading => "edges",
             Self::Growth => "inner edges",
             Self::Spread => "points",
             _ => "triangles",
@@ -121,7 +126,7 @@ impl Measure {
             // 2 sqrt 3 / 3, which rounding must not exceed.
             Self::ScaledJacobian => Some([0.5, 2.0 / 3.0_f64.sqrt()]),
             Self::Shape => Some([0.25, 1.0]),
-            Self::EdgeLength | Self::Size | Self::Growth | Self::Spread => None,
+            Self::EdgeLength | Self::Size | Self::Grading | Self::Growth | Self::Spread => None,
         }
     }
 
@@ -169,7 +174,9 @@ impl Measure {
             Self::ScaledJacobian => triangle.scaled_jacobian(),
             Self::EdgeRatio => triangle.edge_ratio(),
             Self::Shape => triangle.shape(),
-            Self::EdgeLength | Self::Size | Self::Growth | Self::Spread => return None,
+            Self::EdgeLength | Self::Size | Self::Grading | Self::Growth | Self::Spread => {
+                return None;
+            }
         })
     }
 
@@ -187,7 +194,7 @@ impl Measure {
                 1.0, 1.05, 1.1, 1.15, 1.2, 1.3, 1.4, 1.5, 1.75, 2.0, 2.5, 3.0, 5.0, 10.0, 100.0,
                 1000.0,
             ],
-            Self::Growth => vec![
+            Self::Grading | Self::Growth => vec![
                 1.0, 1.02, 1.05, 1.1, 1.15, 1.2, 1.25, 1.3, 1.5, 2.0, 3.0, 5.0, 10.0,
             ],
             Self::Size => vec![

@@ -20,7 +20,7 @@ pub enum Target<'a> {
 pub struct Asked<'a> {
     /// The edge length.
     pub size: Option<Target<'a>>,
-    /// The largest growth.
+    /// The largest ratio of sizes at the two ends of an edge.
     pub growth: Option<f64>,
 }
 
@@ -194,6 +194,13 @@ impl<'a> Edges<'a> {
                 .zip(&self.edges)
                 .map(|(length, (ends, _, _))| length / target(*ends));
             found.push(Distribution::of(Measure::Size, ratios, WORST, middle));
+        }
+        if let Some(Target::Points(sizes)) = asked.size {
+            let ratios = self.edges.iter().map(|([a, b], _, _)| {
+                let [a, b] = [a, b].map(|end| sizes[*end as usize]);
+                a.max(b) / a.min(b)
+            });
+            found.push(Distribution::of(Measure::Grading, ratios, WORST, middle));
         }
         let growth = self.edges.iter().map(|(_, _, growth)| *growth);
         found.push(Distribution::of(Measure::Growth, growth, WORST, middle));

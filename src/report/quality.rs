@@ -199,7 +199,7 @@ impl QualityReport {
                     line.count
                 ),
                 None => match (line.kind, self.asked_growth) {
-                    (Measure::Growth, Some(asked)) => format!("at most {asked} asked for"),
+                    (Measure::Grading, Some(asked)) => format!("at most {asked} asked for"),
                     _ => "no range".to_owned(),
                 },
             };

@@ -24,4 +24,4 @@ mod start;
 
 pub use figures::{Cause, Figures, Forced, LISTED_DEG};
 pub use made::SizedMesh;
-pub use request::{DEFAULT_GROWTH, Sizing, SizingError};
+pub use request::{DEFAULT_GROWTH, LEAST_GROWTH, Sizing, SizingError};

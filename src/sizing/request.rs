@@ -62,9 +62,11 @@ impl Sizing {
     }
 }
 
-/// Growth ratios that are worked with: below the least one a mesh would hardly
-/// grow at all, above the largest triangles cannot be near equilateral.
-const LEAST_GROWTH: f64 = 1.01;
+/// The least growth ratio that is worked with: below it a mesh would hardly grow at
+/// all.
+pub const LEAST_GROWTH: f64 = 1.01;
+
+/// Above this growth ratio triangles cannot be near equilateral.
 const MOST_GROWTH: f64 = 2.0;
 
 /// Why no sized mesh was made.

@@ -149,6 +149,10 @@ def judge_arrays(path, summary):
         numbers = cells[kind]
         named = names[f"{kind}_names"]
         holds(f"{kind}: every number has a name", numbers.max() < len(named) and numbers.min() >= 0)
+    pairs = numpy.stack([mesh.point_data["panel"], mesh.point_data["node"]])
+    holds("every node has a name of its own", len(numpy.unique(pairs, axis=1).T) == len(mesh.points))
+    pairs = numpy.stack([cells["panel"], cells["element"]])
+    holds("every element has a name of its own", len(numpy.unique(pairs, axis=1).T) == len(block.data))
     if "deviation" in summary:
         holds("all patches are there", len(names["patch_names"]) == summary["patches"])
         # Two proofs, of which either may be the closer one.

@@ -133,7 +133,8 @@ impl TessellateArguments {
         let mut summary = Summary::new(set, limits, &made, &strips, format, &written, seconds)
             .with_turned_over(set, job.turned_over);
         let sizes = sized.as_ref().map(|(_, report)| report.sizes.as_slice());
-        if self.quality {
+        // Whoever asks for sizes wants to know what came of them.
+        if self.quality || sizes.is_some() {
             let asked = Asked {
                 size: sizes.map(Target::Points),
                 growth: sized.as_ref().map(|(_, report)| report.growth),
@@ -147,7 +148,6 @@ impl TessellateArguments {
         Ok(Some((summary, more)))
     }
 
-    /// The extras asked for.
     /// The mesh by size, if one is asked for.
     fn sized(
         &self,
@@ -173,6 +173,7 @@ impl TessellateArguments {
         }))
     }
 
+    /// The extras asked for.
     fn overlays(&self, job: &Job<'_>, made: &Meshed, limits: &Limits) -> Vec<Overlay> {
         if self.extras.is_empty() {
             return Vec::new();

@@ -5,7 +5,7 @@ use clap::Args;
 use super::making::Job;
 use crate::sampling::Limits;
 use crate::scalar::Length;
-use crate::sizing::{DEFAULT_GROWTH, Sizing};
+use crate::sizing::{DEFAULT_GROWTH, LEAST_GROWTH, Sizing};
 
 /// Sizes as typed.
 #[derive(Debug, Args)]
@@ -37,6 +37,14 @@ pub(super) struct SizingArguments {
     growth: Option<f64>,
 }
 
+/// The growth ratio of a mesh that is so many times finer: sizes then rise as steeply
+/// in relation to the shape, over shorter edges. Never less than what can be worked
+/// with.
+fn growth(asked: f64, finer: f64) -> f64 {
+    let growth = 1.0 + (asked - 1.0) / finer;
+    growth.max(LEAST_GROWTH.min(asked))
+}
+
 impl SizingArguments {
     /// Whether a sized mesh is asked for.
     pub(super) fn given(&self) -> bool {
@@ -54,7 +62,7 @@ impl SizingArguments {
         Some(Sizing {
             size: self.size?.in_unit(unit) / finer,
             min_edge: self.min_edge.map(|e| e.in_unit(unit) / finer),
-            growth: self.growth.unwrap_or(DEFAULT_GROWTH),
+            growth: growth(self.growth.unwrap_or(DEFAULT_GROWTH), finer),
             chord,
             normal_rad: limits.normal_rad,
         })
