@@ -12,6 +12,10 @@ use crate::scalar::Point;
 /// A height likely above this part of the chord is so by any bound.
 const HOPELESS: f64 = 1.1;
 
+/// How often a part of a cell at the pole is quartered: hulls of its curved edge are
+/// by a third too wide at first, and by a fortieth then.
+const QUARTERED: usize = 2;
+
 impl Work<'_> {
     /// Brings all figures up to date; returns the triangles that fail.
     pub(super) fn round(&mut self, prover: &mut Prover, planar: Option<f64>) -> Vec<u32> {
@@ -150,9 +154,9 @@ impl Work<'_> {
         true
     }
 
-    /// The cell of a triangle at the pole is a trapezoid: the two parameter
-    /// triangles it falls into, by one diagonal for what lies over the flat
-    /// triangle, and by the other for the edge that diagonal does not end in.
+    /// The cell of a triangle at the pole is a trapezoid, bounded in pieces. Its
+    /// edges are those of the two parameter triangles it falls into by one
+    /// diagonal, and of the other for the edge that diagonal does not end in.
     fn pole_cell(
         &self,
         prover: &mut Prover,
@@ -162,29 +166,52 @@ impl Work<'_> {
         flat: &Flat,
     ) -> Cell {
         let at = corners.map(|v| self.layout.triangulation.places[v as usize]);
-        let (x, y) = (at[(k + 1) % 3], at[(k + 2) % 3]);
-        let (below_x, below_y) = (pole.beside(x), pole.beside(y));
-        let with_pole_at = |place: [f64; 2]| {
+        let mut with_pole_at = |place: [f64; 2]| {
             let mut places = at;
-            places[k] = place;
-            places
+            places[k] = pole.beside(place);
+            prover.cell(places, flat, true)
         };
-        let first = prover.cell(with_pole_at(below_x), flat, true);
-        let other = prover.cell(with_pole_at(below_y), flat, true);
-        let mut second = [[0.0; 2]; 3];
-        second[k] = below_x;
-        second[(k + 1) % 3] = y;
-        second[(k + 2) % 3] = below_y;
-        let second = prover.cell(second, flat, false);
+        let (first, other) = (with_pole_at(at[(k + 1) % 3]), with_pole_at(at[(k + 2) % 3]));
         let mut edges = first.edges;
         edges[(k + 2) % 3] = other.edges[(k + 2) % 3];
-        Cell {
-            height: first.height.max(second.height),
-            sideways: first.sideways.max(second.sideways),
-            direct: first.direct.max(second.direct),
+        let mut whole = Cell {
             edges,
-            likely: first.likely.max(second.likely),
             peak: first.peak,
+            ..Cell::default()
+        };
+        for places in self.layout.triangulation.cell(corners) {
+            self.bound_part(prover, places, flat, QUARTERED, &mut whole);
         }
+        whole
     }
+
+    /// Joins what is proved of a part of a cell; in quarters, so many times over,
+    /// where that is more than the chord.
+    fn bound_part(
+        &self,
+        prover: &mut Prover,
+        places: [[f64; 2]; 3],
+        flat: &Flat,
+        times: usize,
+        whole: &mut Cell,
+    ) {
+        let part = prover.cell(places, flat, false);
+        if part.direct > self.limits.chord && part.likely <= self.limits.chord && times > 0 {
+            for quarter in quarters(places) {
+                self.bound_part(prover, quarter, flat, times - 1, whole);
+            }
+            return;
+        }
+        whole.height = whole.height.max(part.height);
+        whole.sideways = whole.sideways.max(part.sideways);
+        whole.direct = whole.direct.max(part.direct);
+        whole.likely = whole.likely.max(part.likely);
+    }
+}
+
+/// A parameter triangle by the middles of its edges.
+fn quarters([a, b, c]: [[f64; 2]; 3]) -> [[[f64; 2]; 3]; 4] {
+    let middle = |x: [f64; 2], y: [f64; 2]| [0, 1].map(|axis| (x[axis] + y[axis]) / 2.0);
+    let (ab, bc, ca) = (middle(a, b), middle(b, c), middle(c, a));
+    [[a, ab, ca], [ab, b, bc], [ca, bc, c], [ab, bc, ca]]
 }

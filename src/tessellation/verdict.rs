@@ -206,7 +206,7 @@ fn at_border(
         return None;
     }
     let mut most = 0.0_f64;
-    for places in mesh.cell(t).into_iter().flatten() {
+    for places in mesh.cell(mesh.triangles[t as usize]) {
         most = most.max(prover.beyond(places, flat, &lines, 1.0 / sharpest)?);
     }
     Some(most)
