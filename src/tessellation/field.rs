@@ -7,6 +7,11 @@ use crate::bezier::{BezierPatch, SurfaceJet};
 use crate::sampling::{Limits, ratio};
 use crate::scalar::{Point, Vector};
 
+/// How much worse a slender triangle counts, times its longest edge squared over
+/// twice its area. Where K < 0 lattices sheared by whole steps are equally good by
+/// heights, but their long edges leave the straight line sideways, and proofs fail.
+const SLENDER: f64 = 0.03;
+
 /// How much a sideways shift of an edge counts beside a height: about the tilt
 /// of neighbouring triangles, by which the proof multiplies it.
 const TILT: f64 = 0.1;
@@ -111,7 +116,8 @@ impl<'a> Field<'a> {
 
     /// Estimated deviation of a triangle, in length: the largest height error
     /// for the Hessian at its centre, joined with a part of the sideways shift
-    /// of its edges, and with what a largest edge asks; never small for a triangle
+    /// of its edges, a little more for slender ones, and with what a largest edge
+    /// asks; never small for a triangle
     /// that faces inwards, so that exchanges of diagonals do away with it.
     pub(super) fn estimate(
         &self,
@@ -160,8 +166,10 @@ impl<'a> Field<'a> {
             }
         }
         let height = super::quadratic::Quadratic::largest_error(square).0;
-        height
-            .max(worst_edge)
+        // Of a triangle without area nothing else is worth comparing.
+        let square = longest * longest;
+        let slender = square / facet.norm().max(1e-9 * square).max(f64::MIN_POSITIVE);
+        (height.max(worst_edge) * (1.0 + SLENDER * slender))
             .max(limits.length_error(longest))
             .max(inward)
     }

@@ -36,6 +36,12 @@ const EQUILATERAL: [f64; 2] = [6.0, 4.5];
 /// samples of the sides, whichever way they run.
 const EVEN: [f64; 2] = [5.12, 5.12];
 
+/// Where K < 0 and rows end freely, they stand nearer together by this: they get
+/// out of step with one another, and at 0.894 of the best distance no triangle
+/// between them has more than its 8 e however they stand. By trial half of that
+/// is best: a torus takes a seventh fewer triangles, all told.
+const OUT_OF_STEP: f64 = 0.95;
+
 /// Which parameter the rows run along.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub(super) enum Along {
@@ -104,7 +110,8 @@ impl Step {
             .sqrt();
             let step = round.max((a.abs() / (8.0 * e)).sqrt()).max(1.0);
             let square = (a / step).powi(2) / 4.0 + (8.0 * e * step).powi(2);
-            (step, (-determinant / square).sqrt())
+            let together = if ground.coursed { 1.0 } else { OUT_OF_STEP };
+            (step, (-determinant / square).sqrt() / together)
         } else {
             // Straight in one direction: steps only where the heights bend.
             ((a.abs() / (8.0 * e)).sqrt(), (c.abs() / (8.0 * e)).sqrt())
