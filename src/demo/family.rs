@@ -4,7 +4,7 @@
 //! and stands for one thing a tessellator can waste triangles on.
 
 use crate::patch_set::{PatchEntry, PatchSet, SetFile};
-use crate::surface::{BezierNet, Cylinder, Sphere, Surface};
+use crate::surface::{BezierNet, Cone, Cylinder, Sphere, Surface, Torus};
 
 /// A member of the family.
 #[derive(Debug)]
@@ -51,6 +51,16 @@ pub fn family() -> Vec<Member> {
             "quarter cylinder",
             vec![("shell".to_owned(), quarter_cylinder())],
             &[(0.01, 1.22)],
+        ),
+        member(
+            "cone",
+            vec![("cone".to_owned(), cone())],
+            &[(0.05, 1.22), (0.001, 1.1)],
+        ),
+        member(
+            "half torus",
+            vec![("ring".to_owned(), half_torus())],
+            &[(0.05, 1.8)],
         ),
         member(
             "uneven flat",
@@ -199,6 +209,32 @@ fn quarter_cylinder() -> Surface {
         radius: 100.0,
         height: 300.0,
         angle_deg: (0.0, 90.0),
+    })
+}
+
+/// Straight to a tip, along whose collapsed edge the normal turns.
+fn cone() -> Surface {
+    Surface::Cone(Cone {
+        center: [0.0; 3],
+        axis: [0.0, 0.0, 1.0],
+        start: None,
+        radius: 60.0,
+        top_radius: 0.0,
+        height: 90.0,
+        angle_deg: (0.0, 360.0),
+    })
+}
+
+/// Bent one way outside and both ways inside.
+fn half_torus() -> Surface {
+    Surface::Torus(Torus {
+        center: [0.0; 3],
+        axis: [0.0, 0.0, 1.0],
+        start: None,
+        major: 200.0,
+        minor: 50.0,
+        angle_deg: (0.0, 180.0),
+        tube_deg: (0.0, 360.0),
     })
 }
 

@@ -10,7 +10,7 @@
 //! all face T's way. Projected along T's normal, their flat triangles go round
 //! every point m of T once at least. The outline of S(R) is moved to theirs by
 //! straight lines between points of each edge curve and its chord, no longer
-//! than the edge's figure (`bezier::chord_bound`, or the distance of the corners
+//! than the edge's figure (`bezier::close_chord_bound`, or the distance of the corners
 //! if that is more). So either an edge whose figure reaches T sweeps m, which is
 //! then as near to the curve, or the projection of S(R) goes round m too, hence
 //! covers it, and m is as near as S(R) is high over T's plane there:
@@ -35,7 +35,7 @@ use super::evidence::Evidence;
 use super::facet::{Facet, Facets, to_triangle};
 use super::part::{apart, centre, height_over, is_tiny, middle, quarters};
 use super::rounding::slack;
-use crate::bezier::{BezierPatch, TriangleNet, TriangleRestriction, chord_bound};
+use crate::bezier::{BezierPatch, TriangleNet, TriangleRestriction, close_chord_bound};
 use crate::pace;
 use crate::patch_set::PatchSet;
 use crate::scalar::{Point, Vector};
@@ -198,7 +198,7 @@ impl<'a> Prover<'a> {
                 of.map(|i| net.weights[i]).collect()
             };
             let next = (k + 1) % 3;
-            chord_bound(&points, &weights, &ends[k], &ends[next])
+            close_chord_bound(&points, &weights, &ends[k], &ends[next])
                 .max(off[k])
                 .max(off[next])
                 + self.slack[cell.piece]
