@@ -150,6 +150,13 @@ fn what_lies_beyond_a_sliver_is_no_near_miss() {
     let found = survey(&set);
     assert_eq!(found.seams.len(), 1);
     assert_eq!(found.findings(), 0);
+    // The same with the sliver before its neighbour.
+    let mut set = empty();
+    add(&mut set, "a", &rectangle([10.0, 10.05], [0.0, 5.0]));
+    add(&mut set, "b", &rectangle([0.0, 10.0], [0.0, 5.0]));
+    let found = survey(&set);
+    assert_eq!(found.seams.len(), 1);
+    assert_eq!(found.findings(), 0);
     // A fin that stops short of a seam is a near miss of both its edges.
     let mut set = empty();
     add(&mut set, "a", &rectangle([0.0, 10.0], [0.0, 5.0]));

@@ -109,6 +109,23 @@ mod tests {
     use crate::sampling::ratio;
     use crate::scalar::Point;
 
+    #[test]
+    fn a_corner_is_half_its_angle() {
+        let [east, north] = [Vector::x(), Vector::y()];
+        let half =
+            |incoming: Vector, outgoing: Vector| half_angle(&incoming, &outgoing, &Vector::z());
+        // Counterclockwise round the piece: a right angle, straight on, and inwards.
+        let right = half(east, north).unwrap();
+        assert!((right - 0.5_f64.sqrt()).abs() < 1e-15, "{right}");
+        let acute = half(east, -(east * 3.0_f64.sqrt()) + north).unwrap();
+        assert!(
+            (acute - 15.0_f64.to_radians().sin()).abs() < 1e-15,
+            "{acute}"
+        );
+        assert!((half(east, east).unwrap() - 1.0).abs() < 1e-15);
+        assert!(half(north, east).is_none());
+    }
+
     /// A plane patch whose side v = 0 is the parabola y = -4 b x (1 - x): on one
     /// segment for that side the surface stands b beyond it, by hand, and on four
     /// segments a sixteenth of that.
