@@ -142,3 +142,70 @@ fn nothing_is_half_written() {
     assert_eq!(code, 2);
     assert!(err.contains("0 is not in 1..=20"), "{err}");
 }
+
+/// A family by size: edges 1.5 times shorter from level to level, those of a panel
+/// with a size of its own too, and sizes that grow as much less an edge.
+#[test]
+fn families_by_size_are_finer_everywhere() {
+    let folder = tempfile::tempdir().unwrap();
+    let text = r#"(name: "two", sizes: [(of: "fine", size: 6)], patches: [
+        (name: "fine/1", surface: Plane(origin: (0, 0, 0), u: (90, 0, 0), v: (0, 90, 0))),
+        (name: "wide/1", surface: Plane(origin: (90, 0, 0), u: (90, 0, 0), v: (0, 90, 0))),
+    ])"#;
+    fs::write(folder.path().join("two.ron"), text).unwrap();
+    let output = Command::cargo_bin("chordwise")
+        .unwrap()
+        .current_dir(folder.path())
+        .args(["tessellate", "two.ron", "-o", "two.vtu", "--size", "12"])
+        .args(["--family", "3", "--format", "json"])
+        .output()
+        .unwrap();
+    let said = String::from_utf8_lossy(&output.stderr);
+    assert!(output.status.success(), "{said}");
+    let told: Value = serde_json::from_slice(&output.stdout).unwrap();
+    let levels = told["levels"].as_array().unwrap();
+    for (level, k) in levels.iter().zip(0..) {
+        let finer = 1.5_f64.powi(k);
+        let summary = &level["summary"];
+        let sized = &summary["sized"];
+        assert_relative_eq!(
+            sized["size"].as_f64().unwrap(),
+            12.0 / finer,
+            max_relative = 1e-14
+        );
+        let growth = 1.0 + 0.2 / finer;
+        assert_relative_eq!(
+            sized["growth"].as_f64().unwrap(),
+            growth,
+            max_relative = 1e-14
+        );
+        let quality = &summary["quality"];
+        assert_eq!(
+            (&quality["whole"], &quality["asked_growth"]),
+            (&true.into(), &sized["growth"])
+        );
+        let measures = quality["measures"].as_array().unwrap();
+        let of = |name: &str| measures.iter().find(|m| m["measure"] == name).unwrap();
+        let grading = of("grading");
+        assert!(
+            grading["maximum"].as_f64().unwrap() <= growth + 1e-9,
+            "{grading}"
+        );
+        // The smaller half of all edges is of the panel with its own size.
+        let shortest = of("edge_length")["one_percent"].as_f64().unwrap();
+        assert!(
+            (0.6..1.05).contains(&(shortest * finer / 6.0)),
+            "{shortest} at {k}"
+        );
+        let longest = of("edge_length")["maximum"].as_f64().unwrap();
+        assert!(
+            (0.95..1.6).contains(&(longest * finer / 12.0)),
+            "{longest} at {k}"
+        );
+    }
+    let edges = levels.iter().map(|l| l["mean_edge"].as_f64().unwrap());
+    let edges: Vec<f64> = edges.collect();
+    for pair in edges.windows(2) {
+        assert!((1.4..1.6).contains(&(pair[0] / pair[1])), "{edges:?}");
+    }
+}

@@ -217,6 +217,13 @@ impl PatchSet {
         &mut self.tolerances
     }
 
+    /// Divides the sizes that the file sets for panels, for meshes of a family.
+    pub(crate) fn divide_panel_sizes(&mut self, by: f64) {
+        for panel in &mut self.panels {
+            panel.size = panel.size.map(|size| size / by);
+        }
+    }
+
     /// All panels, in order of first appearance.
     #[must_use]
     pub fn panels(&self) -> &[Panel] {

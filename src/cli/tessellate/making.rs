@@ -164,7 +164,13 @@ impl TessellateArguments {
         };
         let wanted = (|piece: PieceId| job.of(piece), evidence);
         let stage = |name| job.progress.stage(name);
-        let made = SizedMesh::within(job.set, &sizing, &job.budget, wanted, stage)?;
+        // Sizes of panels are the file's, and become finer with the others.
+        let mut finer_set = None;
+        if finer > 1.0 && job.set.panels().iter().any(|panel| panel.size.is_some()) {
+            finer_set.insert(job.set.clone()).divide_panel_sizes(finer);
+        }
+        let set = finer_set.as_ref().unwrap_or(job.set);
+        let made = SizedMesh::within(set, &sizing, &job.budget, wanted, stage)?;
         let report = SizedReport::new(&sizing, &made);
         Ok(Some(Sized {
             meshed: made.meshed,
