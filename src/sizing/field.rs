@@ -4,7 +4,7 @@
 //! request = min(size, panel's size,
 //!               SAFE sqrt(8 e / (k1 + max(k2, 0) / 3)),   chord e, |k1| >= |k2|
 //!               psi / |k1|)                               normal angle psi
-//! h(x)    = min over y of request(y) + slope |x - y|,      slope = 0.55 ln growth
+//! h(x)    = min over y of request(y) + slope |x - y|,      slope = ln growth / 2
 //! ```
 //!
 //! Over an equilateral triangle of edge h with its corners on the surface the
@@ -28,13 +28,17 @@ use crate::topology::{Topology, nearest_from};
 /// The part of the largest size a chord allows that is aimed at.
 const SAFE: f64 = 0.82;
 
+/// Sizes keep to so many times the smallest edge asked for: single edges are that
+/// much shorter than the size at their place.
+const ABOVE: f64 = 1.75;
+
 /// Cells of a grid in one parameter.
 const FEWEST: usize = 4;
 const MOST: usize = 64;
 
 /// The part of the growth that sizes use: single edges are up to two thirds longer
 /// than the size, and ways along a grid longer than straight ones.
-const SLOPE: f64 = 0.55;
+const SLOPE: f64 = 0.5;
 
 /// Sizes on one piece.
 #[derive(Debug, Clone)]
@@ -71,7 +75,9 @@ impl Field {
     ) -> Self {
         let mut field = Self {
             size: sizing.size,
-            least: sizing.min_edge.unwrap_or(0.0),
+            least: sizing
+                .min_edge
+                .map_or(0.0, |least| (ABOVE * least).min(sizing.size)),
             slope: SLOPE * sizing.growth.ln(),
             grids: Vec::new(),
         };
@@ -150,6 +156,11 @@ impl Field {
                 grid.h[at] = grid.h[at].min(asked);
             }
         }
+    }
+
+    /// Whether no smaller size is aimed at than that at a place.
+    pub(super) fn is_least(&self, place: Place) -> bool {
+        self.at(place) <= self.least * (1.0 + 1e-9)
     }
 
     /// The size at a place.

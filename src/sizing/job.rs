@@ -62,6 +62,15 @@ fn ready(
         let unfilled = |piece: usize| SizingError::Unfilled {
             patch: set.patch_of(PieceId::new(piece)).name.clone(),
         };
+        // All sides are points, and yet it has an inside.
+        let balloon = |piece: usize| {
+            let surface = &set.pieces()[piece].surface;
+            let [a, b] = super::field::lengths(surface);
+            wanted(PieceId::new(piece)) && starts[piece].is_none() && a.min(b) > 0.0
+        };
+        if let Some(piece) = (0..starts.len()).find(|&piece| balloon(piece)) {
+            return Err(unfilled(piece));
+        }
         let parts = parts(atlas, &field, &border, &starts).map_err(unfilled)?;
         if look >= LOOKS {
             return Ok((field, border, parts));

@@ -122,11 +122,10 @@ impl SizedMesh {
             seconds.proof += lap(&mut clock);
             if let Some((spot, proved)) = worst(&wide.over) {
                 // Where the smallest edge rules nothing can be lowered.
-                let least = sizing.min_edge.map_or(0.0, |least| least * (1.0 + 1e-9));
                 let stuck = wide
                     .over
                     .iter()
-                    .any(|(spot, _)| made.field.at(place(*spot)) <= least);
+                    .any(|(spot, _)| made.field.is_least(place(*spot)));
                 if rounds >= ROUNDS || stuck {
                     let piece = &set.pieces()[spot.piece.index()];
                     let [u, v] = piece.patch_parameters(spot.uv);

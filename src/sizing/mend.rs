@@ -4,7 +4,7 @@
 //! touches is done: flip an edge, collapse an edge, move a corner, split the
 //! longest edge. Angles are compared by their cosines.
 
-use super::region::{NONE, Vertex};
+use super::region::{NONE, Vertex, next};
 use super::remesh::{Remesher, vertex};
 use crate::scalar::{Point, Vector};
 
@@ -45,21 +45,41 @@ impl Remesher<'_> {
     /// Looks at bad triangles until none is left or nothing helps.
     pub(super) fn mend(&mut self) {
         let aim = AIM_DEG.to_radians().cos();
+        let count = u32::try_from(self.region.triangles.len()).expect("limited before the run");
+        let bad = |of: &Self, t: u32| {
+            let corners = of.region.triangles[t as usize];
+            corners[0] != NONE && of.sharpness(corners) > aim
+        };
+        let mut looked: Vec<u32> = (0..count).filter(|&t| bad(self, t)).collect();
         for _ in 0..ROUNDS {
-            let mut changed = 0;
-            for t in 0..self.region.triangles.len() {
-                let corners = self.region.triangles[t];
-                if corners[0] == NONE || self.sharpness(corners) <= aim {
+            let mut touched = Vec::new();
+            for &t in &looked {
+                if !bad(self, t) {
                     continue;
                 }
-                let t = u32::try_from(t).expect("counts are limited before the run");
+                let corners = self.region.triangles[t as usize];
                 if self.better(t) {
-                    changed += 1;
+                    touched.extend(corners);
                 }
             }
-            if changed == 0 {
+            if touched.is_empty() {
                 break;
             }
+            // What a change left bad lies round what it touched.
+            let region = &self.region;
+            let round = |v: u32| region.around(v).chain(region.around(v).map(next));
+            let mut again: Vec<u32> = touched
+                .into_iter()
+                .filter(|&v| region.leaving[v as usize] != NONE)
+                .flat_map(|v| {
+                    let beyond = round(v).map(|h| region.twin(h)).filter(|h| *h != NONE);
+                    round(v).chain(beyond).map(|h| h / 3).collect::<Vec<u32>>()
+                })
+                .chain(looked.iter().copied())
+                .collect();
+            again.sort_unstable();
+            again.dedup();
+            looked = again;
         }
     }
 

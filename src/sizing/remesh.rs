@@ -22,6 +22,13 @@ const TINY: f64 = 0.4;
 /// A facet may lean from the mean normal at its corners by this cosine.
 const UPRIGHT: f64 = 0.3;
 
+/// A vertex closer to its balance than this part of the size stays.
+const STILL: f64 = 0.01;
+
+/// Rounds more at most, while the mean aspect ratio is above the aim.
+const MORE: usize = 8;
+const AIM: f64 = 1.11;
+
 /// Passes of flips at most: on a curved surface flips may run in circles.
 const FLIPS: usize = 10;
 
@@ -53,21 +60,48 @@ fn cotangent(c: &Point, a: &Point, b: &Point) -> f64 {
 impl Remesher<'_> {
     /// The whole of it.
     pub(super) fn run(&mut self) {
-        for _ in 0..2 {
-            self.collapse_short();
-            self.flip_all();
-            self.split_long();
-            self.flip_all();
-            self.smooth();
-            self.smooth();
-        }
         self.collapse_short();
         self.split_long();
-        for _ in 0..3 {
+        self.flip_all();
+        self.smooth();
+        self.smooth();
+        self.flip_all();
+        self.collapse_short();
+        self.split_long();
+        for _ in 0..2 {
             self.flip_all();
             self.smooth();
         }
         self.flip_all();
+        // Where parameters are sheared the start was a poor one.
+        for _ in 0..MORE {
+            if self.mean_aspect() <= AIM {
+                break;
+            }
+            self.collapse_short();
+            self.split_long();
+            self.flip_all();
+            self.smooth();
+            self.smooth();
+            self.flip_all();
+        }
+    }
+
+    /// The mean aspect ratio: longest edge times perimeter over 4 sqrt 3 areas.
+    fn mean_aspect(&self) -> f64 {
+        let (mut sum, mut count) = (0.0, 0.0);
+        for t in self.region.triangles.iter().filter(|t| t[0] != NONE) {
+            let [p, q, r] = t.map(|v| self.region.point(v));
+            let lengths = [(q - p).norm(), (r - q).norm(), (p - r).norm()];
+            let longest = lengths.iter().copied().fold(0.0, f64::max);
+            let perimeter: f64 = lengths.iter().sum();
+            let area = 0.5 * (q - p).cross(&(r - p)).norm();
+            if area > 0.0 {
+                sum += longest * perimeter / (4.0 * 3.0_f64.sqrt() * area);
+                count += 1.0;
+            }
+        }
+        sum / f64::max(count, 1.0)
     }
 
     pub(super) fn size_of(&self, a: u32, b: u32) -> f64 {
@@ -256,7 +290,10 @@ impl Remesher<'_> {
                 continue;
             }
             if let Some(target) = self.balanced(v) {
-                self.move_to(v, &target, 1);
+                let of = &self.region.vertices[v as usize];
+                if (target - of.spot.point).norm() > STILL * of.size {
+                    self.move_to(v, &target, 1);
+                }
             }
         }
     }

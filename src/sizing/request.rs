@@ -13,7 +13,8 @@ pub const DEFAULT_GROWTH: f64 = 1.2;
 pub struct Sizing {
     /// Edge length where nothing asks for a shorter one.
     pub size: f64,
-    /// No size below this is aimed at, and edges below it are named.
+    /// Sizes keep so far above this that no edge is shorter, as far as geometry and
+    /// the size let them; edges below it are named.
     pub min_edge: Option<f64>,
     /// Sizes at the two ends of an edge differ by this ratio at most.
     pub growth: f64,
