@@ -9,8 +9,12 @@ use crate::patch_set::PieceId;
 use crate::scalar::Point;
 use crate::topology::EdgeId;
 
-/// Parts of one flat triangle looked at, at most.
+/// Parts of one flat triangle looked at, at most; and where the goal is out of reach
+/// by so much that they would not do, as on flat pieces with uneven parameters, which
+/// shift sideways and do not deviate.
 const BUDGET: usize = 600;
+const FEW: usize = 24;
+const OUT_OF_REACH: f64 = 100.0;
 
 /// A part of a flat triangle: its corners and a place for each.
 #[derive(Debug, Clone, Copy)]
@@ -48,6 +52,12 @@ impl Task<'_> {
         scratch.parts.clear();
         self.look(whole, goal, scratch);
         let mut looked = 1;
+        let first = scratch.parts.first().map_or(0.0, |part| part.0);
+        let few = if first > OUT_OF_REACH * goal {
+            FEW
+        } else {
+            BUDGET
+        };
         // The worst part first; what is left when the budget is spent counts.
         loop {
             let worst = (0..scratch.parts.len())
@@ -56,7 +66,8 @@ impl Task<'_> {
                 return (0.0, self.spots[t][0]);
             };
             let (bound, piece, part) = scratch.parts[worst];
-            if bound <= goal || looked >= BUDGET {
+            let most = if bound > self.chord { BUDGET } else { few };
+            if bound <= goal || looked >= most {
                 return (bound, part.spots[0]);
             }
             scratch.parts.swap_remove(worst);
