@@ -126,7 +126,8 @@ mod tests {
         assert!(half(north, east).is_none());
     }
 
-    /// A plane patch whose side v = 0 is the parabola y = -4 b x (1 - x): on one
+    /// A plane patch of parabolas y = v - 4 b x (1 - x), so that third derivatives
+    /// vanish and nothing is added for them: on one
     /// segment for that side the surface stands b beyond it, by hand, and on four
     /// segments a sixteenth of that.
     #[test]
@@ -134,11 +135,7 @@ mod tests {
         let b = 0.01;
         let points = (0..6).map(|k| {
             let (x, row) = (ratio(k / 2, 2), k % 2);
-            let y = if row == 0 && k / 2 == 1 {
-                -2.0 * b
-            } else {
-                ratio(row, 1)
-            };
+            let y = ratio(row, 1) - if k / 2 == 1 { 2.0 * b } else { 0.0 };
             Point::new(x, y, 0.0)
         });
         let surface = BezierPatch::new((2, 1), points.collect(), None).unwrap();
