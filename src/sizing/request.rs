@@ -111,7 +111,7 @@ pub enum SizingError {
     },
     /// Refinement ended without proof.
     #[error(
-        "patch `{patch}` at (u, v) = ({u:.6}, {v:.6}): the sized mesh could only be proved within {proved:.3e}, meshed {rounds} times with ever smaller sizes; the chord tolerance is {chord:.3e} - a larger chord, or a smaller --min-edge where that rules, lets the run through"
+        "patch `{patch}` at (u, v) = ({u:.6}, {v:.6}): the sized mesh could only be proved within {proved:.6e}, rounds with ever smaller sizes: {rounds}; the chord tolerance is {chord:.3e} - a larger chord, or a smaller --min-edge where that rules, lets the run through"
     )]
     Unproved {
         /// The patch.
