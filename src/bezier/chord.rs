@@ -72,7 +72,7 @@ fn halved(mut net: Vec<(Vector, f64)>, a: &Vector, b: &Vector, times: usize) -> 
 }
 
 /// Distance of a point from the segment.
-fn from_segment(p: &Vector, a: &Vector, b: &Vector) -> f64 {
+pub(crate) fn from_segment(p: &Vector, a: &Vector, b: &Vector) -> f64 {
     let chord = b - a;
     let square = chord.norm_squared();
     let t = if square > 0.0 {

@@ -22,7 +22,7 @@ mod side;
 mod triangle;
 
 pub(crate) use binomial::{binomial, binomials};
-pub(crate) use chord::{chord_bound, close_chord_bound};
+pub(crate) use chord::{chord_bound, close_chord_bound, from_segment};
 pub(crate) use curve::GAUSS_8;
 pub use curve::{BezierCurve, CurveJet};
 pub use jet::SurfaceJet;

@@ -28,7 +28,7 @@
 
 use super::quadratic::Quadratic;
 use super::remainder::Shape;
-use crate::bezier::{BezierPatch, TriangleNet, TriangleRestriction, chord_bound};
+use crate::bezier::{BezierPatch, TriangleNet, TriangleRestriction, chord_bound, from_segment};
 use crate::scalar::{Cuboid, Point, Vector};
 
 /// A flat triangle of the mesh.
@@ -282,18 +282,9 @@ fn largest(values: &[f64]) -> f64 {
 
 /// Distance of a point in the plane of a triangle from the triangle's border.
 fn distance_to_border(p: &Vector, corners: &[Vector; 3]) -> f64 {
-    let to_segment = |a: &Vector, b: &Vector| {
-        let chord = b - a;
-        let square = chord.norm_squared();
-        let t = if square > 0.0 {
-            ((p - a).dot(&chord) / square).clamp(0.0, 1.0)
-        } else {
-            0.0
-        };
-        (p - a - chord * t).norm()
-    };
     let [a, b, c] = corners;
-    to_segment(a, b).min(to_segment(b, c)).min(to_segment(c, a))
+    let along = |a: &Vector, b: &Vector| from_segment(p, a, b);
+    along(a, b).min(along(b, c)).min(along(c, a))
 }
 
 #[cfg(test)]

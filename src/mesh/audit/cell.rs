@@ -25,10 +25,12 @@ pub(super) struct Cell {
     pub(super) fill: bool,
 }
 
-/// Puts every face on its piece. Faces that cannot be placed, or are there
-/// twice, are found and left out; turned ones are found and turned back, so
-/// that one fault does not show as many.
-pub(super) fn cells(set: &PatchSet, evidence: &Evidence, findings: &mut Vec<Finding>) -> Vec<Cell> {
+/// The set's patches by the mesh's names; a name that is not known is a finding.
+pub(super) fn known(
+    set: &PatchSet,
+    evidence: &Evidence,
+    findings: &mut Vec<Finding>,
+) -> Vec<Option<usize>> {
     let by_name: std::collections::BTreeMap<&str, usize> = set
         .patches()
         .iter()
@@ -54,6 +56,14 @@ pub(super) fn cells(set: &PatchSet, evidence: &Evidence, findings: &mut Vec<Find
             point: None,
         });
     }
+    patches
+}
+
+/// Puts every face on its piece. Faces that cannot be placed, or are there
+/// twice, are found and left out; turned ones are found and turned back, so
+/// that one fault does not show as many.
+pub(super) fn cells(set: &PatchSet, evidence: &Evidence, findings: &mut Vec<Finding>) -> Vec<Cell> {
+    let patches = known(set, evidence, findings);
     let doubled = doubled(evidence);
     let mut cells = Vec::with_capacity(evidence.faces.len());
     for (index, face) in evidence.faces.iter().enumerate() {

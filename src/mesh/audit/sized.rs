@@ -8,6 +8,7 @@
 
 use rayon::prelude::*;
 
+use super::cell::known;
 use super::closed::is_open_at;
 use super::evidence::Evidence;
 use super::finding::{Fault, Finding};
@@ -58,31 +59,7 @@ fn spot(set: &PatchSet, patch: usize, [u, v]: [f64; 2]) -> Option<Spot> {
 }
 
 fn placed(set: &PatchSet, evidence: &Evidence, findings: &mut Vec<Finding>) -> Placed {
-    let by_name: std::collections::BTreeMap<&str, usize> = set
-        .patches()
-        .iter()
-        .enumerate()
-        .map(|(index, patch)| (patch.name.as_str(), index))
-        .collect();
-    let patches: Vec<Option<usize>> = evidence
-        .patches
-        .iter()
-        .map(|name| by_name.get(name.as_str()).copied())
-        .collect();
-    for (name, _) in evidence
-        .patches
-        .iter()
-        .zip(&patches)
-        .filter(|p| p.1.is_none())
-    {
-        findings.push(Finding {
-            fault: Fault::UnknownPatch,
-            triangle: None,
-            patch: name.clone(),
-            place: None,
-            point: None,
-        });
-    }
+    let patches = known(set, evidence, findings);
     let mut found = Placed {
         faces: Vec::new(),
         triangles: Vec::new(),
