@@ -143,24 +143,30 @@ impl Audit {
         let fills = covered(set, &topology, &cells, &present, &mut findings);
         let faces = cells.len();
         cells.extend(fills);
-        let mut audit = Self {
+        let mut audit = Self::found(set, evidence, &present, findings);
+        audit.deviation(set, evidence, &cells, faces, chord.get());
+        Ok(audit)
+    }
+
+    /// What is there and what was found, before anything is measured.
+    fn found(
+        set: &PatchSet,
+        evidence: &Evidence,
+        present: &[bool],
+        findings: Vec<Finding>,
+    ) -> Self {
+        let there = |pieces: &std::ops::Range<usize>| present[pieces.clone()].contains(&true);
+        let absent = set.patches().iter().filter(|p| !there(&p.pieces));
+        let absent: Vec<String> = absent.map(|p| p.name.clone()).collect();
+        Self {
             triangles: evidence.faces.len(),
-            patches: 0,
-            absent: Vec::new(),
+            patches: set.patches().len() - absent.len(),
+            absent,
             to_mesh: Bracket::ZERO,
             to_surface: 0.0,
             worst: None,
             findings,
-        };
-        for patch in set.patches() {
-            if present[patch.pieces.clone()].contains(&true) {
-                audit.patches += 1;
-            } else {
-                audit.absent.push(patch.name.clone());
-            }
         }
-        audit.deviation(set, evidence, &cells, faces, chord.get());
-        Ok(audit)
     }
 
     /// The proved deviation of every triangle, the larger of both directions;

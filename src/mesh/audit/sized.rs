@@ -17,7 +17,7 @@ use super::{Audit, Worst};
 use crate::mesh::edges::EdgeTable;
 use crate::mesh::wide::{Spot, Wide};
 use crate::patch_set::{PatchSet, PieceId};
-use crate::scalar::{Bracket, Point};
+use crate::scalar::Point;
 use crate::topology::Topology;
 
 /// Findings of the deviation that are listed at most.
@@ -248,25 +248,9 @@ pub(super) fn audit(set: &PatchSet, topology: &Topology, evidence: &Evidence, ch
         &present,
         chord,
     );
-    let mut audit = Audit {
-        triangles: evidence.faces.len(),
-        patches: 0,
-        absent: Vec::new(),
-        to_mesh: Bracket {
-            proved: wide.to_mesh,
-            attained: 0.0,
-        },
-        to_surface: wide.to_surface,
-        worst: None,
-        findings,
-    };
-    for patch in set.patches() {
-        if present[patch.pieces.clone()].contains(&true) {
-            audit.patches += 1;
-        } else {
-            audit.absent.push(patch.name.clone());
-        }
-    }
+    let mut audit = Audit::found(set, evidence, &present, findings);
+    audit.to_mesh.proved = wide.to_mesh;
+    audit.to_surface = wide.to_surface;
     deviation(set, evidence, &placed, &wide, chord, &mut audit);
     audit
 }
