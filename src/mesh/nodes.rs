@@ -88,12 +88,9 @@ fn curvatures(
 ) -> Option<[f64; 2]> {
     let middle = [0, 1].map(|i| (corners[0][i] + corners[1][i] + corners[2][i]) / 3.0);
     let piece = &set.pieces()[patch.piece_at(middle)];
-    let own = [piece.u, piece.v];
     let (gaussian, mean) = BESIDE.iter().find_map(|part| {
-        let [u, v] = [0, 1].map(|i| {
-            let t = corners[corner][i] * (1.0 - part) + middle[i] * part;
-            ((t - own[i][0]) / (own[i][1] - own[i][0])).clamp(0.0, 1.0)
-        });
+        let beside = [0, 1].map(|i| corners[corner][i] * (1.0 - part) + middle[i] * part);
+        let [u, v] = piece.unit_parameters(beside);
         let found = piece.surface.jet(u, v).gaussian_and_mean()?;
         (found.0.is_finite() && found.1.is_finite()).then_some(found)
     })?;

@@ -102,6 +102,15 @@ impl Piece {
         let along = |range: [f64; 2], t: f64| range[0] * (1.0 - t) + range[1] * t;
         [along(self.u, u), along(self.v, v)]
     }
+
+    /// The place on the unit square of the piece with the patch's own (u, v), or the
+    /// nearest there is. Ends are ends exactly, so that borders stay borders.
+    #[must_use]
+    pub fn unit_parameters(&self, [u, v]: [f64; 2]) -> [f64; 2] {
+        let along =
+            |range: [f64; 2], t: f64| ((t - range[0]) / (range[1] - range[0])).clamp(0.0, 1.0);
+        [along(self.u, u), along(self.v, v)]
+    }
 }
 
 /// What a seam is asked to be.

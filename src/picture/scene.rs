@@ -219,9 +219,6 @@ fn middle(corners: &[[f64; 2]; 3]) -> [f64; 2] {
 
 /// The weighted parameters on the unit square of the piece.
 fn local(piece: &Piece, corners: &[[f64; 2]; 3], weights: [f64; 3]) -> [f64; 2] {
-    let own = [piece.u, piece.v];
-    [0, 1].map(|i| {
-        let t = (0..3).fold(0.0, |sum, k| sum + corners[k][i] * weights[k]);
-        ((t - own[i][0]) / (own[i][1] - own[i][0])).clamp(0.0, 1.0)
-    })
+    let place = [0, 1].map(|i| (0..3).fold(0.0, |sum, k| sum + corners[k][i] * weights[k]));
+    piece.unit_parameters(place)
 }

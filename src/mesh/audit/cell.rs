@@ -169,20 +169,7 @@ fn placed(set: &PatchSet, patch: &Patch, face: &Face) -> Result<(usize, [[f64; 2
     }
     let index = patch.pieces.start + at[0] * (patch.breaks_v.len() - 1) + at[1];
     let piece = &set.pieces()[index];
-    // Ends are ends exactly, so that borders stay borders.
-    let local = |range: [f64; 2], t: f64| {
-        if t <= range[0] {
-            0.0
-        } else if t >= range[1] {
-            1.0
-        } else {
-            ((t - range[0]) / (range[1] - range[0])).clamp(0.0, 1.0)
-        }
-    };
-    let places = face
-        .places
-        .map(|[u, v]| [local(piece.u, u), local(piece.v, v)]);
-    Ok((index, places))
+    Ok((index, face.places.map(|place| piece.unit_parameters(place))))
 }
 
 /// Which cell of the same piece each edge is shared with, by parameters.

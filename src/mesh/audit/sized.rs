@@ -43,18 +43,9 @@ fn spot(set: &PatchSet, patch: usize, [u, v]: [f64; 2]) -> Option<Spot> {
     }
     let index = of.piece_at([u, v]);
     let piece = &set.pieces()[index];
-    let local = |range: [f64; 2], t: f64| {
-        if t <= range[0] {
-            0.0
-        } else if t >= range[1] {
-            1.0
-        } else {
-            ((t - range[0]) / (range[1] - range[0])).clamp(0.0, 1.0)
-        }
-    };
     Some(Spot {
         piece: PieceId::new(index),
-        uv: [local(piece.u, u), local(piece.v, v)],
+        uv: piece.unit_parameters([u, v]),
     })
 }
 
